@@ -1,0 +1,123 @@
+"""Sizing: the design point of an engine fixes its throats, and refuses what cannot run."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+
+from engine.atmosphere import FlightCondition
+from engine.cycles.flowpath import Arrangement, Flowpath, Sizing
+from engine.errors import CycleCannotRun
+from engine.parts.inlet import take_in
+
+_MOST_ROUNDS = 60
+
+
+def size(
+    arrangement: Arrangement,
+    flight: FlightCondition,
+    *,
+    airflow: float | None = None,
+    net_thrust: float | None = None,
+) -> tuple[Sizing, Flowpath]:
+    """Size an engine for an airflow [kg/s] or a net thrust [N] at its design flight condition.
+
+    Raises
+    ------
+    CycleCannotRun
+        a turbine that cannot drive its compressor, a nozzle that cannot flow, no fuel needed, or
+        no positive thrust; the message says which and by how much.
+    """
+    _, face = take_in(arrangement.gas, arrangement.inlet, flight)
+    unknowns = arrangement.design_unknowns(face)
+    path = _run(arrangement, flight, unknowns)
+    _refuse_impossible(path, flight)
+    for _ in range(_MOST_ROUNDS):
+        # All is proportional to airflow but a given shaft power: repeat until that settles too.
+        if airflow is not None:
+            factor = airflow / float(path.stations["2"].mass_flow)
+        else:
+            thrust = float(path.net_thrust(flight))
+            if not thrust > 0.0:
+                raise CycleCannotRun(
+                    f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
+                    f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); raise "
+                    "turbine_entry_temperature or lower the pressure ratios"
+                )
+            assert net_thrust is not None
+            factor = net_thrust / thrust
+        unknowns = unknowns.copy()
+        unknowns[-1] += np.log(factor)
+        path = _run(arrangement, flight, unknowns)
+        if abs(factor - 1.0) < 1e-13:
+            break
+    _refuse_impossible(path, flight)
+    return _sizing(arrangement, flight, unknowns, path), path
+
+
+def _run(arrangement: Arrangement, flight: FlightCondition, unknowns: np.ndarray) -> Flowpath:
+    _, face = take_in(arrangement.gas, arrangement.inlet, flight)
+    with np.errstate(all="ignore"):
+        return arrangement.evaluate(unknowns, face, flight.static_pressure, None, is_lit=True)
+
+
+def _sizing(
+    arrangement: Arrangement, flight: FlightCondition, unknowns: np.ndarray, path: Flowpath
+) -> Sizing:
+    booster = 0.0
+    if "25" in path.stations:
+        fan_rise = path.stations["21"].enthalpy - path.stations["2"].enthalpy
+        booster = float((path.stations["25"].enthalpy - path.stations["21"].enthalpy) / fan_rise)
+    return Sizing(
+        unknowns=unknowns,
+        areas={name: float(area) for name, area in path.areas.items()},
+        spool_rises={
+            name: (float(rise), float(temperature))
+            for name, (rise, temperature) in path.spool_rises.items()
+        },
+        booster_rise_ratio=booster,
+        reference_thrust=float(path.net_thrust(flight)),
+        reference_pressure=float(path.stations["2"].total_pressure),
+        design_airflow=float(path.stations["2"].mass_flow),
+    )
+
+
+def _refuse_impossible(path: Flowpath, flight: FlightCondition) -> None:
+    """Say what stops a design point from running, from the front of the engine backwards."""
+    hot, delivery = path.stations["4"], path.stations["3"]
+    if not float(hot.fuel_air_ratio) > 0.0:
+        raise CycleCannotRun(
+            f"turbine_entry_temperature = {float(hot.total_temperature):.0f} K is not above "
+            f"compressor delivery, {float(delivery.total_temperature):.0f} K; raise it or lower "
+            "the pressure ratios"
+        )
+    ambient = float(flight.static_pressure)
+    for exit_station, (stream, jet) in path.jets.items():
+        pressure = float(stream.total_pressure)
+        runs = np.isfinite(float(jet.gross_thrust)) and pressure > ambient
+        if not runs:
+            stand = "core nozzle" if exit_station == "9" else "bypass nozzle"
+            why = (
+                "the turbines cannot drive the compressors: little or no pressure is left"
+                if exit_station == "9"
+                else "the fan does not raise the pressure enough"
+            )
+            raise CycleCannotRun(
+                f"the {stand} cannot flow: total pressure ahead of it = {pressure / 1e3:.1f} kPa, "
+                f"ambient {ambient / 1e3:.1f} kPa; {why}; raise turbine_entry_temperature or "
+                "lower bypass_ratio or fan_pressure_ratio"
+            )
+
+
+def scaled(sizing: Sizing, factor: float) -> Sizing:
+    """The same engine with all its flow areas multiplied by a factor."""
+    unknowns = sizing.unknowns.copy()
+    unknowns[-1] += np.log(factor)
+    return replace(
+        sizing,
+        unknowns=unknowns,
+        areas={name: area * factor for name, area in sizing.areas.items()},
+        reference_thrust=sizing.reference_thrust * factor,
+        design_airflow=sizing.design_airflow * factor,
+    )

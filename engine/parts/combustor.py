@@ -1,0 +1,52 @@
+"""Combustor: fuel added until the exit reaches the turbine entry temperature asked for.
+
+The fuel enters at the datum temperature of the gas model; the part of its heat that combustion
+efficiency leaves out is an entry of the energy account, its products are taken as burnt.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from engine.gas import Gas
+from engine.parts.stream import Array, Stream
+
+
+@dataclass(frozen=True)
+class Combustor:
+    """Combustion efficiency, total pressure loss and the fuel's lower heating value [J/kg]."""
+
+    efficiency: float
+    pressure_loss_fraction: float
+    lower_heating_value: float
+
+
+def burn(gas: Gas, combustor: Combustor, air: Stream, exit_temperature: Array) -> Stream:
+    """The stream at the combustor exit, station 4, at a total temperature [K]."""
+    heat_release = combustor.efficiency * combustor.lower_heating_value
+    ratio = gas.fuel_air_ratio_burnt(air.enthalpy, exit_temperature, heat_release, "hot")
+    return Stream(
+        np.asarray(exit_temperature),
+        air.total_pressure * (1.0 - combustor.pressure_loss_fraction),
+        air.mass_flow * (1.0 + ratio),
+        ratio,
+        (air.enthalpy + ratio * heat_release) / (1.0 + ratio),
+        "hot",
+    )
+
+
+def pass_unlit(gas: Gas, combustor: Combustor, air: Stream) -> Stream:
+    """The stream at station 4 with no fuel: the same enthalpy, the same pressure loss."""
+    temperature = gas.temperature_from_enthalpy(
+        air.enthalpy, 0.0, "hot", guess=air.total_temperature
+    )
+    return Stream(
+        temperature,
+        air.total_pressure * (1.0 - combustor.pressure_loss_fraction),
+        air.mass_flow,
+        np.zeros_like(air.mass_flow),
+        air.enthalpy,
+        "hot",
+    )

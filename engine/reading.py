@@ -1,0 +1,157 @@
+"""Reading what a person wrote: TOML checked by a pydantic model, refused in plain words."""
+
+from __future__ import annotations
+
+import difflib
+import tomllib
+from pathlib import Path
+from typing import Any, TypeVar
+
+from pydantic import BaseModel, ConfigDict, ValidationError
+
+from engine.errors import InputRefused
+
+_LARGEST_FILE = 1_000_000  # bytes; the longest sensible input is a hundredth of this
+_Model = TypeVar("_Model", bound=BaseModel)
+
+
+class Table(BaseModel):
+    """A table of an input file: unknown keys are refused, numbers are not made from text."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
+
+
+def read_toml(path: Path) -> dict[str, Any]:
+    """The content of a TOML file; :class:`InputRefused` names the file and what is wrong."""
+    where = str(path)
+    try:
+        if path.is_dir():
+            raise InputRefused("is a folder, not a file", where=where)
+        if path.stat().st_size > _LARGEST_FILE:
+            size = path.stat().st_size / 1e6
+            raise InputRefused(f"is {size:.1f} MB; an input file has at most 1 MB", where=where)
+        text = path.read_bytes().decode("utf-8")
+    except FileNotFoundError:
+        raise InputRefused("there is no such file", where=where) from None
+    except UnicodeDecodeError:
+        raise InputRefused("is not a text file in UTF-8", where=where) from None
+    except OSError as error:
+        raise InputRefused(f"cannot be read: {error.strerror}", where=where) from None
+    try:
+        content = tomllib.loads(text)
+    except tomllib.TOMLDecodeError as error:
+        raise InputRefused(f"is not TOML: {error}", where=where) from None
+    if not content:
+        raise InputRefused("is empty; `longlegs new` writes one to start from", where=where)
+    return content
+
+
+def check(content: dict[str, Any], model: type[_Model], where: str) -> _Model:
+    """``content`` as a model; the first wrong key is named with what is allowed there."""
+    try:
+        return model.model_validate(content)
+    except ValidationError as error:
+        first = _most_telling(error)
+        key = _key(first["loc"], content)
+        raise InputRefused(_in_words(first, model), where=where, key=key) from None
+
+
+def _most_telling(error: ValidationError) -> Any:
+    """An unknown key says more than the missing one that it was meant to be."""
+    details = error.errors(include_url=False)
+    unknown = [d for d in details if d["type"] == "extra_forbidden"]
+    return (unknown or details)[0]
+
+
+def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
+    """Dotted key; an entry of a list is counted from one and named where it has a name."""
+    text, at = "", content
+    for part in place:
+        if not isinstance(at, list | dict):
+            break
+        if isinstance(part, int):
+            entry = at[part] if isinstance(at, list) and part < len(at) else None
+            name = entry.get("name") if isinstance(entry, dict) else None
+            text += f" {part + 1}" + (f' "{name}"' if name else "") + ":"
+            at = entry if entry is not None else {}
+        else:
+            if isinstance(at, dict) and part not in at and text.endswith(":"):
+                # The discriminator of a union, not a key that anybody wrote.
+                if part in at.values():
+                    continue
+            text += ("" if not text else " " if text.endswith(":") else ".") + part
+            at = at.get(part, {}) if isinstance(at, dict) else {}
+    return text.removesuffix(":")
+
+
+def _in_words(detail: Any, model: type[BaseModel]) -> str:
+    """What pydantic found, said to the person who wrote the file."""
+    kind, value = detail["type"], detail.get("input")
+    context = detail.get("ctx", {})
+    if kind == "extra_forbidden":
+        allowed = _keys_beside(model, detail["loc"])
+        close = difflib.get_close_matches(str(detail["loc"][-1]), allowed, n=1)
+        hint = f"; did you mean {close[0]}?" if close else ""
+        return f"unknown key{hint} Allowed here: {', '.join(allowed)}".replace("key Al", "key. Al")
+    if kind == "missing":
+        return "is missing"
+    if kind == "value_error":
+        return str(context.get("error", detail["msg"]))
+    if kind in ("union_tag_invalid", "union_tag_not_found"):
+        return f"{context.get('tag', 'nothing')!s} is none of {context.get('expected_tags', '')}"
+    if kind == "literal_error":
+        return f"= {value!r}; allowed: {context['expected']}"
+    message = detail["msg"].replace("Input should be", "it should be")
+    return f"= {value!r}; {message}"
+
+
+def _keys_beside(model: Any, place: tuple[int | str, ...]) -> list[str]:
+    """Keys that the table holding ``place`` allows."""
+    for part in place[:-1]:
+        found = _member(model, part)
+        if found is None:
+            return sorted(getattr(model, "model_fields", {}))
+        model = found
+    return sorted(getattr(model, "model_fields", {}))
+
+
+def _member(model: Any, part: int | str) -> Any:
+    """The model below one step of an error's place, looking through lists, unions and options."""
+    if isinstance(part, str) and hasattr(model, "model_fields"):
+        info = model.model_fields.get(part)
+        return None if info is None else _models_in(info.annotation)
+    candidates = model if isinstance(model, tuple) else (model,)
+    if isinstance(part, int):
+        return model
+    for candidate in candidates:
+        tag = getattr(candidate, "model_fields", {}).get("kind")
+        if tag is not None and part in getattr(tag.annotation, "__args__", ()):
+            return candidate
+    return None
+
+
+def _models_in(annotation: Any) -> Any:
+    """The model, or the tuple of models, that an annotation holds."""
+    found: list[Any] = []
+
+    def look(item: Any) -> None:
+        if isinstance(item, type) and issubclass(item, BaseModel):
+            found.append(item)
+        for inner in getattr(item, "__args__", ()):
+            look(inner)
+
+    look(annotation)
+    return found[0] if len(found) == 1 else tuple(found)
+
+
+def defaults_used(model: BaseModel, prefix: str = "") -> list[str]:
+    """Every value that the file did not state, as ``key = value``, tables followed inwards."""
+    lines: list[str] = []
+    for name in type(model).model_fields:
+        value = getattr(model, name)
+        key = f"{prefix}{name}"
+        if isinstance(value, BaseModel):
+            lines += defaults_used(value, f"{key}.")
+        elif name not in model.model_fields_set and value not in (None, "", (), [], {}):
+            lines.append(f"{key} = {value}")
+    return lines
