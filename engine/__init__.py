@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
@@ -41,6 +42,4 @@ def __getattr__(name: str) -> Any:
     """Load a room when its first name is used, so that ``longlegs --help`` loads none."""
     if name not in _ROOMS:
         raise AttributeError(f"module 'engine' has no attribute {name!r}")
-    import importlib
-
-    return getattr(importlib.import_module(_ROOMS[name]), name)
+    return getattr(import_module(_ROOMS[name]), name)

@@ -59,7 +59,7 @@ class FlightCondition:
 
     def with_mach(self, mach: ArrayLike) -> FlightCondition:
         """The same air met at other Mach numbers (broadcast against this shape)."""
-        return broadcast_condition(replace(self, mach=np.asarray(mach, dtype=float)))
+        return broadcast_condition(replace(self, mach=np.asarray(mach, dtype=np.float64)))
 
     def at(self, index: object) -> FlightCondition:
         """The members picked by a NumPy index."""
@@ -70,7 +70,7 @@ def broadcast_condition(condition: FlightCondition) -> FlightCondition:
     """All arrays of a condition brought to one shape."""
     names = condition.__dataclass_fields__
     arrays = np.broadcast_arrays(*(getattr(condition, name) for name in names))
-    return FlightCondition(*(np.array(a, dtype=float) for a in arrays))
+    return FlightCondition(*(np.array(a, dtype=np.float64) for a in arrays))
 
 
 def flight_condition(
@@ -95,14 +95,14 @@ def flight_condition(
     height: pressure altitude is converted to it first. Speed of sound after the same standard,
     ``a = sqrt(1.4 R T)``.
     """
-    height = np.asarray(pressure_altitude, dtype=float)
-    mach_number = np.asarray(mach, dtype=float)
+    height = np.asarray(pressure_altitude, dtype=np.float64)
+    mach_number = np.asarray(mach, dtype=np.float64)
     _refuse_outside(
         height, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE, "pressure altitude", "m"
     )
     _refuse_outside(mach_number, 0.0, 5.0, "Mach number", "")
     layers = Atmosphere(CONST.r * height / (CONST.r - height))
-    deviation = np.asarray(temperature_deviation, dtype=float)
+    deviation = np.asarray(temperature_deviation, dtype=np.float64)
     temperature = np.reshape(layers.temperature, height.shape) + deviation
     pressure = np.reshape(layers.pressure, height.shape)
     return broadcast_condition(

@@ -49,7 +49,7 @@ class ConstantConsumptionEngine:
         start: EngineState | None = None,
     ) -> EngineState:
         """State that gives a required net thrust [N]; idle is no thrust and no fuel."""
-        wanted = np.asarray(net_thrust, dtype=float)
+        wanted = np.asarray(net_thrust, dtype=np.float64)
         shape = np.broadcast_shapes(flight.shape, wanted.shape)
         flight = flight.with_mach(np.broadcast_to(flight.mach, shape))
         wanted = np.broadcast_to(wanted, shape)

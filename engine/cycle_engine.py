@@ -114,17 +114,10 @@ class CycleEngine:
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit state: no fuel, no bleed, no shaft power taken; negative thrust is its drag."""
         arrangement = self.arrangement
-        core = replace(arrangement.core, customer_bleed_fraction=0.0, shaft_power=0.0)  # type: ignore[attr-defined]
-        unlit = replace(self, arrangement=replace(arrangement, core=core))  # type: ignore[type-var]
+        core = replace(arrangement.core, customer_bleed_fraction=0.0, shaft_power=0.0)
+        unlit = replace(self, arrangement=replace(arrangement, core=core))
         flat = _flat(flight)
-        start = np.repeat(self.sizing.unknowns[:, None], flat.mach.size, axis=1)
-        for row, name in enumerate(arrangement.unknown_names):
-            if "pressure_ratio" in name:
-                start[row] = np.log(1.0 + 0.2 * flat.mach**2)
-            elif name == "bypass_ratio":
-                start[row] += 1.0
-            elif name == "corrected_core_airflow":
-                start[row] -= 1.0
+        start = _windmilling_start(arrangement, self.sizing, flat.mach)
         solution = solve(unlit.arrangement, self.sizing, flat, None, start)
         none = np.full(len(LIMIT_NAMES), np.inf)
         state = unlit._finish(flat, solution, none, Throttle.CEILING, is_lit=False)
@@ -207,13 +200,30 @@ class _Finished:
         )
 
 
+def _windmilling_start(arrangement: Arrangement, sizing: Sizing, mach: Array) -> Array:
+    """Unknowns on the safe side of any windmilling state: little flow, little compression.
+
+    Pressure ratios go with Mach number squared and flows with Mach number, as in any duct.
+    """
+    moving = np.maximum(mach, 0.02)
+    start = np.repeat(sizing.unknowns[:, None], mach.size, axis=1)
+    for row, name in enumerate(arrangement.unknown_names):
+        if "pressure_ratio" in name:
+            start[row] = np.log1p(0.1 * moving**2)
+        elif name == "bypass_ratio":
+            start[row] += 1.0
+        elif name == "corrected_core_airflow":
+            start[row] += np.log(0.2 * moving)
+    return start
+
+
 def _start(state: EngineState | None) -> Array | None:
     return None if state is None else state.unknowns.reshape(len(state.unknowns), -1)
 
 
 def _broadcast(flight: FlightCondition, thrust: ArrayLike) -> tuple[FlightCondition, Array]:
     """Flight condition and thrust brought to one shape."""
-    wanted = np.asarray(thrust, dtype=float)
+    wanted = np.asarray(thrust, dtype=np.float64)
     shape = np.broadcast_shapes(flight.shape, wanted.shape)
     if flight.shape != shape:
         flight = flight.with_mach(np.broadcast_to(flight.mach, shape))

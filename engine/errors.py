@@ -11,7 +11,7 @@ class LonglegsError(Exception):
     """Root of every error the program raises on purpose."""
 
 
-class InputRefused(LonglegsError, ValueError):
+class InputRefused(LonglegsError, ValueError):  # noqa: N818  says what happened, not that it did
     """Something a person wrote cannot be used: exit status 2.
 
     ``where`` names the file, ``key`` the entry in it; both may be empty while the error is still
@@ -40,5 +40,5 @@ class CycleCannotRun(InputRefused):
     """The design point of an engine has no physical answer: exit status 2."""
 
 
-class OutOfRange(LonglegsError, ValueError):
+class OutOfRange(LonglegsError, ValueError):  # noqa: N818  as above
     """A state lies outside the range in which a property function may be believed."""

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from enum import IntEnum
 from functools import cached_property
-from typing import Any, Protocol, TypeVar
+from typing import TYPE_CHECKING, Any, Protocol, TypeVar
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -17,10 +17,13 @@ from engine.energy import EnergyAccount, energy_account
 from engine.gas import Gas
 from engine.parts.stream import Stream
 
+if TYPE_CHECKING:
+    from _typeshed import DataclassInstance
+
 Array = NDArray[np.float64]
 RATINGS = ("take_off", "maximum_continuous", "climb", "cruise")
 IDLES = ("flight_idle", "ground_idle")
-_Record = TypeVar("_Record")
+_Record = TypeVar("_Record", bound="DataclassInstance")
 
 
 class Outcome(IntEnum):
@@ -111,7 +114,7 @@ def _reshaped(record: _Record, shape: tuple[int, ...]) -> _Record:
             changed[name] = {key: array.reshape(shape) for key, array in value.items()}
         elif value is not None:
             changed[name] = value.reshape(shape)
-    return replace(record, **changed)  # type: ignore[type-var]
+    return replace(record, **changed)
 
 
 @dataclass(frozen=True)
@@ -195,8 +198,15 @@ class Engine(Protocol):
     is; below idle as AT_IDLE. ``start`` is an earlier state near by, of the same shape.
     """
 
-    name: str
-    assumed: tuple[str, ...]
+    @property
+    def name(self) -> str:
+        """What the engine file calls it."""
+        ...
+
+    @property
+    def assumed(self) -> tuple[str, ...]:
+        """Values that the engine file left unsaid, as ``key = value``."""
+        ...
 
     def at_thrust(
         self,

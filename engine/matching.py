@@ -8,7 +8,7 @@ and said to be so.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import IntEnum
 
 import numpy as np
@@ -21,6 +21,8 @@ from engine.parts.stream import Stream
 
 Array = NDArray[np.float64]
 TOLERANCE = 1e-11
+# Round-off of the pressure drops on which a windmilling flow hangs, a thousandth of the pressure.
+WINDMILLING_TOLERANCE = 1e-9
 _LARGEST_STEP = 0.25
 _DIFFERENCE = 1e-6
 _MOST_ITERATIONS = 80
@@ -77,36 +79,78 @@ def solve(
     where the iteration starts. Never raises for a member that has no answer.
     """
     count = flight.mach.size
-    size = len(sizing.unknowns)
     cold = np.repeat(sizing.unknowns[:, None], count, axis=1)
     unknowns = cold if start is None else np.where(np.isfinite(start), start, cold)
     residual = np.full(count, np.inf)
     iterations = np.zeros(count, dtype=np.int64)
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
+    problem = _Problem(arrangement, sizing, face, flight, demand)
+    tolerance = WINDMILLING_TOLERANCE if demand is None else TOLERANCE
+    free, above_one = problem.free_rows, problem.rows_above_one
+    coordinates = unknowns.copy()
+    coordinates[above_one] = np.log(np.expm1(unknowns[above_one]))
     open_members = np.arange(count)
-    columns = _free_columns(arrangement, demand)
     for _ in range(_MOST_ITERATIONS):
-        members_demand = None if demand is None else demand.at(open_members)
         values, jacobian = _residuals_and_jacobian(
-            arrangement,
-            sizing,
-            unknowns[:, open_members],
-            _pick(face, open_members),
-            flight.at(open_members),
-            members_demand,
-            columns,
+            problem.at(open_members), coordinates[:, open_members]
         )
         worst = np.max(np.abs(values), axis=0)
         residual[open_members] = np.where(np.isnan(worst), np.inf, worst)
-        remains = ~(residual[open_members] < TOLERANCE) & np.isfinite(values).all(axis=0)
-        step = _newton_step(jacobian[:, :, remains], values[:, remains])
+        # The step that is known anyway takes a member that has just converged to round-off.
+        coordinates[np.ix_(free, open_members)] += _newton_step(jacobian, values)
+        remains = ~(residual[open_members] < tolerance) & np.isfinite(worst)
         open_members = open_members[remains]
         if open_members.size == 0:
             break
         iterations[open_members] += 1
-        unknowns[np.ix_(columns, open_members)] += step
-    assert unknowns.shape == (size, count)
-    return Solution(unknowns, residual, residual < TOLERANCE, iterations)
+    return Solution(problem.unknowns(coordinates), residual, residual < tolerance, iterations)
+
+
+@dataclass(frozen=True)
+class _Problem:
+    """What is matched at N points; ``face`` is the engine-face state for 1 kg/s."""
+
+    arrangement: Arrangement
+    sizing: Sizing
+    face: Stream
+    flight: FlightCondition
+    demand: Demand | None
+
+    def at(self, index: NDArray[np.int64]) -> _Problem:
+        """The points picked by an index array."""
+        return replace(
+            self,
+            face=self.face.at(index),
+            flight=self.flight.at(index),
+            demand=None if self.demand is None else self.demand.at(index),
+        )
+
+    @property
+    def free_rows(self) -> NDArray[np.int64]:
+        """Unknowns that are solved for: an unlit engine has no temperature to choose."""
+        names = self.arrangement.unknown_names
+        is_lit = self.demand is not None
+        return np.array([i for i, name in enumerate(names) if is_lit or "temperature" not in name])
+
+    @property
+    def rows_above_one(self) -> NDArray[np.int64]:
+        """Unknowns solved for by the logarithm of what they are above one.
+
+        Windmilling pressure ratios come as near to one as Mach number squared to zero.
+        """
+        names = self.arrangement.unknown_names
+        is_lit = self.demand is not None
+        rows = [i for i, name in enumerate(names) if not is_lit and "pressure_ratio" in name]
+        return np.array(rows, dtype=np.int64)
+
+    def unknowns(self, coordinates: Array) -> Array:
+        """Logarithms of the unknowns from what the iteration moves."""
+        rows = self.rows_above_one
+        if rows.size == 0:
+            return coordinates
+        unknowns = coordinates.copy()
+        unknowns[rows] = np.log1p(np.exp(coordinates[rows]))
+        return unknowns
 
 
 def evaluate_at(
@@ -124,43 +168,24 @@ def evaluate_at(
     return ahead, path
 
 
-def _free_columns(arrangement: Arrangement, demand: Demand | None) -> NDArray[np.int64]:
-    """Rows of the unknowns that are solved for: an unlit engine has no temperature to choose."""
-    names = arrangement.unknown_names
-    wanted = [i for i, n in enumerate(names) if demand is not None or "entry_temp" not in n]
-    return np.array(wanted)
-
-
-def _pick(face: Stream, index: NDArray[np.int64]) -> Stream:
-    return Stream(
-        face.total_temperature[index],
-        face.total_pressure[index],
-        face.mass_flow[index],
-        face.fuel_air_ratio[index],
-        face.enthalpy[index],
-        face.section,
-    )
-
-
-def _residuals_and_jacobian(
-    arrangement: Arrangement,
-    sizing: Sizing,
-    unknowns: Array,
-    face: Stream,
-    flight: FlightCondition,
-    demand: Demand | None,
-    columns: NDArray[np.int64],
-) -> tuple[Array, Array]:
+def _residuals_and_jacobian(problem: _Problem, coordinates: Array) -> tuple[Array, Array]:
     """Residuals (m, N) and their derivatives (m, m, N) by one stacked evaluation."""
-    trials = np.repeat(unknowns[:, None, :], len(columns) + 1, axis=1)
-    trials[columns, 1 + np.arange(len(columns)), :] += _DIFFERENCE
+    free, sizing, flight = problem.free_rows, problem.sizing, problem.flight
+    trials = np.repeat(coordinates[:, None, :], len(free) + 1, axis=1)
+    trials[free, 1 + np.arange(len(free)), :] += _DIFFERENCE
     with np.errstate(all="ignore"):
-        path = arrangement.evaluate(
-            trials, face, flight.static_pressure, sizing, is_lit=demand is not None
+        path = problem.arrangement.evaluate(
+            problem.unknowns(trials),
+            problem.face,
+            flight.static_pressure,
+            sizing,
+            is_lit=problem.demand is not None,
         )
-        rows = [sizing.areas[name] / area - 1.0 for name, area in path.areas.items()]
-        if demand is not None:
-            rows.append(_throttle_residual(path, sizing, face, flight, demand))
+        # Flow squared is linear in a small pressure drop, so it, not flow, is what is matched.
+        flows = [sizing.areas[name] / area for name, area in path.areas.items()]
+        rows = [0.5 * (flow * np.abs(flow) - 1.0) for flow in flows]
+        if problem.demand is not None:
+            rows.append(_throttle_residual(path, sizing, problem.face, flight, problem.demand))
         stacked = np.stack(np.broadcast_arrays(*rows))
         jacobian = (stacked[:, 1:] - stacked[:, :1]) / _DIFFERENCE
     return stacked[:, 0], jacobian
@@ -184,12 +209,15 @@ def _newton_step(jacobian: Array, values: Array) -> Array:
     """Damped Newton steps (m, N); a member with a singular Jacobian takes no step."""
     matrices = np.moveaxis(jacobian, -1, 0)
     right = -values.T[:, :, None]
-    usable = np.isfinite(matrices).all(axis=(1, 2))
-    matrices = np.where(usable[:, None, None], matrices, np.eye(matrices.shape[1]))
+    usable = np.all(np.isfinite(matrices), axis=(1, 2))
+    idle = np.eye(matrices.shape[1])
+    matrices = np.where(usable[:, None, None], matrices, idle)
     try:
         step = np.linalg.solve(matrices, right)[:, :, 0]
     except np.linalg.LinAlgError:
-        step = (np.linalg.pinv(matrices) @ right)[:, :, 0]
+        usable &= np.linalg.cond(matrices) < 1e15
+        matrices = np.where(usable[:, None, None], matrices, idle)
+        step = np.linalg.solve(matrices, right)[:, :, 0]
     longest = np.max(np.abs(step), axis=1, keepdims=True)
     with np.errstate(all="ignore"):
         damped = step * np.minimum(1.0, _LARGEST_STEP / longest)

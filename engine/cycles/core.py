@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+import numpy as np
+
 from engine.gas import Gas
 from engine.parts.combustor import Combustor, burn, pass_unlit
 from engine.parts.compressor import compress
@@ -50,6 +52,7 @@ class CoreFlow:
 
     delivery: Stream
     bleed: Stream
+    combustor_entry: Stream
     combustor_exit: Stream
     rotor_entry: Stream
     rotor_exit: Stream
@@ -62,14 +65,30 @@ class CoreFlow:
     fuel_flow: Array
 
 
+def unlit_loss(design_loss: float, stream: Stream, design_flow: float | None) -> Array:
+    """Share of total pressure [-] that a duct takes from a stream in an engine that is out.
+
+    A lit engine keeps nearly the same corrected flow in its ducts and so the share of its design
+    point; windmilling has a fraction of it, and the share goes with its square, as friction does
+    (common practice, no source). Held at 0.9 at most, for iterates far from an answer.
+    """
+    if design_flow is None:
+        return np.asarray(design_loss)
+    return np.minimum(design_loss * (stream.duct_flow / design_flow) ** 2, 0.9)
+
+
 def run_core(
     gas: Gas,
     core: Core,
     entry: Stream,
     pressure_ratio: Array,
     turbine_entry_temperature: Array | None,
+    design_combustor_flow: float | None = None,
 ) -> CoreFlow:
-    """The gas generator between its entry and the turbine exit; unlit where no temperature."""
+    """The gas generator between its entry and the turbine exit; unlit where no temperature.
+
+    ``design_combustor_flow`` is what :func:`unlit_loss` compares with; only an unlit engine asks.
+    """
     delivery = compress(gas, entry, pressure_ratio, core.compressor_efficiency)
     flow = entry.mass_flow
     bleed = delivery.with_flow(core.customer_bleed_fraction * flow)
@@ -79,7 +98,10 @@ def run_core(
     taken = bleed.mass_flow + vane_air.mass_flow + rotor_air.mass_flow + last_air.mass_flow
     burner_air = delivery.with_flow(flow - taken)
     if turbine_entry_temperature is None:
-        hot = pass_unlit(gas, core.combustor, burner_air)
+        design_loss = core.combustor.pressure_loss_fraction
+        hot = pass_unlit(
+            gas, unlit_loss(design_loss, burner_air, design_combustor_flow), burner_air
+        )
     else:
         hot = burn(gas, core.combustor, burner_air, turbine_entry_temperature)
     rotor_entry = mix_in(gas, hot, vane_air) if core.vane_cooling_fraction else hot
@@ -95,6 +117,7 @@ def run_core(
     return CoreFlow(
         delivery=delivery,
         bleed=bleed,
+        combustor_entry=burner_air,
         combustor_exit=hot,
         rotor_entry=rotor_entry,
         rotor_exit=rotor_exit,

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Protocol
+from typing import Any, ClassVar, Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
+from engine.cycles.core import Core
 from engine.fuels import Fuel
 from engine.gas import Gas
 from engine.parts.inlet import Inlet
@@ -40,8 +41,8 @@ class Flowpath:
     stations : total states by SAE AS755 station number
     jets : the stream of each nozzle entry with its jet, by the station of the nozzle exit
     areas : area [m2] that each flow-setting throat would need, by name
+    duct_flows : ``W sqrt(T) / p`` at the entry of each duct that loses pressure, by name
     limits : values that ratings and idle bound, by :data:`LIMIT_NAMES`, shape (8, ...)
-    turbine_power, compressor_power : [W] of all spools
     shaft_power : taken off by the customer [W]
     bleed : the stream taken off by the customer
     mechanical_loss : bearings and gearbox [W]
@@ -52,6 +53,7 @@ class Flowpath:
     stations: Mapping[str, Stream]
     jets: Mapping[str, tuple[Stream, Jet]]
     areas: Mapping[str, Array]
+    duct_flows: Mapping[str, Array]
     limits: Array
     shaft_power: Array
     bleed: Stream
@@ -77,6 +79,7 @@ class Sizing:
     ----------
     unknowns : logarithms of the arrangement's unknowns at the design point, shape (n,)
     areas : fixed area [m2] of each flow-setting throat, shape (n - 1,)
+    duct_flows : ``W sqrt(T) / p`` at the design point, by duct
     spool_rises : design values behind the estimated spool speeds
     booster_rise_ratio : booster over fan specific work; 0 without booster
     reference_thrust : net thrust at the design point [N]
@@ -86,6 +89,7 @@ class Sizing:
 
     unknowns: Array
     areas: Mapping[str, float]
+    duct_flows: Mapping[str, float]
     spool_rises: Mapping[str, tuple[float, float]]
     booster_rise_ratio: float
     reference_thrust: float
@@ -94,12 +98,34 @@ class Sizing:
 
 
 class Arrangement(Protocol):
-    """Parts joined to an engine: names its unknowns and evaluates them."""
+    """Parts joined to an engine, a frozen dataclass: names its unknowns and evaluates them."""
 
-    gas: Gas
-    fuel: Fuel
-    inlet: Inlet
-    unknown_names: tuple[str, ...]
+    __dataclass_fields__: ClassVar[dict[str, Any]]
+
+    @property
+    def gas(self) -> Gas:
+        """Properties of every stream."""
+        ...
+
+    @property
+    def fuel(self) -> Fuel:
+        """What it burns."""
+        ...
+
+    @property
+    def inlet(self) -> Inlet:
+        """What stands ahead of the engine face."""
+        ...
+
+    @property
+    def core(self) -> Core:
+        """The gas generator."""
+        ...
+
+    @property
+    def unknown_names(self) -> tuple[str, ...]:
+        """What matching solves for; the airflow, which sets the size, stands last."""
+        ...
 
     def design_unknowns(self, face: Stream) -> Array:
         """Logarithms of the unknowns at the design point, for a core airflow of 1 kg/s."""
@@ -124,15 +150,16 @@ def corrected_flow_factor(face: Stream) -> Array:
 
 
 def spool_speeds(
-    rise: tuple[Array, Array], reference: tuple[float, float] | None
+    rises: Mapping[str, tuple[Array, Array]], spool: str, sizing: Sizing | None
 ) -> tuple[Array, Array]:
     """Corrected and physical speed over their design values, estimated at constant loading.
 
     Specific work grows with the square of blade speed where the velocity triangles stay similar;
     so does Farokhi, Aircraft Propulsion, section 10.3 and Example 10.2.
     """
-    work, temperature = rise
-    if reference is None:
+    work, temperature = rises[spool]
+    if sizing is None:
         return np.ones_like(work), np.ones_like(work)
+    reference = sizing.spool_rises[spool]
     ratio = np.maximum(work, 1e-6 * reference[0]) / reference[0]
     return np.sqrt(ratio * reference[1] / temperature), np.sqrt(ratio)

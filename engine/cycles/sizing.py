@@ -72,6 +72,7 @@ def _sizing(
     return Sizing(
         unknowns=unknowns,
         areas={name: float(area) for name, area in path.areas.items()},
+        duct_flows={name: float(flow) for name, flow in path.duct_flows.items()},
         spool_rises={
             name: (float(rise), float(temperature))
             for name, (rise, temperature) in path.spool_rises.items()
@@ -118,6 +119,7 @@ def scaled(sizing: Sizing, factor: float) -> Sizing:
         sizing,
         unknowns=unknowns,
         areas={name: area * factor for name, area in sizing.areas.items()},
+        duct_flows={name: flow * factor for name, flow in sizing.duct_flows.items()},
         reference_thrust=sizing.reference_thrust * factor,
         design_airflow=sizing.design_airflow * factor,
     )

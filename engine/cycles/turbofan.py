@@ -12,7 +12,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core, run_core, unlit_loss
 from engine.cycles.flowpath import Flowpath, Sizing, corrected_flow_factor, spool_speeds
 from engine.fuels import Fuel
 from engine.gas import Gas
@@ -101,7 +101,8 @@ class Turbofan:
         bypass = fan_exit.with_flow(core_flow * bypass_ratio)
         core_entry = self._boost(hub, fan_rise, sizing)
         hot = temperature_ratio * face.total_temperature if is_lit else None
-        flow = run_core(gas, core, core_entry, core_ratio, hot)
+        design = {} if is_lit or sizing is None else sizing.duct_flows
+        flow = run_core(gas, core, core_entry, core_ratio, hot, design.get("combustor"))
 
         fan_power = entry.mass_flow * fan_rise
         booster_power = core_flow * (core_entry.enthalpy - hub.enthalpy)
@@ -113,8 +114,14 @@ class Turbofan:
         last = low_exit
         if core.downstream_cooling_fraction:
             last = mix_in(gas, low_exit, flow.downstream_cooling)
-        core_duct = last.with_pressure_loss(self.core_nozzle.pressure_loss_fraction)
-        bypass_duct = bypass.with_pressure_loss(self.bypass_nozzle.pressure_loss_fraction)
+        core_duct = last.with_pressure_loss(
+            unlit_loss(self.core_nozzle.pressure_loss_fraction, last, design.get("core_nozzle"))
+        )
+        bypass_duct = bypass.with_pressure_loss(
+            unlit_loss(
+                self.bypass_nozzle.pressure_loss_fraction, bypass, design.get("bypass_nozzle")
+            )
+        )
         core_jet = discharge(gas, self.core_nozzle, core_duct, ambient_pressure)
         bypass_jet = discharge(gas, self.bypass_nozzle, bypass_duct, ambient_pressure)
         losses = (
@@ -147,6 +154,11 @@ class Turbofan:
                 "core_nozzle": core_jet.throat_area,
                 "bypass_nozzle": bypass_jet.throat_area,
             },
+            duct_flows={
+                "combustor": flow.combustor_entry.duct_flow,
+                "core_nozzle": last.duct_flow,
+                "bypass_nozzle": bypass.duct_flow,
+            },
             limits=_limits(flow.combustor_exit, flow.delivery, rises, sizing),
             shaft_power=np.full_like(flow.rise, core.shaft_power),
             bleed=flow.bleed,
@@ -163,8 +175,8 @@ def _limits(
     sizing: Sizing | None,
 ) -> Array:
     """Values of LIMIT_NAMES, stacked."""
-    low = spool_speeds(rises["low_pressure"], sizing and sizing.spool_rises["low_pressure"])
-    high = spool_speeds(rises["high_pressure"], sizing and sizing.spool_rises["high_pressure"])
+    low = spool_speeds(rises, "low_pressure", sizing)
+    high = spool_speeds(rises, "high_pressure", sizing)
     return np.stack(
         np.broadcast_arrays(
             hot.total_temperature,

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core, run_core, unlit_loss
 from engine.cycles.flowpath import Flowpath, Sizing, corrected_flow_factor, spool_speeds
 from engine.fuels import Fuel
 from engine.gas import Gas
@@ -55,16 +55,17 @@ class Turbojet:
         pressure_ratio, temperature_ratio, airflow = np.exp(unknowns)
         entry = face.with_flow(airflow * corrected_flow_factor(face))
         hot = temperature_ratio * face.total_temperature if is_lit else None
-        flow = run_core(gas, core, entry, pressure_ratio, hot)
+        design = {} if is_lit or sizing is None else sizing.duct_flows
+        flow = run_core(gas, core, entry, pressure_ratio, hot, design.get("combustor"))
         last = flow.turbine_exit
         if core.downstream_cooling_fraction:
             last = mix_in(gas, last, flow.downstream_cooling)
-        ahead_of_nozzle = last.with_pressure_loss(self.nozzle.pressure_loss_fraction)
+        ahead_of_nozzle = last.with_pressure_loss(
+            unlit_loss(self.nozzle.pressure_loss_fraction, last, design.get("core_nozzle"))
+        )
         jet = discharge(gas, self.nozzle, ahead_of_nozzle, ambient_pressure)
         rises = {"high_pressure": (flow.rise, entry.total_temperature)}
-        corrected, physical = spool_speeds(
-            rises["high_pressure"], sizing and sizing.spool_rises["high_pressure"]
-        )
+        corrected, physical = spool_speeds(rises, "high_pressure", sizing)
         hot_stream = flow.combustor_exit
         limits = np.stack(
             np.broadcast_arrays(
@@ -90,6 +91,7 @@ class Turbojet:
             stations=stations,
             jets={"9": (ahead_of_nozzle, jet)},
             areas={"turbine": flow.turbine_area, "core_nozzle": jet.throat_area},
+            duct_flows={"combustor": flow.combustor_entry.duct_flow, "core_nozzle": last.duct_flow},
             limits=limits,
             shaft_power=np.full_like(flow.rise, core.shaft_power),
             bleed=flow.bleed,

@@ -20,8 +20,15 @@ SECTIONS: tuple[Section, ...] = ("cold", "hot", "reheated")
 class Gas(Protocol):
     """A gas model; all quantities in SI, per kilogram of the mixture."""
 
-    lowest_temperature: float
-    highest_temperature: float
+    @property
+    def lowest_temperature(self) -> float:
+        """Temperature [K] below which an answer may not be believed."""
+        ...
+
+    @property
+    def highest_temperature(self) -> float:
+        """Temperature [K] above which an answer may not be believed."""
+        ...
 
     def gas_constant(self, fuel_air_ratio: ArrayLike, section: Section) -> Array:
         """Specific gas constant [J/(kg K)]."""

@@ -85,7 +85,7 @@ class RealGas:
         return _air_moles()["O2"] / -_moles_burnt(self.fuel)["O2"]
 
     def gas_constant(self, fuel_air_ratio: ArrayLike, section: Section = "hot") -> Array:
-        f = np.asarray(fuel_air_ratio, dtype=float)
+        f = np.asarray(fuel_air_ratio, dtype=np.float64)
         return (self._air_constant + f * self._fuel_constant) / (1.0 + f)
 
     def heat_capacity(
@@ -110,7 +110,7 @@ class RealGas:
         section: Section = "hot",
         guess: ArrayLike | None = None,
     ) -> Array:
-        target = np.asarray(enthalpy, dtype=float)
+        target = np.asarray(enthalpy, dtype=np.float64)
         if guess is None:
             guess = 298.15 + target / (1010.0 + 9e-5 * np.clip(target, -1e5, 3e6))
 
@@ -127,7 +127,7 @@ class RealGas:
         section: Section = "hot",
         guess: ArrayLike | None = None,
     ) -> Array:
-        target = np.asarray(entropy, dtype=float)
+        target = np.asarray(entropy, dtype=np.float64)
         if guess is None:
             guess = 298.15 * np.exp(np.clip((target - 6700.0) / 1120.0, -0.8, 2.4))
 
@@ -141,7 +141,7 @@ class RealGas:
         self, total_temperature: ArrayLike, fuel_air_ratio: ArrayLike, section: Section = "hot"
     ) -> Array:
         """Solves ``h(T) + gamma R T / 2 = h(T_total)``, the speed of sound being the flow's."""
-        total = np.asarray(total_temperature, dtype=float)
+        total = np.asarray(total_temperature, dtype=np.float64)
         gas_constant = self.gas_constant(fuel_air_ratio)
         cp, total_enthalpy = self._properties(total, fuel_air_ratio, (_HEAT_CAPACITY, _ENTHALPY))
         ratio = cp / (cp - gas_constant)
@@ -163,15 +163,16 @@ class RealGas:
         heat_release: ArrayLike,
         section: Section = "hot",
     ) -> Array:
-        air, burnt = self._sums(np.asarray(temperature_out, dtype=float), (_ENTHALPY,))
-        return (air[0] - enthalpy_in) / (heat_release - burnt[0])
+        air, burnt = self._sums(np.asarray(temperature_out, dtype=np.float64), (_ENTHALPY,))
+        needed = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
+        return needed / (np.asarray(heat_release, dtype=np.float64) - burnt[0])
 
     def _properties(
         self, temperature: ArrayLike, fuel_air_ratio: ArrayLike, which: tuple[int, ...]
     ) -> list[Array]:
         """Properties of the mixture in the order of ``which``."""
-        air, burnt = self._sums(np.asarray(temperature, dtype=float), which)
-        f = np.asarray(fuel_air_ratio, dtype=float)
+        air, burnt = self._sums(np.asarray(temperature, dtype=np.float64), which)
+        f = np.asarray(fuel_air_ratio, dtype=np.float64)
         if f.ndim == 0 and f == 0.0:
             return list(air)
         return [(a + f * b) / (1.0 + f) for a, b in zip(air, burnt, strict=True)]
@@ -201,7 +202,7 @@ def _settle(
     that 1e-6 then is round-off. A target without an answer ends at a bound, outside the range.
     """
     shape = np.broadcast_shapes(np.shape(guess), target.shape)
-    temperature = np.array(np.broadcast_to(guess, shape), dtype=float)
+    temperature = np.array(np.broadcast_to(guess, shape), dtype=np.float64)
     np.clip(temperature, _COLDEST_TRIAL, _HOTTEST_TRIAL, out=temperature)
     for _ in range(_MOST_ITERATIONS):
         relative = np.clip(step(temperature), -0.5, 1.0)

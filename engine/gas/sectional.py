@@ -39,10 +39,12 @@ class SectionalGas:
     def enthalpy(
         self, temperature: ArrayLike, fuel_air_ratio: ArrayLike, section: Section
     ) -> Array:
-        return self.heat_capacity(temperature, fuel_air_ratio, section) * temperature
+        heat_capacity = self.heat_capacity(temperature, fuel_air_ratio, section)
+        return heat_capacity * np.asarray(temperature, dtype=np.float64)
 
     def entropy(self, temperature: ArrayLike, fuel_air_ratio: ArrayLike, section: Section) -> Array:
-        return self.heat_capacity(temperature, fuel_air_ratio, section) * np.log(temperature)
+        heat_capacity = self.heat_capacity(temperature, fuel_air_ratio, section)
+        return heat_capacity * np.log(np.asarray(temperature, dtype=np.float64))
 
     def temperature_from_enthalpy(
         self,
@@ -51,7 +53,8 @@ class SectionalGas:
         section: Section,
         guess: ArrayLike | None = None,
     ) -> Array:
-        return enthalpy / self.heat_capacity(enthalpy, fuel_air_ratio, section)
+        heat_capacity = self.heat_capacity(enthalpy, fuel_air_ratio, section)
+        return np.asarray(enthalpy, dtype=np.float64) / heat_capacity
 
     def temperature_from_entropy(
         self,
@@ -60,12 +63,14 @@ class SectionalGas:
         section: Section,
         guess: ArrayLike | None = None,
     ) -> Array:
-        return np.exp(entropy / self.heat_capacity(entropy, fuel_air_ratio, section))
+        heat_capacity = self.heat_capacity(entropy, fuel_air_ratio, section)
+        return np.exp(np.asarray(entropy, dtype=np.float64) / heat_capacity)
 
     def critical_temperature(
         self, total_temperature: ArrayLike, fuel_air_ratio: ArrayLike, section: Section
     ) -> Array:
-        return np.asarray(total_temperature) * 2.0 / (self.heat_capacity_ratios[section] + 1.0)
+        total = np.asarray(total_temperature, dtype=np.float64)
+        return total * (2.0 / (self.heat_capacity_ratios[section] + 1.0))
 
     def fuel_air_ratio_burnt(
         self,
@@ -74,5 +79,6 @@ class SectionalGas:
         heat_release: ArrayLike,
         section: Section,
     ) -> Array:
-        enthalpy_out = self.heat_capacities[section] * np.asarray(temperature_out)
-        return (enthalpy_out - enthalpy_in) / (heat_release - enthalpy_out)
+        enthalpy_out = self.heat_capacities[section] * np.asarray(temperature_out, dtype=np.float64)
+        needed = enthalpy_out - np.asarray(enthalpy_in, dtype=np.float64)
+        return needed / (np.asarray(heat_release, dtype=np.float64) - enthalpy_out)

@@ -37,14 +37,14 @@ def burn(gas: Gas, combustor: Combustor, air: Stream, exit_temperature: Array) -
     )
 
 
-def pass_unlit(gas: Gas, combustor: Combustor, air: Stream) -> Stream:
-    """The stream at station 4 with no fuel: the same enthalpy, the same pressure loss."""
+def pass_unlit(gas: Gas, loss_fraction: Array, air: Stream) -> Stream:
+    """The stream at station 4 with no fuel: the same enthalpy, a given share of pressure lost."""
     temperature = gas.temperature_from_enthalpy(
         air.enthalpy, 0.0, "hot", guess=air.total_temperature
     )
     return Stream(
         temperature,
-        air.total_pressure * (1.0 - combustor.pressure_loss_fraction),
+        air.total_pressure * (1.0 - loss_fraction),
         air.mass_flow,
         np.zeros_like(air.mass_flow),
         air.enthalpy,

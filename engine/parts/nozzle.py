@@ -1,9 +1,10 @@
 """Nozzles: gross thrust of a stream let out to ambient pressure, and the throat it needs.
 
 The critical state is where the stream moves at its own speed of sound. Below it a throat stands
-at ambient pressure. The enthalpy drop is softened (a smooth positive part, of width 1e-4 R T) so
-that the equations of matching continue smoothly where the nozzle pressure ratio falls below one;
-the effect on thrust is below 1e-6 above a nozzle pressure ratio of 1.05.
+at ambient pressure. In the velocity that makes the thrust the enthalpy drop is softened (a smooth
+positive part, of width 1e-4 R T) so that thrust continues smoothly where the nozzle pressure ratio
+falls below one; the effect on thrust is below 1e-6 above a nozzle pressure ratio of 1.05. The
+throat area takes the drop as it is, with its sign.
 """
 
 from __future__ import annotations
@@ -14,7 +15,7 @@ from typing import Literal
 import numpy as np
 
 from engine.gas import Gas
-from engine.parts.stream import Array, Stream
+from engine.parts.stream import Array, Stream, signed_root
 
 _SOFTNESS = 1e-4
 
@@ -46,7 +47,7 @@ class Jet:
     Attributes
     ----------
     gross_thrust : [N]
-    throat_area : [m2] that the stream needs
+    throat_area : [m2] that the stream needs; negative where it would have to flow backwards
     throat_static_temperature, throat_static_pressure, throat_velocity : [K], [Pa], [m/s]
     exit_static_temperature, exit_static_pressure, exit_velocity : [K], [Pa], [m/s]
     choking : total-to-ambient pressure ratio over the critical one, less one; choked above 0
@@ -66,7 +67,7 @@ class Jet:
 def _expand(
     gas: Gas, stream: Stream, static_pressure: Array, efficiency: float, guess: Array
 ) -> tuple[Array, Array]:
-    """Velocity [m/s] and static temperature [K] at a static pressure."""
+    """Drop of enthalpy [J/kg] down to a static pressure, and the temperature [K] there."""
     f, section = stream.fuel_air_ratio, stream.section
     gas_constant = gas.gas_constant(f, section)
     entropy = gas.entropy(stream.total_temperature, f, section)
@@ -77,13 +78,17 @@ def _expand(
         guess=guess,
     )
     drop = efficiency * (stream.enthalpy - gas.enthalpy(ideal, f, section))
-    width = _SOFTNESS * gas_constant * stream.total_temperature
-    softened = 0.5 * (drop + np.sqrt(drop**2 + width**2))
-    velocity = np.sqrt(2.0 * softened)
     if efficiency == 1.0:
-        return velocity, ideal
+        return drop, ideal
     temperature = gas.temperature_from_enthalpy(stream.enthalpy - drop, f, section, guess=ideal)
-    return velocity, temperature
+    return drop, temperature
+
+
+def _velocity(gas: Gas, stream: Stream, drop: Array) -> Array:
+    """Velocity [m/s] after a drop of enthalpy [J/kg], softened where the drop nears zero."""
+    gas_constant = gas.gas_constant(stream.fuel_air_ratio, stream.section)
+    width = _SOFTNESS * gas_constant * stream.total_temperature
+    return np.sqrt(drop + np.sqrt(drop**2 + width**2))
 
 
 def _critical_pressure(gas: Gas, stream: Stream, efficiency: float) -> tuple[Array, Array]:
@@ -104,18 +109,20 @@ def discharge(gas: Gas, nozzle: Nozzle, stream: Stream, ambient_pressure: Array)
     choking = critical_pressure / ambient_pressure - 1.0
     throat_pressure = np.maximum(critical_pressure, ambient_pressure)
     efficiency = nozzle.isentropic_efficiency
-    velocity, temperature = _expand(gas, stream, throat_pressure, efficiency, critical)
+    drop, temperature = _expand(gas, stream, throat_pressure, efficiency, critical)
     gas_constant = gas.gas_constant(stream.fuel_air_ratio, stream.section)
-    flux = throat_pressure / (gas_constant * temperature) * velocity
-    area = stream.mass_flow / flux
+    density = throat_pressure / (gas_constant * temperature)
+    area = stream.mass_flow / (density * signed_root(2.0 * drop))
+    velocity = _velocity(gas, stream, drop)
     exit_pressure, exit_velocity, exit_temperature = throat_pressure, velocity, temperature
-    exit_area = area
+    exit_area = stream.mass_flow / (density * velocity)
     if nozzle.kind != "convergent":
         ratio = nozzle.exit_pressure_ratio if nozzle.kind == "given exit pressure" else 1.0
         exit_pressure = np.broadcast_to(ratio * ambient_pressure, area.shape)
-        exit_velocity, exit_temperature = _expand(
+        drop, exit_temperature = _expand(
             gas, stream, exit_pressure, efficiency, 0.9 * temperature
         )
+        exit_velocity = _velocity(gas, stream, drop)
         density = exit_pressure / (gas_constant * exit_temperature)
         exit_area = stream.mass_flow / (density * exit_velocity)
     thrust = stream.mass_flow * exit_velocity + (exit_pressure - ambient_pressure) * exit_area

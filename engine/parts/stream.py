@@ -38,6 +38,22 @@ class Stream:
         """Fuel burnt in the stream so far [kg/s]."""
         return self.mass_flow * self.fuel_air_ratio / (1.0 + self.fuel_air_ratio)
 
+    @property
+    def duct_flow(self) -> Array:
+        """``W sqrt(T) / p``, on whose square the share of pressure lost in a duct goes."""
+        return self.mass_flow * np.sqrt(self.total_temperature) / self.total_pressure
+
+    def at(self, index: NDArray[np.int64]) -> Stream:
+        """The members picked by an index array."""
+        return Stream(
+            self.total_temperature[index],
+            self.total_pressure[index],
+            self.mass_flow[index],
+            self.fuel_air_ratio[index],
+            self.enthalpy[index],
+            self.section,
+        )
+
     def with_flow(self, mass_flow: Array) -> Stream:
         """The same state with another mass flow [kg/s]: a bleed or a split."""
         return Stream(
@@ -49,7 +65,7 @@ class Stream:
             self.section,
         )
 
-    def with_pressure_loss(self, loss_fraction: float) -> Stream:
+    def with_pressure_loss(self, loss_fraction: float | Array) -> Stream:
         """The stream after a duct that loses this fraction of total pressure."""
         return Stream(
             self.total_temperature,
@@ -59,6 +75,11 @@ class Stream:
             self.enthalpy,
             self.section,
         )
+
+
+def signed_root(value: Array) -> Array:
+    """Square root that keeps the sign, so that the square of a flow continues through zero."""
+    return np.copysign(np.sqrt(np.abs(value)), value)
 
 
 def mix_in(gas: Gas, stream: Stream, added: Stream) -> Stream:

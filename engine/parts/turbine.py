@@ -12,7 +12,7 @@ import numpy as np
 
 from engine.gas import Gas
 from engine.parts.efficiency import Efficiency
-from engine.parts.stream import Array, Stream
+from engine.parts.stream import Array, Stream, signed_root
 
 
 def expand_by_power(gas: Gas, stream: Stream, power: Array, efficiency: Efficiency) -> Stream:
@@ -51,7 +51,8 @@ def corrected_flow_area(gas: Gas, stream: Stream) -> Array:
 def flow_share(exit_to_entry_pressure: Array, critical_ratio: float) -> Array:
     """Share of its choked flow that a turbine passes at a ratio of total pressures.
 
+    Negative where the exit pressure is above the entry's, which only an iteration visits.
     ``critical_ratio`` 0 is Stodola's ellipse for many rows; 0.5 about one choking row.
     """
     beyond = np.maximum(exit_to_entry_pressure - critical_ratio, 0.0) / (1.0 - critical_ratio)
-    return np.sqrt(np.maximum(1.0 - beyond**2, 1e-12))
+    return signed_root(1.0 - beyond**2)

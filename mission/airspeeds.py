@@ -1,0 +1,85 @@
+"""Airspeeds of compressible flow, and heights that follow from them.
+
+Calibrated airspeed is defined through impact pressure and the standard sea-level air. Source:
+ISO 2533:1975 for the air; the isentropic pitot equation as in Young, Performance of the Jet
+Transport Airplane, chapter 6 (from memory). Arrays of any broadcastable shape, SI.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from ambiance import CONST
+from numpy.typing import ArrayLike, NDArray
+
+from engine.atmosphere import FlightCondition
+from engine.quantities import STANDARD_GRAVITY
+
+Array = NDArray[np.float64]
+_SEA_LEVEL_PRESSURE = 101325.0
+_SEA_LEVEL_SPEED_OF_SOUND = float(np.sqrt(1.4 * CONST.R * 288.15))
+_SEA_LEVEL_DENSITY = 1.225
+
+
+def impact_pressure_ratio(mach: ArrayLike) -> Array:
+    """Impact pressure over static pressure at a subsonic Mach number."""
+    return (1.0 + 0.2 * np.asarray(mach, dtype=float) ** 2) ** 3.5 - 1.0
+
+
+def mach_from_impact_pressure_ratio(ratio: ArrayLike) -> Array:
+    """Inverse of :func:`impact_pressure_ratio`."""
+    return np.sqrt(5.0 * ((np.asarray(ratio, dtype=float) + 1.0) ** (2.0 / 7.0) - 1.0))
+
+
+def mach_from_calibrated_airspeed(airspeed: ArrayLike, static_pressure: ArrayLike) -> Array:
+    """Mach number at a calibrated airspeed [m/s] and static pressure [Pa]."""
+    impact = impact_pressure_ratio(np.asarray(airspeed) / _SEA_LEVEL_SPEED_OF_SOUND)
+    return mach_from_impact_pressure_ratio(impact * _SEA_LEVEL_PRESSURE / static_pressure)
+
+
+def calibrated_airspeed(mach: ArrayLike, static_pressure: ArrayLike) -> Array:
+    """Calibrated airspeed [m/s] at a Mach number and static pressure [Pa]."""
+    impact = impact_pressure_ratio(mach) * np.asarray(static_pressure) / _SEA_LEVEL_PRESSURE
+    return _SEA_LEVEL_SPEED_OF_SOUND * mach_from_impact_pressure_ratio(impact)
+
+
+def equivalent_airspeed(flight: FlightCondition) -> Array:
+    """Equivalent airspeed [m/s]: true airspeed times the root of the density ratio."""
+    return flight.true_airspeed * np.sqrt(flight.density / _SEA_LEVEL_DENSITY)
+
+
+def crossover_altitude(airspeed: float, mach: float) -> float:
+    """Pressure altitude [m] where a calibrated airspeed [m/s] and a Mach number agree."""
+    impact = impact_pressure_ratio(airspeed / _SEA_LEVEL_SPEED_OF_SOUND)
+    pressure = _SEA_LEVEL_PRESSURE * impact / impact_pressure_ratio(mach)
+    return float(pressure_altitude_from_pressure(pressure))
+
+
+def pressure_altitude_from_pressure(static_pressure: ArrayLike) -> Array:
+    """Pressure altitude [m] of a static pressure [Pa], up to 20 km.
+
+    ISO 2533:1975, with the base pressures that ``ambiance`` uses in :mod:`engine.atmosphere`.
+    """
+    pressure = np.asarray(static_pressure, dtype=float)
+    base = CONST.LAYER_DICTS
+    gravity = STANDARD_GRAVITY / CONST.R
+    troposphere, stratosphere = base[1], base[2]
+    lapse = troposphere["beta"]
+    below = (288.15 / lapse) * ((pressure / _SEA_LEVEL_PRESSURE) ** (-CONST.R * lapse / STANDARD_GRAVITY) - 1.0)  # fmt: skip
+    above = stratosphere["H_base"] - stratosphere["T"] / gravity * np.log(
+        pressure / stratosphere["p"]
+    )
+    return np.where(pressure > stratosphere["p"], below, above)
+
+
+def calibrated_mach_slope(flight: FlightCondition) -> Array:
+    """Change of Mach number with pressure altitude [1/m] at constant calibrated airspeed."""
+    mach = flight.mach
+    standard_temperature = flight.static_temperature - flight.temperature_deviation
+    pressure_slope = STANDARD_GRAVITY / (CONST.R * standard_temperature)
+    ratio = impact_pressure_ratio(mach)
+    return ratio * pressure_slope / (1.4 * mach * (1.0 + 0.2 * mach**2) ** 2.5)
+
+
+def energy_height(height: ArrayLike, true_airspeed: ArrayLike) -> Array:
+    """Height [m] at which the same energy would be all potential."""
+    return np.asarray(height) + np.asarray(true_airspeed) ** 2 / (2.0 * STANDARD_GRAVITY)

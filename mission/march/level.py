@@ -1,0 +1,103 @@
+"""Steady level marches: thrust equals drag and lift equals weight at every node.
+
+By distance (cruise) or by time (loiter, approach). Altitude and Mach number are held; or altitude
+and lift coefficient; or Mach number and lift coefficient, a cruise-climb, flown as level: the
+work of its slow rise is not charged (the log says how much that would be). A hold at the speed of
+least fuel flow moves its Mach number by one Newton step on fuel flow a sweep.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.atmosphere import FlightCondition
+from engine.quantities import STANDARD_GRAVITY
+from mission.forces import drag, stall_mach
+from mission.march.rules import cruise_climb_air, hold_bounds, mach_at
+from mission.march.span import Nodes, Span
+from mission.march.world import World
+
+Array = NDArray[np.float64]
+_STENCIL = 0.004  # Mach number to each side, for slope and curvature of fuel flow
+_LARGEST_MACH_STEP = 0.05
+
+
+def level_flight(
+    span: Span, world: World, air: FlightCondition, mass: Array, entry_mach: Array
+) -> FlightCondition:
+    """Flight condition at the nodes; ``entry_mach`` (members,) is what the aircraft came in with."""
+    aircraft, rule = world.aircraft, span.end_speed
+    if not span.holds_lift_coefficient:
+        if rule.kind == "lift_coefficient" and rule.value is None:
+            entry_stall = stall_mach(aircraft, air, mass[:1], 1.0)
+            coefficient = (entry_stall / entry_mach) ** 2
+            return air.with_mach(stall_mach(aircraft, air, mass, 1.0) / np.sqrt(coefficient))
+        return air.with_mach(mach_at(rule, aircraft, air, mass))
+    mach = float(entry_mach[0]) if rule.value is None else rule.value
+    coefficient = cruise_climb_coefficient(span, world, air, mass, mach)
+    return cruise_climb_air(aircraft, mach, coefficient, mass, world.temperature_deviation)
+
+
+def cruise_climb_coefficient(
+    span: Span, world: World, air: FlightCondition, mass: Array, mach: float
+) -> Array:
+    """Lift coefficient a cruise-climb holds: given, or the one at its start altitude."""
+    if span.end_speed.lift_limit != 1.0:
+        return np.full((1, mass.shape[1]), span.end_speed.lift_limit)
+    weight = mass[:1] * STANDARD_GRAVITY
+    return weight / (0.7 * air.static_pressure[:1] * mach**2 * world.aircraft.wing_area)
+
+
+def least_fuel_stencil(flight: FlightCondition) -> FlightCondition:
+    """The condition slower, as it is, and faster by the stencil: shape (3, nodes, members)."""
+    offsets = np.array([-_STENCIL, 0.0, _STENCIL])[:, None, None]
+    return flight.with_mach(flight.mach + offsets)
+
+
+def least_fuel_step(
+    world: World, flight: FlightCondition, mass: Array, fuel_flow: Array
+) -> Array:
+    """Next Mach number of a hold from the fuel flows (3, nodes, members) of its stencil."""
+    slower, here, faster = fuel_flow
+    slope = (faster - slower) / (2.0 * _STENCIL)
+    curvature = (faster - 2.0 * here + slower) / _STENCIL**2
+    convex = curvature > 0.0
+    newton = -slope / np.where(convex, curvature, 1.0)
+    step = np.where(convex, newton, -np.sign(slope) * _LARGEST_MACH_STEP)
+    step = np.clip(step, -_LARGEST_MACH_STEP, _LARGEST_MACH_STEP)
+    return np.clip(flight.mach + step, *hold_bounds(world.aircraft, flight, mass))
+
+
+def level_drag(span: Span, world: World, flight: FlightCondition, mass: Array) -> Array:
+    """Drag [N] at lift equal to weight."""
+    return drag(world.aircraft, flight, mass * STANDARD_GRAVITY, span.drag_factor)
+
+
+def level_nodes(
+    span: Span,
+    world: World,
+    flight: FlightCondition,
+    mass: Array,
+    extent: Array,
+    thrust: Array,
+    fuel_flow: Array,
+    outcome: NDArray[np.int64],
+) -> Nodes:
+    """Nodes of a level march over a ground distance [m] or a time [s], shape (members,)."""
+    if span.march == "distance":
+        time_rate = extent / (flight.true_airspeed + world.tailwind)
+    else:
+        time_rate = np.broadcast_to(extent, mass.shape)
+    return Nodes(
+        flight=flight,
+        mass=mass,
+        time_rate=time_rate,
+        fuel_flow=fuel_flow,
+        thrust=thrust,
+        drag=level_drag(span, world, flight, mass),
+        lift=mass * STANDARD_GRAVITY,
+        path_angle=np.zeros_like(mass),
+        rate=np.full_like(mass, np.inf),
+        outcome=outcome,
+    )

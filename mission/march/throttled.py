@@ -1,0 +1,150 @@
+"""Marches at a rating: what thrust there is decides how fast the march goes.
+
+By altitude (climb at a rating, descent at idle): excess thrust sets the path angle, with the
+acceleration that the schedule of speed demands. By speed (level acceleration and deceleration):
+excess thrust over mass. Take-off roll: thrust less rolling friction, no lift and drag counted.
+Standing: engines running, nothing moves.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.atmosphere import FlightCondition, flight_condition
+from engine.quantities import STANDARD_GRAVITY
+from mission.airspeeds import calibrated_mach_slope
+from mission.forces import drag, path_angle_sine
+from mission.march.nodes import positions
+from mission.march.rules import mach_at
+from mission.march.span import Nodes, Span
+from mission.march.world import World
+
+Array = NDArray[np.float64]
+ROLLING_FRICTION = 0.02  # dry hard runway; common practice, no source
+SLOWEST_CLIMB = 100.0 * 0.3048 / 60.0  # m/s: 100 ft/min, an operational ceiling's rate of climb
+SLOWEST_ACCELERATION = 0.01  # m/s2: below it a change of speed does not end
+_INSIDE = 1e-6  # m: nodes stand this far inside a joint, each piece seeing its own side of it
+
+
+def altitude_flight(span: Span, world: World, count: int) -> FlightCondition:
+    """Flight condition at the nodes of a march by altitude, shape (count, 1)."""
+    altitude = span.start_altitude + positions(count)[:, None] * (
+        span.end_altitude - span.start_altitude
+    )
+    low, high = sorted((span.start_altitude, span.end_altitude))
+    inside = np.clip(altitude, low + _INSIDE, max(high - _INSIDE, low + _INSIDE))
+    return scheduled_flight(span, world, inside)
+
+
+def scheduled_flight(span: Span, world: World, altitude: Array) -> FlightCondition:
+    """Flight condition of a march by altitude, on its schedule of speed, at altitudes [m]."""
+    air = flight_condition(altitude, 0.0, world.temperature_deviation)
+    return air.with_mach(mach_at(span.start_speed, world.aircraft, air, np.ones(1)))
+
+
+def acceleration_factor(span: Span, flight: FlightCondition) -> Array:
+    """``1 + V/g dV/dh`` along the schedule, height geometric."""
+    slope = 0.0 if span.start_speed.kind == "mach" else calibrated_mach_slope(flight)
+    sound = flight.speed_of_sound
+    sound_slope = sound / (2.0 * flight.static_temperature) * flight.lapse_rate
+    speed_slope = (sound * slope + flight.mach * sound_slope) * _pressure_to_geometric(flight)
+    return 1.0 + flight.true_airspeed / STANDARD_GRAVITY * speed_slope
+
+
+def _pressure_to_geometric(flight: FlightCondition) -> Array:
+    """Change of pressure altitude with geometric height on a day that is not standard."""
+    standard = flight.static_temperature - flight.temperature_deviation
+    return standard / flight.static_temperature
+
+
+def climb_nodes(
+    span: Span,
+    world: World,
+    flight: FlightCondition,
+    mass: Array,
+    thrust: Array,
+    fuel_flow: Array,
+    outcome: NDArray[np.int64],
+) -> Nodes:
+    """Nodes of a march by altitude at thrust [N] and fuel flow [kg/s] of the aircraft."""
+    sine = path_angle_sine(
+        world.aircraft, flight, mass, thrust, acceleration_factor(span, flight)
+    )
+    lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
+    vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)
+    way = np.sign(span.end_altitude - span.start_altitude)
+    rate = vertical * way
+    height = abs(span.end_altitude - span.start_altitude)
+    return Nodes(
+        flight=flight,
+        mass=mass,
+        time_rate=height / np.maximum(rate, SLOWEST_CLIMB),
+        fuel_flow=fuel_flow,
+        thrust=thrust,
+        drag=drag(world.aircraft, flight, lift),
+        lift=lift,
+        path_angle=np.arcsin(sine),
+        rate=rate,
+        outcome=outcome,
+    )
+
+
+def acceleration_nodes(
+    world: World,
+    flight: FlightCondition,
+    mass: Array,
+    thrust: Array,
+    fuel_flow: Array,
+    outcome: NDArray[np.int64],
+    *,
+    on_ground: bool,
+) -> Nodes:
+    """Nodes of a march by speed, level or along the runway."""
+    weight = mass * STANDARD_GRAVITY
+    if on_ground:
+        lift, resistance = np.zeros_like(mass), np.zeros_like(mass)
+        net = thrust - ROLLING_FRICTION * weight
+    else:
+        lift = weight
+        resistance = drag(world.aircraft, flight, weight)
+        net = thrust - resistance
+    speed = flight.true_airspeed
+    change = speed[-1] - speed[0]
+    rate = net / mass * np.where(change < 0.0, -1.0, 1.0)
+    return Nodes(
+        flight=flight,
+        mass=mass,
+        time_rate=np.abs(change) / np.maximum(rate, SLOWEST_ACCELERATION),
+        fuel_flow=fuel_flow,
+        thrust=thrust,
+        drag=resistance,
+        lift=lift,
+        path_angle=np.zeros_like(mass),
+        rate=np.where(np.abs(change) < 1e-9, np.inf, rate),
+        outcome=outcome,
+    )
+
+
+def standing_nodes(
+    span: Span,
+    flight: FlightCondition,
+    mass: Array,
+    thrust: Array,
+    fuel_flow: Array,
+    outcome: NDArray[np.int64],
+) -> Nodes:
+    """Nodes of a stand of given time with the engines at a rating."""
+    none = np.zeros_like(mass)
+    return Nodes(
+        flight=flight,
+        mass=mass,
+        time_rate=np.full_like(mass, span.extent),
+        fuel_flow=fuel_flow,
+        thrust=thrust,
+        drag=none,
+        lift=none,
+        path_angle=none,
+        rate=np.full_like(mass, np.inf),
+        outcome=outcome,
+    )

@@ -1,0 +1,76 @@
+"""Allowance: fuel that is booked, not flown; or engines held at a rating for a time."""
+
+from __future__ import annotations
+
+from typing import Annotated, Literal
+
+from pydantic import Field, model_validator
+
+from engine.errors import InputRefused
+from engine.quantities import Altitude, Mass, Time
+from engine.reading import Table
+from mission.march.span import Span, SpeedRule
+from mission.segments.climb import RatingName
+from mission.segments.here import Here
+
+
+class Allowance(Table):
+    """One of a fuel mass, a fraction of the mass at its start, or a time at a rating.
+
+    With ``to`` it also stands for the way to a pressure altitude.
+    """
+
+    kind: Literal["allowance"]
+    name: str = "allowance"
+    fuel: Annotated[Mass, Field(ge=0.0)] | None = None
+    mass_fraction: Annotated[float, Field(ge=0.0, lt=0.9)] | None = None
+    time: Annotated[Time, Field(gt=0.0)] | None = None
+    rating: RatingName | Literal["flight_idle", "ground_idle"] | None = None
+    to: Altitude | None = None
+
+    @model_validator(mode="after")
+    def _one_amount(self) -> Allowance:
+        given = [v is not None for v in (self.fuel, self.mass_fraction, self.time)]
+        if sum(given) != 1:
+            raise ValueError("give one of fuel, mass_fraction, or time with rating")
+        if (self.time is None) != (self.rating is None):
+            raise ValueError("time and rating go together")
+        return self
+
+    def first_speed(self, here: Here) -> SpeedRule | None:
+        """No bridge: nothing is flown."""
+        return None
+
+    def lay(self, here: Here) -> tuple[list[Span], Here]:
+        """The span of the allowance."""
+        altitude = here.pressure_altitude
+        if self.time is not None:
+            if here.speed is not None and not here.on_ground:
+                raise InputRefused(
+                    "an allowance of time stands for engines running on the ground; in the air "
+                    "use a loiter"
+                )
+            at = here.departure_elevation if altitude is None else altitude
+            assert self.rating is not None
+            span = Span(
+                segment=here.row,
+                march="stand",
+                rating=self.rating,
+                start_altitude=at,
+                end_altitude=at,
+                extent=self.time,
+                is_reserve=here.is_reserve,
+            )
+        else:
+            span = Span(
+                segment=here.row,
+                march="book",
+                start_altitude=altitude or 0.0,
+                end_altitude=altitude or 0.0,
+                booked_fuel=self.fuel or 0.0,
+                booked_fraction=self.mass_fraction or 0.0,
+                is_reserve=here.is_reserve,
+            )
+        if self.to is None:
+            return [span], here
+        return [span], here.now(pressure_altitude=self.to, speed=None, on_ground=False)
