@@ -39,6 +39,33 @@ class ConstantConsumptionEngine:
         lapse = (flight.density / _SEA_LEVEL_DENSITY) ** self.density_exponent
         return self.static_thrust[rating] * lapse
 
+    def at(
+        self,
+        flight: FlightCondition,
+        *,
+        rating: str | NDArray[np.str_],
+        net_thrust: ArrayLike | None = None,
+        idle: str = "flight_idle",
+        start: Array | None = None,
+    ) -> EngineState:
+        """State at ratings and required thrusts; idle is no thrust and no fuel."""
+        wanted = np.asarray(np.nan if net_thrust is None else net_thrust, dtype=float)
+        shape = np.broadcast_shapes(flight.shape, wanted.shape)
+        flight = flight.with_mach(np.broadcast_to(flight.mach, shape))
+        wanted = np.broadcast_to(wanted, shape)
+        names = np.broadcast_to(rating, shape)
+        most = np.zeros(shape)
+        for name in np.unique(names):
+            most = np.where(names == name, self._thrust(flight, str(name)), most)
+        least = self._thrust(flight, idle)
+        outcome = np.full(shape, Outcome.MET, dtype=np.int64)
+        outcome[wanted > most * (1.0 + 1e-9)] = Outcome.BEYOND_RATING
+        outcome[wanted < least] = Outcome.AT_IDLE
+        thrust = np.where(np.isnan(wanted), most, np.clip(wanted, least, np.maximum(most, least)))
+        positive = most > 0.0
+        share = np.where(positive, thrust / np.where(positive, most, 1.0), 1.0)
+        return self._state(flight, thrust, outcome, share)
+
     def at_thrust(
         self,
         flight: FlightCondition,
@@ -46,30 +73,16 @@ class ConstantConsumptionEngine:
         *,
         rating: str = "maximum_continuous",
         idle: str = "flight_idle",
-        start: EngineState | None = None,
+        start: Array | None = None,
     ) -> EngineState:
-        """State that gives a required net thrust [N]; idle is no thrust and no fuel."""
-        wanted = np.asarray(net_thrust, dtype=np.float64)
-        shape = np.broadcast_shapes(flight.shape, wanted.shape)
-        flight = flight.with_mach(np.broadcast_to(flight.mach, shape))
-        wanted = np.broadcast_to(wanted, shape)
-        most, least = self._thrust(flight, rating), self._thrust(flight, idle)
-        outcome = np.where(
-            wanted > most * (1.0 + 1e-9),
-            Outcome.BEYOND_RATING,
-            np.where(wanted < least, Outcome.AT_IDLE, Outcome.MET),
-        )
-        thrust = np.where(outcome == Outcome.MET, wanted, np.clip(wanted, least, most))
-        return self._state(flight, thrust, outcome, thrust / most)
+        """State that gives a required net thrust [N] below one rating."""
+        return self.at(flight, rating=rating, net_thrust=net_thrust, idle=idle, start=start)
 
     def at_rating(
-        self, flight: FlightCondition, rating: str, *, start: EngineState | None = None
+        self, flight: FlightCondition, rating: str, *, start: Array | None = None
     ) -> EngineState:
-        """State at a rating or idle."""
-        flight = broadcast_condition(flight)
-        thrust = self._thrust(flight, rating)
-        met = np.full(flight.shape, Outcome.MET, dtype=np.int64)
-        return self._state(flight, thrust, met, np.ones(flight.shape))
+        """State at one rating or idle."""
+        return self.at(flight, rating=rating, start=start)
 
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit: no fuel and, for want of any geometry, no drag."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -36,6 +37,88 @@ class CycleEngine:
     combustion_efficiency: float
     assumed: tuple[str, ...] = ()
 
+    def at(
+        self,
+        flight: FlightCondition,
+        *,
+        rating: str | NDArray[np.str_],
+        net_thrust: ArrayLike | None = None,
+        idle: str = "flight_idle",
+        start: Array | None = None,
+    ) -> EngineState:
+        """State at ratings and required thrusts; see :class:`engine.interface.Engine`."""
+        wanted = np.nan if net_thrust is None else net_thrust
+        flight, thrust = _broadcast(flight, wanted)
+        names, which = np.unique(np.broadcast_to(rating, flight.shape), return_inverse=True)
+        throttles, bounds = zip(*(self._bounds(str(name)) for name in names), strict=True)
+        asked = _Asked(
+            _flat(flight),
+            thrust.ravel(),
+            np.array(throttles)[which.ravel()],
+            np.stack(bounds, axis=1)[:, which.ravel()],
+        )
+        solution = self._solve(asked, _start(start))
+        state = self._finish(asked, solution)
+        floors = self._bounds(idle)[1][:, None]
+        met = _is_answer(state, asked, floors)
+        outcome = np.where(met, Outcome.MET, Outcome.NOT_CONVERGED)
+        suspects = np.flatnonzero(~met & asked.is_thrust)
+        if suspects.size:
+            there, verdict = self._at_the_edge(asked.at(suspects), idle)
+            solution, outcome[suspects] = solution.replaced(suspects, there), verdict
+            state = self._finish(asked, solution)
+        return state.to_engine_state(self, flight, outcome)
+
+    def _at_the_edge(self, asked: _Asked, idle: str) -> tuple[Solution, NDArray[np.int64]]:
+        """What there is for thrusts not met within the limits, and what became of each demand.
+
+        Beyond the rating it is the rating, below idle it is idle; between the two the thrust is
+        asked for once more from the nearer one, and what still has no answer is said to have none.
+        """
+        throttle, floors = self._bounds(idle)
+        at_top, at_bottom = asked.without_thrust(), asked.held_at(throttle, floors)
+        most, least = self._solve(at_top, None), self._solve(at_bottom, None)
+        top, bottom = self._finish(at_top, most), self._finish(at_bottom, least)
+        upper, lower = top.path.net_thrust(asked.flat), bottom.path.net_thrust(asked.flat)
+        is_upper = top.is_believed & ((asked.thrust > 0.5 * (upper + lower)) | ~bottom.is_believed)
+        again = self._solve(asked, np.where(is_upper, most.unknowns, least.unknowns))
+        met = _is_answer(self._finish(asked, again), asked, floors[:, None])
+        outcome = np.where(met, Outcome.MET, Outcome.NOT_CONVERGED)
+        for edge, members, verdict in (
+            (least, ~met & bottom.is_believed & (asked.thrust < lower), Outcome.AT_IDLE),
+            (most, ~met & top.is_believed & (asked.thrust > upper), Outcome.BEYOND_RATING),
+        ):
+            index = np.flatnonzero(members)
+            again = again.replaced(index, edge.at(index))
+            outcome[index] = verdict
+        return again, outcome
+
+    def _solve(self, asked: _Asked, start: Array | None) -> Solution:
+        """Match what is asked.
+
+        At a rating the limit that governs may change from one iterate to the next and keep a
+        member going round for ever: such a member is tried with each limit alone.
+        """
+        solution = solve(self.arrangement, self.sizing, asked.flat, asked.demand, start)
+        for row in range(len(LIMIT_NAMES)):
+            bounded = np.isfinite(asked.bounds[row]) & (asked.bounds[row] > 0.0)
+            lost = np.flatnonzero(bounded & ~solution.is_converged & ~asked.is_thrust)
+            if lost.size == 0:
+                continue
+            there = asked.at(lost)
+            none = np.where(there.throttle == Throttle.CEILING, np.inf, 0.0)
+            alone = np.repeat(none[None, :], len(LIMIT_NAMES), axis=0)
+            alone[row] = there.bounds[row]
+            trial = solve(
+                self.arrangement, self.sizing, there.flat, replace(there, bounds=alone).demand
+            )
+            shares = self._finish(there, trial).limit_shares
+            low, high = shares >= 1.0 - _SLACK, shares <= 1.0 + _SLACK
+            holds = np.where(there.throttle == Throttle.CEILING, high.all(axis=0), low.all(axis=0))
+            found = np.flatnonzero(trial.is_converged & holds)
+            solution = solution.replaced(lost[found], trial.at(found))
+        return solution
+
     def at_thrust(
         self,
         flight: FlightCondition,
@@ -43,73 +126,16 @@ class CycleEngine:
         *,
         rating: str = "maximum_continuous",
         idle: str = "flight_idle",
-        start: EngineState | None = None,
+        start: Array | None = None,
     ) -> EngineState:
-        """State that gives a required net thrust [N]; see :class:`engine.interface.Engine`."""
-        flight, wanted = _broadcast(flight, net_thrust)
-        flat, thrust = _flat(flight), wanted.ravel()
-        count = thrust.size
-        ceilings, floors = self._bounds(rating)[1], self._bounds(idle)[1]
-        demand = Demand(
-            np.full(count, Throttle.THRUST), thrust, np.full((len(LIMIT_NAMES), count), np.inf)
-        )
-        solution = solve(self.arrangement, self.sizing, flat, demand, _start(start))
-        state = self._finish(flat, solution, ceilings, Throttle.CEILING)
-        over = np.any(state.limit_shares > 1.0 + _SLACK, axis=0)
-        under = np.any(state.path.limits < floors[:, None] * (1.0 - _SLACK), axis=0)
-        lost = ~solution.is_converged | ~state.is_physical
-        if not np.any(over | under | lost):
-            return state.to_engine_state(self, flight, np.full(count, Outcome.MET))
-        return self._at_the_edge(
-            flight, flat, thrust, rating, idle, solution, over | lost, under | lost
-        )
-
-    def _at_the_edge(
-        self,
-        flight: FlightCondition,
-        flat: FlightCondition,
-        thrust: Array,
-        rating: str,
-        idle: str,
-        solution: Solution,
-        may_be_over: NDArray[np.bool_],
-        may_be_under: NDArray[np.bool_],
-    ) -> EngineState:
-        """Replace what lies beyond the rating or below idle by the state there is."""
-        outcome = np.full(thrust.size, Outcome.MET)
-        outcome[may_be_over & may_be_under] = Outcome.NOT_CONVERGED
-        for name, suspects, verdict in (
-            (rating, may_be_over, Outcome.BEYOND_RATING),
-            (idle, may_be_under, Outcome.AT_IDLE),
-        ):
-            index = np.flatnonzero(suspects)
-            if index.size == 0:
-                continue
-            there = self.at_rating(flat.at(index), name)
-            known = there.outcome == Outcome.MET
-            beyond = verdict == Outcome.BEYOND_RATING
-            short = there.net_thrust < thrust[index] if beyond else there.net_thrust > thrust[index]
-            taken = index[known & short]
-            solution.unknowns[:, taken] = there.unknowns[:, known & short]
-            solution.is_converged[taken] = True
-            solution.residual[taken] = there.residual[known & short]
-            outcome[taken] = verdict
-        state = self._finish(flat, solution, self._bounds(rating)[1], Throttle.CEILING)
-        return state.to_engine_state(self, flight, outcome)
+        """State that gives a required net thrust [N] below one rating."""
+        return self.at(flight, rating=rating, net_thrust=net_thrust, idle=idle, start=start)
 
     def at_rating(
-        self, flight: FlightCondition, rating: str, *, start: EngineState | None = None
+        self, flight: FlightCondition, rating: str, *, start: Array | None = None
     ) -> EngineState:
-        """State at a rating or idle; see :class:`engine.interface.Engine`."""
-        flat = _flat(flight)
-        count = flat.mach.size
-        throttle, bounds = self._bounds(rating)
-        demand = Demand(
-            np.full(count, throttle), np.zeros(count), np.repeat(bounds[:, None], count, axis=1)
-        )
-        solution = solve(self.arrangement, self.sizing, flat, demand, _start(start))
-        state = self._finish(flat, solution, bounds, throttle)
-        return state.to_engine_state(self, flight, np.full(count, Outcome.MET))
+        """State at one rating or idle."""
+        return self.at(flight, rating=rating, start=start)
 
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit state: no fuel, no bleed, no shaft power taken; negative thrust is its drag."""
@@ -119,8 +145,10 @@ class CycleEngine:
         flat = _flat(flight)
         start = _windmilling_start(arrangement, self.sizing, flat.mach)
         solution = solve(unlit.arrangement, self.sizing, flat, None, start)
-        none = np.full(len(LIMIT_NAMES), np.inf)
-        state = unlit._finish(flat, solution, none, Throttle.CEILING, is_lit=False)
+        count = flat.mach.size
+        none = np.full((len(LIMIT_NAMES), count), np.inf)
+        asked = _Asked(flat, np.full(count, np.nan), np.full(count, Throttle.CEILING), none)
+        state = unlit._finish(asked, solution, is_lit=False)
         return state.to_engine_state(unlit, flight, np.full(flat.mach.size, Outcome.MET))
 
     def _bounds(self, rating: str) -> tuple[Throttle, Array]:
@@ -132,27 +160,63 @@ class CycleEngine:
         known = ", ".join([*self.ceilings, *self.floors])
         raise InputRefused(f"'{rating}' is no rating of {self.name}; it has {known}")
 
-    def _finish(
-        self,
-        flat: FlightCondition,
-        solution: Solution,
-        bounds: Array,
-        throttle: Throttle,
-        *,
-        is_lit: bool = True,
-    ) -> _Finished:
+    def _finish(self, asked: _Asked, solution: Solution, *, is_lit: bool = True) -> _Finished:
         """Evaluate the engine at its solution and look whether the answer may be believed."""
         ahead, path = evaluate_at(
-            self.arrangement, self.sizing, flat, solution.unknowns, is_lit=is_lit
+            self.arrangement, self.sizing, asked.flat, solution.unknowns, is_lit=is_lit
         )
         with np.errstate(all="ignore"):
-            shares = path.limits / bounds[:, None]
-        binding = (
-            np.argmax(shares, axis=0) if throttle == Throttle.CEILING else np.argmin(shares, axis=0)
-        )
-        binding = np.where(np.any(np.isfinite(bounds) & (bounds > 0.0)), binding, -1)
+            shares = path.limits / asked.bounds
+        is_ceiling = asked.throttle == Throttle.CEILING
+        binding = np.where(is_ceiling, np.argmax(shares, axis=0), np.argmin(shares, axis=0))
+        is_bounded = np.any(np.isfinite(asked.bounds) & (asked.bounds > 0.0), axis=0)
+        binding = np.where(is_bounded, binding, -1)
         physical = _is_physical(self.arrangement, path, is_lit=is_lit)
-        return _Finished(flat, ahead, path, solution, shares, binding, physical)
+        return _Finished(asked.flat, ahead, path, solution, shares, binding, physical)
+
+
+@dataclass(frozen=True)
+class _Asked:
+    """A call as flat arrays: net thrust [N], NaN where a rating or idle is asked for itself.
+
+    ``throttle`` (N,) and ``bounds`` (8, N) are those of the rating.
+    """
+
+    flat: FlightCondition
+    thrust: Array
+    throttle: NDArray[np.int64]
+    bounds: Array
+
+    @property
+    def is_thrust(self) -> NDArray[np.bool_]:
+        """Where a thrust is asked for."""
+        return ~np.isnan(self.thrust)
+
+    @property
+    def demand(self) -> Demand:
+        """The same in the words of matching."""
+        throttle = np.where(self.is_thrust, Throttle.THRUST, self.throttle)
+        return Demand(throttle, np.where(self.is_thrust, self.thrust, 0.0), self.bounds)
+
+    def at(self, index: NDArray[np.int64]) -> _Asked:
+        """The members picked by an index array."""
+        return _Asked(
+            self.flat.at(index), self.thrust[index], self.throttle[index], self.bounds[:, index]
+        )
+
+    def without_thrust(self) -> _Asked:
+        """The ratings themselves."""
+        return replace(self, thrust=np.full_like(self.thrust, np.nan))
+
+    def held_at(self, throttle: Throttle, bounds: Array) -> _Asked:
+        """One rating or idle at the same flight conditions."""
+        count = self.thrust.size
+        return _Asked(
+            self.flat,
+            np.full(count, np.nan),
+            np.full(count, throttle),
+            np.repeat(bounds[:, None], count, axis=1),
+        )
 
 
 @dataclass(frozen=True)
@@ -167,6 +231,11 @@ class _Finished:
     binding_limit: NDArray[np.int64]
     is_physical: NDArray[np.bool_]
 
+    @property
+    def is_believed(self) -> NDArray[np.bool_]:
+        """Whether there is an answer that may be believed."""
+        return self.solution.is_converged & self.is_physical
+
     def to_engine_state(
         self, engine: CycleEngine, flight: FlightCondition, outcome: NDArray[np.int64]
     ) -> EngineState:
@@ -174,7 +243,7 @@ class _Finished:
         solution = self.solution
         outcome = np.where(solution.is_converged & ~self.is_physical, Outcome.UNPHYSICAL, outcome)
         outcome = np.where(solution.is_converged, outcome, Outcome.NOT_CONVERGED)
-        believed = (outcome != Outcome.NOT_CONVERGED) & (outcome != Outcome.UNPHYSICAL)
+        believed = self.is_believed & (outcome != Outcome.NOT_CONVERGED)
         shape = flight.shape
         choking = np.stack([jet.choking for _, jet in self.path.jets.values()])
         return EngineState(
@@ -200,25 +269,43 @@ class _Finished:
         )
 
 
+def _is_answer(state: _Finished, asked: _Asked, floors: Array) -> NDArray[np.bool_]:
+    """Whether a member may be believed and, where a thrust is asked for, lies within its limits.
+
+    A rating that is an idle bounds thrust from above: one of its floors must not be surpassed.
+    """
+    limits = state.path.limits
+    with np.errstate(invalid="ignore"):
+        low = limits <= asked.bounds * (1.0 + _SLACK)
+        high = limits >= floors * (1.0 - _SLACK)
+    is_ceiling = asked.throttle == Throttle.CEILING
+    within = np.where(is_ceiling, low.all(axis=0), low.any(axis=0)) & high.all(axis=0)
+    return state.is_believed & (within | ~asked.is_thrust)
+
+
 def _windmilling_start(arrangement: Arrangement, sizing: Sizing, mach: Array) -> Array:
     """Unknowns on the safe side of any windmilling state: little flow, little compression.
 
-    Pressure ratios go with Mach number squared and flows with Mach number, as in any duct.
+    Pressure ratios go with Mach number squared and flows with Mach number, as in any duct. A fan,
+    driven by what little the core passes, hardly compresses. The factors are guesses, tried on 60
+    engines of bypass ratio 0.3 to 14 at Mach 0.2 to 0.9.
     """
     moving = np.maximum(mach, 0.02)
     start = np.repeat(sizing.unknowns[:, None], mach.size, axis=1)
     for row, name in enumerate(arrangement.unknown_names):
-        if "pressure_ratio" in name:
+        if name == "fan_pressure_ratio":
+            start[row] = np.log1p(0.001 * moving**2)
+        elif "pressure_ratio" in name:
             start[row] = np.log1p(0.1 * moving**2)
         elif name == "bypass_ratio":
-            start[row] += 1.0
+            start[row] += np.log(8.0)
         elif name == "corrected_core_airflow":
-            start[row] += np.log(0.2 * moving)
+            start[row] += np.log(0.03 * moving)
     return start
 
 
-def _start(state: EngineState | None) -> Array | None:
-    return None if state is None else state.unknowns.reshape(len(state.unknowns), -1)
+def _start(unknowns: Array | None) -> Array | None:
+    return None if unknowns is None else unknowns.reshape(len(unknowns), -1)
 
 
 def _broadcast(flight: FlightCondition, thrust: ArrayLike) -> tuple[FlightCondition, Array]:
@@ -254,7 +341,7 @@ def _is_physical(arrangement: Arrangement, path: Flowpath, *, is_lit: bool) -> N
         if isinstance(gas, RealGas):
             good &= fuel_air_ratio <= gas.stoichiometric_fuel_air_ratio
     order = [name for name in ("2", "21", "25", "3") if name in stations]
-    for before, after in zip(order, order[1:], strict=False):
+    for before, after in pairwise(order):
         ratio = stations[after].total_pressure / stations[before].total_pressure
         good &= ratio >= 1.0 - 1e-6
     for stream in stations.values():

@@ -195,7 +195,8 @@ class Engine(Protocol):
     """What the mission asks of an engine; elementwise over any broadcastable shape.
 
     A thrust above what the rating gives comes back as BEYOND_RATING with the thrust that there
-    is; below idle as AT_IDLE. ``start`` is an earlier state near by, of the same shape.
+    is; below idle as AT_IDLE. ``start`` are the
+    ``unknowns`` of an earlier state near by, NaN where there is none.
     """
 
     @property
@@ -208,6 +209,22 @@ class Engine(Protocol):
         """Values that the engine file left unsaid, as ``key = value``."""
         ...
 
+    def at(
+        self,
+        flight: FlightCondition,
+        *,
+        rating: str | NDArray[np.str_],
+        net_thrust: ArrayLike | None = None,
+        idle: str = "flight_idle",
+        start: Array | None = None,
+    ) -> EngineState:
+        """State at a rating or idle, or at a required net thrust [N] below a rating.
+
+        ``rating`` is a name of :data:`RATINGS` or :data:`IDLES`, or an array of them; where
+        ``net_thrust`` is NaN (or not given) the rating itself is asked for.
+        """
+        ...
+
     def at_thrust(
         self,
         flight: FlightCondition,
@@ -215,13 +232,13 @@ class Engine(Protocol):
         *,
         rating: str = "maximum_continuous",
         idle: str = "flight_idle",
-        start: EngineState | None = None,
+        start: Array | None = None,
     ) -> EngineState:
         """State that gives a required net thrust [N] of one engine."""
         ...
 
     def at_rating(
-        self, flight: FlightCondition, rating: str, *, start: EngineState | None = None
+        self, flight: FlightCondition, rating: str, *, start: Array | None = None
     ) -> EngineState:
         """State at a rating or an idle, by name (:data:`RATINGS`, :data:`IDLES`)."""
         ...

@@ -22,7 +22,7 @@ from engine.parts.stream import Stream
 Array = NDArray[np.float64]
 TOLERANCE = 1e-11
 # Round-off of the pressure drops on which a windmilling flow hangs, a thousandth of the pressure.
-WINDMILLING_TOLERANCE = 1e-9
+WINDMILLING_TOLERANCE = 1e-7
 _LARGEST_STEP = 0.25
 _DIFFERENCE = 1e-6
 _MOST_ITERATIONS = 80
@@ -58,12 +58,33 @@ class Demand:
 
 @dataclass(frozen=True)
 class Solution:
-    """Answer of :func:`solve`: unknowns (n, N), residual (N,), converged (N,), iterations (N,)."""
+    """Answer of :func:`solve`: unknowns (n, N), residual (N,), converged (N,), iterations (N,).
+
+    The residual is that before the last step; flows are squared in it.
+    """
 
     unknowns: Array
     residual: Array
     is_converged: NDArray[np.bool_]
     iterations: NDArray[np.int64]
+
+    def at(self, index: NDArray[np.int64]) -> Solution:
+        """The members picked by an index array."""
+        return Solution(
+            self.unknowns[:, index],
+            self.residual[index],
+            self.is_converged[index],
+            self.iterations[index],
+        )
+
+    def replaced(self, index: NDArray[np.int64], other: Solution) -> Solution:
+        """This solution with the members of ``other`` in the places of ``index``."""
+        unknowns, residual = self.unknowns.copy(), self.residual.copy()
+        is_converged, iterations = self.is_converged.copy(), self.iterations.copy()
+        unknowns[:, index], residual[index] = other.unknowns, other.residual
+        is_converged[index] = other.is_converged
+        iterations[index] += other.iterations
+        return Solution(unknowns, residual, is_converged, iterations)
 
 
 def solve(
@@ -201,7 +222,11 @@ def _throttle_residual(
     if np.all(throttle == Throttle.THRUST):
         return thrust
     shares = path.limits / demand.bounds[:, None, :]
-    bounded = np.where(throttle == Throttle.CEILING, shares.max(axis=0), shares.min(axis=0)) - 1.0
+    # The limit that governs at the point itself, for its differences too: a derivative taken
+    # half from one limit and half from another leads nowhere.
+    first = shares[:, 0]
+    governs = np.where(throttle == Throttle.CEILING, first.argmax(axis=0), first.argmin(axis=0))
+    bounded = np.take_along_axis(shares, governs[None, None, :], axis=0)[0] - 1.0
     return np.where(throttle == Throttle.THRUST, thrust, bounded)
 
 

@@ -35,7 +35,9 @@ def drag(
     return coefficient * dynamic_pressure(flight) * area
 
 
-def stall_mach(aircraft: Aircraft, flight: FlightCondition, mass: Array, lift_limit: float) -> Array:
+def stall_mach(
+    aircraft: Aircraft, flight: FlightCondition, mass: Array, lift_limit: float
+) -> Array:
     """Mach number at which a mass [kg] needs the lift coefficient ``lift_limit``."""
     weight = mass * STANDARD_GRAVITY
     return np.sqrt(weight / (0.7 * flight.static_pressure * aircraft.wing_area * lift_limit))

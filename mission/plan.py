@@ -207,5 +207,3 @@ def _alternate_segments(alternate: AlternateTable, elevation: float) -> list[Any
             kind="descent", name="alternate descent", to=elevation + HOLD_HEIGHT, **speeds
         ),
     ]
-
-

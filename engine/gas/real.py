@@ -164,7 +164,7 @@ class RealGas:
         section: Section = "hot",
     ) -> Array:
         air, burnt = self._sums(np.asarray(temperature_out, dtype=np.float64), (_ENTHALPY,))
-        needed = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
+        needed: Array = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
         return needed / (np.asarray(heat_release, dtype=np.float64) - burnt[0])
 
     def _properties(

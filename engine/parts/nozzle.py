@@ -119,9 +119,7 @@ def discharge(gas: Gas, nozzle: Nozzle, stream: Stream, ambient_pressure: Array)
     if nozzle.kind != "convergent":
         ratio = nozzle.exit_pressure_ratio if nozzle.kind == "given exit pressure" else 1.0
         exit_pressure = np.broadcast_to(ratio * ambient_pressure, area.shape)
-        drop, exit_temperature = _expand(
-            gas, stream, exit_pressure, efficiency, 0.9 * temperature
-        )
+        drop, exit_temperature = _expand(gas, stream, exit_pressure, efficiency, 0.9 * temperature)
         exit_velocity = _velocity(gas, stream, drop)
         density = exit_pressure / (gas_constant * exit_temperature)
         exit_area = stream.mass_flow / (density * exit_velocity)

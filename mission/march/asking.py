@@ -32,28 +32,43 @@ class Answer:
 
 
 def ask(
-    engine: Engine, requests: dict[int, Request], starts: dict[str, EngineState]
+    engine: Engine, requests: dict[int, Request], memory: dict[int, Array]
 ) -> dict[int, Answer]:
-    """Answers by the keys of the requests; ``starts`` keeps the last state of each joint call."""
-    answers: dict[int, Answer] = {}
-    groups: dict[str, list[int]] = {}
-    for key, request in requests.items():
-        kind = "thrust below " if request.net_thrust is not None else ""
-        groups.setdefault(kind + request.rating, []).append(key)
-    for name, keys in groups.items():
-        members = [requests[key] for key in keys]
-        flight = join([request.flight for request in members])
-        start = starts.get(name)
-        if start is not None and start.net_thrust.shape != flight.shape:
-            start = None
-        if members[0].net_thrust is None:
-            state = engine.at_rating(flight, members[0].rating, start=start)
-        else:
-            thrust = np.concatenate([np.ravel(request.net_thrust) for request in members])
-            state = engine.at_thrust(flight, thrust, rating=members[0].rating, start=start)
-        starts[name] = state
-        answers |= _split(state, keys, [request.flight.shape for request in members])
-    return answers
+    """Answers by the keys of the requests.
+
+    ``memory`` keeps the engine's unknowns of each key's last answer as the next starting point.
+    """
+    if not requests:
+        return {}
+    keys, members = list(requests), list(requests.values())
+    flight = join([request.flight for request in members])
+    sizes = [int(np.prod(request.flight.shape)) for request in members]
+    thrust = np.concatenate(
+        [
+            np.full(size, np.nan) if request.net_thrust is None else np.ravel(request.net_thrust)
+            for request, size in zip(members, sizes, strict=True)
+        ]
+    )
+    ratings = np.repeat([request.rating for request in members], sizes)
+    start = _start(memory, keys, sizes)
+    state = engine.at(flight, rating=ratings, net_thrust=thrust, start=start)
+    ends = np.cumsum(sizes)[:-1]
+    memory.update(zip(keys, np.split(state.unknowns, ends, axis=1), strict=True))
+    return _split(state, keys, [request.flight.shape for request in members])
+
+
+def _start(memory: dict[int, Array], keys: list[int], sizes: list[int]) -> Array | None:
+    """Remembered unknowns of the keys side by side, NaN for a key without."""
+    if not memory:
+        return None
+    count = len(next(iter(memory.values())))
+    parts = [
+        memory[key]
+        if key in memory and memory[key].shape[1] == size
+        else np.full((count, size), np.nan)
+        for key, size in zip(keys, sizes, strict=True)
+    ]
+    return np.concatenate(parts, axis=1)
 
 
 def join(flights: list[FlightCondition]) -> FlightCondition:
@@ -66,9 +81,7 @@ def join(flights: list[FlightCondition]) -> FlightCondition:
     )
 
 
-def _split(
-    state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]
-) -> dict[int, Answer]:
+def _split(state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]) -> dict[int, Answer]:
     ends = np.cumsum([int(np.prod(shape)) for shape in shapes])[:-1]
     parts = zip(
         keys,

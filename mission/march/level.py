@@ -55,9 +55,7 @@ def least_fuel_stencil(flight: FlightCondition) -> FlightCondition:
     return flight.with_mach(flight.mach + offsets)
 
 
-def least_fuel_step(
-    world: World, flight: FlightCondition, mass: Array, fuel_flow: Array
-) -> Array:
+def least_fuel_step(world: World, flight: FlightCondition, mass: Array, fuel_flow: Array) -> Array:
     """Next Mach number of a hold from the fuel flows (3, nodes, members) of its stencil."""
     slower, here, faster = fuel_flow
     slope = (faster - slower) / (2.0 * _STENCIL)

@@ -8,13 +8,12 @@ integrals, then new masses) brings several digits; a mass depends only on the fu
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition, flight_condition
-from engine.interface import EngineState
 from mission.march import level, throttled
 from mission.march.asking import Answer, Request, ask
 from mission.march.nodes import integration_matrix, interpolation_matrix, positions
@@ -24,7 +23,7 @@ from mission.march.world import World
 
 Array = NDArray[np.float64]
 MOST_SWEEPS = 60
-SETTLED = 2e-14
+SETTLED = 1e-12
 
 
 @dataclass
@@ -79,13 +78,6 @@ class Parts:
     reserve_distance: float | None = None
 
 
-@dataclass
-class Memory:
-    """Engine states kept from call to call as starting points."""
-
-    states: dict[str, EngineState] = field(default_factory=dict)
-
-
 Closure = Callable[[Array, Sequence[Array], Sequence[Array]], Array]
 
 
@@ -105,7 +97,7 @@ def march(
     """
     spans = [*parts.mission, *parts.reserve]
     tracks = _first_tracks(world, spans, count, stop_mass, start)
-    memory = Memory()
+    memory: dict[int, Array] = {}
     rests = _first_rests(parts, start)
     change = np.inf
     sweep = 0
@@ -190,7 +182,7 @@ def _takes_rest(span: Span) -> bool:
 
 
 def _solve_engines(
-    world: World, tracks: list[Track], memory: Memory, rests: dict[bool, Array]
+    world: World, tracks: list[Track], memory: dict[int, Array], rests: dict[bool, Array]
 ) -> None:
     """Ask the engine for every span whose condition moved, and set its nodes."""
     requests: dict[int, Request] = {}
@@ -198,7 +190,7 @@ def _solve_engines(
         request = _request(world, tracks, index)
         if request is not None:
             requests[index] = request
-    for index, answer in ask(world.engine, requests, memory.states).items():
+    for index, answer in ask(world.engine, requests, memory).items():
         tracks[index].answer = answer
     reserve_from = len(tracks)
     for index, track in enumerate(tracks):
@@ -225,7 +217,9 @@ def _request(world: World, tracks: list[Track], index: int) -> Request | None:
             asked = track.flight
         track.mach = np.broadcast_to(track.flight.mach, track.mass.shape)
         thrust = level.level_drag(span, world, asked, track.mass) / count
-        return Request(asked.with_mach(np.broadcast_to(asked.mach, thrust.shape)), span.rating, thrust)
+        return Request(
+            asked.with_mach(np.broadcast_to(asked.mach, thrust.shape)), span.rating, thrust
+        )
     if span.is_static and track.answer is not None:
         return None
     if span.march == "altitude":
@@ -239,7 +233,7 @@ def _request(world: World, tracks: list[Track], index: int) -> Request | None:
     return _request_by_speed(world, tracks, index)
 
 
-def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request:
+def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request | None:
     """A march by speed: its ends may be those of its neighbours in the last sweep."""
     track, span = tracks[index], tracks[index].span
     assert track.air is not None
@@ -247,6 +241,8 @@ def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request:
     after = tracks[index + 1] if index + 1 < len(tracks) else None
     last = _end_mach(world, track, span.end_speed, after, 0)
     mach = first + positions(len(track.mass))[:, None] * (last - first)
+    if track.answer is not None and np.max(np.abs(mach - track.mach)) < SETTLED:
+        return None
     track.flight = track.air.with_mach(mach)
     track.mach = np.broadcast_to(track.flight.mach, track.mass.shape)
     slows_down = span.march == "speed" and float(np.mean(last - first)) < 0.0
@@ -304,9 +300,7 @@ def _set_nodes(world: World, track: Track, rest: Array) -> None:
             span, world, track.flight, mass, extent, thrust, flow, outcome
         )
     elif span.march == "altitude":
-        track.nodes = throttled.climb_nodes(
-            span, world, track.flight, mass, thrust, flow, outcome
-        )
+        track.nodes = throttled.climb_nodes(span, world, track.flight, mass, thrust, flow, outcome)
     elif span.march == "stand":
         track.nodes = throttled.standing_nodes(span, track.flight, mass, thrust, flow, outcome)
     else:

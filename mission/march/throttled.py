@@ -68,9 +68,7 @@ def climb_nodes(
     outcome: NDArray[np.int64],
 ) -> Nodes:
     """Nodes of a march by altitude at thrust [N] and fuel flow [kg/s] of the aircraft."""
-    sine = path_angle_sine(
-        world.aircraft, flight, mass, thrust, acceleration_factor(span, flight)
-    )
+    sine = path_angle_sine(world.aircraft, flight, mass, thrust, acceleration_factor(span, flight))
     lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
     vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)
     way = np.sign(span.end_altitude - span.start_altitude)

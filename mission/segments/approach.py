@@ -43,7 +43,5 @@ class Approach(Table):
             drag_factor=self.drag_factor,
             is_reserve=here.is_reserve,
         )
-        landed = here.now(
-            pressure_altitude=here.destination_elevation, speed=None, on_ground=True
-        )
+        landed = here.now(pressure_altitude=here.destination_elevation, speed=None, on_ground=True)
         return [span], landed

@@ -87,7 +87,9 @@ class Cruise(Table):
         incoming = here.speed
         if self.holds == "altitude and lift coefficient":
             if self.lift_coefficient is None and incoming is None:
-                raise InputRefused("give lift_coefficient: there is no segment before to take it from")
+                raise InputRefused(
+                    "give lift_coefficient: there is no segment before to take it from"
+                )
             return SpeedRule("lift_coefficient", self.lift_coefficient)
         mach = self.mach
         if mach is None:

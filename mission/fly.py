@@ -1,0 +1,191 @@
+"""Fly a mission: lay it out, march it, close its fuel, refine it, and look at every limit."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.interface import Engine
+from mission.aircraft import Aircraft
+from mission.breguet import cross_checks
+from mission.fuel_plan import Sums, add_up, closure
+from mission.limits import first_failure, margins
+from mission.logbook import segment_logs, totals
+from mission.march.joints import cut_at_joints
+from mission.march.sweep import SETTLED, Marched, Parts, march
+from mission.march.world import World
+from mission.mission_file import Mission, MissionFile
+from mission.plan import FlightPlan, lay_out
+from mission.results import Flight, ReserveItem
+from mission.warnings import warnings_of
+
+Array = NDArray[np.float64]
+COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
+_MOST_PLANS = 8
+_SAME_ALTITUDE = 1e-4  # m, between the end of a cruise-climb and what follows
+
+
+@dataclass(frozen=True)
+class _Solved:
+    """A plan with its coarse and its fine march."""
+
+    plan: FlightPlan
+    coarse: Marched
+    fine: Marched
+
+
+def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int = 1) -> Flight:
+    """Fly a mission with an aircraft and an engine.
+
+    ``refinement`` multiplies the steps of every span; the flight reports its own integration
+    error, the change of block fuel from half the steps to these. Raises
+    :class:`engine.errors.InputRefused` for a mission that cannot be laid out; a mission that
+    cannot be flown comes back with ``failure`` set and the log up to there.
+    """
+    written = mission.written
+    world = World(aircraft, engine, written.day, -written.headwind)
+    solved = _solve(mission, world, refinement)
+    if not _is_closed(solved.fine):
+        most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
+        load = max(min(aircraft.usable_fuel, most - aircraft.unusable_fuel), 1.0)
+        written = written.model_copy(
+            update={"fuel": written.fuel.model_copy(update={"load": load, "as_needed": False})}
+        )
+        solved = _solve(mission.model_copy(update={"written": written}), world, refinement)
+    return _flight(mission, written, world, solved)
+
+
+def _is_closed(marched: Marched) -> bool:
+    return bool(np.all(np.isfinite(marched.stop_mass)) and marched.change < 1e4 * SETTLED)
+
+
+def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
+    """Plan and march, again where a cruise-climb ends elsewhere than the plan had it."""
+    ends: dict[int, float] = {}
+    written, aircraft = mission.written, world.aircraft
+    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
+    guess = np.array([empty + 0.1 * (written.fuel.load or empty)])
+    few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
+    coarse: Marched | None = None
+    for _ in range(_MOST_PLANS):
+        plan = lay_out(mission, aircraft, ends)
+        plan = _with_joints(plan, world)
+        close = closure(plan, written, aircraft)
+        coarse = march(world, plan.parts, few, guess, close)
+        found = _cruise_climb_ends(coarse)
+        moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
+        ends, guess = found, coarse.stop_mass
+        if moved < _SAME_ALTITUDE or not _is_closed(coarse):
+            break
+    assert coarse is not None
+    fine = (
+        march(world, plan.parts, many, coarse.stop_mass, close, coarse)
+        if _is_closed(coarse)
+        else coarse
+    )
+    return _Solved(plan, coarse, fine)
+
+
+def _with_joints(plan: FlightPlan, world: World) -> FlightPlan:
+    parts = plan.parts
+    cut = cut_at_joints(world, [*parts.mission, *parts.reserve])
+    return replace(
+        plan,
+        parts=replace(
+            parts,
+            mission=tuple(span for span in cut if not span.is_reserve),
+            reserve=tuple(span for span in cut if span.is_reserve),
+        ),
+    )
+
+
+def _cruise_climb_ends(marched: Marched) -> dict[int, float]:
+    """Pressure altitude [m] at the end of each cruise-climb, by row."""
+    return {
+        track.span.segment: float(track.nodes.flight.pressure_altitude[-1, 0])
+        for track in marched.tracks
+        if track.span.holds_lift_coefficient and track.nodes is not None
+    }
+
+
+def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solved) -> Flight:
+    plan, fine = solved.plan, solved.fine
+    sums = add_up(plan, written, fine.fuel, fine.time)
+    coarse_sums = add_up(plan, written, solved.coarse.fuel, solved.coarse.time)
+    logs = segment_logs(world, plan, fine, written)
+    error = abs(sums.mission_fuel - coarse_sums.mission_fuel)
+    total = totals(world, plan, fine, written, sums, error)
+    closes = mission.written.fuel.as_needed == written.fuel.as_needed
+    failure = first_failure(world, plan, fine, written, total, logs, closes=closes)
+    flown = failure is None
+    return Flight(
+        mission=written.name,
+        aircraft=world.aircraft.name,
+        engine=world.engine.name,
+        day=written.day,
+        totals=total,
+        segments=logs,
+        reserves=_reserves(world, plan, written, solved, sums, with_cost=flown),
+        cross_check=cross_checks(plan, logs, total) if flown else (),
+        margins=margins(world, logs, total),
+        assumed=(
+            *(f"mission: {line}" for line in mission.assumed),
+            *(f"aircraft: {line}" for line in world.aircraft.assumed),
+            *(f"engine: {line}" for line in world.engine.assumed),
+        ),
+        warnings=warnings_of(world, plan, fine),
+        failure=failure,
+    )
+
+
+def _reserves(
+    world: World,
+    plan: FlightPlan,
+    written: MissionFile,
+    solved: _Solved,
+    sums: Sums,
+    *,
+    with_cost: bool,
+) -> tuple[ReserveItem, ...]:
+    """The reserves, and what carrying each costs: the trip flown again without it aboard."""
+    by_fraction = written.reserves.contingency_fraction * sums.trip_fuel
+    contingency_note = (
+        f"{written.reserves.contingency_fraction:.0%} of trip fuel, carried"
+        if by_fraction >= sums.contingency - 1e-9
+        else f"{written.reserves.contingency_least_time / 60:.0f} min at cruise fuel flow, carried"
+    )
+    items = [
+        ("contingency", sums.contingency, contingency_note),
+        ("alternate", sums.alternate_fuel, "climb, cruise and descent, flown"),
+        (
+            "final reserve",
+            sums.hold_fuel,
+            f"{written.reserves.final_reserve_time / 60:.0f} min hold at 1,500 ft, flown",
+        ),
+    ]
+    items = [item for item in items if item[1] > 0.0]
+    costs = np.zeros(len(items))
+    if items and with_cost:
+        coarse = solved.coarse
+        lighter = coarse.stop_mass - np.array([item[1] for item in items])
+        parts = Parts(plan.parts.mission, (), plan.parts.mission_distance, None)
+        flown = march(
+            world,
+            parts,
+            len(coarse.tracks[0].mass),
+            lighter,
+            lambda stop, fuel, time: lighter,
+            coarse,
+        )
+        trip = [
+            add_up(replace(plan, parts=parts), written, flown.fuel, flown.time, member).trip_fuel
+            for member in range(len(items))
+        ]
+        full = add_up(plan, written, coarse.fuel, coarse.time).trip_fuel
+        costs = full - np.array(trip)
+    return tuple(
+        ReserveItem(name, fuel, float(cost), note)
+        for (name, fuel, note), cost in zip(items, costs, strict=True)
+    )

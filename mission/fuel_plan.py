@@ -1,0 +1,104 @@
+"""Fuel: the load that meets the reserves exactly or a given one; what each reserve is and costs.
+
+Contingency is a fraction of trip fuel, not less than a time at the mean fuel flow of the longest
+cruise (of the trip where there is none); it is carried unburnt. Alternate and final reserve are
+flown, in that order, from the mass at the end of the mission.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from mission.aircraft import Aircraft
+from mission.march.sweep import Closure
+from mission.mission_file import MissionFile
+from mission.plan import FlightPlan
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Sums:
+    """Fuel [kg] and time [s] of the parts of a flight that fuel planning asks for."""
+
+    mission_fuel: float
+    trip_fuel: float
+    alternate_fuel: float
+    hold_fuel: float
+    contingency: float
+
+    @property
+    def reserves(self) -> float:
+        """All that must be aboard at the end of the mission [kg]."""
+        return self.contingency + self.alternate_fuel + self.hold_fuel
+
+
+def trip_rows(plan: FlightPlan) -> range:
+    """Rows from the start of take-off to the end of landing: the mission without its taxis."""
+    rows = [i for i, row in enumerate(plan.rows) if row.purpose == "mission"]
+    flown = [i for i in rows if plan.rows[i].kind != "taxi"]
+    take_offs = [i for i in flown if plan.rows[i].kind == "take-off"]
+    first = take_offs[0] if take_offs else (flown or rows)[0]
+    return range(first, (flown or rows)[-1] + 1)
+
+
+def add_up(
+    plan: FlightPlan,
+    written: MissionFile,
+    fuel: Sequence[Array],
+    time: Sequence[Array],
+    member: int = 0,
+) -> Sums:
+    """Sums from the cumulative fuel and time of every span (of one member)."""
+    spans = [*plan.parts.mission, *plan.parts.reserve]
+    burnt = np.array([f[-1, member] for f in fuel])
+    taken = np.array([t[-1, member] for t in time])
+    rows = np.array([span.segment for span in spans])
+    is_mission = np.arange(len(spans)) < len(plan.parts.mission)
+    trip = np.isin(rows, list(trip_rows(plan))) & is_mission
+    trip_fuel = float(burnt[trip].sum())
+    hold_row = len(plan.rows) - 1 if written.reserves.final_reserve_time > 0.0 else -1
+    is_hold = ~is_mission & (rows == hold_row)
+    rate = _consumption(plan, burnt, taken, rows, trip)
+    reserves = written.reserves
+    contingency = max(
+        reserves.contingency_fraction * trip_fuel, reserves.contingency_least_time * rate
+    )
+    return Sums(
+        mission_fuel=float(burnt[is_mission].sum()),
+        trip_fuel=trip_fuel,
+        alternate_fuel=float(burnt[~is_mission & ~is_hold].sum()),
+        hold_fuel=float(burnt[is_hold].sum()),
+        contingency=contingency,
+    )
+
+
+def _consumption(
+    plan: FlightPlan, burnt: Array, taken: Array, rows: Array, trip: NDArray[np.bool_]
+) -> float:
+    """Mean fuel flow [kg/s] of the longest cruise, or of the trip where it has none."""
+    cruises = [i for i in trip_rows(plan) if plan.rows[i].kind == "cruise"]
+    times = {i: float(taken[trip & (rows == i)].sum()) for i in cruises}
+    chosen = trip if not times else trip & (rows == max(times, key=lambda i: times[i]))
+    total = float(taken[chosen].sum())
+    return float(burnt[chosen].sum()) / total if total > 0.0 else 0.0
+
+
+def closure(plan: FlightPlan, written: MissionFile, aircraft: Aircraft) -> Closure:
+    """The mass at the end of the mission that the fuel asked for leaves."""
+    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
+
+    def as_needed(stop: Array, fuel: Sequence[Array], time: Sequence[Array]) -> Array:
+        return np.array([empty + add_up(plan, written, fuel, time).reserves])
+
+    def given(stop: Array, fuel: Sequence[Array], time: Sequence[Array]) -> Array:
+        assert written.fuel.load is not None
+        return np.array(
+            [empty + written.fuel.load - add_up(plan, written, fuel, time).mission_fuel]
+        )
+
+    return as_needed if written.fuel.as_needed else given

@@ -1,0 +1,145 @@
+"""From marched spans to the rows of the log and the totals of the flight."""
+
+from __future__ import annotations
+
+from dataclasses import fields
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.quantities import STANDARD_GRAVITY
+from mission.fuel_plan import Sums, trip_rows
+from mission.march.asking import Request, ask
+from mission.march.sweep import Marched, Track
+from mission.march.world import World
+from mission.mission_file import MissionFile
+from mission.plan import FlightPlan
+from mission.results import SegmentLog, Steps, Totals
+
+Array = NDArray[np.float64]
+
+
+def segment_logs(
+    world: World, plan: FlightPlan, marched: Marched, written: MissionFile
+) -> tuple[SegmentLog, ...]:
+    """One log a row, in the order flown; reserves last, on the same clock."""
+    rating_thrust = _rating_thrusts(world, marched)
+    empty = world.aircraft.operating_empty_mass + written.payload + world.aircraft.unusable_fuel
+    logs: list[SegmentLog] = []
+    clock = 0.0
+    for number, row in enumerate(plan.rows):
+        chosen = [i for i, track in enumerate(marched.tracks) if track.span.segment == number]
+        pieces: list[Steps] = []
+        began = clock
+        altitude = logs[-1].steps.pressure_altitude[-1] if logs else 0.0
+        for index in chosen:
+            track, time = marched.tracks[index], marched.time[index][:, 0]
+            pieces.append(_steps(track, time + clock, rating_thrust.get(index), altitude))
+            clock += float(time[-1])
+        steps = _joined(pieces)
+        logs.append(
+            SegmentLog(
+                name=row.name,
+                kind=row.kind,
+                purpose=row.purpose,
+                rating=marched.tracks[chosen[-1]].span.rating,
+                fuel=_sum(marched.fuel, chosen),
+                time=clock - began,
+                ground_distance=_sum(marched.ground, chosen),
+                air_distance=_sum(marched.air, chosen),
+                mass_start=float(steps.mass[0]),
+                mass_end=float(steps.mass[-1]),
+                mass_released=0.0,
+                mass_received=0.0,
+                fuel_left=float(steps.mass[-1]) - empty,
+                steps=steps,
+            )
+        )
+    return tuple(logs)
+
+
+def _sum(sums: list[Array], chosen: list[int]) -> float:
+    return float(sum(sums[i][-1, 0] for i in chosen))
+
+
+def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:
+    """Thrust [N] of the aircraft at its rating along every level span, in one engine call."""
+    requests: dict[int, Request] = {}
+    for index, track in enumerate(marched.tracks):
+        if track.is_level and track.nodes is not None:
+            flight = track.nodes.flight
+            requests[index] = Request(
+                flight.with_mach(np.broadcast_to(flight.mach, track.mass.shape)), track.span.rating
+            )
+    answers = ask(world.engine, requests, {})
+    count = world.aircraft.engine_count
+    return {index: count * answer.net_thrust[:, 0] for index, answer in answers.items()}
+
+
+def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: float) -> Steps:
+    nodes, mass = track.nodes, track.mass[:, 0]
+    if nodes is None:
+        none = np.zeros_like(mass)
+        ends = [0, -1]
+        at = track.span.start_altitude or altitude
+        values = [elapsed, none + at, none, none, mass, none, mass * STANDARD_GRAVITY]
+        values += [none] * 5
+        return Steps(*(value[ends] for value in values))
+    flight = nodes.flight
+    column = [
+        np.broadcast_to(value, track.mass.shape)[:, 0]
+        for value in (flight.pressure_altitude, flight.mach, flight.true_airspeed)
+    ]
+    thrust = nodes.thrust[:, 0]
+    return Steps(
+        elapsed,
+        *column,
+        mass,
+        nodes.lift[:, 0],
+        mass * STANDARD_GRAVITY,
+        nodes.drag[:, 0],
+        thrust,
+        nodes.fuel_flow[:, 0],
+        nodes.path_angle[:, 0],
+        thrust if rating_thrust is None else rating_thrust,
+    )
+
+
+def _joined(pieces: list[Steps]) -> Steps:
+    return Steps(
+        *(np.concatenate([getattr(p, f.name) for p in pieces]).copy() for f in fields(Steps))
+    )
+
+
+def totals(
+    world: World,
+    plan: FlightPlan,
+    marched: Marched,
+    written: MissionFile,
+    sums: Sums,
+    integration_error: float,
+) -> Totals:
+    """Totals of the mission part, after the definitions in DEVELOPERS.md."""
+    spans = plan.parts.mission
+    mission = list(range(len(spans)))
+    rows = set(trip_rows(plan))
+    trip = [i for i in mission if spans[i].segment in rows]
+    masses = [track.mass[:, 0] for track in marched.tracks]
+    empty = world.aircraft.operating_empty_mass + written.payload + world.aircraft.unusable_fuel
+    ramp, left = float(masses[0][0]), float(marched.stop_mass[0]) - empty
+    return Totals(
+        block_fuel=sums.mission_fuel,
+        trip_fuel=sums.trip_fuel,
+        reserve_fuel=sums.reserves,
+        loaded_fuel=ramp - empty,
+        fuel_left=left,
+        fuel_margin=left - sums.reserves,
+        block_time=_sum(marched.time, mission),
+        trip_time=_sum(marched.time, trip),
+        ground_distance=_sum(marched.ground, mission),
+        air_distance=_sum(marched.air, mission),
+        ramp_mass=ramp,
+        takeoff_mass=float(masses[trip[0]][0]),
+        landing_mass=float(masses[trip[-1]][-1]),
+        integration_error=integration_error,
+    )

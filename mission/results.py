@@ -1,0 +1,148 @@
+"""What a flight gives back: frozen records of flat arrays, SI."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Steps:
+    """State at the nodes of a segment, both ends included; arrays of one length.
+
+    Joints inside a segment stand twice, once for each side. Forces are of the whole aircraft;
+    on the ground lift and drag are zero.
+    """
+
+    elapsed_time: Array
+    pressure_altitude: Array
+    mach: Array
+    true_airspeed: Array
+    mass: Array
+    lift: Array
+    weight: Array
+    drag: Array
+    thrust: Array
+    fuel_flow: Array
+    flight_path_angle: Array
+    rating_thrust: Array
+
+
+@dataclass(frozen=True)
+class SegmentLog:
+    """One row of the log: totals [kg, s, m] and the steps behind them."""
+
+    name: str
+    kind: str
+    purpose: str
+    rating: str
+    fuel: float
+    time: float
+    ground_distance: float
+    air_distance: float
+    mass_start: float
+    mass_end: float
+    mass_released: float
+    mass_received: float
+    fuel_left: float
+    steps: Steps
+
+
+@dataclass(frozen=True)
+class ReserveItem:
+    """Fuel [kg] of one reserve, and what carrying it costs in trip fuel [kg]."""
+
+    item: str
+    fuel: float
+    carriage_cost: float
+    note: str
+
+
+@dataclass(frozen=True)
+class CrossCheck:
+    """Integrated fuel against the Breguet equation, and kilograms that explain the difference."""
+
+    segment: str
+    integrated_fuel: float
+    breguet_fuel: float
+    causes: Mapping[str, float]
+
+    @property
+    def difference_percent(self) -> float:
+        """Breguet less integrated, over integrated."""
+        if self.integrated_fuel == 0.0:
+            return 0.0
+        return 100.0 * (self.breguet_fuel - self.integrated_fuel) / self.integrated_fuel
+
+
+@dataclass(frozen=True)
+class Margin:
+    """How far a limit is: value against bound, in the unit named, and where it is least."""
+
+    name: str
+    value: float
+    bound: float
+    unit: str
+    where: str
+    is_met: bool
+
+
+@dataclass(frozen=True)
+class Failure:
+    """Why a mission cannot be flown: the first hard limit met, in the order flown."""
+
+    segment: str
+    step: int
+    what: str
+    value: float
+    bound: float
+    unit: str
+    advice: str
+
+
+@dataclass(frozen=True)
+class Totals:
+    """Fuels and masses [kg], times [s], distances [m]; ``integration_error`` [kg] of block fuel."""
+
+    block_fuel: float
+    trip_fuel: float
+    reserve_fuel: float
+    loaded_fuel: float
+    fuel_left: float
+    fuel_margin: float
+    block_time: float
+    trip_time: float
+    ground_distance: float
+    air_distance: float
+    ramp_mass: float
+    takeoff_mass: float
+    landing_mass: float
+    integration_error: float
+
+
+@dataclass(frozen=True)
+class Flight:
+    """A mission flown, or flown as far as it could be (``failure`` says why not further)."""
+
+    mission: str
+    aircraft: str
+    engine: str
+    day: float
+    totals: Totals
+    segments: tuple[SegmentLog, ...]
+    reserves: tuple[ReserveItem, ...]
+    cross_check: tuple[CrossCheck, ...]
+    margins: tuple[Margin, ...]
+    assumed: tuple[str, ...]
+    warnings: tuple[str, ...]
+    failure: Failure | None
+
+    @property
+    def flown(self) -> bool:
+        """Whether the mission could be flown to its end."""
+        return self.failure is None

@@ -1,0 +1,42 @@
+"""What the reader should know though the mission flies: states flagged and work left out."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from engine.interface import Outcome
+from engine.quantities import FOOT, STANDARD_GRAVITY
+from mission.march.sweep import Marched
+from mission.march.world import World
+from mission.plan import FlightPlan
+
+_NEGLIGIBLE_RISE = 1.0  # m
+
+
+def warnings_of(world: World, plan: FlightPlan, marched: Marched) -> tuple[str, ...]:
+    """Sentences, each naming its segment."""
+    found: list[str] = []
+    for track in marched.tracks:
+        nodes, name = track.nodes, plan.rows[track.span.segment].name
+        if nodes is None:
+            continue
+        idle = nodes.outcome[:, 0] == Outcome.AT_IDLE
+        if track.is_level and np.any(idle):
+            excess = float(np.max(nodes.thrust[:, 0] - nodes.drag[:, 0]))
+            found.append(
+                f"{name}: idle gives up to {excess / 1e3:.2f} kN more thrust than drag; fuel is "
+                "counted at idle"
+            )
+        if track.span.holds_lift_coefficient:
+            altitude = nodes.flight.pressure_altitude[:, 0]
+            rise = float(altitude[-1] - altitude[0])
+            if rise > _NEGLIGIBLE_RISE:
+                work = float(np.mean(nodes.mass[:, 0])) * STANDARD_GRAVITY * rise
+                thrust_work = nodes.fuel_flow[:, 0] / (
+                    nodes.thrust[:, 0] * nodes.flight.true_airspeed[:, 0]
+                )
+                found.append(
+                    f"{name}: flown as level while it rises {rise / FOOT:,.0f} ft; the lift to "
+                    f"there would cost about {work * float(np.mean(thrust_work)):,.0f} kg more"
+                )
+    return tuple(found)
