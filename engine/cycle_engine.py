@@ -76,7 +76,8 @@ class CycleEngine:
         asked for once more from the nearer one, and what still has no answer is said to have none.
         """
         throttle, floors = self._bounds(idle)
-        at_top, at_bottom = asked.without_thrust(), asked.held_at(throttle, floors)
+        at_top = asked.without_thrust()
+        at_bottom = _Asked.at_one_rating(asked.flat, throttle, floors)
         most, least = self._solve(at_top, None), self._solve(at_bottom, None)
         top, bottom = self._finish(at_top, most), self._finish(at_bottom, least)
         upper, lower = top.path.net_thrust(asked.flat), bottom.path.net_thrust(asked.flat)
@@ -97,7 +98,8 @@ class CycleEngine:
         """Match what is asked.
 
         At a rating the limit that governs may change from one iterate to the next and keep a
-        member going round for ever: such a member is tried with each limit alone.
+        member going round for ever: such a member is tried with each limit alone, and at idle
+        from low power.
         """
         solution = solve(self.arrangement, self.sizing, asked.flat, asked.demand, start)
         for row in range(len(LIMIT_NAMES)):
@@ -106,18 +108,30 @@ class CycleEngine:
             if lost.size == 0:
                 continue
             there = asked.at(lost)
-            none = np.where(there.throttle == Throttle.CEILING, np.inf, 0.0)
-            alone = np.repeat(none[None, :], len(LIMIT_NAMES), axis=0)
-            alone[row] = there.bounds[row]
+            near = np.where(there.is_ceiling, np.nan, self._low_power(there.flat))
             trial = solve(
-                self.arrangement, self.sizing, there.flat, replace(there, bounds=alone).demand
+                self.arrangement, self.sizing, there.flat, there.with_one_limit(row).demand, near
             )
             shares = self._finish(there, trial).limit_shares
             low, high = shares >= 1.0 - _SLACK, shares <= 1.0 + _SLACK
-            holds = np.where(there.throttle == Throttle.CEILING, high.all(axis=0), low.all(axis=0))
+            holds = np.where(there.is_ceiling, high.all(axis=0), low.all(axis=0))
             found = np.flatnonzero(trial.is_converged & holds)
             solution = solution.replaced(lost[found], trial.at(found))
         return solution
+
+    def _low_power(self, flat: FlightCondition) -> Array:
+        """Unknowns of an engine throttled back step by step, as far as that goes."""
+        pressure_ratio = flat.static_pressure / self.sizing.reference_pressure
+        unknowns = np.full((len(self.sizing.unknowns), flat.mach.size), np.nan)
+        for share in (0.5, 0.2, 0.1, 0.05, 0.02):
+            thrust = share * self.sizing.reference_thrust * pressure_ratio
+            ceiling = _Asked.at_one_rating(
+                flat, Throttle.CEILING, np.full(len(LIMIT_NAMES), np.inf)
+            )
+            demand = replace(ceiling, thrust=thrust).demand
+            step = solve(self.arrangement, self.sizing, flat, demand, unknowns)
+            unknowns = np.where(step.is_converged, step.unknowns, unknowns)
+        return unknowns
 
     def at_thrust(
         self,
@@ -145,9 +159,8 @@ class CycleEngine:
         flat = _flat(flight)
         start = _windmilling_start(arrangement, self.sizing, flat.mach)
         solution = solve(unlit.arrangement, self.sizing, flat, None, start)
-        count = flat.mach.size
-        none = np.full((len(LIMIT_NAMES), count), np.inf)
-        asked = _Asked(flat, np.full(count, np.nan), np.full(count, Throttle.CEILING), none)
+        none = np.full(len(LIMIT_NAMES), np.inf)
+        asked = _Asked.at_one_rating(flat, Throttle.CEILING, none)
         state = unlit._finish(asked, solution, is_lit=False)
         return state.to_engine_state(unlit, flight, np.full(flat.mach.size, Outcome.MET))
 
@@ -167,8 +180,7 @@ class CycleEngine:
         )
         with np.errstate(all="ignore"):
             shares = path.limits / asked.bounds
-        is_ceiling = asked.throttle == Throttle.CEILING
-        binding = np.where(is_ceiling, np.argmax(shares, axis=0), np.argmin(shares, axis=0))
+        binding = np.where(asked.is_ceiling, np.argmax(shares, axis=0), np.argmin(shares, axis=0))
         is_bounded = np.any(np.isfinite(asked.bounds) & (asked.bounds > 0.0), axis=0)
         binding = np.where(is_bounded, binding, -1)
         physical = _is_physical(self.arrangement, path, is_lit=is_lit)
@@ -204,15 +216,27 @@ class _Asked:
             self.flat.at(index), self.thrust[index], self.throttle[index], self.bounds[:, index]
         )
 
+    @property
+    def is_ceiling(self) -> NDArray[np.bool_]:
+        """Where the rating is a ceiling, not an idle."""
+        return np.asarray(self.throttle == Throttle.CEILING)
+
     def without_thrust(self) -> _Asked:
         """The ratings themselves."""
         return replace(self, thrust=np.full_like(self.thrust, np.nan))
 
-    def held_at(self, throttle: Throttle, bounds: Array) -> _Asked:
-        """One rating or idle at the same flight conditions."""
-        count = self.thrust.size
-        return _Asked(
-            self.flat,
+    def with_one_limit(self, row: int) -> _Asked:
+        """The same with all limits but one lifted."""
+        alone = np.where(self.is_ceiling, np.full_like(self.bounds, np.inf), 0.0)
+        alone[row] = self.bounds[row]
+        return replace(self, bounds=alone)
+
+    @classmethod
+    def at_one_rating(cls, flat: FlightCondition, throttle: Throttle, bounds: Array) -> _Asked:
+        """The same rating or idle everywhere."""
+        count = flat.mach.size
+        return cls(
+            flat,
             np.full(count, np.nan),
             np.full(count, throttle),
             np.repeat(bounds[:, None], count, axis=1),
@@ -278,8 +302,7 @@ def _is_answer(state: _Finished, asked: _Asked, floors: Array) -> NDArray[np.boo
     with np.errstate(invalid="ignore"):
         low = limits <= asked.bounds * (1.0 + _SLACK)
         high = limits >= floors * (1.0 - _SLACK)
-    is_ceiling = asked.throttle == Throttle.CEILING
-    within = np.where(is_ceiling, low.all(axis=0), low.any(axis=0)) & high.all(axis=0)
+    within = np.where(asked.is_ceiling, low.all(axis=0), low.any(axis=0)) & high.all(axis=0)
     return state.is_believed & (within | ~asked.is_thrust)
 
 

@@ -67,7 +67,7 @@ def engine_from_content(content: dict[str, Any], where: str) -> Engine:
         return ConstantConsumptionEngine(
             name=written.name,
             specific_fuel_consumption=written.specific_fuel_consumption,
-            static_thrust={rating: written.static_thrust for rating in RATINGS},
+            static_thrust=dict.fromkeys(RATINGS, written.static_thrust),
             density_exponent=written.density_exponent,
             assumed=assumed,
         )
@@ -139,7 +139,8 @@ def _core(
     )
     if total >= 0.5:
         raise InputRefused(
-            f"cooling and customer bleed take {total:.0%} of the core's air; at most half is allowed",
+            f"cooling and customer bleed take {total:.0%} of the core's air; less than half is "
+            "allowed",
             key="cooling",
         )
     return Core(

@@ -85,7 +85,7 @@ STANDARD_GRAVITY = 9.80665
 
 @lru_cache(maxsize=1)
 def _registry() -> pint.UnitRegistry[Any]:
-    import pint
+    import pint  # noqa: PLC0415  a third of the start of the program, where no unit is read
 
     registry: pint.UnitRegistry[Any] = pint.UnitRegistry(None)
     registry.load_definitions(_DEFINITIONS.strip().splitlines())
@@ -95,7 +95,7 @@ def _registry() -> pint.UnitRegistry[Any]:
 @lru_cache(maxsize=256)
 def _unit_factor(unit: str, kind: str) -> float:
     """Factor from ``unit`` to the coherent SI unit of ``kind``; ValueError if it has none."""
-    import pint
+    import pint  # noqa: PLC0415  as above
 
     target, example = KINDS[kind]
     try:

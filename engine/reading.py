@@ -75,10 +75,9 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
             text += f" {part + 1}" + (f' "{name}"' if name else "") + ":"
             at = entry if entry is not None else {}
         else:
-            if isinstance(at, dict) and part not in at and text.endswith(":"):
-                # The discriminator of a union, not a key that anybody wrote.
-                if part in at.values():
-                    continue
+            is_absent = isinstance(at, dict) and part not in at and text.endswith(":")
+            if is_absent and part in at.values():
+                continue  # the discriminator of a union, not a key that anybody wrote
             text += ("" if not text else " " if text.endswith(":") else ".") + part
             at = at.get(part, {}) if isinstance(at, dict) else {}
     return text.removesuffix(":")

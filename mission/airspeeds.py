@@ -33,12 +33,14 @@ def mach_from_impact_pressure_ratio(ratio: ArrayLike) -> Array:
 def mach_from_calibrated_airspeed(airspeed: ArrayLike, static_pressure: ArrayLike) -> Array:
     """Mach number at a calibrated airspeed [m/s] and static pressure [Pa]."""
     impact = impact_pressure_ratio(np.asarray(airspeed) / _SEA_LEVEL_SPEED_OF_SOUND)
-    return mach_from_impact_pressure_ratio(impact * _SEA_LEVEL_PRESSURE / static_pressure)
+    pressure_ratio = _SEA_LEVEL_PRESSURE / np.asarray(static_pressure, dtype=float)
+    return mach_from_impact_pressure_ratio(impact * pressure_ratio)
 
 
 def calibrated_airspeed(mach: ArrayLike, static_pressure: ArrayLike) -> Array:
     """Calibrated airspeed [m/s] at a Mach number and static pressure [Pa]."""
-    impact = impact_pressure_ratio(mach) * np.asarray(static_pressure) / _SEA_LEVEL_PRESSURE
+    pressure = np.asarray(static_pressure, dtype=float)
+    impact = impact_pressure_ratio(mach) * pressure / _SEA_LEVEL_PRESSURE
     return _SEA_LEVEL_SPEED_OF_SOUND * mach_from_impact_pressure_ratio(impact)
 
 
@@ -60,14 +62,13 @@ def pressure_altitude_from_pressure(static_pressure: ArrayLike) -> Array:
     ISO 2533:1975, with the base pressures that ``ambiance`` uses in :mod:`engine.atmosphere`.
     """
     pressure = np.asarray(static_pressure, dtype=float)
-    base = CONST.LAYER_DICTS
-    gravity = STANDARD_GRAVITY / CONST.R
-    troposphere, stratosphere = base[1], base[2]
-    lapse = troposphere["beta"]
-    below = (288.15 / lapse) * ((pressure / _SEA_LEVEL_PRESSURE) ** (-CONST.R * lapse / STANDARD_GRAVITY) - 1.0)  # fmt: skip
-    above = stratosphere["H_base"] - stratosphere["T"] / gravity * np.log(
-        pressure / stratosphere["p"]
-    )
+    troposphere: dict[str, float] = CONST.LAYER_DICTS[1]
+    stratosphere: dict[str, float] = CONST.LAYER_DICTS[2]
+    exponent: float = -CONST.R * troposphere["beta"] / STANDARD_GRAVITY
+    warming = (pressure / _SEA_LEVEL_PRESSURE) ** exponent - 1.0
+    below = 288.15 / troposphere["beta"] * warming
+    scale_height: float = CONST.R * stratosphere["T"] / STANDARD_GRAVITY
+    above = stratosphere["H_base"] - scale_height * np.log(pressure / stratosphere["p"])
     return np.where(pressure > stratosphere["p"], below, above)
 
 
@@ -76,8 +77,8 @@ def calibrated_mach_slope(flight: FlightCondition) -> Array:
     mach = flight.mach
     standard_temperature = flight.static_temperature - flight.temperature_deviation
     pressure_slope = STANDARD_GRAVITY / (CONST.R * standard_temperature)
-    ratio = impact_pressure_ratio(mach)
-    return ratio * pressure_slope / (1.4 * mach * (1.0 + 0.2 * mach**2) ** 2.5)
+    slope: Array = impact_pressure_ratio(mach) * pressure_slope
+    return slope / (1.4 * mach * (1.0 + 0.2 * mach**2) ** 2.5)
 
 
 def energy_height(height: ArrayLike, true_airspeed: ArrayLike) -> Array:

@@ -14,7 +14,7 @@ from mission.fuel_plan import Sums, add_up, closure
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
 from mission.march.joints import cut_at_joints
-from mission.march.sweep import SETTLED, Marched, Parts, march
+from mission.march.sweep import Marched, Parts, march
 from mission.march.world import World
 from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
@@ -47,7 +47,7 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
     written = mission.written
     world = World(aircraft, engine, written.day, -written.headwind)
     solved = _solve(mission, world, refinement)
-    if not _is_closed(solved.fine):
+    if not solved.fine.is_settled:
         most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
         load = max(min(aircraft.usable_fuel, most - aircraft.unusable_fuel), 1.0)
         written = written.model_copy(
@@ -55,10 +55,6 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
         )
         solved = _solve(mission.model_copy(update={"written": written}), world, refinement)
     return _flight(mission, written, world, solved)
-
-
-def _is_closed(marched: Marched) -> bool:
-    return bool(np.all(np.isfinite(marched.stop_mass)) and marched.change < 1e4 * SETTLED)
 
 
 def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
@@ -77,14 +73,12 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, guess = found, coarse.stop_mass
-        if moved < _SAME_ALTITUDE or not _is_closed(coarse):
+        if moved < _SAME_ALTITUDE or not coarse.is_settled:
             break
     assert coarse is not None
-    fine = (
-        march(world, plan.parts, many, coarse.stop_mass, close, coarse)
-        if _is_closed(coarse)
-        else coarse
-    )
+    fine = coarse
+    if coarse.is_settled:
+        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
     return _Solved(plan, coarse, fine)
 
 
@@ -112,8 +106,8 @@ def _cruise_climb_ends(marched: Marched) -> dict[int, float]:
 
 def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solved) -> Flight:
     plan, fine = solved.plan, solved.fine
-    sums = add_up(plan, written, fine.fuel, fine.time)
-    coarse_sums = add_up(plan, written, solved.coarse.fuel, solved.coarse.time)
+    sums = add_up(plan, written, fine.integrals)
+    coarse_sums = add_up(plan, written, solved.coarse.integrals)
     logs = segment_logs(world, plan, fine, written)
     error = abs(sums.mission_fuel - coarse_sums.mission_fuel)
     total = totals(world, plan, fine, written, sums, error)
@@ -176,14 +170,15 @@ def _reserves(
             parts,
             len(coarse.tracks[0].mass),
             lighter,
-            lambda stop, fuel, time: lighter,
+            lambda stop, integrals: lighter,
             coarse,
         )
+        trip_plan = replace(plan, parts=parts)
         trip = [
-            add_up(replace(plan, parts=parts), written, flown.fuel, flown.time, member).trip_fuel
+            add_up(trip_plan, written, flown.integrals, member).trip_fuel
             for member in range(len(items))
         ]
-        full = add_up(plan, written, coarse.fuel, coarse.time).trip_fuel
+        full = add_up(plan, written, coarse.integrals).trip_fuel
         costs = full - np.array(trip)
     return tuple(
         ReserveItem(name, fuel, float(cost), note)

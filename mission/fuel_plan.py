@@ -7,14 +7,13 @@ flown, in that order, from the mass at the end of the mission.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from mission.aircraft import Aircraft
-from mission.march.sweep import Closure
+from mission.march.sweep import Closure, Integrals
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
 
@@ -46,17 +45,11 @@ def trip_rows(plan: FlightPlan) -> range:
     return range(first, (flown or rows)[-1] + 1)
 
 
-def add_up(
-    plan: FlightPlan,
-    written: MissionFile,
-    fuel: Sequence[Array],
-    time: Sequence[Array],
-    member: int = 0,
-) -> Sums:
-    """Sums from the cumulative fuel and time of every span (of one member)."""
+def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member: int = 0) -> Sums:
+    """Sums of one member from the integrals along every span."""
     spans = [*plan.parts.mission, *plan.parts.reserve]
-    burnt = np.array([f[-1, member] for f in fuel])
-    taken = np.array([t[-1, member] for t in time])
+    burnt = np.array([f[-1, member] for f in integrals.fuel])
+    taken = np.array([t[-1, member] for t in integrals.time])
     rows = np.array([span.segment for span in spans])
     is_mission = np.arange(len(spans)) < len(plan.parts.mission)
     trip = np.isin(rows, list(trip_rows(plan))) & is_mission
@@ -92,13 +85,12 @@ def closure(plan: FlightPlan, written: MissionFile, aircraft: Aircraft) -> Closu
     """The mass at the end of the mission that the fuel asked for leaves."""
     empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
 
-    def as_needed(stop: Array, fuel: Sequence[Array], time: Sequence[Array]) -> Array:
-        return np.array([empty + add_up(plan, written, fuel, time).reserves])
+    def as_needed(stop: Array, integrals: Integrals) -> Array:
+        return np.array([empty + add_up(plan, written, integrals).reserves])
 
-    def given(stop: Array, fuel: Sequence[Array], time: Sequence[Array]) -> Array:
+    def given(stop: Array, integrals: Integrals) -> Array:
         assert written.fuel.load is not None
-        return np.array(
-            [empty + written.fuel.load - add_up(plan, written, fuel, time).mission_fuel]
-        )
+        burnt = add_up(plan, written, integrals).mission_fuel
+        return np.array([empty + written.fuel.load - burnt])
 
     return as_needed if written.fuel.as_needed else given

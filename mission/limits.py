@@ -11,8 +11,9 @@ from engine.atmosphere import flight_condition
 from engine.interface import Outcome
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed
-from mission.march.sweep import Marched, Track
+from mission.march.sweep import Marched
 from mission.march.throttled import SLOWEST_ACCELERATION, SLOWEST_CLIMB
+from mission.march.tracks import Track
 from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
@@ -20,6 +21,15 @@ from mission.results import Failure, Margin, SegmentLog, Totals
 
 Array = NDArray[np.float64]
 _SLACK = 1e-6
+# Where a limit is passed, its name, value, bound, unit, and what to try.
+_Check = tuple[NDArray[np.bool_], str, Array, float | Array, str, str]
+# Name of a march's rate, unit, least, and what to try, by kind of segment.
+_RATES = {
+    "climb": ("rate of climb", "m/s", SLOWEST_CLIMB, "end it lower, change its speeds, carry less"),
+    "descent": ("rate of descent", "m/s", SLOWEST_CLIMB, "change its speeds"),
+    "acceleration": ("acceleration", "m/s2", SLOWEST_ACCELERATION,
+                     "lower the speed to reach, or carry less"),
+}  # fmt: skip
 
 
 def lift_limit(aircraft: Aircraft, kind: str) -> float:
@@ -65,32 +75,33 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     aircraft, steps = world.aircraft, log.steps
     outcome, rate = _along(tracks)
     lost = (outcome == Outcome.NOT_CONVERGED) | (outcome == Outcome.UNPHYSICAL)
-    yield from _first(log, lost, "engine matching at this altitude, speed and thrust: answers",
-                      0.0 * steps.thrust, 1.0, "", "look at it with `longlegs stations`")  # fmt: skip
-    short = outcome == Outcome.BEYOND_RATING
-    yield from _first(log, short, f"thrust at {log.rating} rating, all engines, against drag",
-                      steps.thrust, steps.drag, "N",
-                      "fly lower or slower, carry less, or take a larger engine")  # fmt: skip
-    if log.kind in ("climb", "descent"):
-        yield from _first(log, rate < SLOWEST_CLIMB, f"rate of {log.kind}", rate, SLOWEST_CLIMB,
-                          "m/s", "end it lower, change its speeds, or carry less"
-                          if log.kind == "climb" else "change its speeds")  # fmt: skip
-    else:
-        yield from _first(log, rate < SLOWEST_ACCELERATION, "acceleration", rate,
-                          SLOWEST_ACCELERATION, "m/s2",
-                          "lower the speed to reach, or carry less")  # fmt: skip
-    coefficient, most = _lift_coefficients(aircraft, steps), lift_limit(aircraft, log.kind)
-    yield from _first(log, coefficient > most * (1.0 + _SLACK), "lift coefficient", coefficient,
-                      most, "", "fly faster or lower, or carry less")  # fmt: skip
+    what, unit, least, advice = _RATES.get(log.kind, _RATES["acceleration"])
+    coefficient, most_lift = _lift_coefficients(aircraft, steps), lift_limit(aircraft, log.kind)
     airborne = steps.lift > 0.0
-    fastest = aircraft.maximum_operating_mach
-    yield from _first(log, airborne & (steps.mach > fastest * (1.0 + _SLACK)), "Mach number",
-                      steps.mach, fastest, "", "lower the segment's mach")  # fmt: skip
+    mach = np.where(airborne, steps.mach, 0.0)
     pressure = flight_condition(steps.pressure_altitude).static_pressure
-    airspeed = calibrated_airspeed(steps.mach, pressure)
-    limit = aircraft.maximum_operating_calibrated_airspeed
-    yield from _first(log, airborne & (airspeed > limit * (1.0 + _SLACK)), "calibrated airspeed",
-                      airspeed, limit, "m/s", "lower calibrated_airspeed or mach")  # fmt: skip
+    airspeed = np.where(airborne, calibrated_airspeed(steps.mach, pressure), 0.0)
+    most_mach = aircraft.maximum_operating_mach
+    most_airspeed = aircraft.maximum_operating_calibrated_airspeed
+    checks: list[_Check] = [
+        (lost, "answers of the engine at this altitude, speed and thrust", 0.0 * mach, 1.0, "",
+         "look at the engine there with `longlegs stations`"),
+        (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",
+         steps.thrust, steps.drag, "N",
+         "fly lower or slower, carry less, or take a larger engine"),
+        (rate < least, what, rate, least, unit, advice),
+        (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
+         "fly faster or lower, or carry less"),
+        (mach > most_mach * (1.0 + _SLACK), "Mach number", mach, most_mach, "",
+         "lower the segment's mach"),
+        (airspeed > most_airspeed * (1.0 + _SLACK), "calibrated airspeed", airspeed,
+         most_airspeed, "m/s", "lower calibrated_airspeed or mach"),
+    ]  # fmt: skip
+    for is_passed, name, value, bound, in_unit, hint in checks:
+        if np.any(is_passed):
+            step = int(np.argmax(is_passed))
+            at = float(np.broadcast_to(bound, value.shape)[step])
+            yield Failure(log.name, step, name, float(value[step]), at, in_unit, hint)
 
 
 def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array]:
@@ -101,24 +112,9 @@ def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array]:
             outcomes.append(np.full(2, Outcome.MET))
             rates.append(np.full(2, np.inf))
         else:
-            outcomes.append(track.nodes.outcome[:, 0])
+            outcomes.append(track.nodes.propulsion.outcome[:, 0])
             rates.append(track.nodes.rate[:, 0])
     return np.concatenate(outcomes), np.concatenate(rates)
-
-
-def _first(
-    log: SegmentLog,
-    is_passed: NDArray[np.bool_],
-    what: str,
-    value: Array,
-    bound: float | Array,
-    unit: str,
-    advice: str,
-) -> Iterator[Failure]:
-    if np.any(is_passed):
-        step = int(np.argmax(is_passed))
-        at = float(np.broadcast_to(bound, value.shape)[step])
-        yield Failure(log.name, step, what, float(value[step]), at, unit, advice)
 
 
 def _passed_masses(

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 from engine.quantities import STANDARD_GRAVITY
 from mission.fuel_plan import Sums, trip_rows
 from mission.march.asking import Request, ask
-from mission.march.sweep import Marched, Track
+from mission.march.sweep import Marched
+from mission.march.tracks import Track
 from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
@@ -33,7 +34,7 @@ def segment_logs(
         began = clock
         altitude = logs[-1].steps.pressure_altitude[-1] if logs else 0.0
         for index in chosen:
-            track, time = marched.tracks[index], marched.time[index][:, 0]
+            track, time = marched.tracks[index], marched.integrals.time[index][:, 0]
             pieces.append(_steps(track, time + clock, rating_thrust.get(index), altitude))
             clock += float(time[-1])
         steps = _joined(pieces)
@@ -43,10 +44,10 @@ def segment_logs(
                 kind=row.kind,
                 purpose=row.purpose,
                 rating=marched.tracks[chosen[-1]].span.rating,
-                fuel=_sum(marched.fuel, chosen),
+                fuel=_sum(marched.integrals.fuel, chosen),
                 time=clock - began,
-                ground_distance=_sum(marched.ground, chosen),
-                air_distance=_sum(marched.air, chosen),
+                ground_distance=_sum(marched.integrals.ground, chosen),
+                air_distance=_sum(marched.integrals.air, chosen),
                 mass_start=float(steps.mass[0]),
                 mass_end=float(steps.mass[-1]),
                 mass_released=0.0,
@@ -69,9 +70,10 @@ def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:
         if track.is_level and track.nodes is not None:
             flight = track.nodes.flight
             requests[index] = Request(
-                flight.with_mach(np.broadcast_to(flight.mach, track.mass.shape)), track.span.rating
+                flight.with_mach(np.broadcast_to(flight.mach, track.mass.shape)),
+                track.span.rating,
             )
-    answers = ask(world.engine, requests, {})
+    answers = ask(world.engine, requests)
     count = world.aircraft.engine_count
     return {index: count * answer.net_thrust[:, 0] for index, answer in answers.items()}
 
@@ -79,29 +81,45 @@ def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:
 def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: float) -> Steps:
     nodes, mass = track.nodes, track.mass[:, 0]
     if nodes is None:
-        none = np.zeros_like(mass)
-        ends = [0, -1]
-        at = track.span.start_altitude or altitude
-        values = [elapsed, none + at, none, none, mass, none, mass * STANDARD_GRAVITY]
-        values += [none] * 5
-        return Steps(*(value[ends] for value in values))
-    flight = nodes.flight
-    column = [
-        np.broadcast_to(value, track.mass.shape)[:, 0]
-        for value in (flight.pressure_altitude, flight.mach, flight.true_airspeed)
-    ]
-    thrust = nodes.thrust[:, 0]
+        return _booked_steps(track, elapsed, altitude)
+    flight, propulsion = nodes.flight, nodes.propulsion
+
+    def column(value: Array) -> Array:
+        return np.broadcast_to(value, track.mass.shape)[:, 0]
+
+    thrust = column(propulsion.thrust)
     return Steps(
-        elapsed,
-        *column,
-        mass,
-        nodes.lift[:, 0],
-        mass * STANDARD_GRAVITY,
-        nodes.drag[:, 0],
-        thrust,
-        nodes.fuel_flow[:, 0],
-        nodes.path_angle[:, 0],
-        thrust if rating_thrust is None else rating_thrust,
+        elapsed_time=elapsed,
+        pressure_altitude=column(flight.pressure_altitude),
+        mach=column(flight.mach),
+        true_airspeed=column(flight.true_airspeed),
+        mass=mass,
+        lift=column(nodes.lift),
+        weight=mass * STANDARD_GRAVITY,
+        drag=column(nodes.drag),
+        thrust=thrust,
+        fuel_flow=column(propulsion.fuel_flow),
+        flight_path_angle=column(nodes.path_angle),
+        rating_thrust=thrust if rating_thrust is None else rating_thrust,
+    )
+
+
+def _booked_steps(track: Track, elapsed: Array, altitude: float) -> Steps:
+    """Both ends of an allowance: nothing is flown, so there are no forces and no speed."""
+    mass, none = track.mass[[0, -1], 0], np.zeros(2)
+    return Steps(
+        elapsed_time=elapsed[[0, -1]],
+        pressure_altitude=none + (track.span.start_altitude or altitude),
+        mach=none,
+        true_airspeed=none,
+        mass=mass,
+        lift=none,
+        weight=mass * STANDARD_GRAVITY,
+        drag=none,
+        thrust=none,
+        fuel_flow=none,
+        flight_path_angle=none,
+        rating_thrust=none,
     )
 
 
@@ -134,10 +152,10 @@ def totals(
         loaded_fuel=ramp - empty,
         fuel_left=left,
         fuel_margin=left - sums.reserves,
-        block_time=_sum(marched.time, mission),
-        trip_time=_sum(marched.time, trip),
-        ground_distance=_sum(marched.ground, mission),
-        air_distance=_sum(marched.air, mission),
+        block_time=_sum(marched.integrals.time, mission),
+        trip_time=_sum(marched.integrals.time, trip),
+        ground_distance=_sum(marched.integrals.ground, mission),
+        air_distance=_sum(marched.integrals.air, mission),
         ramp_mass=ramp,
         takeoff_mass=float(masses[trip[0]][0]),
         landing_mass=float(masses[trip[-1]][-1]),

@@ -65,7 +65,7 @@ class MissionFile(Table):
     payload: Annotated[Mass, Field(ge=0.0)]
     distance: Annotated[Length, Field(gt=0.0)] | None = None
     day: Day = 0.0
-    headwind: Speed = 0.0
+    headwind: Annotated[Speed, Field(ge=-100.0, le=100.0)] = 0.0
     departure: PlaceTable = PlaceTable()
     destination: PlaceTable = PlaceTable()
     fuel: FuelTable

@@ -6,8 +6,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
+from engine.atmosphere import flight_condition
 from engine.errors import InputRefused
-from engine.quantities import FOOT
 from mission.aircraft import Aircraft
 from mission.airspeeds import mach_from_calibrated_airspeed
 from mission.march.span import Span, SpeedRule
@@ -82,8 +82,6 @@ def _same_speed(before: SpeedRule, after: SpeedRule, altitude: float) -> bool:
 
 
 def _mach(rule: SpeedRule, altitude: float) -> float:
-    from engine.atmosphere import flight_condition
-
     assert rule.value is not None
     if rule.kind == "mach":
         return rule.value
@@ -191,19 +189,24 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
 
 def _alternate_segments(alternate: AlternateTable, elevation: float) -> list[AnySegment]:
     """Climb, cruise and descent to the alternate."""
-    speeds = {
-        "calibrated_airspeed": alternate.calibrated_airspeed,
-        "mach": alternate.mach,
-        "limited_below_10000_ft": alternate.limited_below_10000_ft,
-    }
     return [
         Climb.model_construct(
-            kind="climb", name="alternate climb", to=alternate.pressure_altitude, **speeds
+            kind="climb",
+            name="alternate climb",
+            to=alternate.pressure_altitude,
+            calibrated_airspeed=alternate.calibrated_airspeed,
+            mach=alternate.mach,
+            limited_below_10000_ft=alternate.limited_below_10000_ft,
         ),
         Cruise.model_construct(
             kind="cruise", name="alternate cruise", distance="rest", mach=alternate.mach
         ),
         Descent.model_construct(
-            kind="descent", name="alternate descent", to=elevation + HOLD_HEIGHT, **speeds
+            kind="descent",
+            name="alternate descent",
+            to=elevation + HOLD_HEIGHT,
+            calibrated_airspeed=alternate.calibrated_airspeed,
+            mach=alternate.mach,
+            limited_below_10000_ft=alternate.limited_below_10000_ft,
         ),
     ]

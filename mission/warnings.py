@@ -20,9 +20,9 @@ def warnings_of(world: World, plan: FlightPlan, marched: Marched) -> tuple[str, 
         nodes, name = track.nodes, plan.rows[track.span.segment].name
         if nodes is None:
             continue
-        idle = nodes.outcome[:, 0] == Outcome.AT_IDLE
+        idle = nodes.propulsion.outcome[:, 0] == Outcome.AT_IDLE
         if track.is_level and np.any(idle):
-            excess = float(np.max(nodes.thrust[:, 0] - nodes.drag[:, 0]))
+            excess = float(np.max(nodes.propulsion.thrust[:, 0] - nodes.drag[:, 0]))
             found.append(
                 f"{name}: idle gives up to {excess / 1e3:.2f} kN more thrust than drag; fuel is "
                 "counted at idle"
@@ -32,8 +32,8 @@ def warnings_of(world: World, plan: FlightPlan, marched: Marched) -> tuple[str, 
             rise = float(altitude[-1] - altitude[0])
             if rise > _NEGLIGIBLE_RISE:
                 work = float(np.mean(nodes.mass[:, 0])) * STANDARD_GRAVITY * rise
-                thrust_work = nodes.fuel_flow[:, 0] / (
-                    nodes.thrust[:, 0] * nodes.flight.true_airspeed[:, 0]
+                thrust_work = nodes.propulsion.fuel_flow[:, 0] / (
+                    nodes.propulsion.thrust[:, 0] * nodes.flight.true_airspeed[:, 0]
                 )
                 found.append(
                     f"{name}: flown as level while it rises {rise / FOOT:,.0f} ft; the lift to "

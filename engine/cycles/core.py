@@ -83,6 +83,7 @@ def run_core(
     entry: Stream,
     pressure_ratio: Array,
     turbine_entry_temperature: Array | None,
+    *,
     design_combustor_flow: float | None = None,
 ) -> CoreFlow:
     """The gas generator between its entry and the turbine exit; unlit where no temperature.

@@ -102,7 +102,9 @@ class Turbofan:
         core_entry = self._boost(hub, fan_rise, sizing)
         hot = temperature_ratio * face.total_temperature if is_lit else None
         design = {} if is_lit or sizing is None else sizing.duct_flows
-        flow = run_core(gas, core, core_entry, core_ratio, hot, design.get("combustor"))
+        flow = run_core(
+            gas, core, core_entry, core_ratio, hot, design_combustor_flow=design.get("combustor")
+        )
 
         fan_power = entry.mass_flow * fan_rise
         booster_power = core_flow * (core_entry.enthalpy - hub.enthalpy)

@@ -56,7 +56,9 @@ class Turbojet:
         entry = face.with_flow(airflow * corrected_flow_factor(face))
         hot = temperature_ratio * face.total_temperature if is_lit else None
         design = {} if is_lit or sizing is None else sizing.duct_flows
-        flow = run_core(gas, core, entry, pressure_ratio, hot, design.get("combustor"))
+        flow = run_core(
+            gas, core, entry, pressure_ratio, hot, design_combustor_flow=design.get("combustor")
+        )
         last = flow.turbine_exit
         if core.downstream_cooling_fraction:
             last = mix_in(gas, last, flow.downstream_cooling)

@@ -164,8 +164,9 @@ class RealGas:
         section: Section = "hot",
     ) -> Array:
         air, burnt = self._sums(np.asarray(temperature_out, dtype=np.float64), (_ENTHALPY,))
-        needed: Array = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
-        return needed / (np.asarray(heat_release, dtype=np.float64) - burnt[0])
+        needed = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
+        ratio: Array = needed / (np.asarray(heat_release, dtype=np.float64) - burnt[0])
+        return ratio
 
     def _properties(
         self, temperature: ArrayLike, fuel_air_ratio: ArrayLike, which: tuple[int, ...]

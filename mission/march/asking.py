@@ -15,34 +15,37 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True)
 class Request:
-    """What a span asks of one engine: a rating, or a net thrust [N] below a rating's ceiling."""
+    """What a span asks of one engine: a rating, or a net thrust [N] below a rating's ceiling.
+
+    ``start`` holds the engine's unknowns of an answer near by, shape (n, ...), if there is one.
+    """
 
     flight: FlightCondition
     rating: str
     net_thrust: Array | None = None
+    start: Array | None = None
 
 
 @dataclass(frozen=True)
 class Answer:
-    """Net thrust [N], fuel flow [kg/s] and outcome of one engine, in the request's shape."""
+    """Net thrust [N], fuel flow [kg/s] and outcome of one engine, in the request's shape.
+
+    ``unknowns`` (n, ...) are the engine's own, where the next call may start.
+    """
 
     net_thrust: Array
     fuel_flow: Array
     outcome: NDArray[np.int64]
+    unknowns: Array
 
 
-def ask(
-    engine: Engine, requests: dict[int, Request], memory: dict[int, Array]
-) -> dict[int, Answer]:
-    """Answers by the keys of the requests.
-
-    ``memory`` keeps the engine's unknowns of each key's last answer as the next starting point.
-    """
+def ask(engine: Engine, requests: dict[int, Request]) -> dict[int, Answer]:
+    """Answers by the keys of the requests."""
     if not requests:
         return {}
-    keys, members = list(requests), list(requests.values())
+    members = list(requests.values())
     flight = join([request.flight for request in members])
-    sizes = [int(np.prod(request.flight.shape)) for request in members]
+    sizes = [request.flight.mach.size for request in members]
     thrust = np.concatenate(
         [
             np.full(size, np.nan) if request.net_thrust is None else np.ravel(request.net_thrust)
@@ -50,24 +53,20 @@ def ask(
         ]
     )
     ratings = np.repeat([request.rating for request in members], sizes)
-    start = _start(memory, keys, sizes)
-    state = engine.at(flight, rating=ratings, net_thrust=thrust, start=start)
-    ends = np.cumsum(sizes)[:-1]
-    memory.update(zip(keys, np.split(state.unknowns, ends, axis=1), strict=True))
-    return _split(state, keys, [request.flight.shape for request in members])
+    state = engine.at(flight, rating=ratings, net_thrust=thrust, start=_start(members))
+    return _split(state, list(requests), [request.flight.shape for request in members])
 
 
-def _start(memory: dict[int, Array], keys: list[int], sizes: list[int]) -> Array | None:
-    """Remembered unknowns of the keys side by side, NaN for a key without."""
-    if not memory:
+def _start(members: list[Request]) -> Array | None:
+    """Starting points side by side, NaN for a request without one."""
+    known = [len(request.start) for request in members if request.start is not None]
+    if not known:
         return None
-    count = len(next(iter(memory.values())))
-    parts = [
-        memory[key]
-        if key in memory and memory[key].shape[1] == size
-        else np.full((count, size), np.nan)
-        for key, size in zip(keys, sizes, strict=True)
-    ]
+    parts = []
+    for request in members:
+        shape = (known[0], *request.flight.shape)
+        start = np.nan if request.start is None else request.start
+        parts.append(np.broadcast_to(start, shape).reshape(known[0], -1))
     return np.concatenate(parts, axis=1)
 
 
@@ -89,9 +88,15 @@ def _split(state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]) -
         np.split(state.net_thrust, ends),
         np.split(state.fuel_flow, ends),
         np.split(state.outcome, ends),
+        np.split(state.unknowns, ends, axis=1),
         strict=True,
     )
     return {
-        key: Answer(thrust.reshape(shape), fuel.reshape(shape), outcome.reshape(shape))
-        for key, shape, thrust, fuel, outcome in parts
+        key: Answer(
+            thrust.reshape(shape),
+            fuel.reshape(shape),
+            outcome.reshape(shape),
+            unknowns.reshape(-1, *shape) if unknowns.size else np.empty((0, *shape)),
+        )
+        for key, shape, thrust, fuel, outcome, unknowns in parts
     }

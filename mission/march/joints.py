@@ -29,7 +29,7 @@ _APART = 1.0  # m: no piece is shorter
 
 @dataclass
 class _Bracket:
-    """A change of sign between two altitudes [m]: of two limits' shares, or of a nozzle's choking."""
+    """A change of sign between two altitudes [m], of two limits' shares or a nozzle's choking."""
 
     span: int
     low: float

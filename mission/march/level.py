@@ -15,7 +15,7 @@ from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
 from mission.forces import drag, stall_mach
 from mission.march.rules import cruise_climb_air, hold_bounds, mach_at
-from mission.march.span import Nodes, Span
+from mission.march.span import Nodes, Propulsion, Span
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -26,7 +26,7 @@ _LARGEST_MACH_STEP = 0.05
 def level_flight(
     span: Span, world: World, air: FlightCondition, mass: Array, entry_mach: Array
 ) -> FlightCondition:
-    """Flight condition at the nodes; ``entry_mach`` (members,) is what the aircraft came in with."""
+    """Flight condition at the nodes; ``entry_mach`` (members,) is of the aircraft coming in."""
     aircraft, rule = world.aircraft, span.end_speed
     if not span.holds_lift_coefficient:
         if rule.kind == "lift_coefficient" and rule.value is None:
@@ -46,7 +46,8 @@ def cruise_climb_coefficient(
     if span.end_speed.lift_limit != 1.0:
         return np.full((1, mass.shape[1]), span.end_speed.lift_limit)
     weight = mass[:1] * STANDARD_GRAVITY
-    return weight / (0.7 * air.static_pressure[:1] * mach**2 * world.aircraft.wing_area)
+    force: Array = 0.7 * air.static_pressure[:1] * mach**2 * world.aircraft.wing_area
+    return weight / force
 
 
 def least_fuel_stencil(flight: FlightCondition) -> FlightCondition:
@@ -64,7 +65,9 @@ def least_fuel_step(world: World, flight: FlightCondition, mass: Array, fuel_flo
     newton = -slope / np.where(convex, curvature, 1.0)
     step = np.where(convex, newton, -np.sign(slope) * _LARGEST_MACH_STEP)
     step = np.clip(step, -_LARGEST_MACH_STEP, _LARGEST_MACH_STEP)
-    return np.clip(flight.mach + step, *hold_bounds(world.aircraft, flight, mass))
+    slowest, fastest = hold_bounds(world.aircraft, flight, mass)
+    bounded: Array = np.minimum(np.maximum(flight.mach + step, slowest), fastest)
+    return bounded
 
 
 def level_drag(span: Span, world: World, flight: FlightCondition, mass: Array) -> Array:
@@ -78,9 +81,7 @@ def level_nodes(
     flight: FlightCondition,
     mass: Array,
     extent: Array,
-    thrust: Array,
-    fuel_flow: Array,
-    outcome: NDArray[np.int64],
+    propulsion: Propulsion,
 ) -> Nodes:
     """Nodes of a level march over a ground distance [m] or a time [s], shape (members,)."""
     if span.march == "distance":
@@ -91,11 +92,9 @@ def level_nodes(
         flight=flight,
         mass=mass,
         time_rate=time_rate,
-        fuel_flow=fuel_flow,
-        thrust=thrust,
+        propulsion=propulsion,
         drag=level_drag(span, world, flight, mass),
         lift=mass * STANDARD_GRAVITY,
         path_angle=np.zeros_like(mass),
         rate=np.full_like(mass, np.inf),
-        outcome=outcome,
     )

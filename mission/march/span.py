@@ -91,6 +91,11 @@ class Span:
             return not (self.start_speed.depends_on_mass or self.end_speed.depends_on_mass)
         return self.march == "stand"
 
+    @property
+    def takes_rest(self) -> bool:
+        """Whether it flies what is left of the distance."""
+        return self.march == "distance" and self.extent is None
+
     def cut(self, fractions: tuple[float, ...]) -> list[Span]:
         """The span of a march by altitude in pieces, at fractions of its way, ascending."""
         rise = self.end_altitude - self.start_altitude
@@ -98,6 +103,15 @@ class Span:
         return [
             replace(self, start_altitude=low, end_altitude=high) for low, high in pairwise(marks)
         ]
+
+
+@dataclass(frozen=True)
+class Propulsion:
+    """All engines together: thrust [N], fuel flow [kg/s], and the engine's outcome."""
+
+    thrust: Array
+    fuel_flow: Array
+    outcome: NDArray[np.int64]
 
 
 @dataclass(frozen=True)
@@ -109,21 +123,18 @@ class Nodes:
     flight : flight condition
     mass : [kg]
     time_rate : [s] per unit of the march's variable, scaled to [0, 1]
-    fuel_flow : [kg/s] of all engines
-    thrust, drag, lift : [N]
+    propulsion : thrust, fuel flow and outcome of all engines
+    drag, lift : [N]
     path_angle : geometric, relative to the air [rad]
     rate : rate of climb or descent [m/s], acceleration [m/s2], positive the way the march goes;
         infinite where the march has none
-    outcome : :class:`engine.interface.Outcome` of the engine
     """
 
     flight: FlightCondition
     mass: Array
     time_rate: Array
-    fuel_flow: Array
-    thrust: Array
+    propulsion: Propulsion
     drag: Array
     lift: Array
     path_angle: Array
     rate: Array
-    outcome: NDArray[np.int64]

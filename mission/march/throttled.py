@@ -17,7 +17,7 @@ from mission.airspeeds import calibrated_mach_slope
 from mission.forces import drag, path_angle_sine
 from mission.march.nodes import positions
 from mission.march.rules import mach_at
-from mission.march.span import Nodes, Span
+from mission.march.span import Nodes, Propulsion, Span
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -63,12 +63,12 @@ def climb_nodes(
     world: World,
     flight: FlightCondition,
     mass: Array,
-    thrust: Array,
-    fuel_flow: Array,
-    outcome: NDArray[np.int64],
+    propulsion: Propulsion,
 ) -> Nodes:
-    """Nodes of a march by altitude at thrust [N] and fuel flow [kg/s] of the aircraft."""
-    sine = path_angle_sine(world.aircraft, flight, mass, thrust, acceleration_factor(span, flight))
+    """Nodes of a march by altitude with the engines at a rating."""
+    sine = path_angle_sine(
+        world.aircraft, flight, mass, propulsion.thrust, acceleration_factor(span, flight)
+    )
     lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
     vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)
     way = np.sign(span.end_altitude - span.start_altitude)
@@ -78,13 +78,11 @@ def climb_nodes(
         flight=flight,
         mass=mass,
         time_rate=height / np.maximum(rate, SLOWEST_CLIMB),
-        fuel_flow=fuel_flow,
-        thrust=thrust,
+        propulsion=propulsion,
         drag=drag(world.aircraft, flight, lift),
         lift=lift,
         path_angle=np.arcsin(sine),
         rate=rate,
-        outcome=outcome,
     )
 
 
@@ -92,9 +90,7 @@ def acceleration_nodes(
     world: World,
     flight: FlightCondition,
     mass: Array,
-    thrust: Array,
-    fuel_flow: Array,
-    outcome: NDArray[np.int64],
+    propulsion: Propulsion,
     *,
     on_ground: bool,
 ) -> Nodes:
@@ -102,11 +98,11 @@ def acceleration_nodes(
     weight = mass * STANDARD_GRAVITY
     if on_ground:
         lift, resistance = np.zeros_like(mass), np.zeros_like(mass)
-        net = thrust - ROLLING_FRICTION * weight
+        net = propulsion.thrust - ROLLING_FRICTION * weight
     else:
         lift = weight
         resistance = drag(world.aircraft, flight, weight)
-        net = thrust - resistance
+        net = propulsion.thrust - resistance
     speed = flight.true_airspeed
     change = speed[-1] - speed[0]
     rate = net / mass * np.where(change < 0.0, -1.0, 1.0)
@@ -114,13 +110,11 @@ def acceleration_nodes(
         flight=flight,
         mass=mass,
         time_rate=np.abs(change) / np.maximum(rate, SLOWEST_ACCELERATION),
-        fuel_flow=fuel_flow,
-        thrust=thrust,
+        propulsion=propulsion,
         drag=resistance,
         lift=lift,
         path_angle=np.zeros_like(mass),
         rate=np.where(np.abs(change) < 1e-9, np.inf, rate),
-        outcome=outcome,
     )
 
 
@@ -128,9 +122,7 @@ def standing_nodes(
     span: Span,
     flight: FlightCondition,
     mass: Array,
-    thrust: Array,
-    fuel_flow: Array,
-    outcome: NDArray[np.int64],
+    propulsion: Propulsion,
 ) -> Nodes:
     """Nodes of a stand of given time with the engines at a rating."""
     none = np.zeros_like(mass)
@@ -138,11 +130,9 @@ def standing_nodes(
         flight=flight,
         mass=mass,
         time_rate=np.full_like(mass, span.extent),
-        fuel_flow=fuel_flow,
-        thrust=thrust,
+        propulsion=propulsion,
         drag=none,
         lift=none,
         path_angle=none,
         rate=np.full_like(mass, np.inf),
-        outcome=outcome,
     )
