@@ -23,6 +23,8 @@ from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
 COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
+_COARSE_SETTLED = 1e-9
+_COST_SETTLED = 1e-7
 _MOST_PLANS = 8
 _SAME_ALTITUDE = 1e-4  # m, between the end of a cruise-climb and what follows
 
@@ -69,7 +71,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         plan = lay_out(mission, aircraft, ends)
         plan = _with_joints(plan, world)
         close = closure(plan, written, aircraft)
-        coarse = march(world, plan.parts, few, guess, close)
+        coarse = march(world, plan.parts, few, guess, close, settled=_COARSE_SETTLED)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, guess = found, coarse.stop_mass
@@ -172,6 +174,7 @@ def _reserves(
             lighter,
             lambda stop, integrals: lighter,
             coarse,
+            _COST_SETTLED,
         )
         trip_plan = replace(plan, parts=parts)
         trip = [

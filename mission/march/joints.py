@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.interface import Engine, EngineState
+from engine.interface import EngineState
 from mission.march.asking import join
 from mission.march.nodes import positions
 from mission.march.span import Span
@@ -23,7 +23,7 @@ from mission.march.world import World
 Array = NDArray[np.float64]
 _SCAN = 9  # nodes a span is looked at
 _ROUNDS = 12
-_CLOSE = 1e-3  # m
+_CLOSE = 0.1  # m: a kink this far off costs the square of its share of a piece
 _APART = 1.0  # m: no piece is shorter
 
 
@@ -39,6 +39,9 @@ class _Bracket:
     limits: tuple[int, int] | None
     nozzle: int
     start: Array
+    joint: float = np.inf
+    moved: float = np.inf
+    last_side: int = 0
 
     def value(self, state: EngineState, index: int) -> float:
         """The quantity whose sign changes."""
@@ -62,7 +65,7 @@ def cut_at_joints(world: World, spans: Sequence[Span]) -> tuple[Span, ...]:
         for place, i in enumerate(scanned)
         for bracket in _brackets(state, i, spans[i], place * _SCAN)
     ]
-    _close_in(world, world.engine, spans, brackets)
+    _close_in(world, spans, brackets)
     return tuple(piece for i, span in enumerate(spans) for piece in _cut(span, i, brackets))
 
 
@@ -87,28 +90,26 @@ def _brackets(state: EngineState, index: int, span: Span, first: int) -> list[_B
     return found
 
 
-def _close_in(
-    world: World, engine: Engine, spans: Sequence[Span], brackets: list[_Bracket]
-) -> None:
+def _close_in(world: World, spans: Sequence[Span], brackets: list[_Bracket]) -> None:
     """Illinois' variant of the false position on all brackets at once."""
-    last_side = [0] * len(brackets)
+    live = brackets
     for _ in range(_ROUNDS):
-        live = [k for k, b in enumerate(brackets) if abs(b.high - b.low) > _CLOSE]
         if not live:
             break
-        guesses = [_false_position(brackets[k]) for k in live]
+        guesses = [_false_position(bracket) for bracket in live]
         flights = [
-            scheduled_flight(spans[brackets[k].span], world, np.array([guess]))
-            for k, guess in zip(live, guesses, strict=True)
+            scheduled_flight(spans[bracket.span], world, np.array([guess]))
+            for bracket, guess in zip(live, guesses, strict=True)
         ]
-        state = engine.at(
+        state = world.engine.at(
             join(flights),
-            rating=np.array([spans[brackets[k].span].rating for k in live]),
-            start=np.stack([brackets[k].start for k in live], axis=1),
+            rating=np.array([spans[bracket.span].rating for bracket in live]),
+            start=np.stack([bracket.start for bracket in live], axis=1),
         )
-        for place, (k, guess) in enumerate(zip(live, guesses, strict=True)):
-            value = brackets[k].value(state, place)
-            last_side[k] = _narrow(brackets[k], guess, value, last_side[k])
+        for place, (bracket, guess) in enumerate(zip(live, guesses, strict=True)):
+            bracket.start = state.unknowns[:, place]
+            _narrow(bracket, guess, bracket.value(state, place))
+        live = [bracket for bracket in live if abs(bracket.moved) > _CLOSE]
 
 
 def _false_position(bracket: _Bracket) -> float:
@@ -116,28 +117,24 @@ def _false_position(bracket: _Bracket) -> float:
     return bracket.low + share * (bracket.high - bracket.low)
 
 
-def _narrow(bracket: _Bracket, guess: float, value: float, last_side: int) -> int:
+def _narrow(bracket: _Bracket, guess: float, value: float) -> None:
     """Keep the half with the change of sign; halve the weight of an end kept twice."""
-    if abs(value) < 1e-12:
-        bracket.low = bracket.high = guess
-        return 0
-    if value * bracket.at_low > 0.0:
+    bracket.moved, bracket.joint = guess - bracket.joint, guess
+    side = 1 if value * bracket.at_low > 0.0 else -1
+    if side == 1:
         bracket.low, bracket.at_low = guess, value
-        if last_side == 1:
-            bracket.at_high *= 0.5
-        return 1
-    bracket.high, bracket.at_high = guess, value
-    if last_side == -1:
-        bracket.at_low *= 0.5
-    return -1
+    else:
+        bracket.high, bracket.at_high = guess, value
+    if side == bracket.last_side:
+        bracket.at_high *= 0.5 if side == 1 else 1.0
+        bracket.at_low *= 0.5 if side == -1 else 1.0
+    bracket.last_side = side
 
 
 def _cut(span: Span, index: int, brackets: list[_Bracket]) -> list[Span]:
     """One span in pieces at its closed brackets, none shorter than a metre."""
     rise = span.end_altitude - span.start_altitude
-    marks = sorted(
-        (0.5 * (b.low + b.high) - span.start_altitude) / rise for b in brackets if b.span == index
-    )
+    marks = sorted((b.joint - span.start_altitude) / rise for b in brackets if b.span == index)
     kept: list[float] = []
     for mark in marks:
         before = kept[-1] if kept else 0.0

@@ -21,7 +21,9 @@ from mission.march.world import World
 
 Array = NDArray[np.float64]
 MOST_SWEEPS = 60
-SETTLED = 1e-12
+SETTLED = 1e-11
+_SETTLED_MACH = 1e-6  # fuel flow is flat at its least: its error is the square of this
+_UNSETTLED = 1e-6
 _HEAVIEST = 1e8  # kg: a mass on its way to nowhere
 
 
@@ -74,7 +76,7 @@ class Marched:
     @property
     def is_settled(self) -> bool:
         """Whether the sweeps came to rest; if not, no mass closes the fuel."""
-        return bool(np.all(np.isfinite(self.stop_mass))) and self.change < 1e4 * SETTLED
+        return bool(np.all(np.isfinite(self.stop_mass))) and self.change < _UNSETTLED
 
 
 Closure = Callable[[Array, Integrals], Array]
@@ -87,12 +89,14 @@ def march(
     stop_mass: Array,
     close: Closure,
     start: Marched | None = None,
+    settled: float = SETTLED,
 ) -> Marched:
     """March all spans with ``count`` nodes each.
 
     ``stop_mass`` (members,) is a first guess of the mass at the end of the mission part;
     ``close(stop_mass, integrals)`` gives the next. ``start`` is an earlier solution of the same
-    spans, of any node count, to begin from.
+    spans, of any node count, to begin from. The sweeps end when no mass moves by more than
+    ``settled`` of itself.
     """
     tracks = _first_tracks(world, parts, count, stop_mass, start)
     totals = {False: parts.mission_distance, True: parts.reserve_distance}
@@ -106,7 +110,7 @@ def march(
         stop_mass = close(stop_mass, integrals)
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))
         is_lost = not np.all(np.isfinite(stop_mass)) or np.any(stop_mass > _HEAVIEST)
-        if is_lost or (change < SETTLED and all(t.mach_change < 1e-9 for t in tracks)):
+        if is_lost or (change < settled and all(t.mach_change < _SETTLED_MACH for t in tracks)):
             break
     return Marched(tracks, integrals, stop_mass, sweep, change)
 
