@@ -17,6 +17,7 @@ from engine.errors import OutOfRange
 Array = NDArray[np.float64]
 LOWEST_PRESSURE_ALTITUDE = -2000.0
 HIGHEST_PRESSURE_ALTITUDE = 30000.0
+LARGEST_TEMPERATURE_DEVIATION = 100.0
 SEA_LEVEL_PRESSURE = 101325.0
 SEA_LEVEL_TEMPERATURE = 288.15
 _LAPSE_RATES = np.array([0.0] + [layer["beta"] for layer in CONST.LAYER_DICTS.values()])
@@ -82,7 +83,7 @@ def flight_condition(
     ----------
     pressure_altitude : array_like [m], -2 000 to 30 000
     mach : array_like, not negative
-    temperature_deviation : array_like [K]
+    temperature_deviation : array_like [K], -100 to 100
 
     Raises
     ------
@@ -103,6 +104,8 @@ def flight_condition(
     _refuse_outside(mach_number, 0.0, 5.0, "Mach number", "")
     layers = Atmosphere(CONST.r * height / (CONST.r - height))
     deviation = np.asarray(temperature_deviation, dtype=np.float64)
+    most = LARGEST_TEMPERATURE_DEVIATION
+    _refuse_outside(deviation, -most, most, "temperature deviation", "K")
     temperature = np.reshape(layers.temperature, height.shape) + deviation
     pressure = np.reshape(layers.pressure, height.shape)
     return broadcast_condition(

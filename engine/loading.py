@@ -15,7 +15,7 @@ from engine.cycles.flowpath import LIMIT_NAMES
 from engine.cycles.sizing import size
 from engine.cycles.turbofan import LowSpool, Turbofan
 from engine.cycles.turbojet import Turbojet
-from engine.errors import CycleCannotRun, InputRefused
+from engine.errors import InputRefused, OutOfRange
 from engine.fuels import Fuel
 from engine.gas import Gas, RealGas, SectionalGas
 from engine.input_model import (
@@ -57,10 +57,7 @@ def engine_from_content(content: dict[str, Any], where: str) -> Engine:
     try:
         written = check({"engine": content}, EngineFile, where).engine
     except InputRefused as refusal:
-        key = refusal.key
-        for prefix in ("engine.turbojet.", "engine.turbofan.", "engine.constant consumption.",
-                       "engine."):  # fmt: skip
-            key = key.removeprefix(prefix)
+        key = refusal.key.removeprefix("engine").removeprefix(".")
         raise InputRefused(refusal.what, where=where, key=key) from None
     assumed = tuple(line for line in defaults_used(written) if "hydrogen_carbon" not in line)
     if isinstance(written, ConstantConsumptionFile):
@@ -71,13 +68,18 @@ def engine_from_content(content: dict[str, Any], where: str) -> Engine:
             density_exponent=written.density_exponent,
             assumed=assumed,
         )
-    arrangement = _turbojet(written) if isinstance(written, TurbojetFile) else _turbofan(written)
     point = written.design_point
-    flight = flight_condition(point.pressure_altitude, point.mach, point.day)
     try:
+        arrangement = (
+            _turbojet(written) if isinstance(written, TurbojetFile) else _turbofan(written)
+        )
+        flight = flight_condition(point.pressure_altitude, point.mach, point.day)
         sizing, _ = size(arrangement, flight, airflow=point.airflow, net_thrust=point.net_thrust)
-    except CycleCannotRun as refusal:
-        raise CycleCannotRun(refusal.what, where=where, key="design_point") from None
+    except OutOfRange as refusal:
+        raise InputRefused(str(refusal), where=where, key="design_point") from None
+    except InputRefused as refusal:
+        key = refusal.key or "design_point"
+        raise type(refusal)(refusal.what, where=where, key=key) from None
     ratings, idle = written.ratings, written.idle
     return CycleEngine(
         name=written.name,

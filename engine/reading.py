@@ -90,16 +90,22 @@ def _in_words(detail: Any, model: type[BaseModel]) -> str:
     if kind == "extra_forbidden":
         allowed = _keys_beside(model, detail["loc"])
         close = difflib.get_close_matches(str(detail["loc"][-1]), allowed, n=1)
-        hint = f"; did you mean {close[0]}?" if close else ""
-        return f"unknown key{hint} Allowed here: {', '.join(allowed)}".replace("key Al", "key. Al")
+        hint = f"; did you mean {close[0]}?" if close else "."
+        return f"unknown key{hint} Allowed here: {', '.join(allowed)}"
     if kind == "missing":
         return "is missing"
     if kind == "value_error":
         return str(context.get("error", detail["msg"]))
-    if kind in ("union_tag_invalid", "union_tag_not_found"):
-        return f"{context.get('tag', 'nothing')!s} is none of {context.get('expected_tags', '')}"
+    if kind == "union_tag_not_found":
+        return f"{context['discriminator']} is missing"
+    if kind == "union_tag_invalid":
+        return (
+            f"{context['discriminator']} = {context['tag']!r}; allowed: {context['expected_tags']}"
+        )
     if kind == "literal_error":
         return f"= {value!r}; allowed: {context['expected']}"
+    if kind in ("model_type", "dict_type"):
+        return f"= {value!r}; a table belongs here"
     message = detail["msg"].replace("Input should be", "it should be")
     return f"= {value!r}; {message}"
 

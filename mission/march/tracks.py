@@ -112,7 +112,7 @@ def request_of(world: World, tracks: list[Track], index: int) -> Request | None:
         return Request(track.flight, span.rating, start=track.unknowns)
     if span.march == "stand":
         assert track.air is not None
-        track.flight = track.air
+        track.flight = track.air.with_mach(track.mach[:, :1])
         return Request(track.flight, span.rating, start=track.unknowns)
     return _request_by_speed(world, tracks, index)
 

@@ -9,7 +9,7 @@ from pydantic import Field, model_validator
 from engine.errors import InputRefused
 from engine.quantities import Altitude, Mass, Time
 from engine.reading import Table
-from mission.march.span import Span, SpeedRule
+from mission.march.span import STANDSTILL, Span, SpeedRule
 from mission.segments.climb import RatingName
 from mission.segments.here import Here
 
@@ -17,7 +17,8 @@ from mission.segments.here import Here
 class Allowance(Table):
     """One of a fuel mass, a fraction of the mass at its start, or a time at a rating.
 
-    With ``to`` it also stands for the way to a pressure altitude.
+    A time is at the speed the aircraft has, or at ``mach``. With ``to`` the allowance also stands
+    for the way to a pressure altitude.
     """
 
     kind: Literal["allowance"]
@@ -26,6 +27,7 @@ class Allowance(Table):
     mass_fraction: Annotated[float, Field(ge=0.0, lt=0.9)] | None = None
     time: Annotated[Time, Field(gt=0.0)] | None = None
     rating: RatingName | Literal["flight_idle", "ground_idle"] | None = None
+    mach: Annotated[float, Field(ge=0.0, lt=5.0)] | None = None
     to: Altitude | None = None
 
     @model_validator(mode="after")
@@ -35,6 +37,8 @@ class Allowance(Table):
             raise ValueError("give one of fuel, mass_fraction, or time with rating")
         if (self.time is None) != (self.rating is None):
             raise ValueError("time and rating go together")
+        if self.mach is not None and self.time is None:
+            raise ValueError("mach goes with time and rating")
         return self
 
     def first_speed(self, here: Here) -> SpeedRule | None:
@@ -43,30 +47,15 @@ class Allowance(Table):
 
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """The span of the allowance."""
-        altitude = here.pressure_altitude
         if self.time is not None:
-            if here.speed is not None and not here.on_ground:
-                raise InputRefused(
-                    "an allowance of time stands for engines running on the ground; in the air "
-                    "use a loiter"
-                )
-            at = here.departure_elevation if altitude is None else altitude
-            assert self.rating is not None
-            span = Span(
-                segment=here.row,
-                march="stand",
-                rating=self.rating,
-                start_altitude=at,
-                end_altitude=at,
-                extent=self.time,
-                is_reserve=here.is_reserve,
-            )
+            span = self._running(here)
         else:
+            altitude = here.pressure_altitude or 0.0
             span = Span(
                 segment=here.row,
                 march="book",
-                start_altitude=altitude or 0.0,
-                end_altitude=altitude or 0.0,
+                start_altitude=altitude,
+                end_altitude=altitude,
                 booked_fuel=self.fuel or 0.0,
                 booked_fraction=self.mass_fraction or 0.0,
                 is_reserve=here.is_reserve,
@@ -74,3 +63,25 @@ class Allowance(Table):
         if self.to is None:
             return [span], here
         return [span], here.now(pressure_altitude=self.to, speed=None, on_ground=False)
+
+    def _running(self, here: Here) -> Span:
+        """Engines at a rating for the time, where the aircraft is; no force, no way."""
+        altitude = here.pressure_altitude
+        if altitude is None:
+            altitude = here.departure_elevation
+        speed = STANDSTILL if here.speed is None else here.speed
+        if self.mach is not None:
+            speed = SpeedRule("mach", self.mach)
+        if speed.depends_on_mass:
+            raise InputRefused("give mach: the segment before does not end at a given speed")
+        assert self.rating is not None
+        return Span(
+            segment=here.row,
+            march="stand",
+            rating=self.rating,
+            start_altitude=altitude,
+            end_altitude=altitude,
+            end_speed=speed,
+            extent=self.time,
+            is_reserve=here.is_reserve,
+        )
