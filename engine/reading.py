@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import difflib
 import tomllib
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any, TypeVar
 
@@ -66,7 +67,7 @@ def _most_telling(error: ValidationError) -> Any:
 def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
     """Dotted key; an entry of a list is counted from one and named where it has a name."""
     text, at = "", content
-    for part in place:
+    for step, part in enumerate(place, start=1):
         if not isinstance(at, list | dict):
             break
         if isinstance(part, int):
@@ -75,7 +76,7 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
             text += f" {part + 1}" + (f' "{name}"' if name else "") + ":"
             at = entry if entry is not None else {}
         else:
-            is_absent = isinstance(at, dict) and part not in at and text.endswith(":")
+            is_absent = isinstance(at, dict) and part not in at and step < len(place)
             if is_absent and part in at.values():
                 continue  # the discriminator of a union, not a key that anybody wrote
             text += ("" if not text else " " if text.endswith(":") else ".") + part
@@ -83,31 +84,32 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
     return text.removesuffix(":")
 
 
-def _in_words(detail: Any, model: type[BaseModel]) -> str:
-    """What pydantic found, said to the person who wrote the file."""
-    kind, value = detail["type"], detail.get("input")
-    context = detail.get("ctx", {})
-    if kind == "extra_forbidden":
-        allowed = _keys_beside(model, detail["loc"])
-        close = difflib.get_close_matches(str(detail["loc"][-1]), allowed, n=1)
-        hint = f"; did you mean {close[0]}?" if close else "."
-        return f"unknown key{hint} Allowed here: {', '.join(allowed)}"
-    if kind == "missing":
-        return "is missing"
-    if kind == "value_error":
-        return str(context.get("error", detail["msg"]))
-    if kind == "union_tag_not_found":
-        return f"{context['discriminator']} is missing"
-    if kind == "union_tag_invalid":
-        return (
-            f"{context['discriminator']} = {context['tag']!r}; allowed: {context['expected_tags']}"
-        )
-    if kind == "literal_error":
-        return f"= {value!r}; allowed: {context['expected']}"
-    if kind in ("model_type", "dict_type"):
-        return f"= {value!r}; a table belongs here"
-    message = detail["msg"].replace("Input should be", "it should be")
-    return f"= {value!r}; {message}"
+# What pydantic found, by its kind of error, said to the person who wrote the file.
+_WORDS: dict[str, Callable[[Any], str]] = {
+    "missing": lambda found: "is missing",
+    "value_error": lambda found: str(found["ctx"]["error"]),
+    "union_tag_not_found": lambda found: f"{found['ctx']['discriminator']} is missing",
+    "union_tag_invalid": lambda found: (
+        f"{found['ctx']['discriminator']} = {found['ctx']['tag']!r}; "
+        f"allowed: {found['ctx']['expected_tags']}"
+    ),
+    "literal_error": lambda found: f"= {found['input']!r}; allowed: {found['ctx']['expected']}",
+    "model_type": lambda found: f"= {found['input']!r}; a table belongs here",
+    "dict_type": lambda found: f"= {found['input']!r}; a table belongs here",
+}
+
+
+def _in_words(found: Any, model: type[BaseModel]) -> str:
+    """One entry of a ValidationError as a sentence."""
+    if found["type"] in _WORDS:
+        return _WORDS[found["type"]](found)
+    if found["type"] != "extra_forbidden":
+        message = found["msg"].replace("Input should be", "it should be")
+        return f"= {found['input']!r}; {message}"
+    allowed = _keys_beside(model, found["loc"])
+    close = difflib.get_close_matches(str(found["loc"][-1]), allowed, n=1)
+    hint = f"; did you mean {close[0]}?" if close else "."
+    return f"unknown key{hint} Allowed here: {', '.join(allowed)}"
 
 
 def _keys_beside(model: Any, place: tuple[int | str, ...]) -> list[str]:

@@ -6,8 +6,8 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from mission.aircraft import Aircraft, load_aircraft
-    from mission.compare import Comparison, compare
-    from mission.fly import fly
+    from mission.comparison import Comparison, compare
+    from mission.flight import fly
     from mission.mission_file import Mission, load_mission
     from mission.results import Flight
 
@@ -24,11 +24,11 @@ __all__ = [
 
 _ROOMS = {
     "Aircraft": "mission.aircraft",
-    "Comparison": "mission.compare",
+    "Comparison": "mission.comparison",
     "Flight": "mission.results",
     "Mission": "mission.mission_file",
-    "compare": "mission.compare",
-    "fly": "mission.fly",
+    "compare": "mission.comparison",
+    "fly": "mission.flight",
     "load_aircraft": "mission.aircraft",
     "load_mission": "mission.mission_file",
 }

@@ -13,7 +13,7 @@ from typing import Any
 from engine import load_engine
 from engine.interface import Engine
 from mission.aircraft import Aircraft, load_aircraft
-from mission.fly import fly
+from mission.flight import fly
 from mission.mission_file import Mission, load_mission
 from mission.results import Flight, SegmentLog
 

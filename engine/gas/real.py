@@ -33,6 +33,8 @@ from engine.gas.species import (
 )
 
 _HEAT_CAPACITY, _ENTHALPY, _ENTROPY = 0, 1, 2
+_BURNT = 3  # rows of the fuel's share stand after the air's
+_Rows = dict[tuple[int, ...], tuple[Array, Array]]
 _COLDEST_TRIAL, _HOTTEST_TRIAL = 50.0, 6000.0  # K: what an iterate may visit, never an answer
 _MOST_ITERATIONS = 40
 
@@ -59,6 +61,17 @@ def _mixture(moles: dict[str, float]) -> tuple[Array, Array]:
     return low, high
 
 
+def _picked(low: Array, high: Array) -> _Rows:
+    """Coefficients of every set of properties asked for together, both ranges.
+
+    Rows are air's heat capacity, enthalpy, entropy, then the fuel's share of each.
+    """
+    together: list[tuple[int, ...]] = [(_HEAT_CAPACITY,), (_ENTHALPY,), (_ENTROPY,)]
+    together += [(_HEAT_CAPACITY, _ENTHALPY), (_HEAT_CAPACITY, _ENTROPY)]
+    together += [(*rows, *(_BURNT + row for row in rows)) for rows in list(together)]
+    return {rows: (low[list(rows)], high[list(rows)]) for rows in together}
+
+
 @dataclass(frozen=True)
 class RealGas:
     """Air and lean products of one fuel; see the module for method, range and source."""
@@ -68,7 +81,7 @@ class RealGas:
     highest_temperature: float = 2500.0
     _air_constant: float = field(init=False, repr=False, compare=False)
     _fuel_constant: float = field(init=False, repr=False, compare=False)
-    _rows: tuple[Array, Array] = field(init=False, repr=False, compare=False)
+    _rows: _Rows = field(init=False, repr=False, compare=False)
 
     def __post_init__(self) -> None:
         air, burnt = _air_moles(), _moles_burnt(self.fuel)
@@ -76,8 +89,7 @@ class RealGas:
         set_field = object.__setattr__
         set_field(self, "_air_constant", MOLAR_GAS_CONSTANT * sum(air.values()))
         set_field(self, "_fuel_constant", MOLAR_GAS_CONSTANT * sum(burnt.values()))
-        # Order of the rows: air then fuel's share, each heat capacity, enthalpy, entropy.
-        set_field(self, "_rows", (np.concatenate(low), np.concatenate(high)))
+        set_field(self, "_rows", _picked(np.concatenate(low), np.concatenate(high)))
 
     @property
     def stoichiometric_fuel_air_ratio(self) -> float:
@@ -133,7 +145,7 @@ class RealGas:
 
         def step(temperature: Array) -> Array:
             cp, s = self._properties(temperature, fuel_air_ratio, (_HEAT_CAPACITY, _ENTROPY))
-            return np.expm1(np.clip((target - s) / cp, -0.7, 0.7))
+            return np.expm1(np.minimum(np.maximum((target - s) / cp, -0.7), 0.7))
 
         return _settle(step, guess, target)
 
@@ -163,35 +175,38 @@ class RealGas:
         heat_release: ArrayLike,
         section: Section = "hot",
     ) -> Array:
-        air, burnt = self._sums(np.asarray(temperature_out, dtype=np.float64), (_ENTHALPY,))
-        needed = air[0] - np.asarray(enthalpy_in, dtype=np.float64)
-        ratio: Array = needed / (np.asarray(heat_release, dtype=np.float64) - burnt[0])
+        at = np.asarray(temperature_out, dtype=np.float64)
+        air, burnt = self._sums(at, (_ENTHALPY, _BURNT + _ENTHALPY))
+        needed = air - np.asarray(enthalpy_in, dtype=np.float64)
+        ratio: Array = needed / (np.asarray(heat_release, dtype=np.float64) - burnt)
         return ratio
 
     def _properties(
         self, temperature: ArrayLike, fuel_air_ratio: ArrayLike, which: tuple[int, ...]
     ) -> list[Array]:
         """Properties of the mixture in the order of ``which``."""
-        air, burnt = self._sums(np.asarray(temperature, dtype=np.float64), which)
+        at = np.asarray(temperature, dtype=np.float64)
         f = np.asarray(fuel_air_ratio, dtype=np.float64)
         if f.ndim == 0 and f == 0.0:
-            return list(air)
-        return [(a + f * b) / (1.0 + f) for a, b in zip(air, burnt, strict=True)]
+            return list(self._sums(at, which))
+        sums = self._sums(at, (*which, *(_BURNT + row for row in which)))
+        whole = 1.0 + f
+        count = len(which)
+        return [(sums[row] + f * sums[count + row]) / whole for row in range(count)]
 
-    def _sums(self, temperature: Array, which: tuple[int, ...]) -> tuple[Array, Array]:
-        """Air's and the fuel's share of the properties, each (len(which),) + shape."""
-        rows = [*which, *(3 + row for row in which)]
-        powers = basis(temperature).reshape(9, -1)
-        low, high = self._rows
-        upper = temperature.ravel() > RANGE_JOINT
-        if not upper.any():
-            values = low[rows] @ powers
-        elif upper.all():
-            values = high[rows] @ powers
+    def _sums(self, temperature: Array, rows: tuple[int, ...]) -> Array:
+        """Air's properties, and what burning a kilogram of fuel adds, (len(rows),) + shape."""
+        low, high = self._rows[rows]
+        flat = temperature.ravel()
+        powers = basis(flat)
+        coldest, hottest = flat.min(initial=RANGE_JOINT), flat.max(initial=0.0)
+        if not hottest > RANGE_JOINT:
+            values = low @ powers
+        elif coldest > RANGE_JOINT:
+            values = high @ powers
         else:
-            values = np.where(upper, high[rows] @ powers, low[rows] @ powers)
-        shaped = values.reshape(2, len(which), *temperature.shape)
-        return shaped[0], shaped[1]
+            values = np.where(flat > RANGE_JOINT, high @ powers, low @ powers)
+        return values.reshape(len(rows), *temperature.shape)
 
 
 def _settle(
@@ -204,10 +219,10 @@ def _settle(
     """
     shape = np.broadcast_shapes(np.shape(guess), target.shape)
     temperature = np.array(np.broadcast_to(guess, shape), dtype=np.float64)
-    np.clip(temperature, _COLDEST_TRIAL, _HOTTEST_TRIAL, out=temperature)
     for _ in range(_MOST_ITERATIONS):
-        relative = np.clip(step(temperature), -0.5, 1.0)
-        temperature = np.clip(temperature * (1.0 + relative), _COLDEST_TRIAL, _HOTTEST_TRIAL)
-        if not np.any(np.abs(relative) > last_step):
+        relative = np.minimum(np.maximum(step(temperature), -0.5), 1.0)
+        temperature = temperature + temperature * relative
+        temperature = np.minimum(np.maximum(temperature, _COLDEST_TRIAL), _HOTTEST_TRIAL)
+        if not (np.abs(relative) > last_step).any():
             break
     return temperature

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 
 from engine.interface import Engine
 from mission.aircraft import Aircraft
-from mission.fly import fly
+from mission.flight import fly
 from mission.mission_file import Mission
 from mission.results import Flight
 

@@ -1,0 +1,51 @@
+"""Words that more than one screen uses; light, so that ``--help`` may import it."""
+
+from __future__ import annotations
+
+CAUTION = (
+    "Preliminary estimates for concept studies: not for dispatch, flight planning, certification "
+    "or any operational decision. Reserve rules are summaries: the operator's manual and the "
+    "authority's current text govern."
+)
+NOT_CHARGED = (
+    "Pods, their mass and their drag, are not charged in this version and no engine is resized "
+    "for the mission: every option flies with the aircraft's masses and drag polar as written."
+)
+MINUTES_AN_HOUR = 60
+# What a terminal without these characters shows instead.
+_PLAIN = str.maketrans(
+    {
+        "█": "#", "▉": "#", "▊": "#", "▋": "#", "▌": "#", "▍": "'", "▎": "'", "▏": "'",
+        "─": "-", "–": "-", "×": "x", "·": "|", "±": "+/-",
+    }
+)  # fmt: skip
+
+
+def plain_characters(text: str, encoding: str) -> str:
+    """``text`` as a terminal of this encoding can show it."""
+    try:
+        text.encode(encoding)
+    except UnicodeEncodeError:
+        return text.translate(_PLAIN).encode(encoding, "replace").decode(encoding)
+    return text
+
+
+def day_in_words(temperature_deviation: float) -> str:
+    """A day such as ``ISA+10`` from its temperature deviation [K]."""
+    return f"ISA{temperature_deviation:+g}" if temperature_deviation else "ISA"
+
+
+def hours_and_minutes(time: float) -> str:
+    """A time [s] in hours and minutes, for reading beside a number of minutes."""
+    hours, minutes = divmod(round(time / 60.0), MINUTES_AN_HOUR)
+    return f"{hours} h {minutes:02d} min" if hours else f"{minutes} min"
+
+
+def counted(number: int, thing: str) -> str:
+    """``1 engine``, ``2 engines``."""
+    return f"{number} {thing}" if number == 1 else f"{number} {thing}s"
+
+
+def in_plain_words(key: str) -> str:
+    """A snake-case key, or a dotted path of them, as words."""
+    return key.replace(".", " ").replace("_", " ")
