@@ -41,12 +41,7 @@ def compare(mission: Mission, aircraft: Aircraft, engines: Mapping[str, Engine])
 
 
 def mean_cruise_consumption(flight: Flight) -> float:
-    """Fuel over impulse of all mission cruises [kg/(N s)]; zero without a cruise."""
-    fuel = impulse = 0.0
-    for log in flight.segments:
-        if log.kind == "cruise" and log.purpose == "mission" and log.fuel > 0.0:
-            steps = log.steps
-            fuel += log.fuel
-            consumption = steps.fuel_flow / steps.thrust
-            impulse += log.fuel / float(consumption.mean())
-    return fuel / impulse if impulse > 0.0 else 0.0
+    """Fuel over impulse of thrust of all mission cruises [kg/(N s)]; zero without a cruise."""
+    cruises = [log for log in flight.segments if (log.kind, log.purpose) == ("cruise", "mission")]
+    impulse = sum(log.impulse for log in cruises)
+    return sum(log.fuel for log in cruises) / impulse if impulse > 0.0 else 0.0

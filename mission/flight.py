@@ -26,7 +26,7 @@ COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integratio
 _COARSE_SETTLED = 1e-9
 _COST_SETTLED = 1e-7
 _MOST_PLANS = 8
-_SAME_ALTITUDE = 1e-4  # m, between the end of a cruise-climb and what follows
+_SAME_ALTITUDE = 0.01  # m, between the end of a cruise-climb and what follows
 
 
 @dataclass(frozen=True)
@@ -71,7 +71,8 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         plan = lay_out(mission, aircraft, ends)
         plan = _with_joints(plan, world)
         close = closure(plan, written, aircraft)
-        coarse = march(world, plan.parts, few, guess, close, settled=_COARSE_SETTLED)
+        near = coarse if _has_same_spans(coarse, plan) else None
+        coarse = march(world, plan.parts, few, guess, close, near, _COARSE_SETTLED)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, guess = found, coarse.stop_mass
@@ -82,6 +83,14 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     if coarse.is_settled:
         fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
     return _Solved(plan, coarse, fine)
+
+
+def _has_same_spans(marched: Marched | None, plan: FlightPlan) -> bool:
+    """Whether an earlier march of a plan with other altitudes can start this one."""
+    spans = [*plan.parts.mission, *plan.parts.reserve]
+    return marched is not None and [(s.segment, s.march) for s in spans] == [
+        (track.span.segment, track.span.march) for track in marched.tracks
+    ]
 
 
 def _with_joints(plan: FlightPlan, world: World) -> FlightPlan:

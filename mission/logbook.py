@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from engine.quantities import STANDARD_GRAVITY
 from mission.fuel_plan import Sums, trip_rows
 from mission.march.asking import Request, ask
+from mission.march.nodes import integration_matrix
 from mission.march.sweep import Marched
 from mission.march.tracks import Track
 from mission.march.world import World
@@ -54,6 +55,7 @@ def segment_logs(
                 mass_received=0.0,
                 fuel_left=float(steps.mass[-1]) - empty,
                 steps=steps,
+                impulse=float(sum(_impulse(marched.tracks[i]) for i in chosen)),
             )
         )
     return tuple(logs)
@@ -61,6 +63,14 @@ def segment_logs(
 
 def _sum(sums: list[Array], chosen: list[int]) -> float:
     return float(sum(sums[i][-1, 0] for i in chosen))
+
+
+def _impulse(track: Track) -> float:
+    """Thrust over time [N s] along a span."""
+    if track.nodes is None:
+        return 0.0
+    weights = integration_matrix(len(track.mass))[-1]
+    return float(weights @ (track.nodes.propulsion.thrust * track.nodes.time_rate)[:, 0])
 
 
 def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:

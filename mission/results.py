@@ -35,7 +35,7 @@ class Steps:
 
 @dataclass(frozen=True)
 class SegmentLog:
-    """One row of the log: totals [kg, s, m] and the steps behind them."""
+    """One row of the log: totals [kg, s, m], impulse of thrust [N s], and the steps behind them."""
 
     name: str
     kind: str
@@ -51,6 +51,7 @@ class SegmentLog:
     mass_received: float
     fuel_left: float
     steps: Steps
+    impulse: float = 0.0
 
 
 @dataclass(frozen=True)

@@ -121,7 +121,7 @@ def _first_tracks(
     tracks: list[Track] = []
     for index, span in enumerate([*parts.mission, *parts.reserve]):
         if start is not None:
-            tracks.append(refined_track(world, start.tracks[index], count, stop_mass))
+            tracks.append(refined_track(world, span, start.tracks[index], count, stop_mass))
         else:
             before = tracks[-1] if tracks else None
             tracks.append(first_track(world, span, count, stop_mass, before))

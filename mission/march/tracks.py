@@ -63,13 +63,14 @@ def first_track(
     return track
 
 
-def refined_track(world: World, old: Track, count: int, stop_mass: Array) -> Track:
-    """A span as an earlier solution left it, brought to another count of nodes."""
-    track = first_track(world, old.span, count, stop_mass, None)
+def refined_track(world: World, span: Span, old: Track, count: int, stop_mass: Array) -> Track:
+    """A span as an earlier solution of it (or of its like) left it, at a count of nodes."""
+    track = first_track(world, span, count, stop_mass, None)
     to_new = interpolation_matrix(len(old.mass), count)
     shape = track.mass.shape
     track.mass = np.broadcast_to(to_new @ old.mass, shape).copy()
-    track.mach = np.broadcast_to(to_new @ old.mach, shape).copy()
+    if span.march != "altitude":
+        track.mach = np.broadcast_to(to_new @ old.mach, shape).copy()
     if old.unknowns is not None and old.unknowns.size:
         track.start = to_new @ old.unknowns
     return track

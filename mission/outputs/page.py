@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import textwrap
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from typing import Literal
@@ -16,7 +17,7 @@ from rich.text import Text
 from mission.outputs.wording import CAUTION
 
 NARROWEST, WIDEST = 80, 100  # columns that the screens are laid out for
-_INDENT = 2
+INDENT = 2  # of what stands under a title
 _RULED = Box("    \n    \n ── \n    \n ── \n ── \n    \n    \n")
 
 
@@ -43,11 +44,15 @@ def ruled_table(columns: Sequence[Column]) -> Table:
         table.add_column(
             column.header,
             justify=column.justify,
-            vertical="bottom" if column.justify == "right" else "top",
             no_wrap=not column.is_wrapped,
             overflow="fold",
         )
     return table
+
+
+def fold(text: str, width: int) -> str:
+    """A name on as many lines as it needs, the later ones indented."""
+    return textwrap.fill(text, max(width, 8), subsequent_indent="  ", break_on_hyphens=False)
 
 
 def pairs(rows: Iterable[tuple[str, str]], *, strong: bool = False) -> Table:
@@ -62,7 +67,7 @@ def pairs(rows: Iterable[tuple[str, str]], *, strong: bool = False) -> Table:
 
 def section(title: str, *body: RenderableType | None) -> Group:
     """A blank line, a title, and what stands under it."""
-    inner = [Padding(item, (0, 0, 0, _INDENT), expand=False) for item in body if item is not None]
+    inner = [Padding(item, (0, 0, 0, INDENT), expand=False) for item in body if item is not None]
     return Group(Text(), Text(title, "bold"), *inner)
 
 

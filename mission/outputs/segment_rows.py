@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from functools import partial
 
@@ -10,12 +10,12 @@ import numpy as np
 from numpy.typing import NDArray
 from rich.table import Table
 
-from mission.outputs.page import Column, ruled_table, words
+from mission.outputs.page import INDENT, Column, fold, ruled_table, words
 from mission.outputs.units import ABSENT, METRIC, Scale, Units, flight_level, number
 from mission.results import Flight, SegmentLog, Steps
 
 Array = NDArray[np.float64]
-_BAR = 7  # characters at 100 columns
+_BAR = 6  # characters at 100 columns
 _EIGHTHS = " ▏▎▍▌▋▊▉"
 _IDLE = ("flight_idle", "ground_idle")
 _LARGE_CONSUMPTION = 100.0  # shown without decimals from here on
@@ -93,6 +93,16 @@ def consumption_text(units: Units, value: float) -> str:
     return number(shown, 2 if units is METRIC else 3)
 
 
+def altitude_header(units: Units) -> str:
+    """Header of a column of pressure altitudes."""
+    return units.altitude.name if units is METRIC else f"alt.\n{units.altitude.name}"
+
+
+def consumption_unit(units: Units) -> str:
+    """Name of the unit of specific fuel consumption on two lines, for a narrow column."""
+    return units.specific_fuel_consumption.name.replace("/", "/\n", 1)
+
+
 def thrust_share_text(log: SegmentLog, step: int = -1) -> str:
     """Thrust as a share of the segment's rating [%], ``idle`` where the engine is held there.
 
@@ -107,89 +117,100 @@ def thrust_share_text(log: SegmentLog, step: int = -1) -> str:
     return number(100.0 * thrust / rating, 0) if rating > 0.0 else ABSENT
 
 
+@dataclass(frozen=True)
+class _Filled:
+    """A column with what fills it: a cell from a row, and the cell beside the total."""
+
+    header: str
+    cell: Callable[[SegmentLog], str]
+    total: str = ""
+
+    def cells(self, logs: Sequence[SegmentLog]) -> list[str]:
+        """Its text for every row."""
+        return [self.cell(log) for log in logs]
+
+
 def _burnt(flight: Flight, scales: Scales, bar_length: int) -> list[_Filled]:
-    block = flight.totals.block_fuel or 1.0
-    units = scales.units
-    total = flight.totals
+    total, fuel, distance = flight.totals, scales.fuel, scales.distance
+    block = total.block_fuel or 1.0
+
+    def share(log: SegmentLog) -> str:
+        part = log.fuel / block
+        return f"{bar(part, bar_length):<{bar_length}}{number(100.0 * part, 1):>5}"
+
     return [
-        _Filled(Column(f"fuel\n{scales.fuel.unit.name}"), lambda log: scales.fuel.bare(log.fuel),
-                scales.fuel.bare(total.block_fuel)),
-        _Filled(words("share of", is_wrapped=False), lambda log: bar(log.fuel / block, bar_length)),
-        _Filled(Column("block\n%"), lambda log: number(100.0 * log.fuel / block, 1), "100.0"),
-        _Filled(Column(f"time\n{units.time.name}"), lambda log: number(log.time / 60.0, 1),
+        _Filled(f"fuel\n{fuel.unit.name}", lambda log: fuel.bare(log.fuel),
+                fuel.bare(total.block_fuel)),
+        _Filled("share of\nblock %", share, "100.0"),
+        _Filled(f"time\n{scales.units.time.name}", lambda log: number(log.time / 60.0, 1),
                 number(total.block_time / 60.0, 1)),
-        _Filled(Column(f"dist.\n{scales.distance.unit.name}"),
-                lambda log: scales.distance.bare(log.ground_distance),
-                scales.distance.bare(total.ground_distance)),
+        _Filled(f"dist.\n{distance.unit.name}", lambda log: distance.bare(log.ground_distance),
+                distance.bare(total.ground_distance)),
     ]  # fmt: skip
 
 
 def _where(scales: Scales) -> list[_Filled]:
     altitude = partial(altitude_text, scales.units)
-    header = "FL" if scales.units is METRIC else f"altitude\n{scales.units.altitude.name}"
     return [
-        _Filled(Column(header), lambda log: altitude(float(log.steps.pressure_altitude[-1]))),
-        _Filled(Column("Mach"), lambda log: number(float(log.steps.mach[-1]), 3)),
+        _Filled(
+            altitude_header(scales.units), lambda log: altitude(float(log.steps.pressure_altitude[-1]))
+        ),
+        _Filled("Mach", lambda log: number(float(log.steps.mach[-1]), 3)),
     ]
 
 
 def _state(flight: Flight, scales: Scales) -> list[_Filled]:
-    units = scales.units
+    units, mass, ranges = scales.units, scales.mass, scales.specific_air_range
 
     def end(values: Array) -> float:
         return float(values[-1])
 
     return [
-        _Filled(Column(f"mass\n{scales.mass.unit.name}"), lambda log: scales.mass.bare(log.mass_end)),
-        _Filled(Column("thrust\n%"), thrust_share_text),
-        _Filled(Column(f"sfc\n{units.specific_fuel_consumption.name}"),
+        _Filled(f"mass\n{mass.unit.name}", lambda log: mass.bare(log.mass_end)),
+        _Filled("thrust\n%", thrust_share_text),
+        _Filled(f"sfc\n{consumption_unit(units)}",
                 lambda log: consumption_text(units, end(consumption(log.steps)))),
-        _Filled(Column("L/D"), lambda log: number(end(lift_to_drag(log.steps)), 1)),
-        _Filled(Column(f"SAR\n{units.specific_air_range.name}"),
-                lambda log: scales.specific_air_range.bare(end(air_range(log.steps)))),
-        _Filled(Column(f"left\n{scales.fuel.unit.name}"),
-                lambda log: scales.fuel.bare(log.fuel_left),
+        _Filled("L/D", lambda log: number(end(lift_to_drag(log.steps)), 1)),
+        _Filled(f"SAR\n{ranges.unit.name}", lambda log: ranges.bare(end(air_range(log.steps)))),
+        _Filled(f"left\n{scales.fuel.unit.name}", lambda log: scales.fuel.bare(log.fuel_left),
                 scales.fuel.bare(flight.totals.fuel_left)),
     ]  # fmt: skip
-
-
-@dataclass(frozen=True)
-class _Filled:
-    """A column with what fills it: a cell from a row, and the cell beside the total."""
-
-    column: Column
-    cell: Callable[[SegmentLog], str]
-    total: str = ""
 
 
 def segment_tables(
     flight: Flight, shown: Sequence[SegmentLog], scales: Scales, width: int, *, with_total: bool
 ) -> list[Table]:
     """The rows of a log as one table, or as two of fewer columns where it is narrow."""
-    wide = width >= _ONE_TABLE
+    is_wide = width >= _ONE_TABLE
     burnt, where, state = (
-        _burnt(flight, scales, _BAR if wide else 2 * _BAR),
+        _burnt(flight, scales, _BAR if is_wide else 2 * _BAR),
         _where(scales),
         _state(flight, scales),
     )
-    groups = [burnt + where + state] if wide else [burnt + where, state]
-    return [_table(shown, group, with_total=with_total) for group in groups]
+    groups = [burnt + where + state] if is_wide else [burnt + where, state]
+    return [_table(shown, group, width, with_total=with_total) for group in groups]
 
 
-def _table(shown: Sequence[SegmentLog], filled: list[_Filled], *, with_total: bool) -> Table:
-    table = ruled_table([words("segment"), *(item.column for item in filled)])
-
-    def add(logs: Iterable[SegmentLog]) -> None:
-        for log in logs:
-            table.add_row(log.name, *(item.cell(log) for item in filled))
-
-    mission = [log for log in shown if log.purpose == "mission"]
-    reserve = [log for log in shown if log.purpose != "mission"]
-    add(mission)
+def _table(
+    shown: Sequence[SegmentLog], filled: list[_Filled], width: int, *, with_total: bool
+) -> Table:
+    columns = [item.cells(shown) for item in filled]
+    taken = [
+        max(len(text) for text in [*item.header.split("\n"), item.total, *cells])
+        for item, cells in zip(filled, columns, strict=True)
+    ]
+    name_width = width - INDENT - sum(taken) - len(taken)
+    table = ruled_table([words("segment"), *(Column(item.header) for item in filled)])
+    rows = list(zip(shown, *columns, strict=True))
+    mission = [row for row in rows if row[0].purpose == "mission"]
+    for log, *cells in mission:
+        table.add_row(fold(log.name, name_width), *cells)
     if with_total:
         table.add_section()
         table.add_row("block total", *(item.total for item in filled))
-    if reserve:
+    if len(rows) > len(mission):
         table.add_section()
-        add(reserve)
+        table.add_row("reserve flight:")
+        for log, *cells in rows[len(mission) :]:
+            table.add_row(fold(log.name, name_width), *cells)
     return table

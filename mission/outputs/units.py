@@ -118,8 +118,9 @@ class Scale:
 
 
 def signed(text: str) -> str:
-    """A number's text with a plus where it is not negative."""
-    return text if text.startswith("-") or text == ABSENT else f"+{text}"
+    """A number's text with a plus where it is above zero."""
+    is_plain = text.startswith("-") or text == ABSENT or not text.strip("0.,")
+    return text if is_plain else f"+{text}"
 
 
 def flight_level(pressure_altitude: float) -> str:
