@@ -81,18 +81,21 @@ class CycleEngine:
         most, least = self._solve(at_top, None), self._solve(at_bottom, None)
         top, bottom = self._finish(at_top, most), self._finish(at_bottom, least)
         upper, lower = top.path.net_thrust(asked.flat), bottom.path.net_thrust(asked.flat)
-        is_upper = top.is_believed & ((asked.thrust > 0.5 * (upper + lower)) | ~bottom.is_believed)
-        again = self._solve(asked, np.where(is_upper, most.unknowns, least.unknowns))
-        met = _is_answer(self._finish(asked, again), asked, floors[:, None])
-        outcome = np.where(met, Outcome.MET, Outcome.NOT_CONVERGED)
-        for edge, members, verdict in (
-            (least, ~met & bottom.is_believed & (asked.thrust < lower), Outcome.AT_IDLE),
-            (most, ~met & top.is_believed & (asked.thrust > upper), Outcome.BEYOND_RATING),
-        ):
-            index = np.flatnonzero(members)
-            again = again.replaced(index, edge.at(index))
-            outcome[index] = verdict
-        return again, outcome
+        outcome = np.full(asked.thrust.size, Outcome.NOT_CONVERGED)
+        outcome[bottom.is_believed & (asked.thrust < lower)] = Outcome.AT_IDLE
+        outcome[top.is_believed & (asked.thrust > upper)] = Outcome.BEYOND_RATING
+        index = np.flatnonzero(outcome == Outcome.AT_IDLE)
+        solution = most.replaced(index, least.at(index))
+        index = np.flatnonzero(outcome == Outcome.NOT_CONVERGED)
+        if index.size:
+            is_upper = top.is_believed & (asked.thrust > 0.5 * (upper + lower))
+            start = np.where(is_upper | ~bottom.is_believed, most.unknowns, least.unknowns)
+            inside = asked.at(index)
+            again = self._solve(inside, start[:, index])
+            met = _is_answer(self._finish(inside, again), inside, floors[:, None])
+            solution = solution.replaced(index, again)
+            outcome[index[met]] = Outcome.MET
+        return solution, outcome
 
     def _solve(self, asked: _Asked, start: Array | None) -> Solution:
         """Match what is asked.

@@ -25,7 +25,7 @@ TOLERANCE = 1e-11
 WINDMILLING_TOLERANCE = 1e-7
 _LARGEST_STEP = 0.25
 _DIFFERENCE = 1e-6
-_MOST_ITERATIONS = 80
+_MOST_ITERATIONS = 40
 
 
 class Throttle(IntEnum):
@@ -104,7 +104,8 @@ def solve(
     unknowns = cold if start is None else np.where(np.isfinite(start), start, cold)
     residual = np.full(count, np.inf)
     iterations = np.zeros(count, dtype=np.int64)
-    _, face = take_in(arrangement.gas, arrangement.inlet, flight)
+    with np.errstate(all="ignore"):
+        _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     problem = _Problem(arrangement, sizing, face, flight, demand)
     tolerance = WINDMILLING_TOLERANCE if demand is None else TOLERANCE
     free, above_one = problem.free_rows, problem.rows_above_one
@@ -183,8 +184,8 @@ def evaluate_at(
     is_lit: bool = True,
 ) -> tuple[Stream, Flowpath]:
     """Free stream (for 1 kg/s) and the whole engine at given unknowns."""
-    ahead, face = take_in(arrangement.gas, arrangement.inlet, flight)
     with np.errstate(all="ignore"):
+        ahead, face = take_in(arrangement.gas, arrangement.inlet, flight)
         path = arrangement.evaluate(unknowns, face, flight.static_pressure, sizing, is_lit=is_lit)
     return ahead, path
 

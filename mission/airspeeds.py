@@ -62,8 +62,10 @@ def pressure_altitude_from_pressure(static_pressure: ArrayLike) -> Array:
     ISO 2533:1975, with the base pressures that ``ambiance`` uses in :mod:`engine.atmosphere`.
     """
     pressure = np.asarray(static_pressure, dtype=float)
-    troposphere: dict[str, float] = CONST.LAYER_DICTS[1]
-    stratosphere: dict[str, float] = CONST.LAYER_DICTS[2]
+    by_base: dict[float, dict[str, float]] = {
+        layer["H_base"]: layer for layer in CONST.LAYER_DICTS.values()
+    }
+    troposphere, stratosphere = by_base[0.0], by_base[11.0e3]
     exponent: float = -CONST.R * troposphere["beta"] / STANDARD_GRAVITY
     warming = (pressure / _SEA_LEVEL_PRESSURE) ** exponent - 1.0
     below = 288.15 / troposphere["beta"] * warming

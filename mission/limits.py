@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
+from itertools import chain
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import flight_condition
 from engine.interface import Outcome
+from engine.quantities import FOOT
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed
 from mission.march.sweep import Marched
@@ -21,26 +23,21 @@ from mission.results import Failure, Margin, SegmentLog, Totals
 
 Array = NDArray[np.float64]
 _SLACK = 1e-6
+_FLAPS_BELOW = 10000.0 * FOOT  # common practice, no source
 # Where a limit is passed, its name, value, bound, unit, and what to try.
 _Check = tuple[NDArray[np.bool_], str, Array, float | Array, str, str]
-# Name of a march's rate, unit, least, and what to try, by kind of segment.
-_RATES = {
-    "climb": ("rate of climb", "m/s", SLOWEST_CLIMB, "end it lower, change its speeds, carry less"),
-    "descent": ("rate of descent", "m/s", SLOWEST_CLIMB, "change its speeds"),
-    "acceleration": ("acceleration", "m/s2", SLOWEST_ACCELERATION,
-                     "lower the speed to reach, or carry less"),
-}  # fmt: skip
 
 
-def lift_limit(aircraft: Aircraft, kind: str) -> float:
-    """Greatest lift coefficient: with flaps where they are moving or down."""
-    if kind in ("take-off", "acceleration", "approach"):
-        return max(
-            aircraft.maximum_lift_coefficient,
-            aircraft.take_off_lift_coefficient,
-            aircraft.approach_lift_coefficient,
-        )
-    return aircraft.maximum_lift_coefficient
+def _lift_limits(aircraft: Aircraft, log: SegmentLog) -> Array:
+    """Greatest lift coefficient at every step: with flaps where they are moving or down."""
+    with_flaps = max(
+        aircraft.maximum_lift_coefficient,
+        aircraft.take_off_lift_coefficient,
+        aircraft.approach_lift_coefficient,
+    )
+    is_low = log.steps.pressure_altitude < _FLAPS_BELOW
+    has_flaps = (is_low & (log.kind in ("take-off", "acceleration"))) | (log.kind == "approach")
+    return np.where(has_flaps, with_flaps, aircraft.maximum_lift_coefficient)
 
 
 def _lift_coefficients(aircraft: Aircraft, steps: object) -> Array:
@@ -67,16 +64,16 @@ def first_failure(
         passed = sorted(_passed_on_the_way(world, tracks, log), key=lambda failure: failure.step)
         if passed:
             return passed[0]
-    return next(_passed_masses(world, written, total, logs, closes=closes), None)
+    rest = _passed_distance(world, marched, plan)
+    return next(chain(rest, _passed_masses(world, written, total, logs, closes=closes)), None)
 
 
 def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> Iterator[Failure]:
     """Limits passed at the steps of one segment, each at its first step."""
     aircraft, steps = world.aircraft, log.steps
-    outcome, rate = _along(tracks)
+    outcome, vertical, acceleration = _along(tracks)
     lost = (outcome == Outcome.NOT_CONVERGED) | (outcome == Outcome.UNPHYSICAL)
-    what, unit, least, advice = _RATES.get(log.kind, _RATES["acceleration"])
-    coefficient, most_lift = _lift_coefficients(aircraft, steps), lift_limit(aircraft, log.kind)
+    coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     airborne = steps.lift > 0.0
     mach = np.where(airborne, steps.mach, 0.0)
     pressure = flight_condition(steps.pressure_altitude).static_pressure
@@ -89,7 +86,10 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
         (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",
          steps.thrust, steps.drag, "N",
          "fly lower or slower, carry less, or take a larger engine"),
-        (rate < least, what, rate, least, unit, advice),
+        (vertical < SLOWEST_CLIMB, f"rate of {log.kind}", vertical, SLOWEST_CLIMB, "m/s",
+         "end it lower, change its speeds, or carry less"),
+        (acceleration < SLOWEST_ACCELERATION, "acceleration", acceleration, SLOWEST_ACCELERATION,
+         "m/s2", "lower the speed to reach, or carry less"),
         (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
          "fly faster or lower, or carry less"),
         (mach > most_mach * (1.0 + _SLACK), "Mach number", mach, most_mach, "",
@@ -104,17 +104,23 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
             yield Failure(log.name, step, name, float(value[step]), at, in_unit, hint)
 
 
-def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array]:
-    """Engine outcome and rate at the steps of a segment, as the log has them."""
-    outcomes, rates = [], []
+def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array, Array]:
+    """Outcome of the engine, vertical rate and acceleration at the steps of a segment.
+
+    The rates are positive the way the march goes, infinite where it has none.
+    """
+    outcomes, vertical, acceleration = [], [], []
     for track in tracks:
         if track.nodes is None:
-            outcomes.append(np.full(2, Outcome.MET))
-            rates.append(np.full(2, np.inf))
+            outcome, rate = np.full(2, Outcome.MET), np.full(2, np.inf)
         else:
-            outcomes.append(track.nodes.propulsion.outcome[:, 0])
-            rates.append(track.nodes.rate[:, 0])
-    return np.concatenate(outcomes), np.concatenate(rates)
+            outcome, rate = track.nodes.propulsion.outcome[:, 0], track.nodes.rate[:, 0]
+        none = np.full(rate.shape, np.inf)
+        climbs = track.span.march == "altitude"
+        outcomes.append(outcome)
+        vertical.append(rate if climbs else none)
+        acceleration.append(none if climbs else rate)
+    return np.concatenate(outcomes), np.concatenate(vertical), np.concatenate(acceleration)
 
 
 def _passed_masses(
@@ -142,57 +148,54 @@ def _passed_masses(
     ):  # fmt: skip
         if value > bound * (1.0 + 1e-9):
             yield Failure(segment, 0, what, value, bound, "kg", advice)
-    for log in logs:
-        if log.purpose == "mission" and log.fuel_left < -1e-6:
-            yield Failure(log.name, len(log.steps.mass) - 1, "usable fuel aboard", log.fuel_left,
-                          0.0, "kg", "load more fuel or fly less far")  # fmt: skip
-            return
-    if not closes or total.fuel_margin < -1e-6 * max(total.loaded_fuel, 1.0):
-        what = "fuel left at the end against the reserves"
-        if not closes:
-            what += " (no take-off mass closes; the log flies all the fuel that can be loaded)"
-        yield Failure(last, 0, what, total.fuel_left, total.reserve_fuel, "kg",
-                      "load more fuel, fly less far, or carry less")  # fmt: skip
+    if closes and total.fuel_margin >= -1e-6 * max(total.loaded_fuel, 1.0):
+        return
+    dry = [log.name for log in logs if log.purpose == "mission" and log.fuel_left < -1e-6]
+    is_full = total.loaded_fuel > 0.999 * aircraft.usable_fuel
+    yield Failure(
+        segment=dry[0] if dry else last,
+        step=0,
+        what="usable fuel left at the stop against the reserves to keep"
+        + ("" if closes else " (no take-off mass closes: this flies all the fuel it can load)"),
+        value=total.fuel_left,
+        bound=total.reserve_fuel,
+        unit="kg",
+        advice=("fly less far or carry less" if is_full or not closes else "load more fuel"),
+    )
+
+
+def _passed_distance(world: World, marched: Marched, plan: FlightPlan) -> Iterator[Failure]:
+    """A distance shorter than what is flown besides the cruise that takes the rest of it."""
+    for parts, total in (
+        (False, plan.parts.mission_distance),
+        (True, plan.parts.reserve_distance),
+    ):
+        tracks = zip(marched.tracks, marched.integrals.ground, strict=True)
+        chosen = [(t.span, g) for t, g in tracks if t.span.is_reserve == parts]
+        flown = sum(float(g[-1, 0]) for span, g in chosen if not span.takes_rest)
+        cruise = [span for span, _ in chosen if span.takes_rest]
+        if total is not None and cruise and flown > total * (1.0 + 1e-9):
+            name = plan.rows[cruise[0].segment].name
+            yield Failure(name, 0, "distance flown without it against the distance to cover",
+                          flown, total, "m", "fly lower, or lengthen the distance")  # fmt: skip
 
 
 def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[Margin, ...]:
-    """Least margins of thrust, lift, speed, fuel and mass, and where they occur."""
+    """Least margins of thrust, climb, lift, fuel and mass, and where they occur."""
     aircraft = world.aircraft
-    found: list[Margin] = []
     level = [log for log in logs if log.kind in ("cruise", "loiter")]
-    ratios = {log.name: float(np.min(log.steps.rating_thrust / log.steps.thrust)) for log in level}
-    if ratios:
-        where = min(ratios, key=lambda name: ratios[name])
-        found.append(
-            Margin(
-                "thrust over drag at rating, level",
-                ratios[where],
-                1.0,
-                "",
-                where,
-                ratios[where] >= 1.0 - _SLACK,
-            )
-        )
     climbs = [log for log in logs if log.kind == "climb" and log.purpose == "mission"]
-    rates = {log.name: _rate_at_top(log) for log in climbs}
-    if rates:
-        where = min(rates, key=lambda name: rates[name])
-        found.append(
-            Margin("rate of climb at the top", rates[where], SLOWEST_CLIMB, "m/s", where,
-                   rates[where] >= SLOWEST_CLIMB)
-        )  # fmt: skip
-    loads = {}
-    for log in logs:
-        if np.any(log.steps.lift > 0.0):
-            coefficient = _lift_coefficients(aircraft, log.steps)
-            loads[log.name] = float(lift_limit(aircraft, log.kind) / np.max(coefficient))
-    if loads:
-        where = min(loads, key=lambda name: loads[name])
-        found.append(
-            Margin(
-                "load factor at greatest lift", loads[where], 1.0, "", where, loads[where] >= 1.0
-            )
-        )
+    flown = [log for log in logs if np.any(log.steps.lift > 0.0)]
+
+    def load(log: SegmentLog) -> float:
+        coefficient = np.maximum(_lift_coefficients(aircraft, log.steps), 1e-9)
+        return float(np.min(_lift_limits(aircraft, log) / coefficient))
+
+    found = [
+        *_least("thrust over drag at rating, level", level, _thrust_ratio, 1.0, ""),
+        *_least("rate of climb at the top", climbs, _rate_at_top, SLOWEST_CLIMB, "m/s"),
+        *_least("load factor to greatest lift", flown, load, 1.0, ""),
+    ]
     for name, value, bound in (
         ("usable fuel loaded", total.loaded_fuel, aircraft.usable_fuel),
         ("take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass),
@@ -200,6 +203,21 @@ def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[
     ):
         found.append(Margin(name, value, bound, "kg", "", value <= bound * (1.0 + 1e-9)))
     return tuple(found)
+
+
+def _least(
+    name: str, logs: list[SegmentLog], value: Callable[[SegmentLog], float], bound: float, unit: str
+) -> Iterator[Margin]:
+    """The least of a value over segments, with the segment it is met in."""
+    if logs:
+        values = [value(log) for log in logs]
+        least = min(values)
+        where = logs[values.index(least)].name
+        yield Margin(name, least, bound, unit, where, least >= bound * (1.0 - _SLACK))
+
+
+def _thrust_ratio(log: SegmentLog) -> float:
+    return float(np.min(log.steps.rating_thrust / np.maximum(log.steps.thrust, 1e-9)))
 
 
 def _rate_at_top(log: SegmentLog) -> float:

@@ -15,6 +15,7 @@ from mission.march.sweep import Parts
 from mission.mission_file import AlternateTable, Mission, MissionFile
 from mission.segments import AnySegment
 from mission.segments.acceleration import speed_span
+from mission.segments.approach import approach_speed
 from mission.segments.climb import Climb
 from mission.segments.cruise import Cruise
 from mission.segments.descent import APPROACH_HEIGHT, Descent
@@ -23,6 +24,7 @@ from mission.segments.loiter import Loiter
 
 HOLD_HEIGHT = APPROACH_HEIGHT  # 1,500 ft: ICAO Annex 6 Part I, 4.3.6.3 (from memory)
 _SAME_MACH = 1e-6
+_AIRBORNE = ("climb", "acceleration", "cruise", "loiter", "descent", "approach")
 
 
 @dataclass(frozen=True)
@@ -52,6 +54,8 @@ class _Laid:
 
     def lay(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:
         """One segment, with a bridge before it where the speed jumps."""
+        if self.here.on_ground and segment.kind in _AIRBORNE:
+            raise InputRefused("the aircraft stands on the ground; put a take-off before it")
         self.bridge(segment, purpose)
         self.here = self.here.now(row=len(self.rows))
         spans, self.here = segment.lay(self.here)
@@ -153,7 +157,7 @@ def _refuse_rest(mission: Mission, spans: list[Span]) -> None:
 
 
 def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
-    """The reserve flight: alternate, then the final hold; its distance, if any."""
+    """The reserve flight: alternate from a go-around, then the final hold; its distance, if any."""
     reserves = written.reserves
     elevation = written.destination.elevation
     start = laid.here.now(
@@ -168,7 +172,12 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
         alternate = reserves.alternate
         distance = alternate.distance
         elevation = elevation if alternate.elevation is None else alternate.elevation
-        laid.here = start.now(distance=distance, destination_elevation=elevation)
+        laid.here = start.now(
+            pressure_altitude=start.departure_elevation,
+            speed=approach_speed(start),
+            distance=distance,
+            destination_elevation=elevation,
+        )
         for segment in _alternate_segments(alternate, elevation):
             try:
                 laid.lay(segment, "reserve")

@@ -75,7 +75,7 @@ def flight_log(
 
 def _apart(tables: list[Table]) -> list[RenderableType]:
     """Tables with an empty line between them."""
-    spaced: list[RenderableType] = [item for table in tables for item in (table, Text())]
+    spaced: list[RenderableType] = [item for table in tables for item in (table, Text(" "))]
     return spaced[:-1]
 
 

@@ -40,9 +40,10 @@ def ruled_table(columns: Sequence[Column]) -> Table:
     table = Table(
         box=_RULED, show_edge=False, pad_edge=False, padding=0, header_style="", safe_box=False
     )
+    lines = max(column.header.count("\n") for column in columns)
     for column in columns:
         table.add_column(
-            column.header,
+            column.header + "\n" * (lines - column.header.count("\n")),
             justify=column.justify,
             no_wrap=not column.is_wrapped,
             overflow="fold",

@@ -15,11 +15,11 @@ from mission.outputs.units import ABSENT, METRIC, Scale, Units, flight_level, nu
 from mission.results import Flight, SegmentLog, Steps
 
 Array = NDArray[np.float64]
-_BAR = 6  # characters at 100 columns
+_LEAST_BAR, _BAR = 4, 16  # characters for a share of 100 %
+_LEAST_NAME = 20  # characters; with less for the names the rows become two tables
 _EIGHTHS = " ▏▎▍▌▋▊▉"
 _IDLE = ("flight_idle", "ground_idle")
 _LARGE_CONSUMPTION = 100.0  # shown without decimals from here on
-_ONE_TABLE = 100  # columns that the table needs to stand in one piece
 
 
 @dataclass(frozen=True)
@@ -90,7 +90,7 @@ def consumption_text(units: Units, value: float) -> str:
     shown = value / units.specific_fuel_consumption.size
     if abs(shown) >= _LARGE_CONSUMPTION:
         return number(shown, 0)
-    return number(shown, 2 if units is METRIC else 3)
+    return number(shown, 2 if units is METRIC or shown >= 10.0 else 3)
 
 
 def altitude_header(units: Units) -> str:
@@ -124,10 +124,6 @@ class _Filled:
     header: str
     cell: Callable[[SegmentLog], str]
     total: str = ""
-
-    def cells(self, logs: Sequence[SegmentLog]) -> list[str]:
-        """Its text for every row."""
-        return [self.cell(log) for log in logs]
 
 
 def _burnt(flight: Flight, scales: Scales, bar_length: int) -> list[_Filled]:
@@ -180,37 +176,62 @@ def _state(flight: Flight, scales: Scales) -> list[_Filled]:
 def segment_tables(
     flight: Flight, shown: Sequence[SegmentLog], scales: Scales, width: int, *, with_total: bool
 ) -> list[Table]:
-    """The rows of a log as one table, or as two of fewer columns where it is narrow."""
-    is_wide = width >= _ONE_TABLE
-    burnt, where, state = (
-        _burnt(flight, scales, _BAR if is_wide else 2 * _BAR),
-        _where(scales),
-        _state(flight, scales),
-    )
-    groups = [burnt + where + state] if is_wide else [burnt + where, state]
-    return [_table(shown, group, width, with_total=with_total) for group in groups]
+    """The rows of a log as one table, or as two where that would squeeze the names."""
+    shape = _Shape(shown, width, with_total)
+    where, state = _where(scales), _state(flight, scales)
+
+    def with_bar(wanted: int, others: list[_Filled]) -> tuple[int, list[_Filled]]:
+        """Columns whose bar takes what the names leave, and the room that the names then have."""
+        room = shape.room_for_names([*_burnt(flight, scales, _LEAST_BAR), *others])
+        longer = min(max(room - wanted, 0), _BAR - _LEAST_BAR)
+        return room - longer, [*_burnt(flight, scales, _LEAST_BAR + longer), *others]
+
+    room, columns = with_bar(_LEAST_NAME, [*where, *state])
+    if room >= _LEAST_NAME:
+        return [shape.table(columns)]
+    return [shape.table(with_bar(shape.longest_name, where)[1]), shape.table(state)]
 
 
-def _table(
-    shown: Sequence[SegmentLog], filled: list[_Filled], width: int, *, with_total: bool
-) -> Table:
-    columns = [item.cells(shown) for item in filled]
-    taken = [
-        max(len(text) for text in [*item.header.split("\n"), item.total, *cells])
-        for item, cells in zip(filled, columns, strict=True)
-    ]
-    name_width = width - INDENT - sum(taken) - len(taken)
-    table = ruled_table([words("segment"), *(Column(item.header) for item in filled)])
-    rows = list(zip(shown, *columns, strict=True))
-    mission = [row for row in rows if row[0].purpose == "mission"]
-    for log, *cells in mission:
-        table.add_row(fold(log.name, name_width), *cells)
-    if with_total:
-        table.add_section()
-        table.add_row("block total", *(item.total for item in filled))
-    if len(rows) > len(mission):
-        table.add_section()
-        table.add_row("reserve flight:")
-        for log, *cells in rows[len(mission) :]:
-            table.add_row(fold(log.name, name_width), *cells)
-    return table
+@dataclass(frozen=True)
+class _Shape:
+    """Rows to show, the width there is, and whether a line of totals stands under them."""
+
+    shown: Sequence[SegmentLog]
+    width: int
+    with_total: bool
+
+    def room_for_names(self, filled: Sequence[_Filled]) -> int:
+        """Characters left for the names beside some columns."""
+        taken = [
+            max(len(text) for text in [*item.header.split("\n"), item.total, *self.cells(item)])
+            for item in filled
+        ]
+        return self.width - INDENT - sum(taken) - len(taken)
+
+    @property
+    def longest_name(self) -> int:
+        """Characters of the longest name."""
+        return max(len(log.name) for log in self.shown)
+
+    def cells(self, item: _Filled) -> list[str]:
+        """Text of a column for every row."""
+        return [item.cell(log) for log in self.shown]
+
+    def table(self, filled: Sequence[_Filled]) -> Table:
+        """The mission's rows, their total, and the reserve flight below it."""
+        table = ruled_table([words("segment"), *(Column(item.header) for item in filled)])
+        room = self.room_for_names(filled)
+        names = [fold(log.name, room) for log in self.shown]
+        rows = list(zip(names, *(self.cells(item) for item in filled), strict=True))
+        count = sum(log.purpose == "mission" for log in self.shown)
+        for row in rows[:count]:
+            table.add_row(*row)
+        if self.with_total:
+            table.add_section()
+            table.add_row("block total", *(item.total for item in filled))
+        if rows[count:]:
+            table.add_section()
+            table.add_row("reserve flight:")
+        for row in rows[count:]:
+            table.add_row(*row)
+        return table

@@ -55,14 +55,19 @@ class Accelerate(Table):
 def speed_span(
     here: Here, altitude: float, begins: SpeedRule, ends: SpeedRule, rating: str
 ) -> Span:
-    """A level change of speed; an end that depends on mass is its neighbour's."""
+    """A level change of speed; an end that no rule gives beforehand is its neighbour's."""
+
+    def end(rule: SpeedRule) -> SpeedRule:
+        known = not rule.depends_on_mass or rule.kind == "stall"
+        return rule if known else SpeedRule("neighbour")
+
     return Span(
         segment=here.row,
         march="speed",
         rating=rating,
         start_altitude=altitude,
         end_altitude=altitude,
-        start_speed=SpeedRule("neighbour") if begins.depends_on_mass else begins,
-        end_speed=SpeedRule("neighbour") if ends.depends_on_mass else ends,
+        start_speed=end(begins),
+        end_speed=end(ends),
         is_reserve=here.is_reserve,
     )

@@ -6,11 +6,13 @@ from typing import Annotated, Literal
 
 from pydantic import Field
 
-from engine.quantities import Time
+from engine.errors import InputRefused
+from engine.quantities import FOOT, Time
 from engine.reading import Table
 from mission.march.span import Span, SpeedRule
 from mission.segments.here import Here
 
+HIGHEST_START = 5000.0 * FOOT  # above the destination; the way down is inside the time
 STALL_MULTIPLE = 1.3  # approach over stall speed; common practice, no source
 
 
@@ -24,12 +26,18 @@ class Approach(Table):
 
     def first_speed(self, here: Here) -> SpeedRule:
         """Speed this segment begins with, for the bridge before it."""
-        return SpeedRule("stall", STALL_MULTIPLE, here.aircraft.approach_lift_coefficient)
+        return approach_speed(here)
 
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """The span of the approach; the mission is on the ground after it."""
         altitude = here.altitude_or(here.pressure_altitude, "an approach")
-        speed = self.first_speed(here)
+        height = altitude - here.destination_elevation
+        if height > HIGHEST_START:
+            raise InputRefused(
+                f"begins {height / FOOT:,.0f} ft above the destination, at most "
+                f"{HIGHEST_START / FOOT:,.0f} ft is allowed; put a descent before it"
+            )
+        speed = approach_speed(here)
         span = Span(
             segment=here.row,
             march="time",
@@ -45,3 +53,8 @@ class Approach(Table):
         )
         landed = here.now(pressure_altitude=here.destination_elevation, speed=None, on_ground=True)
         return [span], landed
+
+
+def approach_speed(here: Here) -> SpeedRule:
+    """Speed of the approach, and of a go-around from it."""
+    return SpeedRule("stall", STALL_MULTIPLE, here.aircraft.approach_lift_coefficient)

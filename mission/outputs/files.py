@@ -1,0 +1,41 @@
+"""Writing JSON so that a reader never meets half a file."""
+
+from __future__ import annotations
+
+import json
+import os
+from pathlib import Path
+from typing import Any
+
+from engine.errors import InputRefused
+
+
+def json_text(record: dict[str, Any]) -> str:
+    """A record as JSON; a value that is no number raises ValueError, it is never written."""
+    return json.dumps(record, allow_nan=False, ensure_ascii=False, indent=1) + "\n"
+
+
+def check_target(target: str) -> None:
+    """Refuse a file that cannot be written before anything is computed."""
+    path = Path(target)
+    if path.is_dir():
+        raise InputRefused(f'"{target}" is a folder; name a file in it', key="--json")
+    if not path.absolute().parent.is_dir():
+        raise InputRefused(
+            f'there is no folder "{path.absolute().parent}" to write "{path.name}" in', key="--json"
+        )
+
+
+def write_text(target: str, text: str) -> None:
+    """Write to a temporary name beside the target, then rename; the old file stays until then."""
+    path = Path(os.path.realpath(target))
+    if path.exists() and not path.is_file():  # a device or a pipe is written to, not replaced
+        path.write_text(text, encoding="utf-8")
+        return
+    temporary = path.with_name(f".{path.name}.{os.getpid()}.tmp")
+    try:
+        with temporary.open("x", encoding="utf-8") as file:
+            file.write(text)
+        temporary.replace(path)
+    finally:
+        temporary.unlink(missing_ok=True)
