@@ -80,7 +80,7 @@ class CycleEngine:
         at_bottom = _Asked.at_one_rating(asked.flat, throttle, floors)
         most, least = self._solve(at_top, None), self._solve(at_bottom, None)
         top, bottom = self._finish(at_top, most), self._finish(at_bottom, least)
-        upper, lower = top.path.net_thrust(asked.flat), bottom.path.net_thrust(asked.flat)
+        upper, lower = top.net_thrust, bottom.net_thrust
         outcome = np.full(asked.thrust.size, Outcome.NOT_CONVERGED)
         outcome[bottom.is_believed & (asked.thrust < lower)] = Outcome.AT_IDLE
         outcome[top.is_believed & (asked.thrust > upper)] = Outcome.BEYOND_RATING
@@ -183,11 +183,12 @@ class CycleEngine:
         )
         with np.errstate(all="ignore"):
             shares = path.limits / asked.bounds
+            net_thrust = path.net_thrust(asked.flat)
+            physical = _is_physical(self.arrangement, path, is_lit=is_lit)
         binding = np.where(asked.is_ceiling, np.argmax(shares, axis=0), np.argmin(shares, axis=0))
         is_bounded = np.any(np.isfinite(asked.bounds) & (asked.bounds > 0.0), axis=0)
         binding = np.where(is_bounded, binding, -1)
-        physical = _is_physical(self.arrangement, path, is_lit=is_lit)
-        return _Finished(asked.flat, ahead, path, solution, shares, binding, physical)
+        return _Finished(asked.flat, ahead, path, solution, net_thrust, shares, binding, physical)
 
 
 @dataclass(frozen=True)
@@ -254,6 +255,7 @@ class _Finished:
     ahead: Stream
     path: Flowpath
     solution: Solution
+    net_thrust: Array
     limit_shares: Array
     binding_limit: NDArray[np.int64]
     is_physical: NDArray[np.bool_]
@@ -275,7 +277,7 @@ class _Finished:
         choking = np.stack([jet.choking for _, jet in self.path.jets.values()])
         return EngineState(
             flight=flight,
-            net_thrust=np.where(believed, self.path.net_thrust(self.flat), 0.0).reshape(shape),
+            net_thrust=np.where(believed, self.net_thrust, 0.0).reshape(shape),
             fuel_flow=np.where(believed, self.path.fuel_flow, 0.0).reshape(shape),
             outcome=outcome.reshape(shape),
             binding_limit=self.binding_limit.reshape(shape),

@@ -86,13 +86,14 @@ class Evidence:
 
     def account(self, shape: tuple[int, ...]) -> EnergyAccount:
         """The energy account; arrays of ``shape``."""
-        account = energy_account(
-            self.gas,
-            self.path,
-            self.flight,
-            self.lower_heating_value,
-            self.combustion_efficiency,
-        )
+        with np.errstate(all="ignore"):  # members without an answer
+            account = energy_account(
+                self.gas,
+                self.path,
+                self.flight,
+                self.lower_heating_value,
+                self.combustion_efficiency,
+            )
         return _reshaped(account, shape)
 
 

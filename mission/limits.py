@@ -58,14 +58,39 @@ def first_failure(
     *,
     closes: bool,
 ) -> Failure | None:
-    """The first hard limit passed: on the way, in the order flown, then of mass and fuel."""
-    for number, log in enumerate(logs):
-        tracks = [t for t in marched.tracks if t.span.segment == number]
-        passed = sorted(_passed_on_the_way(world, tracks, log), key=lambda failure: failure.step)
-        if passed:
-            return passed[0]
-    rest = _passed_distance(world, marched, plan)
-    return next(chain(rest, _passed_masses(world, written, total, logs, closes=closes)), None)
+    """The first hard limit passed: of loading, on the way in the order flown, then of the rest.
+
+    What fuel as needed comes to depends on the whole way, so that its limits are looked at last.
+    """
+    masses = list(_passed_masses(world, written, total, logs))
+    known_first = masses if written.fuel.load and closes else masses[:0]
+    on_the_way = (
+        failure
+        for number, log in enumerate(logs)
+        for failure in sorted(
+            _passed_on_the_way(world, [t for t in marched.tracks if t.span.segment == number], log),
+            key=lambda failure: failure.step,
+        )
+    )
+    in_order = chain(
+        _passed_payload(world, written, logs),
+        known_first,
+        on_the_way,
+        _passed_distance(world, marched, plan),
+        masses,
+        _passed_reserves(world, total, logs, closes=closes),
+    )
+    return next(in_order, None)
+
+
+def _passed_payload(
+    world: World, written: MissionFile, logs: tuple[SegmentLog, ...]
+) -> Iterator[Failure]:
+    """Zero-fuel mass, which no flight changes."""
+    empty = world.aircraft.operating_empty_mass + written.payload
+    most = world.aircraft.maximum_zero_fuel_mass
+    if empty > most * (1.0 + 1e-9):
+        yield Failure(logs[0].name, 0, "zero-fuel mass", empty, most, "kg", "carry less payload")
 
 
 def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> Iterator[Failure]:
@@ -124,43 +149,45 @@ def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array, Array]:
 
 
 def _passed_masses(
-    world: World,
-    written: MissionFile,
-    total: Totals,
-    logs: tuple[SegmentLog, ...],
-    *,
-    closes: bool,
+    world: World, written: MissionFile, total: Totals, logs: tuple[SegmentLog, ...]
 ) -> Iterator[Failure]:
-    """Limits of mass and fuel; those that loading meets stand before those that landing meets."""
+    """Limits of tanks and mass, those that loading meets before those that landing meets."""
     aircraft = world.aircraft
-    empty = aircraft.operating_empty_mass + written.payload
-    first, last = logs[0].name, [log for log in logs if log.purpose == "mission"][-1].name
+    first, last = logs[0].name, _last_of_mission(logs).name
+    lighter = "carry less payload or fly less far"
+    tanks = "load less fuel" if written.fuel.load else "shorten the mission or the reserves"
     for segment, what, value, bound, advice in (
-        (first, "zero-fuel mass", empty, aircraft.maximum_zero_fuel_mass, "carry less payload"),
-        (first, "usable fuel to load", total.loaded_fuel, aircraft.usable_fuel,
-         "shorten the mission or the reserves"),
-        (first, "ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass,
-         "carry less payload or fly less far"),
-        (first, "take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass,
-         "carry less payload or fly less far"),
+        (first, "usable fuel to load", total.loaded_fuel, aircraft.usable_fuel, tanks),
+        (first, "ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass, lighter),
+        (first, "take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass, lighter),
         (last, "landing mass", total.landing_mass, aircraft.maximum_landing_mass,
          "load less fuel or carry less payload"),
     ):  # fmt: skip
         if value > bound * (1.0 + 1e-9):
             yield Failure(segment, 0, what, value, bound, "kg", advice)
+
+
+def _last_of_mission(logs: tuple[SegmentLog, ...]) -> SegmentLog:
+    return [log for log in logs if log.purpose == "mission"][-1]
+
+
+def _passed_reserves(
+    world: World, total: Totals, logs: tuple[SegmentLog, ...], *, closes: bool
+) -> Iterator[Failure]:
+    """Fuel left at the stop below the reserves; named where the tanks run dry, if they do."""
     if closes and total.fuel_margin >= -1e-6 * max(total.loaded_fuel, 1.0):
         return
     dry = [log.name for log in logs if log.purpose == "mission" and log.fuel_left < -1e-6]
-    is_full = total.loaded_fuel > 0.999 * aircraft.usable_fuel
+    is_full = total.loaded_fuel > 0.999 * world.aircraft.usable_fuel
     yield Failure(
-        segment=dry[0] if dry else last,
+        segment=dry[0] if dry else _last_of_mission(logs).name,
         step=0,
         what="usable fuel left at the stop against the reserves to keep"
         + ("" if closes else " (no take-off mass closes: this flies all the fuel it can load)"),
         value=total.fuel_left,
         bound=total.reserve_fuel,
         unit="kg",
-        advice=("fly less far or carry less" if is_full or not closes else "load more fuel"),
+        advice="fly less far or carry less" if is_full or not closes else "load more fuel",
     )
 
 
