@@ -49,8 +49,8 @@ class ConstantConsumptionEngine:
         start: Array | None = None,
     ) -> EngineState:
         """State at ratings and required thrusts; idle is no thrust and no fuel."""
-        wanted = np.asarray(np.nan if net_thrust is None else net_thrust, dtype=float)
-        shape = np.broadcast_shapes(flight.shape, wanted.shape)
+        wanted = np.asarray(np.nan if net_thrust is None else net_thrust, dtype=np.float64)
+        shape = np.broadcast_shapes(flight.shape, wanted.shape, np.shape(rating))
         flight = flight.with_mach(np.broadcast_to(flight.mach, shape))
         wanted = np.broadcast_to(wanted, shape)
         names = np.broadcast_to(rating, shape)

@@ -48,7 +48,7 @@ class CycleEngine:
     ) -> EngineState:
         """State at ratings and required thrusts; see :class:`engine.interface.Engine`."""
         wanted = np.nan if net_thrust is None else net_thrust
-        flight, thrust = _broadcast(flight, wanted)
+        flight, thrust = _broadcast(flight, wanted, np.shape(rating))
         names, which = np.unique(np.broadcast_to(rating, flight.shape), return_inverse=True)
         throttles, bounds = zip(*(self._bounds(str(name)) for name in names), strict=True)
         asked = _Asked(
@@ -273,6 +273,7 @@ class _Finished:
         outcome = np.where(solution.is_converged & ~self.is_physical, Outcome.UNPHYSICAL, outcome)
         outcome = np.where(solution.is_converged, outcome, Outcome.NOT_CONVERGED)
         believed = self.is_believed & (outcome != Outcome.NOT_CONVERGED)
+        unknowns = np.where(solution.is_converged, solution.unknowns, np.nan)
         shape = flight.shape
         choking = np.stack([jet.choking for _, jet in self.path.jets.values()])
         return EngineState(
@@ -282,9 +283,9 @@ class _Finished:
             outcome=outcome.reshape(shape),
             binding_limit=self.binding_limit.reshape(shape),
             limit_names=LIMIT_NAMES,
-            limit_shares=self.limit_shares.reshape(-1, *shape),
-            choking=choking.reshape(-1, *shape),
-            unknowns=np.where(solution.is_converged, solution.unknowns, np.nan).reshape(-1, *shape),
+            limit_shares=self.limit_shares.reshape(len(LIMIT_NAMES), *shape),
+            choking=choking.reshape(len(choking), *shape),
+            unknowns=unknowns.reshape(len(unknowns), *shape),
             residual=solution.residual.reshape(shape),
             iterations=solution.iterations.reshape(shape),
             evidence=Evidence(
@@ -336,10 +337,12 @@ def _start(unknowns: Array | None) -> Array | None:
     return None if unknowns is None else unknowns.reshape(len(unknowns), -1)
 
 
-def _broadcast(flight: FlightCondition, thrust: ArrayLike) -> tuple[FlightCondition, Array]:
-    """Flight condition and thrust brought to one shape."""
+def _broadcast(
+    flight: FlightCondition, thrust: ArrayLike, rating_shape: tuple[int, ...]
+) -> tuple[FlightCondition, Array]:
+    """Flight condition and thrust brought to one shape, that of the ratings included."""
     wanted = np.asarray(thrust, dtype=np.float64)
-    shape = np.broadcast_shapes(flight.shape, wanted.shape)
+    shape = np.broadcast_shapes(flight.shape, wanted.shape, rating_shape)
     if flight.shape != shape:
         flight = flight.with_mach(np.broadcast_to(flight.mach, shape))
     return flight, np.broadcast_to(wanted, shape)

@@ -25,15 +25,15 @@ class InputRefused(LonglegsError, ValueError):  # noqa: N818  says what happened
         self.key = key
 
     def __reduce__(self) -> tuple[object, ...]:
-        return (_input_refused, (self.what, self.where, self.key))
+        return (_rebuilt, (type(self), self.what, self.where, self.key), self.__dict__)
 
     def __str__(self) -> str:
         place = ": ".join(part for part in (self.where, self.key) if part)
         return f"{place}: {self.what}" if place else self.what
 
 
-def _input_refused(what: str, where: str, key: str) -> InputRefused:
-    return InputRefused(what, where=where, key=key)
+def _rebuilt(kind: type[InputRefused], what: str, where: str, key: str) -> InputRefused:
+    return kind(what, where=where, key=key)
 
 
 class CycleCannotRun(InputRefused):

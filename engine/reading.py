@@ -107,7 +107,9 @@ def _in_words(found: Any, model: type[BaseModel]) -> str:
         message = found["msg"].replace("Input should be", "it should be")
         return f"= {found['input']!r}; {message}"
     allowed = _keys_beside(model, found["loc"])
-    close = difflib.get_close_matches(str(found["loc"][-1]), allowed, n=1)
+    written = str(found["loc"][-1])
+    close = difflib.get_close_matches(written, allowed, n=1)
+    close = close or [name for name in allowed if name.startswith(written)]
     hint = f"; did you mean {close[0]}?" if close else "."
     return f"unknown key{hint} Allowed here: {', '.join(allowed)}"
 

@@ -65,12 +65,14 @@ def names_of(kind: Kind) -> list[str]:
     return [profile.name for profile in built_in() if profile.kind == kind]
 
 
-def find(name: str, kind: Kind, *, folder: Path | None = None, asked_by: str = "") -> Path:
+def find(
+    name: str, kind: Kind, *, folder: Path | None = None, where: str = "", key: str = ""
+) -> Path:
     """The file that a name stands for.
 
     A file below ``folder`` (the current one where none is given), with or without ``.toml``, or
     else the built-in profile of that name and kind. Raises :class:`InputRefused` listing what
-    there is; ``asked_by`` says who named it.
+    there is; ``where`` and ``key`` say who named it.
     """
     base = Path() if folder is None else folder
     for candidate in (base / name, base / f"{name}{_SUFFIX}"):
@@ -80,7 +82,7 @@ def find(name: str, kind: Kind, *, folder: Path | None = None, asked_by: str = "
     for profile in built_in():
         if profile.name == short and profile.kind == kind:
             return profile.path
-    raise InputRefused(_nothing_found(name, kind, base), where=asked_by, key=kind)
+    raise InputRefused(_nothing_found(name, kind, base), where=where, key=key or kind)
 
 
 def _nothing_found(name: str, kind: Kind, base: Path) -> str:
@@ -95,8 +97,8 @@ def _nothing_found(name: str, kind: Kind, base: Path) -> str:
     else:
         reason = f'"{name}" is neither a file nor a built-in {kind}'
     near = difflib.get_close_matches(name, [*known, *_files_in(base)], n=1)
-    hint = f'; did you mean "{near[0]}"?' if near else ";"
-    return f"{reason}{hint} built-in {_PLURAL[kind]}: {', '.join(known) or 'none'}"
+    hint = f'; did you mean "{near[0]}"? Built-in' if near else "; built-in"
+    return f"{reason}{hint} {_PLURAL[kind]}: {', '.join(known) or 'none'}"
 
 
 def _article(kind: Kind) -> str:

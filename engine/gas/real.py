@@ -200,7 +200,7 @@ class RealGas:
         flat = temperature.ravel()
         powers = basis(flat)
         coldest, hottest = flat.min(initial=RANGE_JOINT), flat.max(initial=0.0)
-        if not hottest > RANGE_JOINT:
+        if hottest <= RANGE_JOINT:  # not so where one of them is no number
             values = low @ powers
         elif coldest > RANGE_JOINT:
             values = high @ powers

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from mission.march.asking import ask
 from mission.march.nodes import integration_matrix, positions
 from mission.march.span import Span
-from mission.march.tracks import Track, first_track, refined_track, request_of, set_nodes
+from mission.march.tracks import Track, first_track, refined, request_of, set_nodes
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -99,14 +99,10 @@ def march(
     ``settled`` of itself.
     """
     tracks = _first_tracks(world, parts, count, stop_mass, start)
-    totals = {False: parts.mission_distance, True: parts.reserve_distance}
-    rests = {part: np.atleast_1d(total or 0.0) for part, total in totals.items()}
-    if start is not None:
-        rests = _rest_distances(totals, tracks, start.integrals.ground)
+    distances = {False: parts.mission_distance, True: parts.reserve_distance}
     for sweep in range(1, MOST_SWEEPS + 1):  # noqa: B007  (its last value is reported)
-        _solve_engines(world, tracks, rests)
-        integrals = _integrate(world, tracks, count)
-        rests = _rest_distances(totals, tracks, integrals.ground)
+        _ask_engine(world, tracks)
+        integrals = _integrate(world, tracks, distances)
         stop_mass = close(stop_mass, integrals)
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))
         is_lost = not np.all(np.isfinite(stop_mass)) or np.any(stop_mass > _HEAVIEST)
@@ -121,58 +117,58 @@ def _first_tracks(
     tracks: list[Track] = []
     for index, span in enumerate([*parts.mission, *parts.reserve]):
         if start is not None:
-            tracks.append(refined_track(world, span, start.tracks[index], count, stop_mass))
+            track = first_track(world, span, count, stop_mass, None)
+            tracks.append(refined(track, start.tracks[index], stop_mass - start.stop_mass))
         else:
             before = tracks[-1] if tracks else None
             tracks.append(first_track(world, span, count, stop_mass, before))
     return tracks
 
 
-def _rest_distances(
-    totals: dict[bool, float | None], tracks: list[Track], ground: Sequence[Array]
-) -> dict[bool, Array]:
-    """Distance left for the cruise that flies the rest, by part (reserve or not), (members,)."""
-    rests: dict[bool, Array] = {}
-    for is_reserve, total in totals.items():
-        flown = [
-            covered[-1]
-            for track, covered in zip(tracks, ground, strict=False)
-            if track.span.is_reserve == is_reserve and not track.span.takes_rest
-        ]
-        rests[is_reserve] = np.atleast_1d((total or 0.0) - np.sum(flown, axis=0))
-    return rests
-
-
-def _solve_engines(world: World, tracks: list[Track], rests: dict[bool, Array]) -> None:
-    """Ask the engine for every span whose condition moved, and set the nodes of all."""
+def _ask_engine(world: World, tracks: list[Track]) -> None:
+    """One engine call for every span whose condition moved."""
     asked = {index: request_of(world, tracks, index) for index in range(len(tracks))}
     requests = {index: request for index, request in asked.items() if request is not None}
     for index, answer in ask(world.engine, requests).items():
         tracks[index].answer = answer
-    for track in tracks:
-        set_nodes(world, track, rests[track.span.is_reserve])
 
 
-def _integrate(world: World, tracks: list[Track], count: int) -> Integrals:
-    """Rates at the nodes made into integrals along each span."""
+def _integrate(world: World, tracks: list[Track], distances: dict[bool, float | None]) -> Integrals:
+    """Nodes of all spans and the integrals along them; what flies the rest of a distance last.
+
+    The rest then answers to the other spans of this sweep, not of the one before, which would
+    make the sweeps swing.
+    """
+    sums: dict[int, tuple[Array, Array, Array, Array]] = {}
+    left = {part: np.atleast_1d(total or 0.0) for part, total in distances.items()}
+    for index in sorted(range(len(tracks)), key=lambda i: tracks[i].span.takes_rest):
+        track = tracks[index]
+        part = track.span.is_reserve
+        set_nodes(world, track, left[part])
+        sums[index] = _integrals_along(world, track)
+        if not track.span.takes_rest:
+            left[part] = left[part] - sums[index][2][-1]
+    fuel, time, ground, air = zip(*(sums[index] for index in range(len(tracks))), strict=True)
+    return Integrals(list(fuel), list(time), list(ground), list(air))
+
+
+def _integrals_along(world: World, track: Track) -> tuple[Array, Array, Array, Array]:
+    """Fuel [kg], time [s], ground and air distance [m] from the start of a span to its nodes."""
+    nodes, span, count = track.nodes, track.span, len(track.mass)
+    if nodes is None:
+        booked = span.booked_fuel + span.booked_fraction * track.mass[0]
+        none = np.zeros_like(track.mass)
+        return positions(count)[:, None] * booked, none, none, none
+    in_air = span.march not in ("roll", "stand")
+    forward = nodes.flight.true_airspeed * np.cos(nodes.path_angle) * in_air
+    covered = (forward + world.tailwind) * (in_air and span.gains_distance)
     matrix = integration_matrix(count)
-    sums = Integrals([], [], [], [])
-    for track in tracks:
-        nodes, span = track.nodes, track.span
-        if nodes is None:
-            share = positions(count)[:, None]
-            sums.fuel.append(share * (span.booked_fuel + span.booked_fraction * track.mass[0]))
-            for others in (sums.time, sums.ground, sums.air):
-                others.append(np.zeros_like(track.mass))
-            continue
-        in_air = span.march not in ("roll", "stand")
-        forward = nodes.flight.true_airspeed * np.cos(nodes.path_angle) * in_air
-        covered = (forward + world.tailwind) * (in_air and span.gains_distance)
-        sums.fuel.append(matrix @ (nodes.propulsion.fuel_flow * nodes.time_rate))
-        sums.time.append(matrix @ nodes.time_rate)
-        sums.ground.append(matrix @ (covered * nodes.time_rate))
-        sums.air.append(matrix @ (forward * nodes.time_rate))
-    return sums
+    return (
+        matrix @ (nodes.propulsion.fuel_flow * nodes.time_rate),
+        matrix @ nodes.time_rate,
+        matrix @ (covered * nodes.time_rate),
+        matrix @ (forward * nodes.time_rate),
+    )
 
 
 def _update_masses(

@@ -63,14 +63,15 @@ def first_track(
     return track
 
 
-def refined_track(world: World, span: Span, old: Track, count: int, stop_mass: Array) -> Track:
-    """A span as an earlier solution of it (or of its like) left it, at a count of nodes."""
-    track = first_track(world, span, count, stop_mass, None)
-    to_new = interpolation_matrix(len(old.mass), count)
-    shape = track.mass.shape
-    track.mass = np.broadcast_to(to_new @ old.mass, shape).copy()
-    if span.march != "altitude":
-        track.mach = np.broadcast_to(to_new @ old.mach, shape).copy()
+def refined(track: Track, old: Track, shift: Array) -> Track:
+    """A first track as an earlier solution of its span, or of its like, left it.
+
+    ``shift`` (members,) is what the mass at the stop differs by [kg].
+    """
+    to_new = interpolation_matrix(len(old.mass), len(track.mass))
+    track.mass = to_new @ old.mass + shift
+    if track.span.march != "altitude":
+        track.mach = np.broadcast_to(to_new @ old.mach, track.mass.shape).copy()
     if old.unknowns is not None and old.unknowns.size:
         track.start = to_new @ old.unknowns
     return track

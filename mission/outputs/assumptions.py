@@ -23,6 +23,7 @@ _UNITS = {
     "compressor_delivery_pressure": ("bar", 1e5),
     "turbine_entry_temperature": ("K", 1.0),
 }
+_SAID_ELSEWHERE = ("note", "as_needed")  # of no weight, or told at the head of the log
 _LINE = re.compile(r"^(?:(?P<owner>segment \d+)[^:]*: )?(?P<key>[\w.]+) = (?P<value>.*)$")
 
 
@@ -49,6 +50,8 @@ def _sentence(lines: list[str]) -> str:
             others.append(line)
             continue
         path, _, key = found["key"].rpartition(".")
+        if key in _SAID_ELSEWHERE:
+            continue
         owner = found["owner"] or in_plain_words(path.rpartition(".")[2])
         shown = f"{in_plain_words(key)} {_value(key, found['value'])}"
         owners.setdefault((key, shown), []).append(owner)

@@ -7,6 +7,7 @@ from mission.outputs.segment_rows import Scales, altitude_text
 from mission.outputs.units import METRIC, Scale, Unit, Units, number
 from mission.results import Failure, Flight, SegmentLog
 
+_LARGEST_PERCENT = 1000.0  # beyond it a share of the bound says nothing
 
 
 def limit_unit(name: str, unit: str, units: Units) -> Unit:
@@ -29,9 +30,9 @@ def limit_scale(name: str, unit: str, values: list[float], units: Units) -> Scal
     return scale
 
 
-def failure_headline(failure: Failure) -> str:
-    """Half a line for the head of a log or the row of a table."""
-    return f'cannot be flown: {failure.what}, in "{failure.segment}" at step {failure.step}'
+def failure_headline(failure: Failure, units: Units) -> str:
+    """What failed and where in one sentence, for the head of a log or the row of a table."""
+    return f'{shortfall(failure, units)}; in "{failure.segment}" at step {failure.step}'
 
 
 def failure_statement(flight: Flight, units: Units, scales: Scales) -> list[tuple[str, str]]:
@@ -55,7 +56,8 @@ def shortfall(failure: Failure, units: Units) -> str:
     misses = abs(failure.value - failure.bound)
     word = "below" if failure.value < failure.bound else "above"
     by = scale.full(misses).strip()
-    share = f" ({number(100.0 * misses / abs(failure.bound), 1)} %)" if failure.bound else ""
+    percent = 100.0 * misses / abs(failure.bound) if failure.bound else _LARGEST_PERCENT
+    share = f" ({number(percent, 1)} %)" if percent < _LARGEST_PERCENT else ""
     return f"{failure.what}: {value} is {word} {bound}, by {by}{share}"
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from dataclasses import replace
 
 from rich.console import Group, RenderableType
 from rich.table import Table
@@ -49,6 +50,9 @@ def flight_log(
     scales = scales_of(flight, units)
     shown = flown_segments(flight)
     on_the_way = fails_on_the_way(flight)
+    if on_the_way and flight.failure is not None:
+        last = shown[-1]
+        shown = (*shown[:-1], replace(last, name=f"{last.name}, to step {flight.failure.step}"))
     tables = segment_tables(flight, shown, scales, width, with_total=not on_the_way)
     parts: list[RenderableType] = [
         _heading(flight, setting, units),
@@ -95,8 +99,8 @@ def _heading(flight: Flight, setting: Setting, units: Units) -> Group:
 def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
     """Block fuel, time and whether the fuel is enough, with the doubt beside it."""
     if flight.failure is not None:
-        verdict = failure_headline(flight.failure)
-        return Group(Text(), Text(f"It {verdict}; the reason stands below the log.", "bold"))
+        reason = failure_headline(flight.failure, scales.units)
+        return Group(Text(), Text(f"Cannot be flown: {reason}", "bold"))
     total, fuel = flight.totals, scales.fuel
     minutes = number(total.block_time / 60.0, 1)
     loaded = fuel.full(total.loaded_fuel)
@@ -246,7 +250,7 @@ def _margins(flight: Flight, units: Units) -> Group:
             words("limit"),
             Column("value"),
             Column("bound"),
-            words("", is_wrapped=False),
+            words("unit", is_wrapped=False),
             Column("room\n%"),
             words("where it is least"),
         ]
@@ -254,13 +258,14 @@ def _margins(flight: Flight, units: Units) -> Group:
     least = least_margin(flight.margins)
     for margin in flight.margins:
         scale = limit_scale(margin.name, margin.unit, [margin.value, margin.bound], units)
-        where = margin.where + (" (least of all)" if margin is least else "")
+        said = ["" if margin.is_met else "NOT MET", margin.where]
+        said += ["(least of all)"] if margin is least else []
         table.add_row(
             margin.name,
             scale.bare(margin.value),
             scale.bare(margin.bound),
             scale.unit.name,
             number(100.0 * room(margin), 1 if room(margin) < 1.0 else 0),
-            where.strip() if margin.is_met else f"NOT MET {where}".strip(),
+            " ".join(part for part in said if part),
         )
     return section("Margins", table)

@@ -35,10 +35,15 @@ def words(header: str, *, is_wrapped: bool = True) -> Column:
     return Column(header, "left", is_wrapped)
 
 
-def ruled_table(columns: Sequence[Column]) -> Table:
-    """An empty table: headers over a thin rule, one space between columns, no frame."""
+def ruled_table(columns: Sequence[Column], *, gap: int = 2) -> Table:
+    """An empty table: headers over a thin rule, ``gap`` spaces between columns, no frame."""
     table = Table(
-        box=_RULED, show_edge=False, pad_edge=False, padding=0, header_style="", safe_box=False
+        box=_RULED,
+        show_edge=False,
+        pad_edge=False,
+        padding=(0, gap - 1, 0, 0),
+        header_style="",
+        safe_box=False,
     )
     lines = max(column.header.count("\n") for column in columns)
     for column in columns:

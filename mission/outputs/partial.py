@@ -13,12 +13,15 @@ Array = NDArray[np.float64]
 
 
 def fails_on_the_way(flight: Flight) -> bool:
-    """Whether a flight ends in the air; a limit of mass or tank leaves the whole log to show."""
+    """Whether a flight ends before its log does.
+
+    A mass or a fuel that fails where the mission begins or stops leaves the whole log to show.
+    """
     failure = flight.failure
     if failure is None:
         return False
-    is_loading = failure.unit == "kg" and failure.segment == flight.segments[0].name
-    return not is_loading
+    mission = [log.name for log in flight.segments if log.purpose == "mission"]
+    return failure.unit != "kg" or failure.segment not in (mission[0], mission[-1])
 
 
 def flown_segments(flight: Flight) -> tuple[SegmentLog, ...]:
@@ -38,7 +41,7 @@ def failing_row(failure: Failure, names: list[str]) -> int:
 def _cut(log: SegmentLog, step: int) -> SegmentLog:
     """A row up to and including one of its steps."""
     last = len(log.steps.mass) - 1
-    if step >= last or log.kind == "allowance":
+    if step >= last:
         return log
     pieces = {f.name: getattr(log.steps, f.name)[: step + 1] for f in fields(Steps)}
     steps = Steps(**pieces)

@@ -126,18 +126,19 @@ class _Filled:
     total: str = ""
 
 
-def _burnt(flight: Flight, scales: Scales, bar_length: int) -> list[_Filled]:
+def _burnt(flight: Flight, scales: Scales, bar_length: int, whole: float) -> list[_Filled]:
+    """What a segment burns, its share of ``whole`` [kg], and how long and far it goes."""
     total, fuel, distance = flight.totals, scales.fuel, scales.distance
-    block = total.block_fuel or 1.0
+    of = "block" if whole == total.block_fuel else "these"
 
     def share(log: SegmentLog) -> str:
-        part = log.fuel / block
+        part = log.fuel / whole if whole > 0.0 else 0.0
         return f"{bar(part, bar_length):<{bar_length}}{number(100.0 * part, 1):>5}"
 
     return [
         _Filled(f"fuel\n{fuel.unit.name}", lambda log: fuel.bare(log.fuel),
                 fuel.bare(total.block_fuel)),
-        _Filled("share of\nblock %", share, "100.0"),
+        _Filled(f"share of\n{of} %", share, "100.0"),
         _Filled(f"time\n{scales.units.time.name}", lambda log: number(log.time / 60.0, 1),
                 number(total.block_time / 60.0, 1)),
         _Filled(f"dist.\n{distance.unit.name}", lambda log: distance.bare(log.ground_distance),
@@ -149,7 +150,8 @@ def _where(scales: Scales) -> list[_Filled]:
     altitude = partial(altitude_text, scales.units)
     return [
         _Filled(
-            altitude_header(scales.units), lambda log: altitude(float(log.steps.pressure_altitude[-1]))
+            altitude_header(scales.units),
+            lambda log: altitude(float(log.steps.pressure_altitude[-1])),
         ),
         _Filled("Mach", lambda log: number(float(log.steps.mach[-1]), 3)),
     ]
@@ -179,12 +181,13 @@ def segment_tables(
     """The rows of a log as one table, or as two where that would squeeze the names."""
     shape = _Shape(shown, width, with_total)
     where, state = _where(scales), _state(flight, scales)
+    whole = flight.totals.block_fuel if with_total else sum(log.fuel for log in shown)
 
     def with_bar(wanted: int, others: list[_Filled]) -> tuple[int, list[_Filled]]:
         """Columns whose bar takes what the names leave, and the room that the names then have."""
-        room = shape.room_for_names([*_burnt(flight, scales, _LEAST_BAR), *others])
+        room = shape.room_for_names([*_burnt(flight, scales, _LEAST_BAR, whole), *others])
         longer = min(max(room - wanted, 0), _BAR - _LEAST_BAR)
-        return room - longer, [*_burnt(flight, scales, _LEAST_BAR + longer), *others]
+        return room - longer, [*_burnt(flight, scales, _LEAST_BAR + longer, whole), *others]
 
     room, columns = with_bar(_LEAST_NAME, [*where, *state])
     if room >= _LEAST_NAME:
@@ -219,7 +222,7 @@ class _Shape:
 
     def table(self, filled: Sequence[_Filled]) -> Table:
         """The mission's rows, their total, and the reserve flight below it."""
-        table = ruled_table([words("segment"), *(Column(item.header) for item in filled)])
+        table = ruled_table([words("segment"), *(Column(item.header) for item in filled)], gap=1)
         room = self.room_for_names(filled)
         names = [fold(log.name, room) for log in self.shown]
         rows = list(zip(names, *(self.cells(item) for item in filled), strict=True))

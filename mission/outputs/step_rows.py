@@ -37,7 +37,7 @@ def step_sections(shown: Sequence[SegmentLog], scales: Scales, width: int) -> li
 
 def _steps(log: SegmentLog, scales: Scales, *, is_wide: bool) -> Table:
     cells = _cells(log, scales, is_wide=is_wide)
-    table = ruled_table([Column("step"), *(column for column, _ in cells)])
+    table = ruled_table([Column("step"), *(column for column, _ in cells)], gap=1)
     for step in range(len(log.steps.mass)):
         table.add_row(str(step), *(cell(step) for _, cell in cells))
     return table

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from mission_files import aircraft_content, fly_files, mission_content, segment
+from mission_files import fly_files, mission_content, segment
 from scipy.optimize import brentq
 
 from engine.atmosphere import flight_condition
@@ -198,11 +198,11 @@ def test_altitude_of_constant_energy(mach: float, height: float, altitude: float
 
 @pytest.mark.source(RAYMER_ENERGY)
 def test_energy_height() -> None:
-    # The book rounds the speed of sound to 994.7 ft/s, 0.01 % off, and prints five digits:
-    # 0.02 % of the 12,450 ft of speed and half a digit, together 7 ft with its own rounding of 4 ft.
+    # With the book's speed of sound, 994.7 ft/s, its own formula gives 42,454 ft, 7 ft above the
+    # printed value: that rounding of the book's and half a digit of its speed of sound, 1 ft.
     flight = flight_condition(30000.0 * FOOT, 0.9)
     found = float(energy_height(30000.0 * FOOT, flight.true_airspeed)) / FOOT
-    assert found == pytest.approx(42447.0, abs=10.0)
+    assert found == pytest.approx(42447.0, abs=8.0)
 
 
 @pytest.mark.source(NICOLAI_ENERGY)
@@ -230,8 +230,9 @@ def test_specific_energy_is_what_a_climb_gains(tmp_path: Path) -> None:
         refinement=8,
     )
     steps = segment(flight, "from 10,000 to 40,000 ft of energy").steps
-    # What thrust less drag has done along the way, over weight: trapezia on the fine log.
+    # What thrust less drag has done along the way, over weight. Two altitudes to 1 ft each, and
+    # trapezia on 130 steps: 1.5 ft, by halving them.
     power = (steps.thrust - steps.drag) * steps.true_airspeed / steps.weight
     gained = np.trapezoid(power, steps.elapsed_time) / FOOT
     # Two altitudes to a foot each, and trapezia on nine nodes a span: 0.3 % by halving the steps.
-    assert gained == pytest.approx(30000.0, rel=0.006)
+    assert gained == pytest.approx(30000.0, abs=4.0)

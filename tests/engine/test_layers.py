@@ -1,0 +1,117 @@
+"""The layers of the house, by walking its imports."""
+
+from __future__ import annotations
+
+import ast
+import importlib
+from pathlib import Path
+
+import pytest
+
+import engine
+
+ROOT = Path(__file__).parents[2]
+# A room may import from rooms named before it and from itself.
+FLOORS = [
+    {"errors", "fuels", "quantities"},
+    {"reading"},
+    {"atmosphere"},
+    {"gas"},
+    {"parts"},
+    {"cycles"},
+    {"energy", "matching"},
+    {"interface"},
+    {"cycle_engine", "constant_consumption", "input_model"},
+    {"loading"},
+]
+ROOF = {"mission/outputs", "mission/command_line.py"}
+
+
+def sources(package: str) -> list[Path]:
+    return sorted((ROOT / package).rglob("*.py"))
+
+
+def imported(tree: ast.AST) -> set[str]:
+    """Dotted names of all modules that a tree imports, wherever the import stands."""
+    names = set()
+    for node in ast.walk(tree):
+        if isinstance(node, ast.Import):
+            names |= {alias.name for alias in node.names}
+        elif isinstance(node, ast.ImportFrom):
+            assert node.level == 0, "imports are absolute here"
+            names |= {f"{node.module}.{alias.name}" for alias in node.names} | {str(node.module)}
+    return names
+
+
+def prints(tree: ast.AST) -> list[int]:
+    """Lines that write to a terminal or a log."""
+    lines = []
+    for node in ast.walk(tree):
+        if isinstance(node, ast.Call) and isinstance(node.func, ast.Name):
+            lines += [node.lineno] if node.func.id in ("print", "input", "breakpoint") else []
+        if isinstance(node, ast.Attribute) and node.attr in ("stdout", "stderr"):
+            lines.append(node.lineno)
+    loud = {"rich", "logging", "warnings", "typer", "click"}
+    names = {name.split(".")[0] for name in imported(tree)}
+    return lines + ([0] if names & loud else [])
+
+
+def floor_of(room: str) -> int:
+    return next(level for level, rooms in enumerate(FLOORS) if room in rooms)
+
+
+def parsed(path: Path) -> ast.Module:
+    return ast.parse(path.read_text(encoding="utf-8"))
+
+
+@pytest.mark.parametrize("path", sources("engine"), ids=lambda p: str(p.relative_to(ROOT)))
+def test_engine_never_imports_mission(path: Path) -> None:
+    assert not {name for name in imported(parsed(path)) if name.split(".")[0] == "mission"}
+
+
+@pytest.mark.parametrize("path", sources("engine"), ids=lambda p: str(p.relative_to(ROOT)))
+def test_rooms_import_downwards(path: Path) -> None:
+    room = path.relative_to(ROOT / "engine").parts[0].removesuffix(".py")
+    if room == "__init__":
+        return  # the face of the package names every room
+    here = floor_of(room)
+    for name in imported(parsed(path)):
+        parts = name.split(".")
+        if parts[0] == "engine" and len(parts) > 1:
+            there = floor_of(parts[1])
+            assert there < here or parts[1] == room, f"{room} imports {name}"
+
+
+@pytest.mark.parametrize(
+    "path",
+    [
+        path
+        for path in [*sources("engine"), *sources("mission")]
+        if not any(path.is_relative_to(ROOT / place) for place in ROOF)
+    ],
+    ids=lambda p: str(p.relative_to(ROOT)),
+)
+def test_nothing_below_the_roof_prints(path: Path) -> None:
+    assert prints(parsed(path)) == []
+
+
+def test_a_breach_is_seen() -> None:
+    assert "mission.aircraft" in imported(ast.parse("def f():\n    from mission import aircraft\n"))
+    assert imported(ast.parse("import mission.fly as fly")) == {"mission.fly"}
+    assert prints(ast.parse("x = 1\nprint(x)\n")) == [2]
+    assert prints(ast.parse("import sys\nsys.stderr.write('x')\n")) == [2]
+    assert prints(ast.parse("from rich.console import Console\n")) == [0]
+
+
+@pytest.mark.parametrize("path", sources("engine"), ids=lambda p: str(p.relative_to(ROOT)))
+def test_no_room_is_larger_than_a_room(path: Path) -> None:
+    assert len(path.read_text(encoding="utf-8").splitlines()) <= 400
+
+
+def test_the_face_of_the_package() -> None:
+    assert list(engine.__all__) == sorted(engine.__all__)
+    for name in engine.__all__:
+        assert getattr(engine, name) is not None
+    with pytest.raises(AttributeError, match="module 'engine' has no attribute 'nothing'"):
+        _ = engine.nothing
+    assert importlib.import_module("engine.loading").load_engine is engine.load_engine
