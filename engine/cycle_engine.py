@@ -49,14 +49,14 @@ class CycleEngine:
         """State at ratings and required thrusts; see :class:`engine.interface.Engine`."""
         wanted = np.nan if net_thrust is None else net_thrust
         flight, thrust = _broadcast(flight, wanted, np.shape(rating))
-        names, which = np.unique(np.broadcast_to(rating, flight.shape), return_inverse=True)
-        throttles, bounds = zip(*(self._bounds(str(name)) for name in names), strict=True)
-        asked = _Asked(
-            _flat(flight),
-            thrust.ravel(),
-            np.array(throttles)[which.ravel()],
-            np.stack(bounds, axis=1)[:, which.ravel()],
-        )
+        ratings = np.broadcast_to(rating, flight.shape).ravel()
+        throttle = np.zeros(ratings.size, dtype=np.int64)
+        bounds = np.zeros((len(LIMIT_NAMES), ratings.size))
+        for name in np.unique(ratings):
+            here = np.flatnonzero(ratings == name)
+            throttle[here], limits = self._bounds(str(name))
+            bounds[:, here] = limits[:, None]
+        asked = _Asked(_flat(flight), thrust.ravel(), throttle, bounds)
         solution = self._solve(asked, _start(start))
         state = self._finish(asked, solution)
         floors = self._bounds(idle)[1][:, None]

@@ -20,7 +20,8 @@ from engine.parts.inlet import take_in
 from engine.parts.stream import Stream
 
 Array = NDArray[np.float64]
-TOLERANCE = 1e-11
+# Of the residual before the last step, which is taken all the same and leaves about its square.
+TOLERANCE = 1e-8
 # Round-off of the pressure drops on which a windmilling flow hangs, a thousandth of the pressure.
 WINDMILLING_TOLERANCE = 1e-7
 _LARGEST_STEP = 0.25

@@ -9,7 +9,7 @@ from __future__ import annotations
 import os
 import shutil
 import sys
-from typing import TYPE_CHECKING, Annotated, Any, Optional
+from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
 
@@ -41,17 +41,17 @@ app = typer.Typer(
 )
 
 MissionName = Annotated[
-    Optional[str],  # noqa: UP045  older typer reads no other spelling
+    str | None,
     typer.Argument(help="Mission file or built-in mission; the demo where none is given."),
 ]
 AircraftName = Annotated[
-    Optional[str],  # noqa: UP045
+    str | None,
     typer.Option(
         "--aircraft", help="Aircraft file or built-in aircraft, in place of the mission's."
     ),
 ]
 JsonTarget = Annotated[
-    Optional[str],  # noqa: UP045
+    str | None,
     typer.Option("--json", metavar="FILE|-", help="Write JSON to a file, or print only it with -."),
 ]
 UnitsName = Annotated[UnitSystem, typer.Option("--units", help="Units of the screen.")]
@@ -61,7 +61,7 @@ UnitsName = Annotated[UnitSystem, typer.Option("--units", help="Units of the scr
 def fly_command(
     mission: MissionName = None,
     engine: Annotated[
-        Optional[str],  # noqa: UP045
+        str | None,
         typer.Option(help="Engine file or built-in engine, in place of the mission's."),
     ] = None,
     aircraft: AircraftName = None,
@@ -105,7 +105,7 @@ def fly_command(
 def compare_command(
     mission: MissionName = None,
     engine: Annotated[
-        Optional[list[str]],  # noqa: UP045
+        list[str] | None,
         typer.Option(
             help="Engine option, once for each; all built-in engines where none is given."
         ),
@@ -144,11 +144,11 @@ def stations_command(
     altitude: Annotated[str, typer.Option(help='Pressure altitude: "35000 ft" or FL350.')],
     mach: Annotated[float, typer.Option(help="Flight Mach number.")],
     thrust: Annotated[
-        Optional[str],  # noqa: UP045
+        str | None,
         typer.Option(help='Net thrust of one engine, "9 kN" say, held below the rating.'),
     ] = None,
     rating: Annotated[
-        Optional[str],  # noqa: UP045
+        str | None,
         typer.Option(
             help="take_off, maximum_continuous, climb, cruise, flight_idle, ground_idle or "
             "windmilling; with a thrust the ceiling, by default maximum_continuous."

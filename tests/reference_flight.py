@@ -55,7 +55,7 @@ class Reference:
     engine: Engine
     deviation: float
     tailwind: float
-    tolerance: float = 1e-11
+    tolerance: float = 1e-10
     calls: int = 0
     last: dict[str, Any] = field(default_factory=dict)
 

@@ -22,8 +22,7 @@ from mission.march.world import World
 
 Array = NDArray[np.float64]
 _SCAN = 9  # nodes a span is looked at
-_ROUNDS = 12
-_CLOSE = 0.1  # m: a kink this far off costs the square of its share of a piece
+_PIECES, _ROUNDS = 9, 3  # a bracket of 500 m ends below a metre, then on a straight line
 _APART = 1.0  # m: no piece is shorter
 
 
@@ -39,9 +38,22 @@ class _Bracket:
     limits: tuple[int, int] | None
     nozzle: int
     start: Array
-    joint: float = np.inf
-    moved: float = np.inf
-    last_side: int = 0
+
+    @property
+    def joint(self) -> float:
+        """Where the sign changes, on the straight line between the ends [m]."""
+        share = self.at_low / (self.at_low - self.at_high)
+        return self.low + share * (self.high - self.low)
+
+    def keep_change(self, altitudes: Array, values: list[float]) -> None:
+        """Narrow to the first piece between altitudes inside whose ends differ in sign."""
+        marks = [self.low, *map(float, altitudes), self.high]
+        ends = [self.at_low, *values, self.at_high]
+        for piece in range(len(marks) - 1):
+            if ends[piece] * ends[piece + 1] <= 0.0 and ends[piece] != ends[piece + 1]:
+                self.low, self.high = marks[piece], marks[piece + 1]
+                self.at_low, self.at_high = ends[piece], ends[piece + 1]
+                return
 
     def value(self, state: EngineState, index: int) -> float:
         """The quantity whose sign changes."""
@@ -91,44 +103,26 @@ def _brackets(state: EngineState, index: int, span: Span, first: int) -> list[_B
 
 
 def _close_in(world: World, spans: Sequence[Span], brackets: list[_Bracket]) -> None:
-    """Illinois' variant of the false position on all brackets at once."""
-    live = brackets
+    """Look at every bracket in equal pieces, all in one call, and keep the piece that changes."""
+    if not brackets:
+        return
+    inside = np.arange(1, _PIECES) / _PIECES
     for _ in range(_ROUNDS):
-        if not live:
-            break
-        guesses = [_false_position(bracket) for bracket in live]
+        altitudes = [b.low + inside * (b.high - b.low) for b in brackets]
         flights = [
-            scheduled_flight(spans[bracket.span], world, np.array([guess]))
-            for bracket, guess in zip(live, guesses, strict=True)
+            scheduled_flight(spans[b.span], world, altitude)
+            for b, altitude in zip(brackets, altitudes, strict=True)
         ]
         state = world.engine.at(
             join(flights),
-            rating=np.array([spans[bracket.span].rating for bracket in live]),
-            start=np.stack([bracket.start for bracket in live], axis=1),
+            rating=np.repeat([spans[b.span].rating for b in brackets], inside.size),
+            start=np.repeat(np.stack([b.start for b in brackets], axis=1), inside.size, axis=1),
         )
-        for place, (bracket, guess) in enumerate(zip(live, guesses, strict=True)):
-            bracket.start = state.unknowns[:, place]
-            _narrow(bracket, guess, bracket.value(state, place))
-        live = [bracket for bracket in live if abs(bracket.moved) > _CLOSE]
-
-
-def _false_position(bracket: _Bracket) -> float:
-    share = bracket.at_low / (bracket.at_low - bracket.at_high)
-    return bracket.low + share * (bracket.high - bracket.low)
-
-
-def _narrow(bracket: _Bracket, guess: float, value: float) -> None:
-    """Keep the half with the change of sign; halve the weight of an end kept twice."""
-    bracket.moved, bracket.joint = guess - bracket.joint, guess
-    side = 1 if value * bracket.at_low > 0.0 else -1
-    if side == 1:
-        bracket.low, bracket.at_low = guess, value
-    else:
-        bracket.high, bracket.at_high = guess, value
-    if side == bracket.last_side:
-        bracket.at_high *= 0.5 if side == 1 else 1.0
-        bracket.at_low *= 0.5 if side == -1 else 1.0
-    bracket.last_side = side
+        for place, bracket in enumerate(brackets):
+            first = place * inside.size
+            values = [bracket.value(state, first + k) for k in range(inside.size)]
+            bracket.start = state.unknowns[:, first]
+            bracket.keep_change(altitudes[place], values)
 
 
 def _cut(span: Span, index: int, brackets: list[_Bracket]) -> list[Span]:

@@ -18,7 +18,7 @@ from mission.outputs.page import (
     section,
     words,
 )
-from mission.outputs.segment_rows import consumption_text, consumption_unit
+from mission.outputs.segment_rows import consumption_text
 from mission.outputs.setting import Setting
 from mission.outputs.units import ABSENT, METRIC, Scale, Units, number, signed
 from mission.outputs.wording import NOT_CHARGED, day_in_words
@@ -102,7 +102,7 @@ def _table(
             Column(f"more\n{fuel.unit.name}"),
             Column("more\n%"),
             Column(f"time\n{units.time.name}"),
-            Column(f"cruise sfc\n{consumption_unit(units)}"),
+            Column(f"cruise sfc\n{units.specific_fuel_consumption.name}"),
             Column(last),
             *([words("least margin")] if is_wide else []),
         ]

@@ -13,6 +13,7 @@ from mission.outputs.assumptions import assumed_by_file
 from mission.outputs.failure import failure_headline, failure_statement, limit_scale
 from mission.outputs.margins import least_margin, room
 from mission.outputs.page import (
+    WIDEST,
     Column,
     bullets,
     caution,
@@ -27,7 +28,7 @@ from mission.outputs.segment_rows import Scales, scales_of, segment_tables
 from mission.outputs.setting import Setting
 from mission.outputs.step_rows import step_sections
 from mission.outputs.units import METRIC, Scale, Units, number, signed
-from mission.outputs.wording import day_in_words, hours_and_minutes
+from mission.outputs.wording import TIMES, day_in_words, hours_and_minutes
 from mission.results import CrossCheck, Flight
 
 _KEY = (
@@ -64,9 +65,9 @@ def flight_log(
     if not on_the_way:
         parts += [_reserves(flight, scales), _totals(flight, scales, width)]
     if flight.cross_check:
-        parts.append(_cross_check(flight, scales))
+        parts.append(_cross_check(flight, scales, width))
     if not on_the_way:
-        parts.append(_margins(flight, units))
+        parts.append(_margins(flight, units, width))
     if flight.failure is not None:
         parts.append(
             section("Why it cannot be flown", pairs(failure_statement(flight, units, scales)))
@@ -89,7 +90,7 @@ def _heading(flight: Flight, setting: Setting, units: Units) -> Group:
     if setting.headwind:
         wind = Scale.of(units.speed, [setting.headwind], 2).full(abs(setting.headwind))
         air = f"{'headwind' if setting.headwind > 0.0 else 'tailwind'} {wind}"
-    engine = f"{setting.engine_count} × {flight.engine}"
+    engine = f"{setting.engine_count} {TIMES} {flight.engine}"
     return Group(
         Text(flight.mission, "bold"),
         Text(f"{flight.aircraft}, {engine}, payload {payload}, {day_in_words(flight.day)}, {air}"),
@@ -196,13 +197,13 @@ def _totals(flight: Flight, scales: Scales, width: int) -> Group:
          ("ground distance", distance.full(total.ground_distance)),
          ("air distance", distance.full(total.air_distance))],
     ]  # fmt: skip
-    table = Table.grid(padding=(0, 5 if width > 80 else 3, 0, 0))
-    table.add_row(*(_right_aligned(block) for block in blocks))
+    table = Table.grid(padding=(0, 2 * _gap(width), 0, 0))
+    table.add_row(*(_right_aligned(block, _gap(width)) for block in blocks))
     return section("Totals", table)
 
 
-def _right_aligned(rows: Iterable[tuple[str, str]]) -> Table:
-    table = Table.grid(padding=(0, 2, 0, 0))
+def _right_aligned(rows: Iterable[tuple[str, str]], gap: int) -> Table:
+    table = Table.grid(padding=(0, gap, 0, 0), pad_edge=False)
     table.add_column(no_wrap=True)
     table.add_column(justify="right", no_wrap=True)
     for row in rows:
@@ -210,16 +211,17 @@ def _right_aligned(rows: Iterable[tuple[str, str]]) -> Table:
     return table
 
 
-def _cross_check(flight: Flight, scales: Scales) -> Group:
+def _cross_check(flight: Flight, scales: Scales, width: int) -> Group:
     fuel = scales.fuel
     table = ruled_table(
         [
             words("segment"),
-            Column(f"integrated\n{fuel.unit.name}"),
+            Column(f"flown\n{fuel.unit.name}"),
             Column(f"Breguet\n{fuel.unit.name}"),
             Column("difference\n%"),
             words(f"flown less Breguet, by cause [{fuel.unit.name}]"),
-        ]
+        ],
+        gap=_gap(width),
     )
     for check in flight.cross_check:
         table.add_row(
@@ -244,7 +246,12 @@ def _causes(check: CrossCheck, size: float) -> str:
     return ", ".join([*some, *([f"{' and '.join(none)} 0"] if none else [])])
 
 
-def _margins(flight: Flight, units: Units) -> Group:
+def _gap(width: int) -> int:
+    """Spaces between the columns of a table with words in it."""
+    return 2 if width >= WIDEST else 1
+
+
+def _margins(flight: Flight, units: Units, width: int) -> Group:
     table = ruled_table(
         [
             words("limit"),
@@ -253,7 +260,8 @@ def _margins(flight: Flight, units: Units) -> Group:
             words("unit", is_wrapped=False),
             Column("room\n%"),
             words("where it is least"),
-        ]
+        ],
+        gap=_gap(width),
     )
     least = least_margin(flight.margins)
     for margin in flight.margins:

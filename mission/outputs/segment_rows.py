@@ -129,7 +129,7 @@ class _Filled:
 def _burnt(flight: Flight, scales: Scales, bar_length: int, whole: float) -> list[_Filled]:
     """What a segment burns, its share of ``whole`` [kg], and how long and far it goes."""
     total, fuel, distance = flight.totals, scales.fuel, scales.distance
-    of = "block" if whole == total.block_fuel else "these"
+    of = "block" if whole == total.block_fuel else "burnt"
 
     def share(log: SegmentLog) -> str:
         part = log.fuel / whole if whole > 0.0 else 0.0

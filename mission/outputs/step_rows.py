@@ -46,6 +46,7 @@ def _steps(log: SegmentLog, scales: Scales, *, is_wide: bool) -> Table:
 def _cells(log: SegmentLog, scales: Scales, *, is_wide: bool) -> list[_Cells]:
     """Columns and what fills them; a narrow screen leaves out what the others give."""
     steps, units = log.steps, scales.units
+    speed = steps.true_airspeed / units.speed.size
     sfc, ratio, ranges = consumption(steps), lift_to_drag(steps), air_range(steps)
     angle = np.degrees(steps.flight_path_angle)
     force, flow = scales.force, scales.fuel_flow
@@ -53,8 +54,7 @@ def _cells(log: SegmentLog, scales: Scales, *, is_wide: bool) -> list[_Cells]:
         (f"elapsed\n{units.time.name}", lambda i: number(steps.elapsed_time[i] / 60.0, 2), True),
         (altitude_header(units), lambda i: altitude_text(units, steps.pressure_altitude[i]), True),
         ("Mach", lambda i: number(steps.mach[i], 3), True),
-        (f"true\n{units.speed.name}", lambda i: number(steps.true_airspeed[i] / units.speed.size, 1),
-         is_wide),
+        (f"true\n{units.speed.name}", lambda i: number(speed[i], 1), is_wide),
         ("path\ndeg", lambda i: number(angle[i], 2), is_wide),
         (f"mass\n{scales.mass.unit.name}", lambda i: scales.mass.bare(steps.mass[i]), True),
         (f"thrust\n{force.unit.name}", lambda i: force.bare(steps.thrust[i]), True),

@@ -14,7 +14,7 @@ _KNOT = 1852.0 / 3600.0
 _POUND = 0.45359237
 _POUND_FORCE = 4.4482216152605
 _STANDARD_GRAVITY = 9.80665
-ABSENT = "–"  # what a cell without a value shows
+ABSENT = "\u2013"  # an en dash: what a cell without a value shows
 
 
 class UnitSystem(StrEnum):

@@ -11,12 +11,13 @@ NOT_CHARGED = (
     "Pods, their mass and their drag, are not charged in this version and no engine is resized "
     "for the mission: every option flies with the aircraft's masses and drag polar as written."
 )
+TIMES = "\u00d7"  # the sign of multiplication
 MINUTES_AN_HOUR = 60
 # What a terminal without these characters shows instead.
 _PLAIN = str.maketrans(
     {
         "█": "#", "▉": "#", "▊": "#", "▋": "#", "▌": "#", "▍": "'", "▎": "'", "▏": "'",
-        "─": "-", "–": "-", "×": "x", "·": "|", "±": "+/-",
+        "\u2500": "-", "\u2013": "-", "\u00d7": "x",
     }
 )  # fmt: skip
 
