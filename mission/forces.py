@@ -49,19 +49,20 @@ def path_angle_sine(
     mass: Array,
     thrust: Array,
     acceleration_factor: Array,
+    near: Array | None = None,
 ) -> Array:
     """Sine of the geometric path angle where thrust [N] is not drag.
 
     ``(T - D) / W = sin(gamma) (1 + V/g dV/dh)`` with drag at lift = W cos(gamma); the factor in
     brackets is ``acceleration_factor``. Solved by fixed-point sweeps, which contract by the small
-    share of induced drag that the cosine takes away.
+    share of induced drag that the cosine takes away, from ``near`` where it is given.
     """
     weight = mass * STANDARD_GRAVITY
-    sine = np.zeros(np.broadcast_shapes(weight.shape, thrust.shape))
+    sine = np.zeros(np.broadcast_shapes(weight.shape, thrust.shape)) if near is None else near
     for _ in range(60):
         lift = weight * np.sqrt(1.0 - sine**2)
         new = (thrust - drag(aircraft, flight, lift)) / (weight * acceleration_factor)
-        new = np.clip(new, -_STEEPEST, _STEEPEST)
+        new = np.minimum(np.maximum(new, -_STEEPEST), _STEEPEST)
         change = np.max(np.abs(new - sine), initial=0.0)
         sine = new
         if change < 1e-15:

@@ -8,7 +8,6 @@ from itertools import chain
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import flight_condition
 from engine.interface import Outcome
 from engine.quantities import FOOT
 from mission.aircraft import Aircraft
@@ -19,7 +18,7 @@ from mission.march.tracks import Track
 from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
-from mission.results import Failure, Margin, SegmentLog, Totals
+from mission.results import Failure, Margin, SegmentLog, Steps, Totals
 
 Array = NDArray[np.float64]
 _SLACK = 1e-6
@@ -40,12 +39,10 @@ def _lift_limits(aircraft: Aircraft, log: SegmentLog) -> Array:
     return np.where(has_flaps, with_flaps, aircraft.maximum_lift_coefficient)
 
 
-def _lift_coefficients(aircraft: Aircraft, steps: object) -> Array:
+def _lift_coefficients(aircraft: Aircraft, steps: Steps) -> Array:
     """Lift coefficient at every step of a log; zero on the ground."""
-    altitude, mach, lift = (getattr(steps, name) for name in ("pressure_altitude", "mach", "lift"))
-    pressure = flight_condition(altitude).static_pressure
-    force = 0.7 * pressure * mach**2 * aircraft.wing_area
-    return np.where(force > 0.0, lift / np.where(force > 0.0, force, 1.0), 0.0)
+    force = 0.7 * steps.static_pressure * steps.mach**2 * aircraft.wing_area
+    return np.where(force > 0.0, steps.lift / np.where(force > 0.0, force, 1.0), 0.0)
 
 
 def first_failure(
@@ -101,8 +98,8 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     airborne = steps.lift > 0.0
     mach = np.where(airborne, steps.mach, 0.0)
-    pressure = flight_condition(steps.pressure_altitude).static_pressure
-    airspeed = np.where(airborne, calibrated_airspeed(steps.mach, pressure), 0.0)
+    airspeed = calibrated_airspeed(steps.mach, steps.static_pressure)
+    airspeed = np.where(airborne, airspeed, 0.0)
     most_mach = aircraft.maximum_operating_mach
     most_airspeed = aircraft.maximum_operating_calibrated_airspeed
     checks: list[_Check] = [

@@ -4,9 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
+
+from engine.atmosphere import flight_condition
 
 Array = NDArray[np.float64]
 
@@ -31,6 +34,11 @@ class Steps:
     fuel_flow: Array
     flight_path_angle: Array
     rating_thrust: Array
+
+    @cached_property
+    def static_pressure(self) -> Array:
+        """Ambient pressure [Pa]."""
+        return flight_condition(self.pressure_altitude).static_pressure
 
 
 @dataclass(frozen=True)

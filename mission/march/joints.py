@@ -13,11 +13,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.atmosphere import flight_condition
 from engine.interface import EngineState
 from mission.march.asking import join
 from mission.march.nodes import positions
 from mission.march.span import Span
-from mission.march.throttled import altitude_flight, scheduled_flight
+from mission.march.throttled import altitude_flight, on_schedule
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -108,11 +109,9 @@ def _close_in(world: World, spans: Sequence[Span], brackets: list[_Bracket]) -> 
         return
     inside = np.arange(1, _PIECES) / _PIECES
     for _ in range(_ROUNDS):
-        altitudes = [b.low + inside * (b.high - b.low) for b in brackets]
-        flights = [
-            scheduled_flight(spans[b.span], world, altitude)
-            for b, altitude in zip(brackets, altitudes, strict=True)
-        ]
+        altitudes = np.array([b.low + inside * (b.high - b.low) for b in brackets])
+        air = flight_condition(altitudes, 0.0, world.temperature_deviation)
+        flights = [on_schedule(spans[b.span], world, air.at(i)) for i, b in enumerate(brackets)]
         state = world.engine.at(
             join(flights),
             rating=np.repeat([spans[b.span].rating for b in brackets], inside.size),

@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from dataclasses import fields
+from functools import lru_cache
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -36,6 +39,17 @@ def mach_at(rule: SpeedRule, aircraft: Aircraft, air: FlightCondition, mass: Arr
         return stall_mach(aircraft, air, mass, rule.value)
     guess = stall_mach(aircraft, air, mass, best_lift_coefficient(aircraft.polar))
     return np.clip(guess, *hold_bounds(aircraft, air, mass))
+
+
+@lru_cache(maxsize=512)
+def _still_air(altitude: float, deviation: float) -> FlightCondition:
+    return flight_condition(altitude, 0.0, deviation)
+
+
+def level_air(altitude: float, deviation: float, count: int) -> FlightCondition:
+    """Still air at one pressure altitude [m], shape (count, 1)."""
+    air = _still_air(altitude, deviation)
+    return FlightCondition(*(np.full((count, 1), getattr(air, f.name)) for f in fields(air)))
 
 
 def hold_bounds(aircraft: Aircraft, air: FlightCondition, mass: Array) -> tuple[Array, Array]:

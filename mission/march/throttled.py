@@ -34,12 +34,11 @@ def altitude_flight(span: Span, world: World, count: int) -> FlightCondition:
     )
     low, high = sorted((span.start_altitude, span.end_altitude))
     inside = np.clip(altitude, low + _INSIDE, max(high - _INSIDE, low + _INSIDE))
-    return scheduled_flight(span, world, inside)
+    return on_schedule(span, world, flight_condition(inside, 0.0, world.temperature_deviation))
 
 
-def scheduled_flight(span: Span, world: World, altitude: Array) -> FlightCondition:
-    """Flight condition of a march by altitude, on its schedule of speed, at altitudes [m]."""
-    air = flight_condition(altitude, 0.0, world.temperature_deviation)
+def on_schedule(span: Span, world: World, air: FlightCondition) -> FlightCondition:
+    """Flight condition in still air at the speed of a march by altitude."""
     return air.with_mach(mach_at(span.start_speed, world.aircraft, air, np.ones(1)))
 
 
@@ -64,10 +63,11 @@ def climb_nodes(
     flight: FlightCondition,
     mass: Array,
     propulsion: Propulsion,
+    near: Array | None = None,
 ) -> Nodes:
-    """Nodes of a march by altitude with the engines at a rating."""
+    """Nodes of a march by altitude; ``near`` is a sine of the path angle to begin from."""
     sine = path_angle_sine(
-        world.aircraft, flight, mass, propulsion.thrust, acceleration_factor(span, flight)
+        world.aircraft, flight, mass, propulsion.thrust, acceleration_factor(span, flight), near
     )
     lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
     vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)

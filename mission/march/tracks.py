@@ -7,11 +7,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import FlightCondition, flight_condition
+from engine.atmosphere import FlightCondition
 from mission.march import level, throttled
 from mission.march.asking import Answer, Request
 from mission.march.nodes import interpolation_matrix, positions
-from mission.march.rules import mach_at
+from mission.march.rules import level_air, mach_at
 from mission.march.span import Nodes, Propulsion, Span, SpeedRule
 from mission.march.world import World
 
@@ -58,7 +58,7 @@ def first_track(
         track.flight = throttled.altitude_flight(span, world, count)
         track.mach = np.broadcast_to(track.flight.mach, mass.shape)
     elif span.march != "book":
-        track.air = flight_condition(np.full((count, 1), span.start_altitude), 0.0, deviation)
+        track.air = level_air(span.start_altitude, deviation, count)
         track.mach = np.array(_guess_mach(span.end_speed, world, track.air, mass, before))
     return track
 
@@ -187,7 +187,8 @@ def set_nodes(world: World, track: Track, rest: Array) -> None:
         extent = np.maximum(rest, 0.0) if span.extent is None else np.atleast_1d(span.extent)
         track.nodes = level.level_nodes(span, world, track.flight, mass, extent, propulsion)
     elif span.march == "altitude":
-        track.nodes = throttled.climb_nodes(span, world, track.flight, mass, propulsion)
+        near = None if track.nodes is None else np.sin(track.nodes.path_angle)
+        track.nodes = throttled.climb_nodes(span, world, track.flight, mass, propulsion, near)
     elif span.march == "stand":
         track.nodes = throttled.standing_nodes(span, track.flight, mass, propulsion)
     else:

@@ -104,17 +104,11 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
         return Group(Text(), Text(f"Cannot be flown: {reason}", "bold"))
     total, fuel = flight.totals, scales.fuel
     minutes = number(total.block_time / 60.0, 1)
-    loaded = fuel.full(total.loaded_fuel)
-    if setting.is_fuel_as_needed:
-        verdict = (
-            f"enough: {loaded}, loaded as needed, leaves the reserves of "
-            f"{fuel.full(total.reserve_fuel)} (fuel margin {fuel.full(total.fuel_margin)})"
-        )
-    else:
-        verdict = (
-            f"enough: {loaded}, loaded as given, leaves {fuel.full(total.fuel_left)}, "
-            f"{fuel.full(total.fuel_margin)} above the reserves (fuel margin)"
-        )
+    way = "as needed" if setting.is_fuel_as_needed else "as given"
+    verdict = (
+        f"enough, fuel margin {fuel.full(total.fuel_margin)}: {fuel.full(total.loaded_fuel)} loaded "
+        f"{way}, {fuel.full(total.fuel_left)} left, {fuel.full(total.reserve_fuel)} of it reserves"
+    )
     rows = [
         ("block fuel", f"{fuel.full(total.block_fuel)}, give or take {_error(flight, scales)}"),
         ("block time", f"{minutes} min ({hours_and_minutes(total.block_time)})"),
@@ -235,7 +229,7 @@ def _cross_check(flight: Flight, scales: Scales, width: int) -> Group:
 
 
 def _causes(check: CrossCheck, size: float) -> str:
-    """Causes in the order of their weight, those without any named together."""
+    """Causes in the order of their weight, those without any last."""
     ordered = sorted(check.causes.items(), key=lambda item: -abs(item[1]))
     some = [
         f"{name} {signed(number(value / size, 2 if abs(value) < _SMALL_CAUSE else 0))}"
@@ -243,7 +237,7 @@ def _causes(check: CrossCheck, size: float) -> str:
         if value != 0.0
     ]
     none = [name for name, value in ordered if value == 0.0]
-    return ", ".join([*some, *([f"{' and '.join(none)} 0"] if none else [])])
+    return ", ".join([*some, *(f"{name} 0" for name in none)])
 
 
 def _gap(width: int) -> int:

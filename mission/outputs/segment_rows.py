@@ -189,7 +189,9 @@ def segment_tables(
         longer = min(max(room - wanted, 0), _BAR - _LEAST_BAR)
         return room - longer, [*_burnt(flight, scales, _LEAST_BAR + longer, whole), *others]
 
-    room, columns = with_bar(_LEAST_NAME, [*where, *state])
+    room, columns = with_bar(shape.longest_name, [*where, *state])
+    if room < shape.longest_name:  # names wrap anyway: the bar may as well take a little
+        room, columns = with_bar(_LEAST_NAME, [*where, *state])
     if room >= _LEAST_NAME:
         return [shape.table(columns)]
     return [shape.table(with_bar(shape.longest_name, where)[1]), shape.table(state)]
