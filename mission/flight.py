@@ -49,7 +49,7 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
     written = mission.written
     world = World(aircraft, engine, written.day, -written.headwind)
     solved = _solve(mission, world, refinement)
-    if not solved.fine.is_settled:
+    if not solved.fine.is_settled and not solved.fine.is_lost:
         most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
         load = max(min(aircraft.usable_fuel, most - aircraft.unusable_fuel), 1.0)
         written = written.model_copy(
@@ -122,7 +122,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
     logs = segment_logs(world, plan, fine, written)
     error = abs(sums.mission_fuel - coarse_sums.mission_fuel)
     total = totals(world, plan, fine, written, sums, error)
-    closes = mission.written.fuel.as_needed == written.fuel.as_needed
+    closes = mission.written.fuel == written.fuel
     failure = first_failure(world, plan, fine, written, total, logs, closes=closes)
     flown = failure is None
     return Flight(

@@ -44,7 +44,7 @@ def segment_logs(
                 name=row.name,
                 kind=row.kind,
                 purpose=row.purpose,
-                rating=marched.tracks[chosen[-1]].span.rating,
+                rating=marched.tracks[chosen[-1]].rating,
                 fuel=_sum(marched.integrals.fuel, chosen),
                 time=clock - began,
                 ground_distance=_sum(marched.integrals.ground, chosen),

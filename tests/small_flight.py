@@ -78,6 +78,7 @@ def segment(
         mass_received=0.0,
         fuel_left=last - 8800.0,
         steps=flown,
+        impulse=float(flown.thrust[0] * (flown.elapsed_time[-1] - flown.elapsed_time[0])),
     )
 
 

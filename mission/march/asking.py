@@ -66,7 +66,7 @@ def _start(members: list[Request]) -> Array | None:
     for request in members:
         shape = (known[0], *request.flight.shape)
         start = np.nan if request.start is None else request.start
-        parts.append(np.broadcast_to(start, shape).reshape(known[0], -1))
+        parts.append(np.broadcast_to(start, shape).reshape(known[0], request.flight.mach.size))
     return np.concatenate(parts, axis=1)
 
 

@@ -20,7 +20,8 @@ from mission.march.tracks import Track, first_track, refined, request_of, set_no
 from mission.march.world import World
 
 Array = NDArray[np.float64]
-MOST_SWEEPS = 60
+MOST_SWEEPS = 40
+_PATIENCE = 6  # sweeps after which an engine without an answer ends the march
 SETTLED = 1e-11
 _SETTLED_MACH = 1e-6  # fuel flow is flat at its least: its error is the square of this
 _UNSETTLED = 1e-6
@@ -74,6 +75,11 @@ class Marched:
     change: float
 
     @property
+    def is_lost(self) -> bool:
+        """Whether the engine had no answer somewhere."""
+        return any(track.is_lost for track in self.tracks)
+
+    @property
     def is_settled(self) -> bool:
         """Whether the sweeps came to rest; if not, no mass closes the fuel."""
         return bool(np.all(np.isfinite(self.stop_mass))) and self.change < _UNSETTLED
@@ -100,12 +106,13 @@ def march(
     """
     tracks = _first_tracks(world, parts, count, stop_mass, start)
     distances = {False: parts.mission_distance, True: parts.reserve_distance}
-    for sweep in range(1, MOST_SWEEPS + 1):  # noqa: B007  (its last value is reported)
+    for sweep in range(1, MOST_SWEEPS + 1):
         _ask_engine(world, tracks)
         integrals = _integrate(world, tracks, distances)
         stop_mass = close(stop_mass, integrals)
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))
-        is_lost = not np.all(np.isfinite(stop_mass)) or np.any(stop_mass > _HEAVIEST)
+        is_lost = bool(np.any(~(stop_mass < _HEAVIEST)))
+        is_lost |= any(t.is_lost for t in tracks if t.span.is_static or sweep >= _PATIENCE)
         if is_lost or (change < settled and all(t.mach_change < _SETTLED_MACH for t in tracks)):
             break
     return Marched(tracks, integrals, stop_mass, sweep, change)

@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
+from engine.interface import Outcome
 from mission.march import level, throttled
 from mission.march.asking import Answer, Request
 from mission.march.nodes import interpolation_matrix, positions
@@ -23,7 +24,8 @@ SAME_MACH = 1e-12
 class Track:
     """A span being solved: what the last sweep left for the next. Private to the integrator.
 
-    ``air`` is the still air of a level span; ``start`` the engine's unknowns to begin with.
+    ``air`` is the still air of a level span; ``start`` the engine's unknowns to begin with;
+    ``rating`` the one flown, idle where a march by speed slows down.
     """
 
     span: Span
@@ -34,12 +36,19 @@ class Track:
     answer: Answer | None = None
     air: FlightCondition | None = None
     start: Array | None = None
+    rating: str = ""
     mach_change: float = np.inf
 
     @property
     def is_level(self) -> bool:
         """Whether thrust is found from drag."""
         return self.span.march in ("distance", "time")
+
+    @property
+    def is_lost(self) -> bool:
+        """Whether the engine had no answer somewhere along the span."""
+        lost = (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL)
+        return self.answer is not None and bool(np.isin(self.answer.outcome, lost).any())
 
     @property
     def unknowns(self) -> Array | None:
@@ -52,7 +61,7 @@ def first_track(
 ) -> Track:
     """A span before anything is known: one mass throughout, a guess of its speed."""
     mass = np.broadcast_to(stop_mass, (count, stop_mass.size)).copy()
-    track = Track(span, mass, np.zeros(mass.shape))
+    track = Track(span, mass, np.zeros(mass.shape), rating=span.rating)
     deviation = world.temperature_deviation
     if span.march == "altitude":
         track.flight = throttled.altitude_flight(span, world, count)
@@ -132,8 +141,8 @@ def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request 
     track.flight = track.air.with_mach(mach)
     track.mach = np.broadcast_to(track.flight.mach, track.mass.shape)
     slows_down = span.march == "speed" and float(np.mean(last - first)) < 0.0
-    rating = "flight_idle" if slows_down else span.rating
-    return Request(track.flight, rating, start=track.unknowns)
+    track.rating = "flight_idle" if slows_down else span.rating
+    return Request(track.flight, track.rating, start=track.unknowns)
 
 
 def _end_mach(

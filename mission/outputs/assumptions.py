@@ -82,7 +82,7 @@ def _value(key: str, text: str) -> str:
     try:
         value = float(text)
     except ValueError:
-        return in_plain_words(text)
+        return text.replace("_", " ")
     if key == "day":
         return day_in_words(value)
     unit, size = _UNITS.get(key, ("", 1.0))

@@ -58,7 +58,7 @@ def shortfall(failure: Failure, units: Units) -> str:
     by = scale.full(misses).strip()
     percent = 100.0 * misses / abs(failure.bound) if failure.bound else _LARGEST_PERCENT
     share = f" ({number(percent, 1)} %)" if percent < _LARGEST_PERCENT else ""
-    return f"{failure.what}: {value} is {word} {bound}, by {by}{share}"
+    return f"{failure.what.replace('_', ' ')}: {value} is {word} {bound}, by {by}{share}"
 
 
 def _state(log: SegmentLog, step: int, units: Units, scales: Scales) -> str:

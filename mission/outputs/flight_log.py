@@ -106,8 +106,9 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
     minutes = number(total.block_time / 60.0, 1)
     way = "as needed" if setting.is_fuel_as_needed else "as given"
     verdict = (
-        f"enough, fuel margin {fuel.full(total.fuel_margin)}: {fuel.full(total.loaded_fuel)} loaded "
-        f"{way}, {fuel.full(total.fuel_left)} left, {fuel.full(total.reserve_fuel)} of it reserves"
+        f"enough, fuel margin {fuel.full(total.fuel_margin)}: {fuel.full(total.loaded_fuel)} "
+        f"loaded {way}, {fuel.full(total.fuel_left)} left, "
+        f"{fuel.full(total.reserve_fuel)} of it reserves"
     )
     rows = [
         ("block fuel", f"{fuel.full(total.block_fuel)}, give or take {_error(flight, scales)}"),

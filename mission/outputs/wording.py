@@ -42,11 +42,6 @@ def hours_and_minutes(time: float) -> str:
     return f"{hours} h {minutes:02d} min" if hours else f"{minutes} min"
 
 
-def counted(number: int, thing: str) -> str:
-    """``1 engine``, ``2 engines``."""
-    return f"{number} {thing}" if number == 1 else f"{number} {thing}s"
-
-
 def in_plain_words(key: str) -> str:
     """A snake-case key, or a dotted path of them, as words."""
     return key.replace(".", " ").replace("_", " ")
