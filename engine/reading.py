@@ -43,7 +43,7 @@ def read_toml(path: Path) -> dict[str, Any]:
     except tomllib.TOMLDecodeError as error:
         raise InputRefused(f"is not TOML: {error}", where=where) from None
     if not content:
-        raise InputRefused("is empty; `longlegs new` writes one to start from", where=where)
+        raise InputRefused("is empty; start from a copy of a built-in profile", where=where)
     return content
 
 
@@ -84,19 +84,31 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
     return text.removesuffix(":")
 
 
+def _wrong_kind(discriminator: str, tag: str, expected_tags: str) -> str:
+    """An entry that says it is of a kind that there is not, with the nearest one there is."""
+    kinds = [kind.strip().strip("'") for kind in expected_tags.split(",")]
+    close = difflib.get_close_matches(tag.lower(), kinds, n=1, cutoff=0.5)
+    hint = f"; did you mean {close[0]}?" if close else ""
+    return f"{discriminator} = {tag!r}; allowed: {expected_tags}{hint}"
+
+
 # What pydantic found, by its kind of error, said to the person who wrote the file.
 _WORDS: dict[str, Callable[[Any], str]] = {
     "missing": lambda found: "is missing",
     "value_error": lambda found: str(found["ctx"]["error"]),
     "union_tag_not_found": lambda found: f"{found['ctx']['discriminator']} is missing",
-    "union_tag_invalid": lambda found: (
-        f"{found['ctx']['discriminator']} = {found['ctx']['tag']!r}; "
-        f"allowed: {found['ctx']['expected_tags']}"
-    ),
+    "union_tag_invalid": lambda found: _wrong_kind(**found["ctx"]),
     "literal_error": lambda found: f"= {found['input']!r}; allowed: {found['ctx']['expected']}",
+    "float_type": lambda found: f"= {found['input']!r}; a bare number belongs here",
+    "int_type": lambda found: f"= {found['input']!r}; a bare whole number belongs here",
+    "too_short": lambda found: f"= {found['input']!r}; at least one entry belongs here",
+    "list_type": lambda found: f"= {found['input']!r}; a list of tables belongs here",
     "model_type": lambda found: f"= {found['input']!r}; a table belongs here",
     "dict_type": lambda found: f"= {found['input']!r}; a table belongs here",
 }
+
+
+_BOUNDS = ("greater_than", "greater_than_equal", "less_than", "less_than_equal")
 
 
 def _in_words(found: Any, model: type[BaseModel]) -> str:
@@ -105,11 +117,12 @@ def _in_words(found: Any, model: type[BaseModel]) -> str:
         return _WORDS[found["type"]](found)
     if found["type"] != "extra_forbidden":
         message = found["msg"].replace("Input should be", "it should be")
-        return f"= {found['input']!r}; {message}"
+        is_quantity = isinstance(found["input"], str) and found["type"] in _BOUNDS
+        return f"= {found['input']!r}; {message}" + (" in SI units" if is_quantity else "")
     allowed = _keys_beside(model, found["loc"])
-    written = str(found["loc"][-1])
-    close = difflib.get_close_matches(written, allowed, n=1)
-    close = close or [name for name in allowed if name.startswith(written)]
+    key = str(found["loc"][-1])
+    close = difflib.get_close_matches(key, allowed, n=1)
+    close = close or [name for name in allowed if name.startswith(key)]
     hint = f"; did you mean {close[0]}?" if close else "."
     return f"unknown key{hint} Allowed here: {', '.join(allowed)}"
 

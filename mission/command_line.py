@@ -207,7 +207,7 @@ def list_command() -> None:
 def main() -> None:
     """Run the command line; what a person can mend ends with a message and status 2."""
     try:
-        app()
+        app(prog_name="longlegs")
     except LonglegsError as refusal:
         typer.echo(_refusal(refusal), err=True)
         raise SystemExit(REFUSED) from None

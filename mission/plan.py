@@ -6,10 +6,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
-from engine.atmosphere import flight_condition
 from engine.errors import InputRefused
 from mission.aircraft import Aircraft
-from mission.airspeeds import mach_from_calibrated_airspeed
 from mission.march.span import Span, SpeedRule
 from mission.march.sweep import Parts
 from mission.mission_file import AlternateTable, Mission, MissionFile
@@ -21,9 +19,9 @@ from mission.segments.cruise import Cruise
 from mission.segments.descent import APPROACH_HEIGHT, Descent
 from mission.segments.here import Here
 from mission.segments.loiter import Loiter
+from mission.segments.schedule import is_same_speed
 
 HOLD_HEIGHT = APPROACH_HEIGHT  # 1,500 ft: ICAO Annex 6 Part I, 4.3.6.3 (from memory)
-_SAME_MACH = 1e-6
 _AIRBORNE = ("climb", "acceleration", "cruise", "loiter", "descent", "approach")
 
 
@@ -81,16 +79,7 @@ def _same_speed(before: SpeedRule, after: SpeedRule, altitude: float) -> bool:
     """Whether two rules give one Mach number at an altitude; not known where mass decides."""
     if before.depends_on_mass or after.depends_on_mass:
         return before == after and before.kind == "lift_coefficient"
-    machs = [_mach(rule, altitude) for rule in (before, after)]
-    return abs(machs[0] - machs[1]) < _SAME_MACH
-
-
-def _mach(rule: SpeedRule, altitude: float) -> float:
-    assert rule.value is not None
-    if rule.kind == "mach":
-        return rule.value
-    pressure = flight_condition(altitude).static_pressure
-    return float(mach_from_calibrated_airspeed(rule.value, pressure))
+    return is_same_speed(before, after, altitude)
 
 
 def lay_out(
@@ -126,7 +115,10 @@ def lay_out(
     mission_spans = list(laid.spans)
     _refuse_rest(mission, mission_spans)
     laid.spans = []
-    alternate_distance = _lay_reserves(written, laid)
+    try:
+        alternate_distance = _lay_reserves(written, laid)
+    except InputRefused as refusal:
+        raise InputRefused(refusal.what, where=mission.where, key="reserves.alternate") from None
     return FlightPlan(
         tuple(laid.rows),
         Parts(
@@ -179,10 +171,7 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
             destination_elevation=elevation,
         )
         for segment in _alternate_segments(alternate, elevation):
-            try:
-                laid.lay(segment, "reserve")
-            except InputRefused as refusal:
-                raise InputRefused(refusal.what, key="reserves.alternate") from None
+            laid.lay(segment, "reserve")
     if reserves.final_reserve_time > 0.0:
         if reserves.alternate is None:
             laid.here = start

@@ -43,8 +43,8 @@ def cruise_climb_coefficient(
     span: Span, world: World, air: FlightCondition, mass: Array, mach: float
 ) -> Array:
     """Lift coefficient a cruise-climb holds: given, or the one at its start altitude."""
-    if span.end_speed.lift_limit != 1.0:
-        return np.full((1, mass.shape[1]), span.end_speed.lift_limit)
+    if span.lift_coefficient is not None:
+        return np.full((1, mass.shape[1]), span.lift_coefficient)
     weight = mass[:1] * STANDARD_GRAVITY
     force: Array = 0.7 * air.static_pressure[:1] * mach**2 * world.aircraft.wing_area
     return weight / force

@@ -60,6 +60,7 @@ class Span:
         comes in with and the one it flies
     extent : distance [m] or time [s]; None for the rest of the distance
     holds_lift_coefficient : with Mach number held too, a cruise-climb
+    lift_coefficient : the one a cruise-climb holds; None for the one at its start
     drag_factor, fuel_flow_factor : multiply the aircraft's own
     gains_distance : whether ground distance counts
     booked_fuel, booked_fraction : of an allowance [kg], of the mass at its start
@@ -75,6 +76,7 @@ class Span:
     end_speed: SpeedRule = STANDSTILL
     extent: float | None = None
     holds_lift_coefficient: bool = False
+    lift_coefficient: float | None = None
     drag_factor: float = 1.0
     fuel_flow_factor: float = 1.0
     gains_distance: bool = True

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from mission.march.asking import ask
 from mission.march.nodes import integration_matrix, positions
 from mission.march.span import Span
-from mission.march.tracks import Track, first_track, refined, request_of, set_nodes
+from mission.march.tracks import Track, first_track, flown_last, refined, request_of, set_nodes
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -127,8 +127,7 @@ def _first_tracks(
             track = first_track(world, span, count, stop_mass, None)
             tracks.append(refined(track, start.tracks[index], stop_mass - start.stop_mass))
         else:
-            before = tracks[-1] if tracks else None
-            tracks.append(first_track(world, span, count, stop_mass, before))
+            tracks.append(first_track(world, span, count, stop_mass, flown_last(tracks)))
     return tracks
 
 

@@ -132,9 +132,8 @@ def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request 
     """A march by speed: its ends may be those of its neighbours in the last sweep."""
     track, span = tracks[index], tracks[index].span
     assert track.air is not None
-    first = _end_mach(world, track, span.start_speed, tracks[index - 1] if index else None, -1)
-    after = tracks[index + 1] if index + 1 < len(tracks) else None
-    last = _end_mach(world, track, span.end_speed, after, 0)
+    first = _end_mach(world, track, span.start_speed, flown_last(tracks[:index]), -1)
+    last = _end_mach(world, track, span.end_speed, flown_last(tracks[:index:-1]), 0)
     mach = first + positions(len(track.mass))[:, None] * (last - first)
     if track.answer is not None and np.max(np.abs(mach - track.mach)) < SAME_MACH:
         return None
@@ -161,12 +160,17 @@ def _end_mach(
     return mach_at(rule, world.aircraft, air, track.mass[edge][None, :])
 
 
+def flown_last(tracks: list[Track]) -> Track | None:
+    """The last span that has a speed: an allowance that is only booked has none."""
+    return next((track for track in reversed(tracks) if track.span.march != "book"), None)
+
+
 def _entry_mach(world: World, tracks: list[Track], index: int) -> Array:
     """Mach number (members,) that a level span begins with."""
-    span, track = tracks[index].span, tracks[index]
-    rule = span.start_speed
-    if rule.kind == "neighbour":
-        return np.asarray(tracks[index - 1].mach[-1])
+    track, rule = tracks[index], tracks[index].span.start_speed
+    before = flown_last(tracks[:index])
+    if rule.depends_on_mass and before is not None:
+        return np.asarray(before.mach[-1])
     assert track.air is not None
     return np.asarray(mach_at(rule, world.aircraft, track.air.at(slice(0, 1)), track.mass[:1])[0])
 

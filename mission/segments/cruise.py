@@ -57,7 +57,7 @@ class Cruise(Table):
                 "already; leave lift_coefficient out to hold the one at the start"
             )
         altitude = self._altitude(here, climbs=climbs)
-        speed = self._speed(here, climbs=climbs)
+        speed = self._speed(here)
         if self.distance == "rest" and here.distance is None:
             raise InputRefused('distance = "rest" needs the mission\'s distance at its top')
         span = Span(
@@ -70,6 +70,7 @@ class Cruise(Table):
             end_speed=speed,
             extent=None if self.distance == "rest" else float(self.distance),
             holds_lift_coefficient=climbs,
+            lift_coefficient=self.lift_coefficient if climbs else None,
             drag_factor=self.drag_factor,
             fuel_flow_factor=self.fuel_flow_factor,
             is_reserve=here.is_reserve,
@@ -83,7 +84,7 @@ class Cruise(Table):
             return 11000.0
         return here.altitude_or(self.pressure_altitude, "a cruise")
 
-    def _speed(self, here: Here, *, climbs: bool) -> SpeedRule:
+    def _speed(self, here: Here) -> SpeedRule:
         incoming = here.speed
         if self.holds == "altitude and lift coefficient":
             if self.lift_coefficient is None and incoming is None:
@@ -96,6 +97,4 @@ class Cruise(Table):
             if incoming is None or incoming.kind != "mach":
                 raise InputRefused("give mach: the segment before does not end at a Mach number")
             mach = incoming.value
-        if climbs:
-            return SpeedRule("mach", mach, lift_limit=self.lift_coefficient or 1.0)
         return SpeedRule("mach", mach)

@@ -2,32 +2,62 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
+
+from engine.atmosphere import flight_condition
 from engine.quantities import FOOT, KNOT
-from mission.airspeeds import crossover_altitude
+from mission.airspeeds import crossover_altitude, mach_from_calibrated_airspeed
 from mission.march.span import Span, SpeedRule
 from mission.segments.here import Here
 
 TEN_THOUSAND_FEET = 10000.0 * FOOT
 SPEED_LIMIT = 250.0 * KNOT  # 14 CFR 91.117(a), below 10,000 ft
+_LOWEST, _HIGHEST = -1000.0, 29000.0  # m, altitudes a schedule is asked for
+_SAME_MACH = 1e-6
 _TROPOPAUSE, _STRATOSPHERE = 11000.0, 20000.0  # ISO 2533:1975, kinks of temperature
 
 
 def zones(
     calibrated_airspeed: float | None, mach: float | None, *, limited: bool
 ) -> list[tuple[float, SpeedRule]]:
-    """Speed rules upwards, each with the altitude [m] that it holds up to."""
-    found: list[tuple[float, SpeedRule]] = []
-    if calibrated_airspeed is None:
-        assert mach is not None
-        return [(float("inf"), SpeedRule("mach", mach))]
-    if limited and calibrated_airspeed > SPEED_LIMIT:
-        found.append((TEN_THOUSAND_FEET, SpeedRule("calibrated", SPEED_LIMIT)))
-    top = float("inf") if mach is None else crossover_altitude(calibrated_airspeed, mach)
-    if not found or top > found[-1][0]:
-        found.append((top, SpeedRule("calibrated", calibrated_airspeed)))
+    """Speed rules upwards, each with the altitude [m] that it holds up to.
+
+    The lowest of the speeds given governs everywhere, and 250 kt with them below 10,000 ft where
+    ``limited``.
+    """
+    airspeeds = [] if calibrated_airspeed is None else [calibrated_airspeed]
+    marks = [TEN_THOUSAND_FEET] if limited else []
     if mach is not None:
-        found.append((float("inf"), SpeedRule("mach", mach)))
-    return found
+        candidates = [*airspeeds, SPEED_LIMIT] if limited else airspeeds
+        marks += [crossover_altitude(airspeed, mach) for airspeed in candidates]
+    marks = sorted(mark for mark in marks if _LOWEST < mark < _HIGHEST)
+    found: list[tuple[float, SpeedRule]] = []
+    for low, high in pairwise([_LOWEST, *marks, _HIGHEST]):
+        middle = 0.5 * (low + high)
+        rules = [SpeedRule("calibrated", airspeed) for airspeed in airspeeds]
+        if limited and middle < TEN_THOUSAND_FEET:
+            rules.append(SpeedRule("calibrated", SPEED_LIMIT))
+        if mach is not None:
+            rules.append(SpeedRule("mach", mach))
+        governs = min(rules, key=lambda rule: mach_of(rule, middle))
+        if found and found[-1][1] == governs:
+            found.pop()
+        found.append((high, governs))
+    return [*found[:-1], (float("inf"), found[-1][1])]
+
+
+def mach_of(rule: SpeedRule, altitude: float) -> float:
+    """Mach number of a rule that no mass changes, at a pressure altitude [m]."""
+    assert rule.value is not None
+    if rule.kind == "mach":
+        return rule.value
+    pressure = flight_condition(altitude).static_pressure
+    return float(mach_from_calibrated_airspeed(rule.value, pressure))
+
+
+def is_same_speed(first: SpeedRule, second: SpeedRule, altitude: float) -> bool:
+    """Whether two rules that no mass changes give one Mach number at an altitude."""
+    return abs(mach_of(first, altitude) - mach_of(second, altitude)) < _SAME_MACH
 
 
 def lay_schedule(
@@ -52,7 +82,7 @@ def lay_schedule(
     spans: list[Span] = []
     last: SpeedRule | None = None
     for begin, stop, rule in pieces:
-        if last is not None and rule != last and last.kind == rule.kind:
+        if last is not None and not is_same_speed(last, rule, begin):
             spans.append(_change_speed(here, begin, last, rule, rating))
         spans.append(
             Span(
