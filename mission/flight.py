@@ -23,8 +23,8 @@ from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
 COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
-_COARSE_SETTLED = 1e-9
-_COST_SETTLED = 1e-7
+_COARSE_SETTLED = 1e-8
+_COST_SETTLED = 1e-6
 _MOST_PLANS = 8
 _SAME_ALTITUDE = 0.01  # m, between the end of a cruise-climb and what follows
 

@@ -22,17 +22,20 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 from scipy.integrate import solve_ivp
+from scipy.interpolate import BarycentricInterpolator
 from scipy.optimize import brentq
 
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.interface import Engine, Outcome
 from mission.aircraft import Aircraft
 from mission.forces import drag
-from mission.results import Steps
+from mission.mission_file import MissionFile
+from mission.results import Flight, SegmentLog, Steps
 
 G, GAS, LAPSE = 9.80665, 287.05287, 0.0065
 SEA_LEVEL_SOUND = sqrt(1.4 * GAS * 288.15)
 ROLLING = 0.02
+SPEED_LIMIT, LIMIT_LEVEL = 250.0 * 1852.0 / 3600.0, 10000.0 * 0.3048
 INSIDE = 1e-6  # m inside a joint, so that each piece sees its own side of a kink
 Array = NDArray[np.float64]
 Rates = Callable[[float, float], tuple[float, float, float]]
@@ -226,3 +229,73 @@ def cuts(steps: Steps, low: float, high: float) -> list[float]:
     twice = np.flatnonzero(np.abs(np.diff(altitude)) < 1e-3)
     found = sorted({round(float(altitude[i]), 4) for i in twice})
     return [low, *(mark for mark in found if low + 0.5 < mark < high - 0.5), high]
+
+
+def again(reference: Reference, mission: MissionFile, flight: Flight) -> State:
+    """A whole flight once more from its ramp mass: the rows of its log, without the reserves.
+
+    Where a speed follows from mass by a search (bridges to and from a loiter, the loiter itself)
+    the log's Mach numbers are flown.
+    """
+    written = iter(mission.segment)
+    rows = [log for log in flight.segments if log.purpose == "mission"]
+    state = State(rows[0].mass_start)
+    for log in rows:
+        steps = log.steps
+        level, machs = (
+            float(steps.pressure_altitude[0]),
+            (float(steps.mach[0]), float(steps.mach[-1])),
+        )
+        if log.name.startswith("bridge to "):
+            rating = "flight_idle" if machs[1] < machs[0] else log.rating
+            state = reference.accelerate(state, level, machs, rating)
+            continue
+        segment: Any = next(written)
+        if log.kind == "taxi":
+            state = reference.stand(state, level, segment.time)
+        elif log.kind == "take-off":
+            state, _ = reference.roll(state, level, 1.2)
+        elif log.kind == "cruise":
+            state = reference.cruise(state, level, machs[0], log.ground_distance)
+        elif log.kind in ("climb", "descent"):
+            state = _schedule(reference, state, segment, log)
+        else:
+            state = _hold(reference, state, segment, log)
+    return state
+
+
+def _schedule(reference: Reference, state: State, segment: Any, log: SegmentLog) -> State:
+    """A climb or descent with a speed limit of 250 kt below 10,000 ft, if it has one."""
+    ends = (float(log.steps.pressure_altitude[0]), float(log.steps.pressure_altitude[-1]))
+    low, high = min(ends), max(ends)
+    slow = min(segment.calibrated_airspeed, SPEED_LIMIT)
+    zones = [(low, high, segment.calibrated_airspeed)]
+    if segment.limited_below_10000_ft and low < LIMIT_LEVEL < high:
+        zones = [(low, LIMIT_LEVEL, slow), (LIMIT_LEVEL, high, segment.calibrated_airspeed)]
+    way = -1 if log.kind == "descent" else 1
+    rating = "flight_idle" if log.kind == "descent" else segment.rating
+    last = None
+    for bottom, top, airspeed in zones[::way]:
+        if last is not None and last != airspeed:
+            pressure = float(reference.air(LIMIT_LEVEL, 0.0).static_pressure)
+            machs = (mach_of(last, pressure), mach_of(airspeed, pressure))
+            state = reference.accelerate(state, LIMIT_LEVEL, machs, rating)
+        altitudes = cuts(log.steps, bottom, top)[::way]
+        state = reference.slope(state, altitudes, airspeed, segment.mach or inf, rating)
+        last = airspeed
+    return state
+
+
+def _hold(reference: Reference, state: State, segment: Any, log: SegmentLog) -> State:
+    """A loiter or an approach: the log's Mach numbers over its masses, as a polynomial."""
+    level, steps = float(log.steps.pressure_altitude[0]), log.steps
+    mach_at = BarycentricInterpolator(steps.mass, steps.mach)
+    rating = "take_off" if log.kind == "approach" else segment.rating
+
+    def rates(_: float, mass: float) -> tuple[float, float, float]:
+        flight = reference.air(level, float(mach_at(mass)))
+        needed = float(drag(reference.aircraft, flight, mass * G, segment.drag_factor))
+        _, flow = reference.power(flight, rating, needed)
+        return -flow, 1.0, 0.0
+
+    return reference.integrate(rates, 0.0, segment.time, state)

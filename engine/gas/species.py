@@ -77,6 +77,11 @@ def entropy_row(a: tuple[float, ...]) -> Array:
     return np.array([-a[0] / 2, -a[1], a[8], a[2], a[3], a[4] / 2, a[5] / 3, a[6] / 4, 0.0])
 
 
+def slope_row(a: tuple[float, ...]) -> Array:
+    """Temperature times the slope of :func:`heat_capacity_row` as a row over :data:`BASIS`."""
+    return np.array([-2 * a[0], -a[1], 0.0, 0.0, a[3], 2 * a[4], 3 * a[5], 4 * a[6], 0.0])
+
+
 def basis(temperature: Array) -> Array:
     """Powers of temperature of :data:`BASIS`, shape (9,) + shape of ``temperature``."""
     powers = np.empty((9, *temperature.shape))
@@ -92,15 +97,16 @@ def basis(temperature: Array) -> Array:
 
 
 def continuous_rows(species: Species) -> tuple[Array, Array]:
-    """Rows (heat capacity, enthalpy, entropy) of both ranges, shape (3, 9) each.
+    """Rows (heat capacity, enthalpy, entropy, slope) of both ranges, shape (4, 9) each.
 
     Enthalpy is sensible, zero at 298.15 K. The upper range is shifted by constants so that
     enthalpy and entropy are continuous at 1000 K, where the report leaves steps of the order of
     1e-6, else an inverse near the joint could not settle.
     """
-    low = np.array([row(species.low) for row in (heat_capacity_row, enthalpy_row, entropy_row)])
-    high = np.array([row(species.high) for row in (heat_capacity_row, enthalpy_row, entropy_row)])
+    rows = (heat_capacity_row, enthalpy_row, entropy_row, slope_row)
+    low = np.array([row(species.low) for row in rows])
+    high = np.array([row(species.high) for row in rows])
     low[1, 2] -= low[1] @ basis(np.array(REFERENCE_TEMPERATURE))
     joint = basis(np.array(RANGE_JOINT))
-    high[1:, 2] += (low[1:] - high[1:]) @ joint
+    high[1:3, 2] += (low[1:3] - high[1:3]) @ joint
     return low, high

@@ -63,12 +63,15 @@ def climb_nodes(
     flight: FlightCondition,
     mass: Array,
     propulsion: Propulsion,
+    factor: Array,
     near: Array | None = None,
 ) -> Nodes:
-    """Nodes of a march by altitude; ``near`` is a sine of the path angle to begin from."""
-    sine = path_angle_sine(
-        world.aircraft, flight, mass, propulsion.thrust, acceleration_factor(span, flight), near
-    )
+    """Nodes of a march by altitude.
+
+    ``factor`` is the :func:`acceleration_factor` of the flight condition, ``near`` a sine of the
+    path angle to begin from.
+    """
+    sine = path_angle_sine(world.aircraft, flight, mass, propulsion.thrust, factor, near)
     lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
     vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)
     way = np.sign(span.end_altitude - span.start_altitude)

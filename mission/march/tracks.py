@@ -24,7 +24,8 @@ SAME_MACH = 1e-12
 class Track:
     """A span being solved: what the last sweep left for the next. Private to the integrator.
 
-    ``air`` is the still air of a level span; ``start`` the engine's unknowns to begin with;
+    ``air`` is the still air of a level span, ``factor`` the acceleration factor of a climb or
+    descent; ``start`` the engine's unknowns to begin with;
     ``rating`` the one flown, idle where a march by speed slows down.
     """
 
@@ -35,6 +36,7 @@ class Track:
     flight: FlightCondition | None = None
     answer: Answer | None = None
     air: FlightCondition | None = None
+    factor: Array | None = None
     start: Array | None = None
     rating: str = ""
     mach_change: float = np.inf
@@ -66,6 +68,7 @@ def first_track(
     if span.march == "altitude":
         track.flight = throttled.altitude_flight(span, world, count)
         track.mach = np.broadcast_to(track.flight.mach, mass.shape)
+        track.factor = throttled.acceleration_factor(span, track.flight)
     elif span.march != "book":
         track.air = level_air(span.start_altitude, deviation, count)
         track.mach = np.array(_guess_mach(span.end_speed, world, track.air, mass, before))
@@ -200,8 +203,11 @@ def set_nodes(world: World, track: Track, rest: Array) -> None:
         extent = np.maximum(rest, 0.0) if span.extent is None else np.atleast_1d(span.extent)
         track.nodes = level.level_nodes(span, world, track.flight, mass, extent, propulsion)
     elif span.march == "altitude":
+        assert track.factor is not None
         near = None if track.nodes is None else np.sin(track.nodes.path_angle)
-        track.nodes = throttled.climb_nodes(span, world, track.flight, mass, propulsion, near)
+        track.nodes = throttled.climb_nodes(
+            span, world, track.flight, mass, propulsion, track.factor, near
+        )
     elif span.march == "stand":
         track.nodes = throttled.standing_nodes(span, track.flight, mass, propulsion)
     else:

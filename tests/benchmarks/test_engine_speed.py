@@ -19,16 +19,18 @@ from engine.interface import Outcome
 
 MEMBERS = 4096
 ALLOWED = 60.0  # states of the gas library for each matched engine state
+WORK = 2e5  # [J/kg] what a part of an engine adds or takes
 
 
-def best_of(rounds: int, call: Callable[[], object]) -> float:
-    """Shortest time [s] of a call: what it costs without what else the machine does."""
-    times = []
+def shortest(rounds: int, *calls: Callable[[], object]) -> list[float]:
+    """Shortest time [s] of each call, asked in turns: what it costs without the machine's noise."""
+    best = [float("inf")] * len(calls)
     for _ in range(rounds):
-        begin = time.perf_counter()
-        call()
-        times.append(time.perf_counter() - begin)
-    return min(times)
+        for place, call in enumerate(calls):
+            begin = time.perf_counter()
+            call()
+            best[place] = min(best[place], time.perf_counter() - begin)
+    return best
 
 
 def library_gas() -> cantera.Solution:
@@ -47,12 +49,12 @@ def library_gas() -> cantera.Solution:
 
 
 def ask_library(gas: cantera.Solution, temperatures: np.ndarray) -> None:
-    """Enthalpy and entropy of each temperature, and the temperature back from enthalpy."""
+    """Enthalpy and entropy of each temperature, and the temperature after a part's work."""
     for temperature in temperatures:
         gas.TP = temperature, 1e5
         enthalpy = gas.enthalpy_mass
         _ = gas.entropy_mass
-        gas.HP = enthalpy * 1.01, 1e5
+        gas.HP = enthalpy + WORK, 1e5
         _ = gas.T
 
 
@@ -66,8 +68,10 @@ def test_a_matched_state_costs_less_than_sixty_library_states(turbofan: CycleEng
     wanted = least + generator.uniform(0.1, 0.95, MEMBERS) * (most - least)
     gas, temperatures = library_gas(), generator.uniform(250.0, 1800.0, 2000)
 
-    engine_time = best_of(3, lambda: turbofan.at_thrust(flight, wanted)) / MEMBERS
-    library_time = best_of(3, lambda: ask_library(gas, temperatures)) / temperatures.size
+    engine_time, library_time = shortest(
+        9, lambda: turbofan.at_thrust(flight, wanted), lambda: ask_library(gas, temperatures)
+    )
+    engine_time, library_time = engine_time / MEMBERS, library_time / temperatures.size
 
     state = turbofan.at_thrust(flight, wanted)
     assert np.all(state.outcome == Outcome.MET)

@@ -9,7 +9,7 @@ from engine.atmosphere import FlightCondition, flight_condition
 from engine.cycle_engine import CycleEngine
 from engine.interface import EngineState, Outcome
 
-# Matching is solved to 1e-11 and polished once more: what is left is round-off.
+# A step is taken after matching has come below 1e-9: what is left is near round-off.
 SAME = 1e-10
 GENERATOR = np.random.default_rng(20)
 ALTITUDES = GENERATOR.uniform(0.0, 12500.0, 24)

@@ -16,7 +16,9 @@ from mission.airspeeds import (
     crossover_altitude,
     energy_height,
     equivalent_airspeed,
+    impact_pressure_ratio,
     mach_from_calibrated_airspeed,
+    mach_from_impact_pressure_ratio,
     pressure_altitude_from_pressure,
 )
 
@@ -157,6 +159,20 @@ def test_airspeeds_there_and_back(
 def test_pressure_altitude_of_a_tabled_pressure(height: float, pressure: float) -> None:
     # Half the last printed digit of pressure is at most 6 m (at 20 km: 0.05 Pa of 0.86 Pa/m).
     assert pressure_altitude_from_pressure(pressure) == pytest.approx(height, abs=0.7)
+
+
+@pytest.mark.source(
+    "Ames Research Staff, Equations, Tables, and Charts for Compressible Flow, NACA Report 1135 "
+    "(1953), table II: pitot pressure behind a normal shock over static pressure; from memory"
+)
+@pytest.mark.parametrize(
+    ("mach", "pitot"), [(1.0, 1.893), (1.5, 3.413), (2.0, 5.640), (2.5, 8.526), (3.0, 12.06)]
+)
+def test_impact_pressure_behind_a_shock(mach: float, pitot: float) -> None:
+    # Four digits printed: half the last is 0.05 % at most.
+    ratio = impact_pressure_ratio(mach)
+    assert ratio + 1.0 == pytest.approx(pitot, rel=5e-4)
+    assert mach_from_impact_pressure_ratio(ratio) == pytest.approx(mach, rel=1e-12)
 
 
 ENERGY_ROWS = [
