@@ -10,7 +10,7 @@ import re
 from functools import lru_cache
 from typing import TYPE_CHECKING, Annotated, Any
 
-from pydantic import BeforeValidator
+from pydantic import BeforeValidator, Field
 
 if TYPE_CHECKING:
     import pint
@@ -145,7 +145,8 @@ def _reader(kind: str) -> BeforeValidator:
 
 
 Length = Annotated[float, _reader("length")]
-Altitude = Annotated[float, _reader("altitude")]
+# The range of the standard atmosphere used here, engine.atmosphere.
+Altitude = Annotated[float, _reader("altitude"), Field(ge=-2000.0, le=30000.0)]
 Area = Annotated[float, _reader("area")]
 Mass = Annotated[float, _reader("mass")]
 Time = Annotated[float, _reader("time")]

@@ -18,16 +18,44 @@ Array = NDArray[np.float64]
 _SEA_LEVEL_PRESSURE = 101325.0
 _SEA_LEVEL_SPEED_OF_SOUND = float(np.sqrt(1.4 * CONST.R * 288.15))
 _SEA_LEVEL_DENSITY = 1.225
+_MOST_STEPS, _SETTLED = 40, 1e-14
 
 
 def impact_pressure_ratio(mach: ArrayLike) -> Array:
-    """Impact pressure over static pressure at a subsonic Mach number."""
-    return (1.0 + 0.2 * np.asarray(mach, dtype=float) ** 2) ** 3.5 - 1.0
+    """Impact pressure over static pressure; above Mach 1 behind the normal shock of the probe.
+
+    Rayleigh's pitot formula: Ames Research Staff, Equations, Tables, and Charts for Compressible
+    Flow, NACA Report 1135, equation 100 (from memory), with 1.4 for the ratio of heat capacities.
+    """
+    square = np.asarray(mach, dtype=float) ** 2
+    shock = np.maximum(square, 1.0)
+    behind = (1.2 * shock) ** 3.5 * (6.0 / (7.0 * shock - 1.0)) ** 2.5
+    return np.where(square > 1.0, behind, (1.0 + 0.2 * square) ** 3.5) - 1.0
+
+
+def _impact_slope(mach: Array) -> Array:
+    """Derivative of :func:`impact_pressure_ratio` with Mach number."""
+    square = mach**2
+    shock = np.maximum(square, 1.0)
+    behind = (impact_pressure_ratio(mach) + 1.0) * 7.0 * (2.0 * shock - 1.0)
+    subsonic = 1.4 * mach * (1.0 + 0.2 * square) ** 2.5
+    return np.where(square > 1.0, behind / (mach * (7.0 * shock - 1.0)), subsonic)
 
 
 def mach_from_impact_pressure_ratio(ratio: ArrayLike) -> Array:
-    """Inverse of :func:`impact_pressure_ratio`."""
-    return np.sqrt(5.0 * ((np.asarray(ratio, dtype=float) + 1.0) ** (2.0 / 7.0) - 1.0))
+    """Inverse of :func:`impact_pressure_ratio`, by Newton's method above Mach 1."""
+    target = np.asarray(ratio, dtype=float)
+    mach = np.sqrt(5.0 * ((target + 1.0) ** (2.0 / 7.0) - 1.0))
+    is_fast = mach > 1.0
+    for _ in range(_MOST_STEPS):
+        if not np.any(is_fast):
+            break
+        step = (impact_pressure_ratio(mach) - target) / np.maximum(_impact_slope(mach), 1e-9)
+        step = np.where(is_fast, step, 0.0)
+        mach = np.where(is_fast, np.maximum(mach - step, 1.0), mach)
+        if np.max(np.abs(step)) < _SETTLED:
+            break
+    return mach
 
 
 def mach_from_calibrated_airspeed(airspeed: ArrayLike, static_pressure: ArrayLike) -> Array:
@@ -79,8 +107,8 @@ def calibrated_mach_slope(flight: FlightCondition) -> Array:
     mach = flight.mach
     standard_temperature = flight.static_temperature - flight.temperature_deviation
     pressure_slope = STANDARD_GRAVITY / (CONST.R * standard_temperature)
-    slope: Array = impact_pressure_ratio(mach) * pressure_slope
-    return slope / (1.4 * mach * (1.0 + 0.2 * mach**2) ** 2.5)
+    rise: Array = impact_pressure_ratio(mach) * pressure_slope
+    return rise / _impact_slope(mach)
 
 
 def energy_height(height: ArrayLike, true_airspeed: ArrayLike) -> Array:

@@ -49,7 +49,8 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
     written = mission.written
     world = World(aircraft, engine, written.day, -written.headwind)
     solved = _solve(mission, world, refinement)
-    if not solved.fine.is_settled and not solved.fine.is_lost:
+    has_no_mass = not solved.fine.is_settled and not solved.fine.is_lost
+    if written.fuel.as_needed and has_no_mass:
         most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
         load = max(min(aircraft.usable_fuel, most - aircraft.unusable_fuel), 1.0)
         written = written.model_copy(

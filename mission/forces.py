@@ -11,7 +11,8 @@ from mission.aerodynamics import drag_coefficient
 from mission.aircraft import Aircraft
 
 Array = NDArray[np.float64]
-_STEEPEST = 0.9  # sine of the path angle an iterate may visit; an answer there is refused
+STEEPEST = 60.0  # degrees of path angle; a steeper answer is refused
+_STEEPEST_SINE = 0.9  # what an iterate may visit, beyond it
 
 
 def dynamic_pressure(flight: FlightCondition) -> Array:
@@ -62,7 +63,7 @@ def path_angle_sine(
     for _ in range(60):
         lift = weight * np.sqrt(1.0 - sine**2)
         new = (thrust - drag(aircraft, flight, lift)) / (weight * acceleration_factor)
-        new = np.minimum(np.maximum(new, -_STEEPEST), _STEEPEST)
+        new = np.minimum(np.maximum(new, -_STEEPEST_SINE), _STEEPEST_SINE)
         change = np.max(np.abs(new - sine), initial=0.0)
         sine = new
         if change < 1e-15:

@@ -37,12 +37,16 @@ class Sums:
 
 
 def trip_rows(plan: FlightPlan) -> range:
-    """Rows from the start of take-off to the end of landing: the mission without its taxis."""
+    """Rows from the start of take-off to the end of landing.
+
+    Without a take-off it starts, without an approach it ends, where the mission does, its taxis
+    left out.
+    """
     rows = [i for i, row in enumerate(plan.rows) if row.purpose == "mission"]
-    flown = [i for i in rows if plan.rows[i].kind != "taxi"]
+    flown = [i for i in rows if plan.rows[i].kind != "taxi"] or rows
     take_offs = [i for i in flown if plan.rows[i].kind == "take-off"]
-    first = take_offs[0] if take_offs else (flown or rows)[0]
-    return range(first, (flown or rows)[-1] + 1)
+    approaches = [i for i in flown if plan.rows[i].kind == "approach"]
+    return range((take_offs or flown)[0], (approaches or flown)[-1] + 1)
 
 
 def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member: int = 0) -> Sums:

@@ -12,6 +12,8 @@ from engine.interface import Outcome
 from engine.quantities import FOOT
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed
+from mission.forces import STEEPEST
+from mission.march.level import SLOWEST_GROUND_SPEED
 from mission.march.sweep import Marched
 from mission.march.throttled import SLOWEST_ACCELERATION, SLOWEST_CLIMB
 from mission.march.tracks import Track
@@ -65,7 +67,12 @@ def first_failure(
         failure
         for number, log in enumerate(logs)
         for failure in sorted(
-            _passed_on_the_way(world, [t for t in marched.tracks if t.span.segment == number], log),
+            chain(
+                _dry(world, written, total, log),
+                _passed_on_the_way(
+                    world, [t for t in marched.tracks if t.span.segment == number], log
+                ),
+            ),
             key=lambda failure: failure.step,
         )
     )
@@ -83,8 +90,9 @@ def first_failure(
 def _passed_payload(
     world: World, written: MissionFile, logs: tuple[SegmentLog, ...]
 ) -> Iterator[Failure]:
-    """Zero-fuel mass, which no flight changes."""
-    empty = world.aircraft.operating_empty_mass + written.payload
+    """Zero-fuel mass, unusable fuel included, which no flight changes."""
+    aircraft = world.aircraft
+    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
     most = world.aircraft.maximum_zero_fuel_mass
     if empty > most * (1.0 + 1e-9):
         yield Failure(logs[0].name, 0, "zero-fuel mass", empty, most, "kg", "carry less payload")
@@ -93,7 +101,9 @@ def _passed_payload(
 def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> Iterator[Failure]:
     """Limits passed at the steps of one segment, each at its first step."""
     aircraft, steps = world.aircraft, log.steps
-    outcome, vertical, acceleration = _along(tracks)
+    outcome, rates = _along(tracks)
+    vertical, acceleration, over_ground = rates["altitude"], rates["speed"], rates["distance"]
+    steepness = np.degrees(np.abs(steps.flight_path_angle))
     lost = (outcome == Outcome.NOT_CONVERGED) | (outcome == Outcome.UNPHYSICAL)
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     airborne = steps.lift > 0.0
@@ -105,11 +115,15 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     checks: list[_Check] = [
         (lost, "answers of the engine at this altitude, speed and thrust", 0.0 * mach, 1.0, "",
          "look at the engine there with `longlegs stations`"),
+        (over_ground < SLOWEST_GROUND_SPEED, "ground speed", over_ground, SLOWEST_GROUND_SPEED,
+         "m/s", "fly faster, or with less headwind"),
         (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",
          steps.thrust, steps.drag, "N",
          "fly lower or slower, carry less, or take a larger engine"),
         (vertical < SLOWEST_CLIMB, f"rate of {log.kind}", vertical, SLOWEST_CLIMB, "m/s",
          "end it lower, change its speeds, or carry less"),
+        (steepness > STEEPEST, "path angle", steepness, STEEPEST, "deg",
+         "the engine is too strong for these equations: climb at a lower rating"),
         (acceleration < SLOWEST_ACCELERATION, "acceleration", acceleration, SLOWEST_ACCELERATION,
          "m/s2", "lower the speed to reach, or carry less"),
         (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
@@ -126,23 +140,23 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
             yield Failure(log.name, step, name, float(value[step]), at, in_unit, hint)
 
 
-def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], Array, Array]:
-    """Outcome of the engine, vertical rate and acceleration at the steps of a segment.
+def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], dict[str, Array]]:
+    """Outcome of the engine at the steps of a segment, and the rates of its marches by kind.
 
-    The rates are positive the way the march goes, infinite where it has none.
+    A rate is positive the way its march goes, infinite where the march has none.
     """
-    outcomes, vertical, acceleration = [], [], []
+    outcomes: list[NDArray[np.int64]] = []
+    rates: dict[str, list[Array]] = {march: [] for march in ("altitude", "speed", "distance")}
     for track in tracks:
         if track.nodes is None:
             outcome, rate = np.full(2, Outcome.MET), np.full(2, np.inf)
         else:
             outcome, rate = track.nodes.propulsion.outcome[:, 0], track.nodes.rate[:, 0]
-        none = np.full(rate.shape, np.inf)
-        climbs = track.span.march == "altitude"
         outcomes.append(outcome)
-        vertical.append(rate if climbs else none)
-        acceleration.append(none if climbs else rate)
-    return np.concatenate(outcomes), np.concatenate(vertical), np.concatenate(acceleration)
+        march = "speed" if track.span.march == "roll" else track.span.march
+        for name, parts in rates.items():
+            parts.append(rate if name == march else np.full(rate.shape, np.inf))
+    return np.concatenate(outcomes), {name: np.concatenate(r) for name, r in rates.items()}
 
 
 def _passed_masses(
@@ -168,23 +182,46 @@ def _last_of_mission(logs: tuple[SegmentLog, ...]) -> SegmentLog:
     return [log for log in logs if log.purpose == "mission"][-1]
 
 
+_RESERVES = "usable fuel left at the stop against the reserves to keep"
+
+
+def _dry(world: World, written: MissionFile, total: Totals, log: SegmentLog) -> Iterator[Failure]:
+    """The step of the mission at which the tanks run dry."""
+    aircraft = world.aircraft
+    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
+    is_dry = log.steps.mass < empty - 1e-6
+    if log.purpose == "mission" and np.any(is_dry):
+        yield Failure(
+            log.name,
+            int(np.argmax(is_dry)),
+            f"{_RESERVES}, the tanks running dry here",
+            total.fuel_left,
+            total.reserve_fuel,
+            "kg",
+            _more_fuel(world, total),
+        )
+
+
+def _more_fuel(world: World, total: Totals) -> str:
+    is_full = total.loaded_fuel > 0.999 * world.aircraft.usable_fuel
+    return "fly less far or carry less" if is_full else "load more fuel, fly less far"
+
+
 def _passed_reserves(
     world: World, total: Totals, logs: tuple[SegmentLog, ...], *, closes: bool
 ) -> Iterator[Failure]:
-    """Fuel left at the stop below the reserves; named where the tanks run dry, if they do."""
+    """Fuel left at the stop below the reserves."""
     if closes and total.fuel_margin >= -1e-6 * max(total.loaded_fuel, 1.0):
         return
-    dry = [log.name for log in logs if log.purpose == "mission" and log.fuel_left < -1e-6]
-    is_full = total.loaded_fuel > 0.999 * world.aircraft.usable_fuel
+    unclosed = "" if closes else " (no take-off mass closes: this flies all the fuel it can load)"
     yield Failure(
-        segment=dry[0] if dry else _last_of_mission(logs).name,
+        segment=_last_of_mission(logs).name,
         step=0,
-        what="usable fuel left at the stop against the reserves to keep"
-        + ("" if closes else " (no take-off mass closes: this flies all the fuel it can load)"),
+        what=_RESERVES + unclosed,
         value=total.fuel_left,
         bound=total.reserve_fuel,
         unit="kg",
-        advice="fly less far or carry less" if is_full or not closes else "load more fuel",
+        advice=_more_fuel(world, total),
     )
 
 

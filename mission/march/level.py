@@ -19,6 +19,7 @@ from mission.march.span import Nodes, Propulsion, Span
 from mission.march.world import World
 
 Array = NDArray[np.float64]
+SLOWEST_GROUND_SPEED = 1.0  # m/s: below it a distance does not end
 _STENCIL = 0.004  # Mach number to each side, for slope and curvature of fuel flow
 _LARGEST_MACH_STEP = 0.05
 
@@ -85,8 +86,10 @@ def level_nodes(
 ) -> Nodes:
     """Nodes of a level march over a ground distance [m] or a time [s], shape (members,)."""
     if span.march == "distance":
-        time_rate = extent / (flight.true_airspeed + world.tailwind)
+        rate = np.broadcast_to(flight.true_airspeed + world.tailwind, mass.shape)
+        time_rate = extent / np.maximum(rate, SLOWEST_GROUND_SPEED)
     else:
+        rate = np.full_like(mass, np.inf)
         time_rate = np.broadcast_to(extent, mass.shape)
     return Nodes(
         flight=flight,
@@ -96,5 +99,5 @@ def level_nodes(
         drag=level_drag(span, world, flight, mass),
         lift=mass * STANDARD_GRAVITY,
         path_angle=np.zeros_like(mass),
-        rate=np.full_like(mass, np.inf),
+        rate=rate,
     )

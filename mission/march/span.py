@@ -128,8 +128,8 @@ class Nodes:
     propulsion : thrust, fuel flow and outcome of all engines
     drag, lift : [N]
     path_angle : geometric, relative to the air [rad]
-    rate : rate of climb or descent [m/s], acceleration [m/s2], positive the way the march goes;
-        infinite where the march has none
+    rate : rate of climb or descent [m/s], acceleration [m/s2], ground speed [m/s], positive the
+        way the march goes; infinite where it has none
     """
 
     flight: FlightCondition

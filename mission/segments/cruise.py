@@ -12,6 +12,7 @@ from engine.reading import Table
 from mission.march.span import Span, SpeedRule
 from mission.segments.climb import RatingName
 from mission.segments.here import Here
+from mission.segments.schedule import mach_of
 
 Held = Literal["altitude and mach", "altitude and lift coefficient", "mach and lift coefficient"]
 
@@ -57,7 +58,7 @@ class Cruise(Table):
                 "already; leave lift_coefficient out to hold the one at the start"
             )
         altitude = self._altitude(here, climbs=climbs)
-        speed = self._speed(here)
+        speed = self._speed(here, altitude)
         if self.distance == "rest" and here.distance is None:
             raise InputRefused('distance = "rest" needs the mission\'s distance at its top')
         span = Span(
@@ -84,7 +85,7 @@ class Cruise(Table):
             return 11000.0
         return here.altitude_or(self.pressure_altitude, "a cruise")
 
-    def _speed(self, here: Here) -> SpeedRule:
+    def _speed(self, here: Here, altitude: float) -> SpeedRule:
         incoming = here.speed
         if self.holds == "altitude and lift coefficient":
             if self.lift_coefficient is None and incoming is None:
@@ -94,7 +95,7 @@ class Cruise(Table):
             return SpeedRule("lift_coefficient", self.lift_coefficient)
         mach = self.mach
         if mach is None:
-            if incoming is None or incoming.kind != "mach":
-                raise InputRefused("give mach: the segment before does not end at a Mach number")
-            mach = incoming.value
+            if incoming is None or incoming.depends_on_mass:
+                raise InputRefused("give mach: the segment before does not end at a given speed")
+            mach = mach_of(incoming, altitude)
         return SpeedRule("mach", mach)
