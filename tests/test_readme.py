@@ -1,0 +1,72 @@
+"""What the README shows is what the program does."""
+
+from __future__ import annotations
+
+import re
+import tomllib
+from pathlib import Path
+
+import pytest
+
+from engine.loading import engine_from_content
+from mission.aircraft import AircraftFile
+from mission.library import find
+from mission.mission_file import mission_from_content
+
+ROOT = Path(__file__).parents[1]
+README = (ROOT / "README.md").read_text()
+
+
+def block_after(mark: str) -> str:
+    """The fenced block between a mark and its end."""
+    found = re.search(rf"<!-- {mark} -->\n```\n(.*?)```\n<!-- end -->", README, re.DOTALL)
+    assert found, mark
+    return found.group(1)
+
+
+def toml_blocks() -> list[str]:
+    return re.findall(r"```toml\n(.*?)```", README, re.DOTALL)
+
+
+def test_the_two_commands_are_one_line_each() -> None:
+    for mark in ("command: demo", "command: test"):
+        assert len(block_after(mark).splitlines()) == 1
+
+
+def test_the_excerpt_is_real_output(
+    capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    import sys
+
+    from mission.command_line import main
+
+    monkeypatch.setenv("COLUMNS", "100")
+    monkeypatch.setenv("NO_COLOR", "1")
+    monkeypatch.setattr(sys, "argv", ["longlegs", "fly"])
+    with pytest.raises(SystemExit) as ended:
+        main()
+    assert not ended.value.code
+    printed = {line.rstrip() for line in capsys.readouterr().out.splitlines()}
+    assert [line for line in block_after("excerpt: fly").splitlines() if line not in printed] == []
+
+
+def test_the_aircraft_and_the_mission_can_be_copied() -> None:
+    aircraft, _, mission = toml_blocks()
+    AircraftFile.model_validate(tomllib.loads(aircraft))
+    mission_from_content(tomllib.loads(mission), "README.md")
+
+
+def test_the_engine_lacks_only_what_its_comments_stand_for() -> None:
+    content = tomllib.loads(toml_blocks()[1])
+    for name in ("maximum_continuous", "climb", "cruise"):
+        content["ratings"][name] = content["ratings"]["take_off"]
+    content["idle"]["ground"] = content["idle"]["flight"]
+    assert engine_from_content(content, "README.md").name == "bypass-5 turbofan"
+
+
+def test_the_python_example_runs(capsys: pytest.CaptureFixture[str]) -> None:
+    code = re.findall(r"```python\n(.*?)```", README, re.DOTALL)
+    assert len(code) == 1
+    folder = Path(find("coast_watch", "mission")).parent
+    exec(code[0].replace("longlegs/profiles", str(folder)), {})
+    assert "corrected" in capsys.readouterr().out
