@@ -14,21 +14,19 @@ from numpy.typing import ArrayLike, NDArray
 
 from engine.atmosphere import FlightCondition, broadcast_condition
 from engine.errors import InputRefused
-from engine.interface import IDLES, EngineState, Outcome
+from engine.interface import IDLES, Engine, EngineState, Outcome
 
 Array = NDArray[np.float64]
 _SEA_LEVEL_DENSITY = 1.225  # kg/m3, ISO 2533:1975
 
 
 @dataclass(frozen=True)
-class ConstantConsumptionEngine:
+class ConstantConsumptionEngine(Engine):
     """Static thrust [N] by rating, exponent of density, consumption [kg/(N s)]."""
 
-    name: str
     specific_fuel_consumption: float
     static_thrust: Mapping[str, float]
     density_exponent: float
-    assumed: tuple[str, ...] = ()
 
     def _thrust(self, flight: FlightCondition, rating: str) -> Array:
         if rating in IDLES:
@@ -65,24 +63,6 @@ class ConstantConsumptionEngine:
         positive = most > 0.0
         share = np.where(positive, thrust / np.where(positive, most, 1.0), 1.0)
         return self._state(flight, thrust, outcome, share)
-
-    def at_thrust(
-        self,
-        flight: FlightCondition,
-        net_thrust: ArrayLike,
-        *,
-        rating: str = "maximum_continuous",
-        idle: str = "flight_idle",
-        start: Array | None = None,
-    ) -> EngineState:
-        """State that gives a required net thrust [N] below one rating."""
-        return self.at(flight, rating=rating, net_thrust=net_thrust, idle=idle, start=start)
-
-    def at_rating(
-        self, flight: FlightCondition, rating: str, *, start: Array | None = None
-    ) -> EngineState:
-        """State at one rating or idle."""
-        return self.at(flight, rating=rating, start=start)
 
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit: no fuel and, for want of any geometry, no drag."""

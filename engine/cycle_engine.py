@@ -13,7 +13,7 @@ from engine.atmosphere import FlightCondition, broadcast_condition
 from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath, Sizing
 from engine.errors import InputRefused
 from engine.gas import RealGas
-from engine.interface import EngineState, Evidence, Outcome
+from engine.interface import Engine, EngineState, Evidence, Outcome
 from engine.matching import Demand, Solution, Throttle, evaluate_at, solve
 from engine.parts.stream import Stream
 
@@ -22,20 +22,18 @@ _SLACK = 1e-9
 
 
 @dataclass(frozen=True)
-class CycleEngine:
+class CycleEngine(Engine):
     """A sized arrangement with its ratings.
 
     ``ceilings`` and ``floors`` hold, by rating or idle name, one bound for each of LIMIT_NAMES,
     infinite (zero) where there is none.
     """
 
-    name: str
     arrangement: Arrangement
     sizing: Sizing
     ceilings: Mapping[str, Array]
     floors: Mapping[str, Array]
     combustion_efficiency: float
-    assumed: tuple[str, ...] = ()
 
     def at(
         self,
@@ -135,24 +133,6 @@ class CycleEngine:
             step = solve(self.arrangement, self.sizing, flat, demand, unknowns)
             unknowns = np.where(step.is_converged, step.unknowns, unknowns)
         return unknowns
-
-    def at_thrust(
-        self,
-        flight: FlightCondition,
-        net_thrust: ArrayLike,
-        *,
-        rating: str = "maximum_continuous",
-        idle: str = "flight_idle",
-        start: Array | None = None,
-    ) -> EngineState:
-        """State that gives a required net thrust [N] below one rating."""
-        return self.at(flight, rating=rating, net_thrust=net_thrust, idle=idle, start=start)
-
-    def at_rating(
-        self, flight: FlightCondition, rating: str, *, start: Array | None = None
-    ) -> EngineState:
-        """State at one rating or idle."""
-        return self.at(flight, rating=rating, start=start)
 
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit state: no fuel, no bleed, no shaft power taken; negative thrust is its drag."""

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+from abc import ABC, abstractmethod
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from enum import IntEnum
 from functools import cached_property
-from typing import TYPE_CHECKING, Any, Protocol, TypeVar
+from typing import TYPE_CHECKING, Any, TypeVar
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -192,24 +193,24 @@ class EngineState:
         return np.array([*self.limit_names, "none"])[self.binding_limit]
 
 
-class Engine(Protocol):
+@dataclass(frozen=True)
+class Engine(ABC):
     """What the mission asks of an engine; elementwise over any broadcastable shape.
 
     A thrust above what the rating gives comes back as BEYOND_RATING with the thrust that there
-    is; below idle as AT_IDLE. ``start`` are the
-    ``unknowns`` of an earlier state near by, NaN where there is none.
+    is; below idle as AT_IDLE. ``start`` are the ``unknowns`` of an earlier state near by, NaN
+    where there is none.
+
+    Attributes
+    ----------
+    name : what the engine file calls it
+    assumed : values that the engine file left unsaid, as ``key = value``
     """
 
-    @property
-    def name(self) -> str:
-        """What the engine file calls it."""
-        ...
+    name: str
+    assumed: tuple[str, ...] = field(default=(), kw_only=True)
 
-    @property
-    def assumed(self) -> tuple[str, ...]:
-        """Values that the engine file left unsaid, as ``key = value``."""
-        ...
-
+    @abstractmethod
     def at(
         self,
         flight: FlightCondition,
@@ -224,7 +225,10 @@ class Engine(Protocol):
         ``rating`` is a name of :data:`RATINGS` or :data:`IDLES`, or an array of them; where
         ``net_thrust`` is NaN (or not given) the rating itself is asked for.
         """
-        ...
+
+    @abstractmethod
+    def windmilling(self, flight: FlightCondition) -> EngineState:
+        """Unlit engine turned by the air: no fuel, negative thrust."""
 
     def at_thrust(
         self,
@@ -235,15 +239,11 @@ class Engine(Protocol):
         idle: str = "flight_idle",
         start: Array | None = None,
     ) -> EngineState:
-        """State that gives a required net thrust [N] of one engine."""
-        ...
+        """State that gives a required net thrust [N] of one engine below one rating."""
+        return self.at(flight, rating=rating, net_thrust=net_thrust, idle=idle, start=start)
 
     def at_rating(
         self, flight: FlightCondition, rating: str, *, start: Array | None = None
     ) -> EngineState:
-        """State at a rating or an idle, by name (:data:`RATINGS`, :data:`IDLES`)."""
-        ...
-
-    def windmilling(self, flight: FlightCondition) -> EngineState:
-        """Unlit engine turned by the air: no fuel, negative thrust."""
-        ...
+        """State at one rating or idle, by name (:data:`RATINGS`, :data:`IDLES`)."""
+        return self.at(flight, rating=rating, start=start)

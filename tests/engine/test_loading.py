@@ -35,8 +35,8 @@ from engine.loading import engine_from_content, load_engine
         (
             "design_point.pressure_altitude",
             "200000 ft",
-            "design_point",
-            "pressure altitude = 60960",
+            "design_point.pressure_altitude",
+            "less than or equal to 30000 in SI units",
         ),
         ("design_point.day", "ISA-300", "design_point", "temperature deviation = -300 K"),
         ("design_point.day", "warm", "design_point.day", 'write for example "ISA" or "ISA+15"'),
