@@ -39,14 +39,17 @@ class Sums:
 def trip_rows(plan: FlightPlan) -> range:
     """Rows from the start of take-off to the end of landing.
 
-    Without a take-off it starts, without an approach it ends, where the mission does, its taxis
-    left out.
+    Without a take-off it starts with the first row that is no taxi. It ends with the last row
+    that is flown, and the allowances that follow it on the spot: they stand for the landing.
     """
-    rows = [i for i, row in enumerate(plan.rows) if row.purpose == "mission"]
-    flown = [i for i in rows if plan.rows[i].kind != "taxi"] or rows
-    take_offs = [i for i in flown if plan.rows[i].kind == "take-off"]
-    approaches = [i for i in flown if plan.rows[i].kind == "approach"]
-    return range((take_offs or flown)[0], (approaches or flown)[-1] + 1)
+    kinds = [row.kind for row in plan.rows if row.purpose == "mission"]
+    moving = [i for i, kind in enumerate(kinds) if kind != "taxi"] or list(range(len(kinds)))
+    flown = [i for i in moving if kinds[i] != "allowance"] or moving
+    first = kinds.index("take-off") if "take-off" in kinds else moving[0]
+    last = flown[-1]
+    while kinds[last + 1 : last + 2] == ["allowance"]:
+        last += 1
+    return range(first, last + 1)
 
 
 def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member: int = 0) -> Sums:

@@ -181,6 +181,7 @@ def _entry_mach(world: World, tracks: list[Track], index: int) -> Array:
 def set_nodes(world: World, track: Track, rest: Array) -> None:
     """Nodes of a span from the engine's answer and the masses of the last sweep."""
     span, answer, mass = track.span, track.answer, track.mass
+    track.mach_change = 0.0
     if span.march == "book":
         return
     assert answer is not None
@@ -188,7 +189,6 @@ def set_nodes(world: World, track: Track, rest: Array) -> None:
     aircraft = world.aircraft
     flow_factor = aircraft.engine_count * aircraft.fuel_flow_factor * span.fuel_flow_factor
     flow, thrust, outcome = answer.fuel_flow * flow_factor, answer.net_thrust, answer.outcome
-    track.mach_change = 0.0
     if track.is_level and span.end_speed.kind == "least_fuel":
         better = level.least_fuel_step(world, track.flight, mass, flow)
         track.mach_change = float(np.max(np.abs(better - track.mach)))

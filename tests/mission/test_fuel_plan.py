@@ -188,3 +188,24 @@ def test_reserves_are_flown_on_the_same_clock(tmp_path: Path) -> None:
     hold = flight.segments[-1].steps.elapsed_time
     assert hold[0] == pytest.approx(flight.totals.block_time, rel=1e-12)
     assert np.all(np.diff(hold) > 0.0)
+
+
+@pytest.mark.parametrize("last", ["descent", "approach"])
+def test_a_second_take_off_is_part_of_the_trip(tmp_path: Path, last: str) -> None:
+    """A touch-and-go ends the trip neither at the first landing nor nowhere."""
+    again = [{"kind": "take-off", "name": "take-off again"}, *OUT_AND_DOWN]
+    segments = [*WHOLE[2:7], *again[:2], OUT_AND_DOWN[2] | {"name": "last descent"}]
+    if last == "approach":
+        segments.append({"kind": "approach", "name": "last approach", "time": "4 min"})
+    flight = planned(tmp_path, segments)
+    names = [log.name for log in flight.segments]
+    assert names[0] == "take-off"
+    assert flight.totals.trip_fuel == pytest.approx(flight.totals.block_fuel, rel=1e-12)
+    assert flight.totals.landing_mass == pytest.approx(flight.segments[-1].mass_end, rel=1e-15)
+
+
+def test_a_take_off_may_be_the_last_thing(tmp_path: Path) -> None:
+    segments = [*WHOLE[2:7], {"kind": "take-off", "name": "take-off again"}, OUT_AND_DOWN[0]]
+    flight = planned(tmp_path, segments)
+    assert flight.segments[-1].name == "climb"
+    assert flight.totals.landing_mass == pytest.approx(flight.segments[-1].mass_end, rel=1e-15)
