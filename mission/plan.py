@@ -55,7 +55,7 @@ class _Laid:
         if self.here.on_ground and segment.kind in _AIRBORNE:
             raise InputRefused("the aircraft stands on the ground; put a take-off before it")
         self.bridge(segment, purpose)
-        self.here = self.here.now(row=len(self.rows))
+        self.here = replace(self.here, row=len(self.rows))
         spans, self.here = segment.lay(self.here)
         self.spans += spans
         self.rows.append(Row(segment.name, segment.kind, purpose))
@@ -68,11 +68,11 @@ class _Laid:
             return
         if _same_speed(before, after, altitude):
             return
-        self.here = self.here.now(row=len(self.rows))
+        self.here = replace(self.here, row=len(self.rows))
         rating = "climb" if segment.kind != "cruise" else "maximum_continuous"
         self.spans.append(speed_span(self.here, altitude, before, after, rating))
         self.rows.append(Row(f"bridge to {segment.name}", "acceleration", purpose))
-        self.here = self.here.now(speed=after)
+        self.here = replace(self.here, speed=after)
 
 
 def _same_speed(before: SpeedRule, after: SpeedRule, altitude: float) -> bool:
@@ -111,7 +111,7 @@ def lay_out(
             raise InputRefused(refusal.what, where=mission.where, key=key) from None
         if laid.here.pressure_altitude is None and segment.kind == "cruise":
             end = cruise_climb_ends.get(len(laid.rows) - 1)
-            laid.here = laid.here.now(pressure_altitude=end or laid.spans[-1].start_altitude)
+            laid.here = replace(laid.here, pressure_altitude=end or laid.spans[-1].start_altitude)
     mission_spans = list(laid.spans)
     _refuse_rest(mission, mission_spans)
     laid.spans = []
@@ -152,7 +152,8 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
     """The reserve flight: alternate from a go-around, then the final hold; its distance, if any."""
     reserves = written.reserves
     elevation = written.destination.elevation
-    start = laid.here.now(
+    start = replace(
+        laid.here,
         pressure_altitude=None,
         speed=None,
         on_ground=False,
@@ -164,7 +165,8 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
         alternate = reserves.alternate
         distance = alternate.distance
         elevation = elevation if alternate.elevation is None else alternate.elevation
-        laid.here = start.now(
+        laid.here = replace(
+            start,
             pressure_altitude=start.departure_elevation,
             speed=approach_speed(start),
             distance=distance,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
@@ -47,8 +48,8 @@ class Accelerate(Table):
             ends = SpeedRule("mach", self.to_mach)
         else:
             ends = SpeedRule("calibrated", self.to_calibrated_airspeed)
-        return [speed_span(here, altitude, begins, ends, self.rating)], here.now(
-            pressure_altitude=altitude, speed=ends, on_ground=False
+        return [speed_span(here, altitude, begins, ends, self.rating)], replace(
+            here, pressure_altitude=altitude, speed=ends, on_ground=False
         )
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
@@ -62,7 +63,7 @@ class Allowance(Table):
             )
         if self.to is None:
             return [span], here
-        return [span], here.now(pressure_altitude=self.to, speed=None, on_ground=False)
+        return [span], replace(here, pressure_altitude=self.to, speed=None, on_ground=False)
 
     def _running(self, here: Here) -> Span:
         """Engines at a rating for the time, where the aircraft is; no force, no way."""

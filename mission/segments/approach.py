@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field
@@ -51,7 +52,9 @@ class Approach(Table):
             drag_factor=self.drag_factor,
             is_reserve=here.is_reserve,
         )
-        landed = here.now(pressure_altitude=here.destination_elevation, speed=None, on_ground=True)
+        landed = replace(
+            here, pressure_altitude=here.destination_elevation, speed=None, on_ground=True
+        )
         return [span], landed
 
 

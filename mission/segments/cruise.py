@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field, field_validator
@@ -77,7 +78,7 @@ class Cruise(Table):
             is_reserve=here.is_reserve,
         )
         ends_at = None if climbs else altitude
-        return [span], here.now(pressure_altitude=ends_at, speed=speed, on_ground=False)
+        return [span], replace(here, pressure_altitude=ends_at, speed=speed, on_ground=False)
 
     def _altitude(self, here: Here, *, climbs: bool) -> float:
         """Where the cruise begins; for a given Mach number and lift coefficient found in flight."""

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field
@@ -28,11 +29,7 @@ class Taxi(Table):
 
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """The span of the taxi."""
-        if not here.on_ground and here.pressure_altitude is not None:
-            raise InputRefused("the aircraft is in the air; put an approach before this taxi")
-        elevation = here.pressure_altitude
-        if elevation is None:
-            elevation = here.departure_elevation
+        elevation = _elevation(here, "the aircraft is in the air; put an approach before this taxi")
         span = Span(
             segment=here.row,
             march="stand",
@@ -41,7 +38,7 @@ class Taxi(Table):
             end_altitude=elevation,
             extent=self.time,
         )
-        return [span], here.now(pressure_altitude=elevation, speed=None, on_ground=True)
+        return [span], replace(here, pressure_altitude=elevation, speed=None, on_ground=True)
 
 
 class TakeOff(Table):
@@ -56,11 +53,7 @@ class TakeOff(Table):
 
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """The span of the roll."""
-        if not here.on_ground and here.pressure_altitude is not None:
-            raise InputRefused("the aircraft is in the air already")
-        elevation = here.pressure_altitude
-        if elevation is None:
-            elevation = here.departure_elevation
+        elevation = _elevation(here, "the aircraft is in the air already")
         lift_off = SpeedRule("stall", LIFT_OFF_MULTIPLE, here.aircraft.take_off_lift_coefficient)
         span = Span(
             segment=here.row,
@@ -71,4 +64,13 @@ class TakeOff(Table):
             start_speed=STANDSTILL,
             end_speed=lift_off,
         )
-        return [span], here.now(pressure_altitude=elevation, speed=lift_off, on_ground=False)
+        return [span], replace(here, pressure_altitude=elevation, speed=lift_off, on_ground=False)
+
+
+def _elevation(here: Here, refusal: str) -> float:
+    """Pressure altitude [m] of the ground stood on, the departure's where nothing came before."""
+    if here.pressure_altitude is None:
+        return here.departure_elevation
+    if not here.on_ground:
+        raise InputRefused(refusal)
+    return here.pressure_altitude

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 from engine.errors import InputRefused
 from engine.quantities import FOOT
@@ -35,10 +35,6 @@ class Here:
     distance: float | None
     row: int = 0
     is_reserve: bool = False
-
-    def now(self, **changes: object) -> Here:
-        """The same place with changes."""
-        return replace(self, **changes)  # type: ignore[arg-type]
 
     def altitude_or(self, wanted: float | None, what: str) -> float:
         """The altitude here, or where none is known yet the one the segment names."""

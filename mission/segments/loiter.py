@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
@@ -58,4 +59,4 @@ class Loiter(Table):
             fuel_flow_factor=self.fuel_flow_factor,
             is_reserve=here.is_reserve,
         )
-        return [span], here.now(pressure_altitude=altitude, speed=speed, on_ground=False)
+        return [span], replace(here, pressure_altitude=altitude, speed=speed, on_ground=False)

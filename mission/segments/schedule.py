@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from itertools import pairwise
+from typing import Annotated, Self
+
+from pydantic import Field, model_validator
 
 from engine.atmosphere import flight_condition
-from engine.quantities import FOOT, KNOT
+from engine.quantities import FOOT, KNOT, Speed
+from engine.reading import Table
 from mission.airspeeds import crossover_altitude, mach_from_calibrated_airspeed
 from mission.march.span import Span, SpeedRule
 from mission.segments.here import Here
@@ -15,6 +20,24 @@ SPEED_LIMIT = 250.0 * KNOT  # 14 CFR 91.117(a), below 10,000 ft
 _LOWEST, _HIGHEST = -1000.0, 29000.0  # m, altitudes a schedule is asked for
 _SAME_MACH = 1e-6
 _TROPOPAUSE, _STRATOSPHERE = 11000.0, 20000.0  # ISO 2533:1975, kinks of temperature
+
+
+class Scheduled(Table):
+    """Speeds of a climb or a descent; with both given the lower one governs."""
+
+    calibrated_airspeed: Annotated[Speed, Field(gt=0.0)] | None = None
+    mach: Annotated[float, Field(gt=0.0, lt=5.0)] | None = None
+    limited_below_10000_ft: bool = False
+
+    @model_validator(mode="after")
+    def _some_speed(self) -> Self:
+        if self.calibrated_airspeed is None and self.mach is None:
+            raise ValueError("give calibrated_airspeed, mach, or both")
+        return self
+
+    def rules(self) -> list[tuple[float, SpeedRule]]:
+        """Speed rules upwards, each with the altitude [m] that it holds up to."""
+        return zones(self.calibrated_airspeed, self.mach, limited=self.limited_below_10000_ft)
 
 
 def zones(
@@ -97,7 +120,7 @@ def lay_schedule(
             )
         )
         last = rule
-    return spans, here.now(pressure_altitude=end, speed=last or here.speed, on_ground=False)
+    return spans, replace(here, pressure_altitude=end, speed=last or here.speed, on_ground=False)
 
 
 def _change_speed(

@@ -24,15 +24,15 @@ from mission.airspeeds import (
 
 RAYMER_AIRSPEED = (
     "D. P. Raymer, Aircraft Design: A Conceptual Approach, 6th ed., appendix C: 15,000 ft, "
-    "30 C, M 0.428; read in a transcription"
+    "30 C, M 0.428; read at second hand"
 )
-RAYMER_ENERGY = "D. P. Raymer, the same book, section 17.6.3; read in a transcription"
+RAYMER_ENERGY = "D. P. Raymer, the same book, section 17.6.3; read at second hand"
 CROSSOVER = (
     "a manufacturer's performance handbook: 300 kt and M 0.78 meet at 29,314 ft; from memory"
 )
 NICOLAI_ENERGY = (
     "L. M. Nicolai and G. E. Carichner, Fundamentals of Aircraft and Airship Design, vol. I "
-    "(2010), table 4.3; read in a transcription"
+    "(2010), table 4.3; read at second hand"
 )
 OWN_AIRSPEEDS = (
     "ISO 2533:1975 air with the isentropic pitot equation, worked outside this program; "
@@ -188,7 +188,7 @@ ENERGY_ROWS = [
     (1.0, 40000, 23799),
     (1.0, 50000, 35336),
     (1.0, 60000, 45436),
-    # In the transcription this column stands one row off; its energy heights are re-derived.
+    # As read, this column stands one row off; its energy heights are re-derived.
     (1.5, 50000, 9162),
     (1.5, 60000, 23440),
     (1.5, 70000, 37231),

@@ -13,7 +13,7 @@ from mission.results import Steps
 
 NICOLAI = (
     "L. M. Nicolai and G. E. Carichner, Fundamentals of Aircraft and Airship Design, vol. I "
-    "(2010), example with equation 3.42, F-104G at M 0.8 and 20,000 ft; read in a transcription"
+    "(2010), example with equation 3.42, F-104G at M 0.8 and 20,000 ft; read at second hand"
 )
 ANDERSON_CLIMB = (
     "J. D. Anderson, Aircraft Performance and Design, ch. 5, business jet: inputs from memory, "

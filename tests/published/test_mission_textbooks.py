@@ -30,11 +30,11 @@ GULFSTREAM = (
 )
 RAYMER = (
     "D. P. Raymer, Aircraft Design: A Conceptual Approach, 6th ed. (2018), boxes 3.1 to 3.3, ASW "
-    "aircraft; read in a transcription"
+    "aircraft; read at second hand"
 )
 NICOLAI = (
     "L. M. Nicolai and G. E. Carichner, Fundamentals of Aircraft and Airship Design, vol. I "
-    "(2010), examples 5.2 and 5.3; read in a transcription"
+    "(2010), examples 5.2 and 5.3; read at second hand"
 )
 ROSKAM = (
     "J. Roskam, Airplane Design, Part I, sections 2.6 and 2.7, jet transport: fractions and "
