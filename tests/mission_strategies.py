@@ -6,11 +6,15 @@ import tempfile
 from pathlib import Path
 from typing import Any
 
+from hypothesis import Phase, settings
 from hypothesis import strategies as st
 from mission_files import Content, fly_files, mission_content
 
 from mission.results import Flight, SegmentLog
 
+# Each example is a flight or two. A failing one is shown as drawn: to shrink it takes minutes.
+FEW = settings(max_examples=6, phases=[Phase.explicit, Phase.reuse, Phase.generate])
+SOME = settings(FEW, max_examples=12)
 LEVEL_KINDS = ("cruise", "loiter", "approach")
 
 

@@ -7,9 +7,9 @@ from typing import Any
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import given
 from mission_files import BYPASS_5, Content, mission_content
-from mission_strategies import LEVEL_KINDS, flown, missions, of_mission
+from mission_strategies import FEW, LEVEL_KINDS, SOME, flown, missions, of_mission
 
 from engine.quantities import NAUTICAL_MILE, STANDARD_GRAVITY
 from mission.results import Flight, SegmentLog
@@ -129,6 +129,7 @@ def assert_all_finite(flight: Flight) -> None:
 
 
 @given(mission=missions())
+@SOME
 def test_balances_of_random_missions(mission: Content) -> None:
     flight = flown(mission)
     assert flight.failure is None
@@ -161,7 +162,7 @@ def test_causes_add_up_with_a_cycle_engine(cycle_flight: Flight) -> None:
 
 
 @given(mission=missions(headwind="0 kt"))
-@settings(max_examples=5)
+@FEW
 def test_no_wind_no_difference_of_distances(mission: Content) -> None:
     for log in flown(mission).segments:
         if log.ground_distance > 0.0:
@@ -176,7 +177,7 @@ def energy(log: SegmentLog, step: int) -> float:
 
 
 @given(mission=missions(day="ISA", headwind="0 kt"))
-@settings(max_examples=5)
+@FEW
 def test_excess_thrust_work_is_energy_gained(mission: Content) -> None:
     """Over every climb, descent and change of speed, integral of (T - D) V / W dt is d(energy)."""
     flight = flown(mission, refinement=4)

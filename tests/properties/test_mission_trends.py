@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import given
 from hypothesis import strategies as st
 from mission_files import (
     BYPASS_5,
@@ -14,7 +14,7 @@ from mission_files import (
     merged,
     mission_content,
 )
-from mission_strategies import HOLDS, flown, missions, of_mission
+from mission_strategies import FEW, HOLDS, SOME, flown, missions, of_mission
 
 from mission.results import Flight
 
@@ -39,7 +39,7 @@ def assert_same(one: Flight, other: Flight, scale: float = 1.0) -> None:
 
 
 @given(mission=missions(), more=st.integers(20, 200))
-@settings(max_examples=6)
+@FEW
 def test_farther_needs_more_fuel(mission: Content, more: int) -> None:
     nautical_miles = int(mission["distance"].removesuffix(" nmi")) + more
     near, far = flown(mission), flown(mission | {"distance": f"{nautical_miles} nmi"})
@@ -49,7 +49,7 @@ def test_farther_needs_more_fuel(mission: Content, more: int) -> None:
 
 
 @given(mission=missions(), more=st.integers(50, 1000))
-@settings(max_examples=6)
+@FEW
 def test_heavier_needs_more_fuel(mission: Content, more: int) -> None:
     payload = int(mission["payload"].removesuffix(" kg")) + more
     light, heavy = flown(mission), flown(mission | {"payload": f"{payload} kg"})
@@ -59,14 +59,14 @@ def test_heavier_needs_more_fuel(mission: Content, more: int) -> None:
 
 
 @given(mission=missions())
-@settings(max_examples=6)
+@FEW
 def test_fuel_as_needed_leaves_just_the_reserves(mission: Content) -> None:
     total = flown(mission).totals
     assert abs(total.fuel_margin) <= 1e-6 * total.loaded_fuel
 
 
 @given(mission=missions(holds=HOLDS[:2]))
-@settings(max_examples=6)
+@FEW
 def test_the_same_load_given_flies_the_same_flight(mission: Content) -> None:
     needed = flown(mission)
     load = needed.totals.loaded_fuel
@@ -76,7 +76,7 @@ def test_the_same_load_given_flies_the_same_flight(mission: Content) -> None:
 
 
 @given(mission=missions(holds=HOLDS[2:]))
-@settings(max_examples=6)
+@FEW
 def test_the_same_load_given_flies_the_same_cruise_climb(mission: Content) -> None:
     """What follows a cruise-climb begins within a centimetre of its end, and no nearer.
 
@@ -90,7 +90,7 @@ def test_the_same_load_given_flies_the_same_cruise_climb(mission: Content) -> No
 
 
 @given(mission=missions(), scale=st.sampled_from([0.5, 1.3, 2.0]))
-@settings(max_examples=6)
+@FEW
 def test_an_aircraft_twice_the_size_burns_twice_as_much(mission: Content, scale: float) -> None:
     """Masses, wing and thrust in proportion leave every speed, angle and time as it was."""
 
@@ -122,7 +122,7 @@ def test_an_aircraft_twice_the_size_burns_twice_as_much(mission: Content, scale:
 
 
 @given(mission=missions())
-@settings(max_examples=6)
+@FEW
 def test_four_engines_of_half_the_thrust_are_two(mission: Content) -> None:
     four = flown(
         mission,
@@ -133,6 +133,7 @@ def test_four_engines_of_half_the_thrust_are_two(mission: Content) -> None:
 
 
 @given(factor=st.floats(0.8, 1.25), kilometres=st.integers(500, 5000))
+@SOME
 def test_fuel_answers_to_consumption_as_the_breguet_equation_says(
     factor: float, kilometres: int
 ) -> None:
@@ -153,6 +154,7 @@ def test_fuel_answers_to_consumption_as_the_breguet_equation_says(
 
 
 @given(wind=st.integers(5, 80))
+@SOME
 def test_a_headwind_lengthens_the_air_distance_and_a_tailwind_shortens_it(wind: int) -> None:
     def at(knots: int) -> Flight:
         return flown(mission_content(PLAIN, distance="1000 nmi", headwind=f"{knots} kt"))
