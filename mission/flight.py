@@ -26,6 +26,8 @@ COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integratio
 _COARSE_SETTLED = 1e-8
 _COST_SETTLED = 1e-6
 _MOST_PLANS = 8
+# Steps are doubled, at most so often, until fuel moves by less than this share of itself.
+_PRECISE, _MOST_REFINEMENTS = 1e-4, 3
 _SAME_ALTITUDE = 0.01  # m, between the end of a cruise-climb and what follows
 
 
@@ -83,7 +85,18 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     fine = coarse
     if coarse.is_settled:
         fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
+    for _ in range(_MOST_REFINEMENTS):
+        if not fine.is_settled or _change_of_fuel(coarse, fine) < _PRECISE:
+            break
+        coarse, many = fine, 2 * many - 1
+        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
     return _Solved(plan, coarse, fine)
+
+
+def _change_of_fuel(coarse: Marched, fine: Marched) -> float:
+    """Change of all fuel between two marches, relative."""
+    burnt = [sum(float(f[-1, 0]) for f in marched.integrals.fuel) for marched in (coarse, fine)]
+    return abs(burnt[1] - burnt[0]) / max(burnt[1], 1.0)
 
 
 def _has_same_spans(marched: Marched | None, plan: FlightPlan) -> bool:

@@ -86,13 +86,16 @@ def basis(temperature: Array) -> Array:
     """Powers of temperature of :data:`BASIS`, shape (9,) + shape of ``temperature``."""
     powers = np.empty((9, *temperature.shape))
     inverse = 1.0 / temperature
+    square = temperature * temperature
     powers[0] = inverse * inverse
     powers[1] = inverse
     powers[2] = 1.0
     powers[3] = np.log(temperature)
     powers[4] = temperature
-    for row in range(5, 9):
-        powers[row] = powers[row - 1] * temperature
+    powers[5] = square
+    powers[6] = square * temperature
+    powers[7] = square * square
+    powers[8] = powers[7] * temperature
     return powers
 
 

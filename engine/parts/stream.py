@@ -92,8 +92,11 @@ def mix_in(gas: Gas, stream: Stream, added: Stream) -> Stream:
     fuel = stream.fuel_flow + added.fuel_flow
     fuel_air_ratio = fuel / (mass_flow - fuel)
     enthalpy = (stream.mass_flow * stream.enthalpy + added.mass_flow * added.enthalpy) / mass_flow
+    guess = (
+        stream.mass_flow * stream.total_temperature + added.mass_flow * added.total_temperature
+    ) / mass_flow
     temperature = gas.temperature_from_enthalpy(
-        enthalpy, fuel_air_ratio, stream.section, guess=stream.total_temperature
+        enthalpy, fuel_air_ratio, stream.section, guess=guess
     )
     return Stream(
         temperature, stream.total_pressure, mass_flow, fuel_air_ratio, enthalpy, stream.section

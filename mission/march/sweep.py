@@ -16,7 +16,15 @@ from numpy.typing import NDArray
 from mission.march.asking import ask
 from mission.march.nodes import integration_matrix, positions
 from mission.march.span import Span
-from mission.march.tracks import Track, first_track, flown_last, refined, request_of, set_nodes
+from mission.march.tracks import (
+    Track,
+    first_track,
+    flown_last,
+    refined,
+    request_of,
+    set_nodes,
+    slopes_of,
+)
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -105,9 +113,12 @@ def march(
     ``settled`` of itself.
     """
     tracks = _first_tracks(world, parts, count, stop_mass, start)
+    slopes = slopes_of(tracks)
     distances = {False: parts.mission_distance, True: parts.reserve_distance}
     for sweep in range(1, MOST_SWEEPS + 1):
         _ask_engine(world, tracks)
+        if slopes is not None:
+            slopes.solve(world)
         integrals = _integrate(world, tracks, distances)
         stop_mass = close(stop_mass, integrals)
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.quantities import STANDARD_GRAVITY
 from mission.airspeeds import calibrated_mach_slope
-from mission.forces import drag, path_angle_sine
+from mission.forces import drag
 from mission.march.nodes import positions
 from mission.march.rules import mach_at
 from mission.march.span import Nodes, Propulsion, Span
@@ -59,31 +59,23 @@ def _pressure_to_geometric(flight: FlightCondition) -> Array:
 
 def climb_nodes(
     span: Span,
-    world: World,
     flight: FlightCondition,
     mass: Array,
     propulsion: Propulsion,
-    factor: Array,
-    near: Array | None = None,
+    sine: Array,
+    resistance: Array,
 ) -> Nodes:
-    """Nodes of a march by altitude.
-
-    ``factor`` is the :func:`acceleration_factor` of the flight condition, ``near`` a sine of the
-    path angle to begin from.
-    """
-    sine = path_angle_sine(world.aircraft, flight, mass, propulsion.thrust, factor, near)
-    lift = mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2)
+    """Nodes of a march by altitude at the sine of its path angle, with its drag [N]."""
     vertical = flight.true_airspeed * sine * _pressure_to_geometric(flight)
-    way = np.sign(span.end_altitude - span.start_altitude)
-    rate = vertical * way
+    rate = vertical * np.sign(span.end_altitude - span.start_altitude)
     height = abs(span.end_altitude - span.start_altitude)
     return Nodes(
         flight=flight,
         mass=mass,
         time_rate=height / np.maximum(rate, SLOWEST_CLIMB),
         propulsion=propulsion,
-        drag=drag(world.aircraft, flight, lift),
-        lift=lift,
+        drag=resistance,
+        lift=mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2),
         path_angle=np.arcsin(sine),
         rate=rate,
     )

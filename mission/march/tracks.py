@@ -9,8 +9,10 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
 from engine.interface import Outcome
+from engine.quantities import STANDARD_GRAVITY
+from mission.forces import drag, path_angle_sine
 from mission.march import level, throttled
-from mission.march.asking import Answer, Request
+from mission.march.asking import Answer, Request, join
 from mission.march.nodes import interpolation_matrix, positions
 from mission.march.rules import level_air, mach_at
 from mission.march.span import Nodes, Propulsion, Span, SpeedRule
@@ -24,8 +26,8 @@ SAME_MACH = 1e-12
 class Track:
     """A span being solved: what the last sweep left for the next. Private to the integrator.
 
-    ``air`` is the still air of a level span, ``factor`` the acceleration factor of a climb or
-    descent; ``start`` the engine's unknowns to begin with;
+    ``air`` is the still air of a level span; ``sine`` and ``drag`` are of a climb's or descent's
+    path angle and [N]; ``start`` the engine's unknowns to begin with;
     ``rating`` the one flown, idle where a march by speed slows down.
     """
 
@@ -36,7 +38,8 @@ class Track:
     flight: FlightCondition | None = None
     answer: Answer | None = None
     air: FlightCondition | None = None
-    factor: Array | None = None
+    sine: Array | None = None
+    drag: Array | None = None
     start: Array | None = None
     rating: str = ""
     mach_change: float = np.inf
@@ -68,7 +71,7 @@ def first_track(
     if span.march == "altitude":
         track.flight = throttled.altitude_flight(span, world, count)
         track.mach = np.broadcast_to(track.flight.mach, mass.shape)
-        track.factor = throttled.acceleration_factor(span, track.flight)
+        track.sine = np.zeros(mass.shape)
     elif span.march != "book":
         track.air = level_air(span.start_altitude, deviation, count)
         track.mach = np.array(_guess_mach(span.end_speed, world, track.air, mass, before))
@@ -178,6 +181,52 @@ def _entry_mach(world: World, tracks: list[Track], index: int) -> Array:
     return np.asarray(mach_at(rule, world.aircraft, track.air.at(slice(0, 1)), track.mass[:1])[0])
 
 
+@dataclass(frozen=True)
+class Slopes:
+    """All climbs and descents of a flight, their path angles solved in one array.
+
+    ``flight`` and ``factor`` (the acceleration factor) are those of the tracks one below another.
+    """
+
+    tracks: list[Track]
+    flight: FlightCondition
+    factor: Array
+
+    def solve(self, world: World) -> None:
+        """Path angle and drag of every track at the masses of the last sweep."""
+        aircraft = world.aircraft
+        mass = np.concatenate([track.mass for track in self.tracks])
+        near = np.concatenate([track.sine for track in self.tracks if track.sine is not None])
+        thrust = np.concatenate(
+            [
+                np.broadcast_to(track.answer.net_thrust, track.mass.shape)
+                for track in self.tracks
+                if track.answer is not None
+            ]
+        )
+        thrust = thrust * aircraft.engine_count
+        sine = path_angle_sine(aircraft, self.flight, mass, thrust, self.factor, near)
+        resistance = drag(aircraft, self.flight, mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2))
+        count = len(self.tracks)
+        for track, own_sine, own_drag in zip(
+            self.tracks, np.split(sine, count), np.split(resistance, count), strict=True
+        ):
+            track.sine, track.drag = own_sine, own_drag
+
+
+def slopes_of(tracks: list[Track]) -> Slopes | None:
+    """The climbs and descents among some tracks, ready to be solved together, if there are any."""
+    chosen = [track for track in tracks if track.flight is not None and track.sine is not None]
+    flights = [track.flight for track in chosen if track.flight is not None]
+    if not flights:
+        return None
+    factors = [
+        throttled.acceleration_factor(track.span, flight)
+        for track, flight in zip(chosen, flights, strict=True)
+    ]
+    return Slopes(chosen, join(flights).at((slice(None), None)), np.concatenate(factors))
+
+
 def set_nodes(world: World, track: Track, rest: Array) -> None:
     """Nodes of a span from the engine's answer and the masses of the last sweep."""
     span, answer, mass = track.span, track.answer, track.mass
@@ -203,10 +252,10 @@ def set_nodes(world: World, track: Track, rest: Array) -> None:
         extent = np.maximum(rest, 0.0) if span.extent is None else np.atleast_1d(span.extent)
         track.nodes = level.level_nodes(span, world, track.flight, mass, extent, propulsion)
     elif span.march == "altitude":
-        assert track.factor is not None
-        near = None if track.nodes is None else np.sin(track.nodes.path_angle)
+        assert track.sine is not None
+        assert track.drag is not None
         track.nodes = throttled.climb_nodes(
-            span, world, track.flight, mass, propulsion, track.factor, near
+            span, track.flight, mass, propulsion, track.sine, track.drag
         )
     elif span.march == "stand":
         track.nodes = throttled.standing_nodes(span, track.flight, mass, propulsion)
