@@ -126,6 +126,5 @@ def _refuse_outside(value: Array, low: float, high: float, name: str, unit: str)
     wrong = ~((value >= low) & (value <= high))
     if np.any(wrong):
         first = float(value[wrong][0]) if value.ndim else float(value)
-        raise OutOfRange(
-            f"{name} = {first:g} {unit} is outside {low:g} to {high:g} {unit}".rstrip()
-        )
+        unit = f" {unit}" if unit else ""
+        raise OutOfRange(f"{name} = {first:g}{unit} is outside {low:g} to {high:g}{unit}")

@@ -47,8 +47,8 @@ class DesignPointBase(Table):
     pressure_altitude: Altitude
     mach: MachNumber
     day: Day = 0.0
-    net_thrust: Annotated[Force, Field(gt=0.0)] | None = None
-    airflow: Annotated[MassFlow, Field(gt=0.0)] | None = None
+    net_thrust: Annotated[Force, Field(gt=0.0, le=5e6)] | None = None
+    airflow: Annotated[MassFlow, Field(gt=0.0, le=1e4)] | None = None
     turbine_entry_temperature: Annotated[Temperature, Field(gt=500.0, le=2500.0)]
 
     @model_validator(mode="after")

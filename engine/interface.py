@@ -24,6 +24,7 @@ if TYPE_CHECKING:
 Array = NDArray[np.float64]
 RATINGS = ("take_off", "maximum_continuous", "climb", "cruise")
 IDLES = ("flight_idle", "ground_idle")
+_NO_THRUST = 1e-3  # N: a thrust below it is what matching leaves of none
 _Record = TypeVar("_Record", bound="DataclassInstance")
 
 
@@ -163,7 +164,7 @@ class EngineState:
     @property
     def specific_fuel_consumption(self) -> Array:
         """Fuel flow per net thrust [kg/(N s)]; NaN where there is no positive thrust."""
-        positive = self.net_thrust > 0.0
+        positive = self.net_thrust > _NO_THRUST
         return np.where(positive, self.fuel_flow / np.where(positive, self.net_thrust, 1.0), np.nan)
 
     @property

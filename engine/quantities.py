@@ -119,8 +119,10 @@ def parse_quantity(text: object, kind: str) -> float:
     """
     example = KINDS[kind][1]
     if not isinstance(text, str):
+        article = "an" if kind[0] in "aeiou" else "a"
         raise ValueError(
-            f'{text!r} has no unit: a {kind} is a string with a unit, for example "{example}"'
+            f"{text!r} has no unit: {article} {kind} is a string with a unit, "
+            f'for example "{example}"'
         )
     if kind == "altitude" and (level := _FLIGHT_LEVEL.match(text)):
         return float(level.group(1)) * 100.0 * FOOT

@@ -31,7 +31,7 @@ def read_toml(path: Path) -> dict[str, Any]:
         if path.stat().st_size > _LARGEST_FILE:
             size = path.stat().st_size / 1e6
             raise InputRefused(f"is {size:.1f} MB; an input file has at most 1 MB", where=where)
-        text = path.read_bytes().decode("utf-8")
+        text = path.read_bytes().decode("utf-8-sig")
     except FileNotFoundError:
         raise InputRefused("there is no such file", where=where) from None
     except UnicodeDecodeError:
@@ -42,6 +42,8 @@ def read_toml(path: Path) -> dict[str, Any]:
         content = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
         raise InputRefused(f"is not TOML: {error}", where=where) from None
+    except RecursionError:
+        raise InputRefused("nests its lists or tables too deep", where=where) from None
     if not content:
         raise InputRefused("is empty; start from a copy of a built-in profile", where=where)
     return content

@@ -117,6 +117,8 @@ class AircraftFile(Table):
             raise ValueError("masses.maximum_zero_fuel is above masses.maximum_take_off")
         if masses.maximum_ramp is not None and masses.maximum_ramp < masses.maximum_take_off:
             raise ValueError("masses.maximum_ramp is below masses.maximum_take_off")
+        if masses.maximum_landing > masses.maximum_take_off:
+            raise ValueError("masses.maximum_landing is above masses.maximum_take_off")
         if self.fuel_tanks.unusable >= self.fuel_tanks.capacity:
             raise ValueError("fuel_tanks.unusable is not below fuel_tanks.capacity")
         return self

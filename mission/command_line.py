@@ -229,7 +229,7 @@ def _mission_and_aircraft(mission: str | None, aircraft: str | None) -> tuple[Mi
     from mission.library import DEMO, find
     from mission.mission_file import load_mission
 
-    written = load_mission(find(mission or DEMO, "mission"))
+    written = load_mission(find(DEMO if mission is None else mission, "mission"))
     return written, load_aircraft(_named(aircraft, written, "aircraft"))
 
 

@@ -18,7 +18,7 @@ from mission.march.sweep import Marched, Parts, march
 from mission.march.world import World
 from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
-from mission.results import Flight, ReserveItem
+from mission.results import Failure, Flight, ReserveItem
 from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
@@ -154,9 +154,16 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
             *(f"aircraft: {line}" for line in world.aircraft.assumed),
             *(f"engine: {line}" for line in world.engine.assumed),
         ),
-        warnings=warnings_of(world, plan, fine),
+        warnings=(*warnings_of(world, plan, fine), *_of_an_attempt(failure, mission)),
         failure=failure,
     )
+
+
+def _of_an_attempt(failure: Failure | None, mission: Mission) -> tuple[str, ...]:
+    """What to think of the masses of a flight that could not be flown."""
+    if failure is None or not mission.written.fuel.as_needed:
+        return ()
+    return ("fuel as needed: the masses are those of the attempt to close the fuel",)
 
 
 def _reserves(

@@ -69,6 +69,7 @@ def first_failure(
         for failure in sorted(
             chain(
                 _dry(world, written, total, log),
+                _passed_speeds(world, log),
                 _passed_on_the_way(
                     world, [t for t in marched.tracks if t.span.segment == number], log
                 ),
@@ -78,6 +79,12 @@ def first_failure(
     )
     in_order = chain(
         _passed_payload(world, written, logs),
+        (
+            failure
+            for log in logs
+            if log.kind != "acceleration"
+            for failure in _passed_speeds(world, log)
+        ),
         known_first,
         on_the_way,
         _passed_distance(world, marched, plan),
@@ -106,15 +113,9 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     steepness = np.degrees(np.abs(steps.flight_path_angle))
     lost = (outcome == Outcome.NOT_CONVERGED) | (outcome == Outcome.UNPHYSICAL)
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
-    airborne = steps.lift > 0.0
-    mach = np.where(airborne, steps.mach, 0.0)
-    airspeed = calibrated_airspeed(steps.mach, steps.static_pressure)
-    airspeed = np.where(airborne, airspeed, 0.0)
-    most_mach = aircraft.maximum_operating_mach
-    most_airspeed = aircraft.maximum_operating_calibrated_airspeed
     checks: list[_Check] = [
-        (lost, "answers of the engine at this altitude, speed and thrust", 0.0 * mach, 1.0, "",
-         "look at the engine there with `longlegs stations`"),
+        (lost, "engine states found at this altitude, speed and thrust", np.zeros_like(steps.mach),
+         1.0, "", "look at the engine there with `longlegs stations`"),
         (over_ground < SLOWEST_GROUND_SPEED, "ground speed", over_ground, SLOWEST_GROUND_SPEED,
          "m/s", "fly faster, or with less headwind"),
         (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",
@@ -128,11 +129,29 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
          "m/s2", "lower the speed to reach, or carry less"),
         (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
          "fly faster or lower, or carry less"),
+    ]  # fmt: skip
+    return _first_steps(log, checks)
+
+
+def _passed_speeds(world: World, log: SegmentLog) -> Iterator[Failure]:
+    """Limits of Mach number and airspeed, which mostly stand in the mission as it is written."""
+    aircraft, steps = world.aircraft, log.steps
+    airborne = steps.lift > 0.0
+    mach = np.where(airborne, steps.mach, 0.0)
+    airspeed = np.where(airborne, calibrated_airspeed(steps.mach, steps.static_pressure), 0.0)
+    most_mach = aircraft.maximum_operating_mach
+    most_airspeed = aircraft.maximum_operating_calibrated_airspeed
+    checks: list[_Check] = [
         (mach > most_mach * (1.0 + _SLACK), "Mach number", mach, most_mach, "",
          "lower the segment's mach"),
         (airspeed > most_airspeed * (1.0 + _SLACK), "calibrated airspeed", airspeed,
          most_airspeed, "m/s", "lower calibrated_airspeed or mach"),
     ]  # fmt: skip
+    return _first_steps(log, checks)
+
+
+def _first_steps(log: SegmentLog, checks: list[_Check]) -> Iterator[Failure]:
+    """A failure for every check that is passed somewhere, at its first step."""
     for is_passed, name, value, bound, in_unit, hint in checks:
         if np.any(is_passed):
             step = int(np.argmax(is_passed))
@@ -258,6 +277,8 @@ def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[
         *_least("load factor to greatest lift", flown, load, 1.0, ""),
     ]
     for name, value, bound in (
+        ("zero-fuel mass", total.ramp_mass - total.loaded_fuel, aircraft.maximum_zero_fuel_mass),
+        ("ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass),
         ("usable fuel loaded", total.loaded_fuel, aircraft.usable_fuel),
         ("take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass),
         ("landing mass", total.landing_mass, aircraft.maximum_landing_mass),
@@ -278,7 +299,7 @@ def _least(
 
 
 def _thrust_ratio(log: SegmentLog) -> float:
-    return float(np.min(log.steps.rating_thrust / np.maximum(log.steps.thrust, 1e-9)))
+    return float(np.min(log.steps.rating_thrust / np.maximum(log.steps.drag, 1e-9)))
 
 
 def _rate_at_top(log: SegmentLog) -> float:

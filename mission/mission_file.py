@@ -10,6 +10,7 @@ from pydantic import Field, model_validator
 from engine.quantities import Altitude, Day, Length, Mass, Speed, Time
 from engine.reading import Table, check, defaults_used, read_toml
 from mission.segments import AnySegment
+from mission.segments.cruise import LONGEST
 
 Fraction = Annotated[float, Field(ge=0.0, lt=1.0)]
 
@@ -34,7 +35,7 @@ class FuelTable(Table):
 class AlternateTable(Table):
     """Flown from the destination as a climb, a cruise and a descent of its own."""
 
-    distance: Annotated[Length, Field(gt=0.0)]
+    distance: Annotated[Length, Field(gt=0.0, le=LONGEST)]
     pressure_altitude: Altitude
     mach: Annotated[float, Field(gt=0.0, lt=5.0)]
     calibrated_airspeed: Annotated[Speed, Field(gt=0.0)]
@@ -63,7 +64,7 @@ class MissionFile(Table):
     aircraft: str = ""
     engine: str = ""
     payload: Annotated[Mass, Field(ge=0.0)]
-    distance: Annotated[Length, Field(gt=0.0)] | None = None
+    distance: Annotated[Length, Field(gt=0.0, le=LONGEST)] | None = None
     day: Day = 0.0
     headwind: Annotated[Speed, Field(ge=-100.0, le=100.0)] = 0.0
     departure: PlaceTable = PlaceTable()

@@ -11,11 +11,17 @@ from mission.march.world import World
 from mission.plan import FlightPlan
 
 _NEGLIGIBLE_RISE = 1.0  # m
+_AIRBORNE = ("climb", "acceleration", "cruise", "loiter", "descent")
 
 
 def warnings_of(world: World, plan: FlightPlan, marched: Marched) -> tuple[str, ...]:
     """Sentences, each naming its segment."""
     found: list[str] = []
+    last = [row for row in plan.rows if row.purpose == "mission"][-1]
+    if last.kind in _AIRBORNE:
+        found.append(
+            f"{last.name}: the mission ends in the air; put a descent and an approach at its end"
+        )
     for track in marched.tracks:
         nodes, name = track.nodes, plan.rows[track.span.segment].name
         if nodes is None:

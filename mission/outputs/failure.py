@@ -17,7 +17,9 @@ def limit_unit(name: str, unit: str, units: Units) -> Unit:
     if unit == "N":
         return units.force
     if unit == "m/s":
-        return units.vertical_speed if "rate" in name else units.speed
+        return units.vertical_speed if name.startswith("rate of") else units.speed
+    if unit == "m":
+        return units.distance
     return Unit(unit, 1.0)
 
 

@@ -20,6 +20,13 @@ def check_target(target: str) -> None:
     path = Path(target)
     if path.is_dir():
         raise InputRefused(f'"{target}" is a folder; name a file in it', key="--json")
+    if path.suffix == ".toml":
+        raise InputRefused(
+            f'"{target}" would stand in the place of an input file; let it end in .json',
+            key="--json",
+        )
+    if path.exists() and not os.access(path, os.W_OK):
+        raise InputRefused(f'"{target}" may not be written', key="--json")
     if not path.absolute().parent.is_dir():
         raise InputRefused(
             f'there is no folder "{path.absolute().parent}" to write "{path.name}" in', key="--json"
@@ -28,7 +35,14 @@ def check_target(target: str) -> None:
 
 def write_text(target: str, text: str) -> None:
     """Write to a temporary name beside the target, then rename; the old file stays until then."""
-    path = Path(os.path.realpath(target))
+    try:
+        _write(Path(os.path.realpath(target)), text)
+    except OSError as error:
+        reason = f'"{target}" cannot be written: {error.strerror or error}'
+        raise InputRefused(reason, key="--json") from None
+
+
+def _write(path: Path, text: str) -> None:
     if path.exists() and not path.is_file():  # a device or a pipe is written to, not replaced
         path.write_text(text, encoding="utf-8")
         return

@@ -15,6 +15,7 @@ from mission.outputs.wording import day_in_words
 from mission.results import Failure, Flight, Margin, SegmentLog
 
 VERSION = 1
+BINDS = 1e-6  # share of a limit: nearer to its bound than that, it holds the engine
 Record = dict[str, Any]
 
 
@@ -187,7 +188,7 @@ def stations_record(state: EngineState, *, engine: str, rating: str) -> Record:
         "bypass_ratio": float(state.bypass_ratio),
         "overall_pressure_ratio": float(state.overall_pressure_ratio),
         "turbine_entry_temperature_k": float(state.turbine_entry_temperature),
-        "binding_limit": str(state.binding_limit_names),
+        "binding_limit": _binding_limit(state),
         "limit_shares": limit_shares(state),
         "stations": {name: _station(station) for name, station in state.stations.items()},
         "energy": {} if account is None else energy_terms(account),
@@ -199,6 +200,14 @@ def stations_record(state: EngineState, *, engine: str, rating: str) -> Record:
             "overall": float(account.overall_efficiency),
         },
     }
+
+
+def _binding_limit(state: EngineState) -> str:
+    """The limit that holds the thrust, "none" where a thrust was met below its rating."""
+    name = str(state.binding_limit_names)
+    share = limit_shares(state).get(name)
+    is_idle = int(state.outcome) == Outcome.AT_IDLE
+    return name if is_idle or (share is not None and abs(share - 1.0) < BINDS) else "none"
 
 
 def limit_shares(state: EngineState) -> dict[str, float]:

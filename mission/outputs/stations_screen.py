@@ -23,7 +23,7 @@ from mission.outputs.page import (
     section,
     words,
 )
-from mission.outputs.records import limit_shares
+from mission.outputs.records import BINDS, limit_shares
 from mission.outputs.units import ABSENT, METRIC, Scale, flight_level, number
 from mission.outputs.wording import day_in_words, in_plain_words
 
@@ -54,7 +54,6 @@ _BYPASS = {
 }
 _STREAMS = {"cold stream": _COLD, "hot stream": _HOT, "bypass": _BYPASS}
 _JETS = {"9": "core jet", "19": "bypass jet"}
-_BINDS = 1e-6
 _FORCE, _CONSUMPTION = METRIC.force, METRIC.specific_fuel_consumption
 
 
@@ -180,7 +179,7 @@ def _binding(state: EngineState) -> str:
     if name not in shares or int(state.outcome) == Outcome.AT_IDLE:
         return ""
     share = shares[name]
-    if abs(share - 1.0) < _BINDS:
+    if abs(share - 1.0) < BINDS:
         return f", held by {in_plain_words(name)}"
     return f", no limit binds; {in_plain_words(name)} is nearest, at {number(100.0 * share, 1)} %"
 
@@ -247,7 +246,7 @@ def _limits(state: EngineState) -> Table:
     shares = limit_shares(state)
     binding = str(state.binding_limit_names)
     for name, share in sorted(shares.items(), key=lambda item: abs(item[1] - 1.0)):
-        holds = name == binding and abs(share - 1.0) < _BINDS
+        holds = name == binding and abs(share - 1.0) < BINDS
         label = in_plain_words(name) + (" (binds)" if holds else "")
         table.add_row(label, number(100.0 * share, 1))
     return table

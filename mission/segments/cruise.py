@@ -15,6 +15,7 @@ from mission.segments.climb import RatingName
 from mission.segments.here import Here
 from mission.segments.schedule import mach_of
 
+LONGEST = 1e8  # m, more than twice around the earth
 Held = Literal["altitude and mach", "altitude and lift coefficient", "mach and lift coefficient"]
 
 
@@ -38,8 +39,8 @@ class Cruise(Table):
         if text == "rest":
             return text
         length = parse_quantity(text, "length")
-        if length <= 0.0:
-            raise ValueError(f"'{text}' is not a distance above zero")
+        if not 0.0 < length <= LONGEST:
+            raise ValueError(f"'{text}' is not a distance above zero and up to 100,000 km")
         return length
 
     def first_speed(self, here: Here) -> SpeedRule | None:

@@ -51,7 +51,7 @@ def test_an_altitude_is_answered_alone_as_in_a_batch() -> None:
         ((-2001.0,), "pressure altitude = -2001 m is outside -2000 to 30000 m"),
         (([0.0, 40000.0],), "pressure altitude = 40000 m is outside"),
         ((float("nan"),), "pressure altitude = nan m is outside"),
-        ((0.0, -0.1), "Mach number = -0.1  is outside 0 to 5"),
+        ((0.0, -0.1), "Mach number = -0.1 is outside 0 to 5"),
         ((0.0, float("nan")), "Mach number = nan"),
         ((0.0, 0.0, 150.0), "temperature deviation = 150 K is outside -100 to 100 K"),
         ((0.0, 0.0, float("nan")), "temperature deviation = nan K"),

@@ -176,7 +176,7 @@ def test_a_write_that_fails_keeps_the_old_file(
         raise OSError("disk full")
 
     monkeypatch.setattr(Path, "replace", fail)
-    with pytest.raises(OSError, match="disk full"):
+    with pytest.raises(InputRefused, match="disk full"):
         write_text(str(target), "new")
     assert target.read_text() == "old"
     assert list(tmp_path.iterdir()) == [target]
