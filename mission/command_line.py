@@ -6,6 +6,7 @@ the commands, so that ``--help`` answers at once.
 
 from __future__ import annotations
 
+import gc
 import os
 import shutil
 import sys
@@ -74,7 +75,6 @@ def fly_command(
     """Fly a mission: fuel, time, reserves and margins."""
     from engine import load_engine
     from mission.flight import fly
-    from mission.outputs.records import flight_record
 
     _check_json(json)
     written, plane = _mission_and_aircraft(mission, aircraft)
@@ -91,7 +91,12 @@ def fly_command(
             with_steps=steps,
         )
 
-    _show(screen, lambda: flight_record(flight), json)
+    def record() -> dict[str, Any]:
+        from mission.outputs.records import flight_record
+
+        return flight_record(flight)
+
+    _show(screen, record, json)
     if flight.failure is not None:
         if json == "-":
             from mission.outputs.failure import failure_headline
@@ -206,11 +211,15 @@ def list_command() -> None:
 
 def main() -> None:
     """Run the command line; what a person can mend ends with a message and status 2."""
+    gc.disable()  # looking for cycles, of which there are none, takes an eighth of a short process
     try:
         app(prog_name="longlegs")
     except LonglegsError as refusal:
         typer.echo(_refusal(refusal), err=True)
         raise SystemExit(REFUSED) from None
+    finally:
+        gc.freeze()  # what is there at the end need not be looked through then either
+        gc.enable()
 
 
 def _refusal(refusal: LonglegsError) -> str:

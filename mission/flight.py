@@ -23,7 +23,7 @@ from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
 COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
-_COARSE_SETTLED = 1e-8
+_COARSE_SETTLED = 1e-8  # the fine march goes on from there
 _COST_SETTLED = 1e-6
 _MOST_PLANS = 8
 # Steps are doubled, at most so often, until fuel moves by less than this share of itself.
