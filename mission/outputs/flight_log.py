@@ -120,9 +120,9 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
 
 def _error(flight: Flight, scales: Scales) -> str:
     error = flight.totals.integration_error
-    if error < _LEAST_ERROR:
-        return f"less than {_LEAST_ERROR:g} kg of integration"
     unit = scales.fuel.unit
+    if error < _LEAST_ERROR * unit.size:
+        return f"less than {_LEAST_ERROR:g} {unit.name} of integration"
     return f"{error / unit.size:.2g} {unit.name} of integration"
 
 
