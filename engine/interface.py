@@ -38,6 +38,11 @@ class Outcome(IntEnum):
     UNPHYSICAL = 4
 
 
+def is_unanswered(outcome: NDArray[np.int64]) -> NDArray[np.bool_]:
+    """Where an engine found no state, or none that can be believed."""
+    return np.isin(outcome, (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL))
+
+
 @dataclass(frozen=True)
 class Station:
     """State at one station: total, and static where known; arrays, SI."""
@@ -160,6 +165,11 @@ class EngineState:
     def energy(self) -> EnergyAccount | None:
         """The energy account, or None where the engine has no stations."""
         return None if self.evidence is None else self.evidence.account(self.flight.shape)
+
+    @property
+    def unanswered_count(self) -> int:
+        """How many members found no state that can be believed."""
+        return int(np.count_nonzero(is_unanswered(self.outcome)))
 
     @property
     def specific_fuel_consumption(self) -> Array:

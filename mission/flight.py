@@ -43,8 +43,9 @@ class _Solved:
 def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int = 1) -> Flight:
     """Fly a mission with an aircraft and an engine.
 
-    ``refinement`` multiplies the steps of every span; the flight reports its own integration
-    error, the change of block fuel from half the steps to these. Raises
+    ``refinement`` multiplies the steps of every span, which are doubled further where fuel still
+    moves by more than 1e-4; the flight reports its own integration error, the change of block
+    fuel from half the steps to these. Raises
     :class:`engine.errors.InputRefused` for a mission that cannot be laid out; a mission that
     cannot be flown comes back with ``failure`` set and the log up to there.
     """

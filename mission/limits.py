@@ -8,7 +8,7 @@ from itertools import chain
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.interface import Outcome
+from engine.interface import Outcome, is_unanswered
 from engine.quantities import FOOT
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed
@@ -111,11 +111,10 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     outcome, rates = _along(tracks)
     vertical, acceleration, over_ground = rates["altitude"], rates["speed"], rates["distance"]
     steepness = np.degrees(np.abs(steps.flight_path_angle))
-    lost = (outcome == Outcome.NOT_CONVERGED) | (outcome == Outcome.UNPHYSICAL)
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     checks: list[_Check] = [
-        (lost, "engine states found at this altitude, speed and thrust", np.zeros_like(steps.mach),
-         1.0, "", "look at the engine there with `longlegs stations`"),
+        (is_unanswered(outcome), "engine states found at this altitude, speed and thrust",
+         np.zeros_like(steps.mach), 1.0, "", "look at it there with `longlegs stations`"),
         (over_ground < SLOWEST_GROUND_SPEED, "ground speed", over_ground, SLOWEST_GROUND_SPEED,
          "m/s", "fly faster, or with less headwind"),
         (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",

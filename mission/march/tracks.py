@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
-from engine.interface import Outcome
+from engine.interface import is_unanswered
 from engine.quantities import STANDARD_GRAVITY
 from mission.forces import drag, path_angle_sine
 from mission.march import level, throttled
@@ -52,8 +52,7 @@ class Track:
     @property
     def is_lost(self) -> bool:
         """Whether the engine had no answer somewhere along the span."""
-        lost = (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL)
-        return self.answer is not None and bool(np.isin(self.answer.outcome, lost).any())
+        return self.answer is not None and bool(np.any(is_unanswered(self.answer.outcome)))
 
     @property
     def unknowns(self) -> Array | None:
