@@ -9,7 +9,7 @@ if TYPE_CHECKING:
     from engine.atmosphere import FlightCondition, flight_condition
     from engine.errors import CycleCannotRun, InputRefused, LonglegsError, OutOfRange
     from engine.interface import Engine, EngineState, Outcome
-    from engine.loading import load_engine
+    from engine.options.loading import load_engine
 
 __all__ = [
     "CycleCannotRun",
@@ -34,7 +34,7 @@ _ROOMS = {
     "OutOfRange": "engine.errors",
     "Outcome": "engine.interface",
     "flight_condition": "engine.atmosphere",
-    "load_engine": "engine.loading",
+    "load_engine": "engine.options.loading",
 }
 
 

@@ -12,7 +12,7 @@ import numpy as np
 
 from engine.atmosphere import FlightCondition
 from engine.cycle_engine import CycleEngine
-from engine.loading import engine_from_content
+from engine.options.loading import engine_from_content
 
 Content = dict[str, Any]
 

@@ -8,7 +8,7 @@ from pathlib import Path
 
 import pytest
 
-from engine.loading import engine_from_content
+from engine.options.loading import engine_from_content
 from mission.aircraft import AircraftFile
 from mission.library import find
 from mission.mission_file import mission_from_content

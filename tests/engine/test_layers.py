@@ -16,13 +16,14 @@ FLOORS = [
     {"errors", "fuels", "quantities"},
     {"reading"},
     {"atmosphere"},
+    {"installation"},
     {"gas"},
     {"parts"},
     {"cycles"},
     {"energy", "matching"},
     {"interface"},
-    {"cycle_engine", "constant_consumption", "input_model"},
-    {"loading"},
+    {"cycle_engine", "envelope"},
+    {"options"},
 ]
 ROOF = {"mission/outputs", "mission/command_line.py"}
 
@@ -114,4 +115,4 @@ def test_the_face_of_the_package() -> None:
         assert getattr(engine, name) is not None
     with pytest.raises(AttributeError, match="module 'engine' has no attribute 'nothing'"):
         _ = engine.nothing
-    assert importlib.import_module("engine.loading").load_engine is engine.load_engine
+    assert importlib.import_module("engine.options.loading").load_engine is engine.load_engine

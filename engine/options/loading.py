@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 
 from engine.atmosphere import flight_condition
-from engine.constant_consumption import ConstantConsumptionEngine
+from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.cycle_engine import CycleEngine
 from engine.cycles.core import Core
 from engine.cycles.flowpath import LIMIT_NAMES
@@ -18,7 +18,7 @@ from engine.cycles.turbojet import Turbojet
 from engine.errors import InputRefused, OutOfRange
 from engine.fuels import Fuel
 from engine.gas import Gas, RealGas, SectionalGas
-from engine.input_model import (
+from engine.options.input_model import (
     ConstantConsumptionFile,
     CycleEngineFile,
     EfficiencyTable,
