@@ -1,7 +1,8 @@
 """Where the fuel's energy goes: every term from the stations, none by difference.
 
 fuel flow x (lower heating value + V0^2/2) = F V0 + sum of jets' m (V_j - V0)^2 / 2
-+ [sum of jets' m h(T_j) - m0 h(T0)] + bleed + shaft power + mechanical loss + unburnt fuel,
++ [sum of jets' m h(T_j) - m0 h(T0)] + bleed + shaft power + mechanical loss + unburnt fuel
++ propeller loss + installation drag x V0,
 with V_j = gross thrust / m and T_j from total enthalpy less V_j^2/2; jets relative to still air.
 """
 
@@ -38,6 +39,8 @@ class EnergyAccount:
     shaft: Array
     mechanical_loss: Array
     unburnt_fuel: Array
+    propeller_loss: Array
+    installation: Array
     thermal_efficiency: Array
     propulsive_efficiency: Array
     overall_efficiency: Array
@@ -49,7 +52,6 @@ def energy_account(
     path: Flowpath,
     flight: FlightCondition,
     lower_heating_value: float,
-    combustion_efficiency: float,
 ) -> EnergyAccount:
     """Energy account of an engine at work; see the module for the definition."""
     speed = flight.true_airspeed
@@ -72,10 +74,15 @@ def energy_account(
     airflow = path.stations["2"].mass_flow
     intake_heat = -airflow * gas.enthalpy(flight.static_temperature, 0.0, "cold")
     bleed = path.bleed.mass_flow * (path.bleed.enthalpy + kinetic_in)
-    unburnt = path.fuel_flow * lower_heating_value * (1.0 - combustion_efficiency)
-    out = thrust + intake_heat + bleed + path.shaft_power + path.mechanical_loss + unburnt
+    installation = path.installation_drag * speed + np.zeros_like(fuel)
+    propeller_loss, propeller_power = np.zeros_like(fuel), np.zeros_like(fuel)
+    if path.propeller is not None:
+        propeller_loss = path.propeller.induced_loss + path.propeller.profile_loss
+        propeller_power = path.propeller.shaft_power
+    out = thrust + intake_heat + bleed + path.shaft_power + path.mechanical_loss
+    out = out + path.unburnt_fuel + propeller_loss + installation
     out = out + sum(jet_kinetic.values()) + sum(jet_heat.values())
-    gained = jet_energy - airflow * kinetic_in
+    gained = jet_energy - airflow * kinetic_in + propeller_power
     chemical = path.fuel_flow * lower_heating_value
     return EnergyAccount(
         fuel=fuel,
@@ -86,7 +93,9 @@ def energy_account(
         bleed=bleed,
         shaft=path.shaft_power,
         mechanical_loss=path.mechanical_loss,
-        unburnt_fuel=unburnt,
+        unburnt_fuel=path.unburnt_fuel,
+        propeller_loss=propeller_loss,
+        installation=installation,
         thermal_efficiency=_ratio(gained, chemical),
         propulsive_efficiency=_ratio(thrust, gained),
         overall_efficiency=_ratio(thrust, chemical),

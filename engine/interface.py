@@ -15,6 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from engine.atmosphere import FlightCondition
 from engine.cycles.flowpath import Flowpath
 from engine.energy import EnergyAccount, energy_account
+from engine.fuels import KEROSENE, Fuel
 from engine.gas import Gas
 from engine.parts.stream import Stream
 
@@ -23,7 +24,9 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 RATINGS = ("take_off", "maximum_continuous", "climb", "cruise")
+OPTIONAL_RATINGS = ("maximum_afterburning",)
 IDLES = ("flight_idle", "ground_idle")
+_HAIR = 1e-6  # m, K and Mach number: round-off of what a mission asks for at the edge of a table
 _NO_THRUST = 1e-3  # N: a thrust below it is what matching leaves of none
 _Record = TypeVar("_Record", bound="DataclassInstance")
 
@@ -36,11 +39,44 @@ class Outcome(IntEnum):
     BEYOND_RATING = 2
     NOT_CONVERGED = 3
     UNPHYSICAL = 4
+    OUTSIDE_TABLE = 5
 
 
 def is_unanswered(outcome: NDArray[np.int64]) -> NDArray[np.bool_]:
     """Where an engine found no state, or none that can be believed."""
-    return np.isin(outcome, (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL))
+    return np.isin(outcome, (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL, Outcome.OUTSIDE_TABLE))
+
+
+@dataclass(frozen=True)
+class Coverage:
+    """Where alone an engine that is a table can be asked.
+
+    Attributes
+    ----------
+    pressure_altitude : least and greatest [m]
+    mach : least and greatest
+    temperature_deviation : of its day from the standard atmosphere [K]
+    """
+
+    pressure_altitude: tuple[float, float]
+    mach: tuple[float, float]
+    temperature_deviation: float
+
+    def holds(self, flight: FlightCondition) -> NDArray[np.bool_]:
+        """Where a condition lies inside, but for round-off."""
+        return ~(
+            self.is_beyond(flight.pressure_altitude, self.pressure_altitude)
+            | self.is_beyond(flight.mach, self.mach)
+        ) & self.is_day(flight.temperature_deviation)
+
+    @staticmethod
+    def is_beyond(value: Array, ends: tuple[float, float]) -> NDArray[np.bool_]:
+        """Whether a value lies outside a range by more than round-off."""
+        return (value < ends[0] - _HAIR) | (value > ends[1] + _HAIR)
+
+    def is_day(self, temperature_deviation: ArrayLike) -> NDArray[np.bool_]:
+        """Whether a day is the table's."""
+        return np.abs(np.asarray(temperature_deviation) - self.temperature_deviation) <= _HAIR
 
 
 @dataclass(frozen=True)
@@ -62,7 +98,6 @@ class Evidence:
 
     gas: Gas
     lower_heating_value: float
-    combustion_efficiency: float
     flight: FlightCondition
     ahead: Stream
     path: Flowpath
@@ -99,7 +134,6 @@ class Evidence:
                 self.path,
                 self.flight,
                 self.lower_heating_value,
-                self.combustion_efficiency,
             )
         return _reshaped(account, shape)
 
@@ -216,10 +250,17 @@ class Engine(ABC):
     ----------
     name : what the engine file calls it
     assumed : values that the engine file left unsaid, as ``key = value``
+    fuel : what it burns
     """
 
     name: str
     assumed: tuple[str, ...] = field(default=(), kw_only=True)
+    fuel: Fuel = field(default=KEROSENE, kw_only=True)
+
+    @property
+    def ratings(self) -> tuple[str, ...]:
+        """Names of the ratings it has."""
+        return RATINGS
 
     @abstractmethod
     def at(
@@ -236,6 +277,16 @@ class Engine(ABC):
         ``rating`` is a name of :data:`RATINGS` or :data:`IDLES`, or an array of them; where
         ``net_thrust`` is NaN (or not given) the rating itself is asked for.
         """
+
+    @property
+    def idles(self) -> tuple[str, ...]:
+        """Names of the idles it has."""
+        return IDLES
+
+    @property
+    def coverage(self) -> Coverage | None:
+        """Where alone the engine can be asked; None where the atmosphere alone is the bound."""
+        return None
 
     @abstractmethod
     def windmilling(self, flight: FlightCondition) -> EngineState:

@@ -8,14 +8,15 @@ converge is left where it is and said to be so.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from enum import IntEnum
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
-from engine.cycles.flowpath import Arrangement, Flowpath, Sizing
+from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath, shares_of
+from engine.cycles.situation import OffTakes, Situation, Sizing
 from engine.parts.inlet import take_in
 from engine.parts.stream import Stream
 
@@ -49,7 +50,7 @@ class Demand:
     ----------
     throttle : (N,) values of :class:`Throttle`
     net_thrust : (N,) [N] used where a thrust is asked for
-    bounds : (8, N) over LIMIT_NAMES: ceilings (inf: none) or floors (0: none)
+    bounds : (L, N) over LIMIT_NAMES: ceilings (inf: none) or floors (0: none)
     """
 
     throttle: NDArray[np.int64]
@@ -96,12 +97,13 @@ def solve(
     arrangement: Arrangement,
     sizing: Sizing,
     flight: FlightCondition,
+    taken: OffTakes,
     demand: Demand | None,
     start: Array | None = None,
 ) -> Solution:
     """Match the engine at N flight conditions (1-d arrays); unlit where ``demand`` is None.
 
-    ``start`` (n, N) are unknowns of an earlier solution near by; without it the design point is
+    ``taken`` (N,) is what the aircraft takes off it. ``start`` (n, N) are unknowns of an earlier solution near by; without it the design point is
     where the iteration starts. Never raises for a member that has no answer.
     """
     count = flight.mach.size
@@ -111,7 +113,8 @@ def solve(
     iterations = np.zeros(count, dtype=np.int64)
     with np.errstate(all="ignore"):
         _, face = take_in(arrangement.gas, arrangement.inlet, flight)
-    problem = _Problem(arrangement, sizing, face, flight, demand)
+    situation = Situation(face, flight, taken, sizing, is_lit=demand is not None)
+    problem = _Problem(arrangement, sizing, situation, demand)
     tolerance = WINDMILLING_TOLERANCE if demand is None else TOLERANCE
     free, above_one = problem.free_rows, problem.rows_above_one
     coordinates = unknowns.copy()
@@ -138,21 +141,20 @@ def solve(
 
 @dataclass(frozen=True)
 class _Problem:
-    """What is matched at N points; ``face`` is the engine-face state for 1 kg/s."""
+    """What is matched at N points."""
 
     arrangement: Arrangement
     sizing: Sizing
-    face: Stream
-    flight: FlightCondition
+    situation: Situation
     demand: Demand | None
 
     def at(self, index: NDArray[np.int64]) -> _Problem:
         """The points picked by an index array."""
-        return replace(
-            self,
-            face=self.face.at(index),
-            flight=self.flight.at(index),
-            demand=None if self.demand is None else self.demand.at(index),
+        return _Problem(
+            self.arrangement,
+            self.sizing,
+            self.situation.at(index),
+            None if self.demand is None else self.demand.at(index),
         )
 
     @property
@@ -187,15 +189,16 @@ def evaluate_at(
     arrangement: Arrangement,
     sizing: Sizing,
     flight: FlightCondition,
+    taken: OffTakes,
     unknowns: Array,
     *,
     is_lit: bool = True,
-) -> tuple[Stream, Flowpath]:
-    """Free stream (for 1 kg/s) and the whole engine at given unknowns."""
+) -> tuple[Stream, Situation, Flowpath]:
+    """Free stream (for 1 kg/s), situation, and the whole engine at given unknowns."""
     with np.errstate(all="ignore"):
         ahead, face = take_in(arrangement.gas, arrangement.inlet, flight)
-        path = arrangement.evaluate(unknowns, face, flight.static_pressure, sizing, is_lit=is_lit)
-    return ahead, path
+        situation = Situation(face, flight, taken, sizing, is_lit=is_lit)
+        return ahead, situation, arrangement.evaluate(unknowns, situation)
 
 
 def _residuals_now(
@@ -239,33 +242,31 @@ def _residuals_and_jacobian(problem: _Problem, coordinates: Array) -> tuple[Arra
 
 def _residuals(problem: _Problem, trials: Array) -> Array:
     """Residuals (m, k, N) of k trials (n, k, N)."""
-    sizing, flight = problem.sizing, problem.flight
+    sizing, situation = problem.sizing, problem.situation
     with np.errstate(all="ignore"):
-        path = problem.arrangement.evaluate(
-            problem.unknowns(trials),
-            problem.face,
-            flight.static_pressure,
-            sizing,
-            is_lit=problem.demand is not None,
-        )
+        path = problem.arrangement.evaluate(problem.unknowns(trials), situation)
         # Flow squared is linear in a small pressure drop, so it, not flow, is what is matched.
         flows = [sizing.areas[name] / area for name, area in path.areas.items()]
         rows = [0.5 * (flow * np.abs(flow) - 1.0) for flow in flows]
         if problem.demand is not None:
-            rows.append(_throttle_residual(path, sizing, problem.face, flight, problem.demand))
+            rows.append(_throttle_residual(path, situation, sizing, problem.demand))
         return np.stack(np.broadcast_arrays(*rows))
 
 
 def _throttle_residual(
-    path: Flowpath, sizing: Sizing, face: Stream, flight: FlightCondition, demand: Demand
+    path: Flowpath, situation: Situation, sizing: Sizing, demand: Demand
 ) -> Array:
     """How far the throttle is from what is asked, relative to design values."""
-    throttle = demand.throttle
-    scale = sizing.reference_thrust * face.total_pressure / sizing.reference_pressure
+    throttle, flight = demand.throttle, situation.flight
+    scale = sizing.reference_thrust * situation.face.total_pressure / sizing.reference_pressure
     thrust = (path.net_thrust(flight) - demand.net_thrust) / scale
     if np.all(throttle == Throttle.THRUST):
         return thrust
-    shares = path.limits / demand.bounds[:, None, :]
+    bounds = demand.bounds
+    used = np.flatnonzero(np.any((bounds > 0.0) & np.isfinite(bounds), axis=1))
+    used = used if used.size else np.array([0])
+    values = path.limit_values(flight, [LIMIT_NAMES[row] for row in used])
+    shares = shares_of(values, bounds[used, None, :])
     # The limit that governs at the point itself, for its differences too: a derivative taken
     # half from one limit and half from another leads nowhere.
     first = shares[:, 0]

@@ -58,6 +58,7 @@ KINDS: dict[str, tuple[str, str]] = {
     "length": ("m", "1200 nmi"),
     "altitude": ("m", "35000 ft"),
     "area": ("m**2", "61 m**2"),
+    "volume": ("m**3", "11000 L"),
     "mass": ("kg", "12.5 t"),
     "time": ("s", "30 min"),
     "speed": ("m/s", "300 kt"),
@@ -142,6 +143,11 @@ def parse_day(text: object) -> float:
     raise ValueError(f'{text!r} is not a day; write for example "ISA" or "ISA+15"')
 
 
+def day_text(temperature_deviation: float) -> str:
+    """A day as :func:`parse_day` reads it, from its temperature deviation [K]."""
+    return f"ISA{temperature_deviation:+g}" if temperature_deviation else "ISA"
+
+
 def _reader(kind: str) -> BeforeValidator:
     return BeforeValidator(lambda text: parse_quantity(text, kind))
 
@@ -150,6 +156,7 @@ Length = Annotated[float, _reader("length")]
 # The range of the standard atmosphere used here, engine.atmosphere.
 Altitude = Annotated[float, _reader("altitude"), Field(ge=-2000.0, le=30000.0)]
 Area = Annotated[float, _reader("area")]
+Volume = Annotated[float, _reader("volume")]
 Mass = Annotated[float, _reader("mass")]
 Time = Annotated[float, _reader("time")]
 Speed = Annotated[float, _reader("speed")]

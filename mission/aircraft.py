@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from math import pi
+from math import inf, pi
 from pathlib import Path
-from typing import Annotated
+from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
 
-from engine.quantities import Area, Mass, Speed
+from engine.fuels import Fuel
+from engine.quantities import Area, Mass, Speed, Volume
 from engine.reading import Table, check, defaults_used, read_toml
 from mission.aerodynamics import DragRise, Polar
 
@@ -21,8 +22,8 @@ Factor = Annotated[float, Field(gt=0.0, le=10.0, allow_inf_nan=False)]
 class Aircraft:
     """Masses [kg], wing [m2], polar and limits; factors multiply drag and fuel flow.
 
-    ``usable_fuel`` is what the tanks hold for burning; ``unusable_fuel`` rides along on top of
-    operating empty mass and payload.
+    ``tank_capacity`` [kg] and ``tank_volume`` [m3] bound all that the tanks hold, infinite where
+    the file does not say; ``unusable_fuel`` rides along on top of operating empty mass and payload.
     """
 
     name: str
@@ -31,7 +32,8 @@ class Aircraft:
     maximum_ramp_mass: float
     maximum_take_off_mass: float
     maximum_landing_mass: float
-    usable_fuel: float
+    tank_capacity: float
+    tank_volume: float
     unusable_fuel: float
     wing_area: float
     polar: Polar
@@ -47,6 +49,18 @@ class Aircraft:
     assumed: tuple[str, ...] = ()
 
 
+def usable_fuel(aircraft: Aircraft, fuel: Fuel) -> float:
+    """Mass [kg] of a fuel that the tanks hold for burning: the lesser by capacity and by volume."""
+    by_volume = aircraft.tank_volume * fuel.density
+    return min(aircraft.tank_capacity, by_volume) - aircraft.unusable_fuel
+
+
+def governing_tank_limit(aircraft: Aircraft, fuel: Fuel) -> Literal["capacity", "volume"]:
+    """Which of the two bounds how much of a fuel the tanks hold."""
+    is_by_volume = aircraft.tank_volume * fuel.density < aircraft.tank_capacity
+    return "volume" if is_by_volume else "capacity"
+
+
 class MassesTable(Table):
     operating_empty: PositiveMass
     maximum_zero_fuel: PositiveMass
@@ -56,8 +70,19 @@ class MassesTable(Table):
 
 
 class FuelTanksTable(Table):
-    capacity: PositiveMass
+    """What the tanks hold at most: a mass, a volume, or both, of which the lesser governs."""
+
+    capacity: PositiveMass | None = None
+    volume: Annotated[Volume, Field(gt=0.0)] | None = None
     unusable: Annotated[Mass, Field(ge=0.0)] = 0.0
+
+    @model_validator(mode="after")
+    def _some_bound(self) -> FuelTanksTable:
+        if self.capacity is None and self.volume is None:
+            raise ValueError('give capacity = "9 t", or volume = "11000 L", or both')
+        if self.capacity is not None and self.unusable >= self.capacity:
+            raise ValueError("unusable is not below capacity")
+        return self
 
 
 class DragRiseTable(Table):
@@ -119,8 +144,6 @@ class AircraftFile(Table):
             raise ValueError("masses.maximum_ramp is below masses.maximum_take_off")
         if masses.maximum_landing > masses.maximum_take_off:
             raise ValueError("masses.maximum_landing is above masses.maximum_take_off")
-        if self.fuel_tanks.unusable >= self.fuel_tanks.capacity:
-            raise ValueError("fuel_tanks.unusable is not below fuel_tanks.capacity")
         return self
 
 
@@ -129,6 +152,7 @@ def load_aircraft(path: str | Path) -> Aircraft:
     where = Path(path)
     written = check(read_toml(where), AircraftFile, str(where))
     masses, polar, limits = written.masses, written.drag_polar, written.limits
+    tanks = written.fuel_tanks
     factor = polar.induced_drag_factor
     if factor is None:
         assert polar.oswald_efficiency is not None
@@ -152,8 +176,9 @@ def load_aircraft(path: str | Path) -> Aircraft:
         maximum_ramp_mass=masses.maximum_ramp or masses.maximum_take_off,
         maximum_take_off_mass=masses.maximum_take_off,
         maximum_landing_mass=masses.maximum_landing,
-        usable_fuel=written.fuel_tanks.capacity - written.fuel_tanks.unusable,
-        unusable_fuel=written.fuel_tanks.unusable,
+        tank_capacity=tanks.capacity or inf,
+        tank_volume=tanks.volume or inf,
+        unusable_fuel=tanks.unusable,
         wing_area=written.wing_area,
         polar=Polar(
             polar.zero_lift_drag_coefficient,

@@ -8,9 +8,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.interface import Engine
-from mission.aircraft import Aircraft
+from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
-from mission.fuel_plan import Sums, add_up, closure
+from mission.coverage import refuse_other_day
+from mission.fuel_plan import Sums, add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
 from mission.march.joints import cut_at_joints
@@ -49,13 +50,14 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
     :class:`engine.errors.InputRefused` for a mission that cannot be laid out; a mission that
     cannot be flown comes back with ``failure`` set and the log up to there.
     """
+    refuse_other_day(mission, engine)
     written = mission.written
     world = World(aircraft, engine, written.day, -written.headwind)
     solved = _solve(mission, world, refinement)
     has_no_mass = not solved.fine.is_settled and not solved.fine.is_lost
     if written.fuel.as_needed and has_no_mass:
         most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
-        load = max(min(aircraft.usable_fuel, most - aircraft.unusable_fuel), 1.0)
+        load = max(min(usable_fuel(aircraft, engine.fuel), most - aircraft.unusable_fuel), 1.0)
         written = written.model_copy(
             update={"fuel": written.fuel.model_copy(update={"load": load, "as_needed": False})}
         )
@@ -155,8 +157,13 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
             *(f"aircraft: {line}" for line in world.aircraft.assumed),
             *(f"engine: {line}" for line in world.engine.assumed),
         ),
-        warnings=(*warnings_of(world, plan, fine), *_of_an_attempt(failure, mission)),
+        warnings=(
+            *warnings_of(world, plan, fine),
+            *tank_warnings(world.aircraft, world.engine.fuel, total.loaded_fuel),
+            *_of_an_attempt(failure, mission),
+        ),
         failure=failure,
+        fuel=world.engine.fuel,
     )
 
 

@@ -8,16 +8,19 @@ flown, in that order, from the mass at the end of the mission.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from math import isinf
 
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.fuels import KEROSENE, Fuel
 from mission.aircraft import Aircraft
 from mission.march.sweep import Closure, Integrals
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
 
 Array = NDArray[np.float64]
+_LIKE_KEROSENE = 0.1  # share of its density within which a mass of fuel tells a volume
 
 
 @dataclass(frozen=True)
@@ -101,3 +104,15 @@ def closure(plan: FlightPlan, written: MissionFile, aircraft: Aircraft) -> Closu
         return np.array([empty + written.fuel.load - burnt])
 
     return as_needed if written.fuel.as_needed else given
+
+
+def tank_warnings(aircraft: Aircraft, fuel: Fuel, loaded: float) -> tuple[str, ...]:
+    """What to know of tanks that are bounded by mass alone, with a fuel unlike kerosene in them."""
+    is_alike = abs(fuel.density / KEROSENE.density - 1.0) < _LIKE_KEROSENE
+    if is_alike or not isinf(aircraft.tank_volume):
+        return ()
+    return (
+        f"tanks: the aircraft bounds them by mass alone; {loaded:,.0f} kg of {fuel.name} take "
+        f"{loaded / fuel.density:,.1f} m3, as much kerosene {loaded / KEROSENE.density:,.1f} m3: "
+        "give fuel_tanks.volume",
+    )

@@ -10,8 +10,9 @@ from numpy.typing import NDArray
 
 from engine.interface import Outcome, is_unanswered
 from engine.quantities import FOOT
-from mission.aircraft import Aircraft
+from mission.aircraft import Aircraft, governing_tank_limit, usable_fuel
 from mission.airspeeds import calibrated_airspeed
+from mission.coverage import outside
 from mission.forces import STEEPEST
 from mission.march.level import SLOWEST_GROUND_SPEED
 from mission.march.sweep import Marched
@@ -113,6 +114,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     steepness = np.degrees(np.abs(steps.flight_path_angle))
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     checks: list[_Check] = [
+        *outside(world.engine.coverage, steps, outcome),
         (is_unanswered(outcome), "engine states found at this altitude, speed and thrust",
          np.zeros_like(steps.mach), 1.0, "", "look at it there with `longlegs stations`"),
         (over_ground < SLOWEST_GROUND_SPEED, "ground speed", over_ground, SLOWEST_GROUND_SPEED,
@@ -185,8 +187,9 @@ def _passed_masses(
     first, last = logs[0].name, _last_of_mission(logs).name
     lighter = "carry less payload or fly less far"
     tanks = "load less fuel" if written.fuel.load else "shorten the mission or the reserves"
+    most = usable_fuel(aircraft, world.engine.fuel)
     for segment, what, value, bound, advice in (
-        (first, "usable fuel to load", total.loaded_fuel, aircraft.usable_fuel, tanks),
+        (first, f"usable fuel to load, {_tanks(world)}", total.loaded_fuel, most, tanks),
         (first, "ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass, lighter),
         (first, "take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass, lighter),
         (last, "landing mass", total.landing_mass, aircraft.maximum_landing_mass,
@@ -194,6 +197,11 @@ def _passed_masses(
     ):  # fmt: skip
         if value > bound * (1.0 + 1e-9):
             yield Failure(segment, 0, what, value, bound, "kg", advice)
+
+
+def _tanks(world: World) -> str:
+    """What bounds the fuel in the tanks."""
+    return f"by tank {governing_tank_limit(world.aircraft, world.engine.fuel)}"
 
 
 def _last_of_mission(logs: tuple[SegmentLog, ...]) -> SegmentLog:
@@ -221,7 +229,8 @@ def _dry(world: World, written: MissionFile, total: Totals, log: SegmentLog) -> 
 
 
 def _more_fuel(world: World, total: Totals) -> str:
-    is_full = total.loaded_fuel > 0.999 * world.aircraft.usable_fuel
+    most = usable_fuel(world.aircraft, world.engine.fuel)
+    is_full = total.loaded_fuel > 0.999 * most
     return "fly less far or carry less" if is_full else "load more fuel, fly less far"
 
 
@@ -262,6 +271,7 @@ def _passed_distance(world: World, marched: Marched, plan: FlightPlan) -> Iterat
 def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[Margin, ...]:
     """Least margins of thrust, climb, lift, fuel and mass, and where they occur."""
     aircraft = world.aircraft
+    most_fuel = usable_fuel(aircraft, world.engine.fuel)
     level = [log for log in logs if log.kind in ("cruise", "loiter")]
     climbs = [log for log in logs if log.kind == "climb" and log.purpose == "mission"]
     flown = [log for log in logs if np.any(log.steps.lift > 0.0)]
@@ -278,7 +288,7 @@ def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[
     for name, value, bound in (
         ("zero-fuel mass", total.ramp_mass - total.loaded_fuel, aircraft.maximum_zero_fuel_mass),
         ("ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass),
-        ("usable fuel loaded", total.loaded_fuel, aircraft.usable_fuel),
+        (f"fuel loaded, {_tanks(world)}", total.loaded_fuel, most_fuel),
         ("take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass),
         ("landing mass", total.landing_mass, aircraft.maximum_landing_mass),
     ):

@@ -10,6 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import flight_condition
+from engine.fuels import KEROSENE, Fuel
 
 Array = NDArray[np.float64]
 
@@ -150,6 +151,12 @@ class Flight:
     assumed: tuple[str, ...]
     warnings: tuple[str, ...]
     failure: Failure | None
+    fuel: Fuel = KEROSENE
+
+    @property
+    def carbon_dioxide(self) -> float:
+        """Carbon dioxide [kg] of the block fuel, burnt completely."""
+        return self.totals.block_fuel * self.fuel.carbon_dioxide_index
 
     @property
     def flown(self) -> bool:

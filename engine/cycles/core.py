@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
+from engine.cycles.situation import Situation
 from engine.gas import Gas
-from engine.parts.combustor import Combustor, burn, pass_unlit
+from engine.parts.combustor import Combustor, burn, combustor_loading, pass_unlit
 from engine.parts.compressor import compress
 from engine.parts.efficiency import Efficiency
 from engine.parts.stream import Array, Stream, mix_in
@@ -24,8 +25,8 @@ class Core:
     vane_cooling_fraction : of compressor entry flow, joins ahead of the rotor (station 41)
     rotor_cooling_fraction : of compressor entry flow, joins behind the turbine
     downstream_cooling_fraction : of compressor entry flow, joins behind the last turbine
-    customer_bleed_fraction : of compressor entry flow, taken at compressor delivery
-    shaft_power : taken off the spool [W]
+    rotor_cooling_rise, downstream_cooling_rise : share of the compressor's rise of enthalpy at
+        which that air is taken; 1 at delivery
     mechanical_efficiency : of the spool
     turbine_critical_pressure_ratio : below this exit-to-entry ratio the turbine is choked
     """
@@ -36,8 +37,8 @@ class Core:
     vane_cooling_fraction: float = 0.0
     rotor_cooling_fraction: float = 0.0
     downstream_cooling_fraction: float = 0.0
-    customer_bleed_fraction: float = 0.0
-    shaft_power: float = 0.0
+    rotor_cooling_rise: float = 1.0
+    downstream_cooling_rise: float = 1.0
     mechanical_efficiency: float = 1.0
     turbine_critical_pressure_ratio: float = 0.5
 
@@ -47,12 +48,11 @@ class CoreFlow:
     """Streams and powers of the gas generator at work.
 
     ``turbine_area`` [m2] is the choked throat its turbine would need; ``rise`` the specific work
-    [J/kg] of the compressor; powers in W.
+    [J/kg] of the compressor; powers in W; ``flows`` and ``loadings`` as in a Flowpath.
     """
 
     delivery: Stream
     bleed: Stream
-    combustor_entry: Stream
     combustor_exit: Stream
     rotor_entry: Stream
     rotor_exit: Stream
@@ -60,21 +60,11 @@ class CoreFlow:
     downstream_cooling: Stream
     turbine_area: Array
     rise: Array
-    turbine_power: Array
-    compressor_power: Array
+    mechanical_loss: Array
+    unburnt_fuel: Array
     fuel_flow: Array
-
-
-def unlit_loss(design_loss: float, stream: Stream, design_flow: float | None) -> Array:
-    """Share of total pressure [-] that a duct takes from a stream in an engine that is out.
-
-    A lit engine keeps nearly the same corrected flow in its ducts and so the share of its design
-    point; windmilling has a fraction of it, and the share goes with its square, as friction does
-    (common practice, no source). Held at 0.9 at most, for iterates far from an answer.
-    """
-    if design_flow is None:
-        return np.asarray(design_loss)
-    return np.minimum(design_loss * (stream.duct_flow / design_flow) ** 2, 0.9)
+    flows: dict[str, Array]
+    loadings: dict[str, Array]
 
 
 def run_core(
@@ -82,34 +72,37 @@ def run_core(
     core: Core,
     entry: Stream,
     pressure_ratio: Array,
-    turbine_entry_temperature: Array | None,
-    *,
-    design_combustor_flow: float | None = None,
+    turbine_entry_temperature: Array,
+    situation: Situation,
 ) -> CoreFlow:
-    """The gas generator between its entry and the turbine exit; unlit where no temperature.
-
-    ``design_combustor_flow`` is what :func:`unlit_loss` compares with; only an unlit engine asks.
-    """
-    delivery = compress(gas, entry, pressure_ratio, core.compressor_efficiency)
-    flow = entry.mass_flow
-    bleed = delivery.with_flow(core.customer_bleed_fraction * flow)
+    """The gas generator between its entry and the turbine exit; an unlit one takes no fuel."""
+    efficiency = core.compressor_efficiency.of_compressor(
+        situation.flow_ratio("high_pressure_compressor", entry.duct_flow)
+    )
+    delivery = compress(gas, entry, pressure_ratio, efficiency)
+    flow, rise = entry.mass_flow, delivery.enthalpy - entry.enthalpy
+    bleed = delivery.with_flow(situation.taken.customer_bleed_fraction * flow)
     vane_air = delivery.with_flow(core.vane_cooling_fraction * flow)
-    rotor_air = delivery.with_flow(core.rotor_cooling_fraction * flow)
-    last_air = delivery.with_flow(core.downstream_cooling_fraction * flow)
+    rotor_air, rotor_saved = _tap(
+        delivery, rise, core.rotor_cooling_fraction * flow, core.rotor_cooling_rise
+    )
+    last_air, last_saved = _tap(
+        delivery, rise, core.downstream_cooling_fraction * flow, core.downstream_cooling_rise
+    )
     taken = bleed.mass_flow + vane_air.mass_flow + rotor_air.mass_flow + last_air.mass_flow
     burner_air = delivery.with_flow(flow - taken)
-    if turbine_entry_temperature is None:
-        design_loss = core.combustor.pressure_loss_fraction
-        hot = pass_unlit(
-            gas, unlit_loss(design_loss, burner_air, design_combustor_flow), burner_air
-        )
-    else:
-        hot = burn(gas, core.combustor, burner_air, turbine_entry_temperature)
+    loading = combustor_loading(burner_air)
+    hot, unburnt = _heat(gas, core, burner_air, turbine_entry_temperature, loading, situation)
+
     rotor_entry = mix_in(gas, hot, vane_air) if core.vane_cooling_fraction else hot
-    rise = delivery.enthalpy - entry.enthalpy
-    compressor_power = flow * rise
-    turbine_power = (compressor_power + core.shaft_power) / core.mechanical_efficiency
-    rotor_exit = expand_by_power(gas, rotor_entry, turbine_power, core.turbine_efficiency)
+    compressor_power = flow * rise - rotor_saved - last_saved
+    shaft_power = situation.taken.shaft_power
+    turbine_power = (compressor_power + shaft_power) / core.mechanical_efficiency
+    speed_over_work = rise * rotor_entry.mass_flow / turbine_power
+    turbine_efficiency = core.turbine_efficiency.of_turbine(
+        situation.loading_ratio("high_pressure_turbine", speed_over_work)
+    )
+    rotor_exit = expand_by_power(gas, rotor_entry, turbine_power, turbine_efficiency)
     share = flow_share(
         rotor_exit.total_pressure / rotor_entry.total_pressure,
         core.turbine_critical_pressure_ratio,
@@ -118,7 +111,6 @@ def run_core(
     return CoreFlow(
         delivery=delivery,
         bleed=bleed,
-        combustor_entry=burner_air,
         combustor_exit=hot,
         rotor_entry=rotor_entry,
         rotor_exit=rotor_exit,
@@ -126,7 +118,44 @@ def run_core(
         downstream_cooling=last_air,
         turbine_area=corrected_flow_area(gas, rotor_entry) / share,
         rise=rise,
-        turbine_power=turbine_power,
-        compressor_power=compressor_power,
+        mechanical_loss=turbine_power - compressor_power - shaft_power,
+        unburnt_fuel=unburnt,
         fuel_flow=hot.mass_flow - burner_air.mass_flow,
+        flows={
+            "high_pressure_compressor": entry.duct_flow,
+            "combustor": burner_air.duct_flow,
+            "combustor_loading": loading,
+        },
+        loadings={"high_pressure_turbine": speed_over_work},
     )
+
+
+def _tap(delivery: Stream, rise: Array, flow: Array, share: float) -> tuple[Stream, Array]:
+    """Cooling air taken at a share of the compressor's rise, and the power that this saves [W].
+
+    Only its flow and enthalpy count where it joins; its temperature stays that of delivery.
+    """
+    air = delivery.with_flow(flow)
+    if share == 1.0:
+        return air, np.zeros_like(rise)
+    unspent = (1.0 - share) * rise
+    return replace(air, enthalpy=delivery.enthalpy - unspent), flow * unspent
+
+
+def _heat(
+    gas: Gas,
+    core: Core,
+    air: Stream,
+    temperature: Array,
+    loading: Array,
+    situation: Situation,
+) -> tuple[Stream, Array]:
+    """The stream behind the combustor, and the heat of what did not burn [W]."""
+    combustor = core.combustor
+    if not situation.is_lit:
+        loss = situation.duct_loss("combustor", combustor.pressure_loss_fraction, air)
+        return pass_unlit(gas, loss, air), np.zeros_like(air.mass_flow)
+    efficiency = combustor.efficiency_at(situation.flow_ratio("combustor_loading", loading))
+    hot = burn(gas, combustor, air, temperature, efficiency)
+    fuel_flow = hot.mass_flow - air.mass_flow
+    return hot, fuel_flow * combustor.lower_heating_value * (1.0 - efficiency)

@@ -2,19 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass
-from typing import Any, ClassVar, Protocol
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field, fields, is_dataclass, replace
+from typing import Any, ClassVar, Protocol, cast
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
-from engine.cycles.core import Core
+from engine.cycles.situation import Situation, Sizing
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
-from engine.parts.nozzle import Jet
+from engine.parts.nozzle import Jet, Nozzle
 from engine.parts.stream import Stream
 
 Array = NDArray[np.float64]
@@ -29,7 +30,21 @@ LIMIT_NAMES = (
     "corrected_high_pressure_speed",
     "high_pressure_speed",
     "fuel_air_ratio",
+    "propeller_shaft_power",
+    "flat_rated_thrust",
+    "afterburner_temperature",
+    "afterburner_fuel_air_ratio",
 )
+
+
+@dataclass(frozen=True)
+class PropellerWork:
+    """What a propeller makes of its shaft: thrust [N], and the powers [W] taken and lost."""
+
+    thrust: Array
+    shaft_power: Array
+    induced_loss: Array
+    profile_loss: Array
 
 
 @dataclass(frozen=True)
@@ -41,25 +56,36 @@ class Flowpath:
     stations : total states by SAE AS755 station number
     jets : the stream of each nozzle entry with its jet, by the station of the nozzle exit
     areas : area [m2] that each flow-setting throat would need, by name
-    duct_flows : ``W sqrt(T) / p`` at the entry of each duct that loses pressure, by name
-    limits : values that ratings and idle bound, by :data:`LIMIT_NAMES`, shape (8, ...)
+    flows : what grows with the engine's size and a loss or an efficiency goes with, by part:
+        ``W sqrt(T) / p`` of a compressor or duct, air loading of the combustor
+    loadings : square of blade speed over specific work of a turbine, by part
+    work_ratios : specific work of what turns with the fan, over the fan's
+    limits : values that ratings and idle bound, by name (:data:`LIMIT_NAMES`)
     shaft_power : taken off by the customer [W]
     bleed : the stream taken off by the customer
     mechanical_loss : bearings and gearbox [W]
+    unburnt_fuel : heat of the fuel that did not burn [W]
     fuel_flow : [kg/s]
     spool_rises : specific work [J/kg] and inlet total temperature [K] that estimate each speed
+    propeller : what a propeller does, if there is one
+    installation_drag : spillage and afterbody drag charged to the engine [N]
     """
 
     stations: Mapping[str, Stream]
     jets: Mapping[str, tuple[Stream, Jet]]
     areas: Mapping[str, Array]
-    duct_flows: Mapping[str, Array]
-    limits: Array
+    flows: Mapping[str, Array]
+    loadings: Mapping[str, Array]
+    limits: Mapping[str, Array]
     shaft_power: Array
     bleed: Stream
     mechanical_loss: Array
+    unburnt_fuel: Array
     fuel_flow: Array
     spool_rises: Mapping[str, tuple[Array, Array]]
+    work_ratios: Mapping[str, Array] = field(default_factory=dict)
+    propeller: PropellerWork | None = None
+    installation_drag: Array | float = 0.0
 
     @property
     def gross_thrust(self) -> Array:
@@ -67,34 +93,40 @@ class Flowpath:
         return np.asarray(sum(jet.gross_thrust for _, jet in self.jets.values()))
 
     def net_thrust(self, flight: FlightCondition) -> Array:
-        """Gross thrust less the momentum of the air taken in [N]."""
-        return self.gross_thrust - self.stations["2"].mass_flow * flight.true_airspeed
+        """Gross and propeller thrust, less the momentum of the air taken in and installation [N]."""
+        net = self.gross_thrust - self.stations["2"].mass_flow * flight.true_airspeed
+        if self.propeller is not None:
+            net = net + self.propeller.thrust
+        return net - self.installation_drag
+
+    def at(self, index: NDArray[np.int64]) -> Flowpath:
+        """The members picked by an index array."""
+        return cast(Flowpath, _picked(self, index))
+
+    def limit_values(self, flight: FlightCondition, names: Iterable[str] = LIMIT_NAMES) -> Array:
+        """Values of limits by name, stacked; one where the arrangement has no such quantity."""
+        known = {**self.limits, "flat_rated_thrust": self.net_thrust(flight)}
+        absent = np.ones_like(self.fuel_flow)
+        return np.stack(np.broadcast_arrays(*(known.get(name, absent) for name in names)))
 
 
-@dataclass(frozen=True)
-class Sizing:
-    """What sizing the engine at its design point leaves fixed.
+def _picked(record: Any, index: NDArray[np.int64]) -> Any:
+    """Members of all arrays that a record, a mapping or a pair holds."""
+    if isinstance(record, np.ndarray):
+        return record[index] if record.ndim else record
+    if isinstance(record, dict):
+        return {key: _picked(value, index) for key, value in record.items()}
+    if isinstance(record, tuple):
+        return tuple(_picked(value, index) for value in record)
+    if is_dataclass(record) and not isinstance(record, type):
+        changed = {f.name: _picked(getattr(record, f.name), index) for f in fields(record)}
+        return replace(record, **changed)
+    return record
 
-    Attributes
-    ----------
-    unknowns : logarithms of the arrangement's unknowns at the design point, shape (n,)
-    areas : fixed area [m2] of each flow-setting throat, shape (n - 1,)
-    duct_flows : ``W sqrt(T) / p`` at the design point, by duct
-    spool_rises : design values behind the estimated spool speeds
-    booster_rise_ratio : booster over fan specific work; 0 without booster
-    reference_thrust : net thrust at the design point [N]
-    reference_pressure : engine-face total pressure at the design point [Pa]
-    design_airflow : at the design point [kg/s]
-    """
 
-    unknowns: Array
-    areas: Mapping[str, float]
-    duct_flows: Mapping[str, float]
-    spool_rises: Mapping[str, tuple[float, float]]
-    booster_rise_ratio: float
-    reference_thrust: float
-    reference_pressure: float
-    design_airflow: float
+def shares_of(values: Array, bounds: Array) -> Array:
+    """Limit values over their bounds; infinite where a floor is none."""
+    return np.where(bounds > 0.0, values / bounds, np.inf)
 
 
 class Arrangement(Protocol):
@@ -118,29 +150,26 @@ class Arrangement(Protocol):
         ...
 
     @property
-    def core(self) -> Core:
-        """The gas generator."""
+    def unknown_names(self) -> tuple[str, ...]:
+        """What matching solves for; the airflow, which sets the size, stands last."""
         ...
 
     @property
-    def unknown_names(self) -> tuple[str, ...]:
-        """What matching solves for; the airflow, which sets the size, stands last."""
+    def afterburner(self) -> Afterburner | None:
+        """What may burn behind the last turbine."""
+        ...
+
+    @property
+    def exhaust_nozzle(self) -> Nozzle:
+        """The nozzle behind the last turbine, and behind the afterburner where there is one."""
         ...
 
     def design_unknowns(self, face: Stream) -> Array:
         """Logarithms of the unknowns at the design point, for a core airflow of 1 kg/s."""
         ...
 
-    def evaluate(
-        self,
-        unknowns: Array,
-        face: Stream,
-        ambient_pressure: Array,
-        sizing: Sizing | None,
-        *,
-        is_lit: bool,
-    ) -> Flowpath:
-        """The engine at the logarithms of its unknowns (n, ...), at an engine-face state."""
+    def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:
+        """The engine at the logarithms of its unknowns (n, ...)."""
         ...
 
 
@@ -163,3 +192,24 @@ def spool_speeds(
     reference = sizing.spool_rises[spool]
     ratio = np.maximum(work, 1e-6 * reference[0]) / reference[0]
     return np.sqrt(ratio * reference[1] / temperature), np.sqrt(ratio)
+
+
+def core_limits(
+    hot: Stream,
+    delivery: Stream,
+    rises: Mapping[str, tuple[Array, Array]],
+    sizing: Sizing | None,
+) -> dict[str, Array]:
+    """Limits of a gas generator and its spools; a single spool counts as both."""
+    low = spool_speeds(rises, next(iter(rises)), sizing)
+    high = spool_speeds(rises, "high_pressure", sizing)
+    return {
+        "turbine_entry_temperature": hot.total_temperature,
+        "compressor_delivery_temperature": delivery.total_temperature,
+        "compressor_delivery_pressure": delivery.total_pressure,
+        "corrected_low_pressure_speed": low[0],
+        "low_pressure_speed": low[1],
+        "corrected_high_pressure_speed": high[0],
+        "high_pressure_speed": high[1],
+        "fuel_air_ratio": hot.fuel_air_ratio,
+    }

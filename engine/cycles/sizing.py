@@ -7,7 +7,8 @@ from dataclasses import replace
 import numpy as np
 
 from engine.atmosphere import FlightCondition
-from engine.cycles.flowpath import Arrangement, Flowpath, Sizing
+from engine.cycles.flowpath import Arrangement, Flowpath
+from engine.cycles.situation import NOTHING_TAKEN, OffTakes, Situation, Sizing
 from engine.errors import CycleCannotRun
 from engine.parts.inlet import take_in
 
@@ -20,8 +21,11 @@ def size(
     *,
     airflow: float | None = None,
     net_thrust: float | None = None,
+    taken: OffTakes = NOTHING_TAKEN,
 ) -> tuple[Sizing, Flowpath]:
     """Size an engine for an airflow [kg/s] or a net thrust [N] at its design flight condition.
+
+    ``taken`` is what the aircraft takes off it there.
 
     Raises
     ------
@@ -31,7 +35,7 @@ def size(
     """
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     unknowns = arrangement.design_unknowns(face)
-    path = _run(arrangement, flight, unknowns)
+    path = _run(arrangement, flight, taken, unknowns)
     _refuse_impossible(path, flight)
     for _ in range(_MOST_ROUNDS):
         # All is proportional to airflow but a given shaft power: repeat until that settles too.
@@ -49,35 +53,34 @@ def size(
             factor = net_thrust / thrust
         unknowns = unknowns.copy()
         unknowns[-1] += np.log(factor)
-        path = _run(arrangement, flight, unknowns)
+        path = _run(arrangement, flight, taken, unknowns)
         if abs(factor - 1.0) < 1e-13:
             break
     _refuse_impossible(path, flight)
     return _sizing(arrangement, flight, unknowns, path), path
 
 
-def _run(arrangement: Arrangement, flight: FlightCondition, unknowns: np.ndarray) -> Flowpath:
+def _run(
+    arrangement: Arrangement, flight: FlightCondition, taken: OffTakes, unknowns: np.ndarray
+) -> Flowpath:
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     with np.errstate(all="ignore"):
-        return arrangement.evaluate(unknowns, face, flight.static_pressure, None, is_lit=True)
+        return arrangement.evaluate(unknowns, Situation(face, flight, taken, None))
 
 
 def _sizing(
     arrangement: Arrangement, flight: FlightCondition, unknowns: np.ndarray, path: Flowpath
 ) -> Sizing:
-    booster = 0.0
-    if "25" in path.stations:
-        fan_rise = path.stations["21"].enthalpy - path.stations["2"].enthalpy
-        booster = float((path.stations["25"].enthalpy - path.stations["21"].enthalpy) / fan_rise)
     return Sizing(
         unknowns=unknowns,
         areas={name: float(area) for name, area in path.areas.items()},
-        duct_flows={name: float(flow) for name, flow in path.duct_flows.items()},
+        flows={name: float(flow) for name, flow in path.flows.items()},
+        loadings={name: float(loading) for name, loading in path.loadings.items()},
+        work_ratios={name: float(ratio) for name, ratio in path.work_ratios.items()},
         spool_rises={
             name: (float(rise), float(temperature))
             for name, (rise, temperature) in path.spool_rises.items()
         },
-        booster_rise_ratio=booster,
         reference_thrust=float(path.net_thrust(flight)),
         reference_pressure=float(path.stations["2"].total_pressure),
         design_airflow=float(path.stations["2"].mass_flow),
@@ -93,6 +96,8 @@ def _refuse_impossible(path: Flowpath, flight: FlightCondition) -> None:
             f"compressor delivery, {float(delivery.total_temperature):.0f} K; raise it or lower "
             "the pressure ratios"
         )
+    if "mixer_bypass" in path.areas:
+        _refuse_mixer(path)
     ambient = float(flight.static_pressure)
     for exit_station, (stream, jet) in path.jets.items():
         pressure = float(stream.total_pressure)
@@ -111,15 +116,31 @@ def _refuse_impossible(path: Flowpath, flight: FlightCondition) -> None:
             )
 
 
+def _refuse_mixer(path: Flowpath) -> None:
+    """Say when core and bypass streams cannot meet at one static pressure, and what helps."""
+    area, mixed = float(path.areas["mixer_bypass"]), path.stations["64"]
+    if area > 0.0 and np.isfinite(float(mixed.total_pressure)):
+        return
+    core, bypass = (float(path.stations[name].total_pressure) / 1e3 for name in ("6", "16"))
+    if core > bypass:
+        remedy = "raise fan_pressure_ratio, or lower turbine_entry_temperature or mixer.core_mach"
+    else:
+        remedy = "lower fan_pressure_ratio, or raise turbine_entry_temperature"
+    raise CycleCannotRun(
+        f"the mixer's streams cannot meet at one static pressure: the core brings {core:.1f} kPa "
+        f"of total pressure, the bypass {bypass:.1f} kPa; {remedy}"
+    )
+
+
 def scaled(sizing: Sizing, factor: float) -> Sizing:
-    """The same engine with all its flow areas multiplied by a factor."""
+    """The same engine with all its flows and flow areas multiplied by a factor."""
     unknowns = sizing.unknowns.copy()
     unknowns[-1] += np.log(factor)
     return replace(
         sizing,
         unknowns=unknowns,
         areas={name: area * factor for name, area in sizing.areas.items()},
-        duct_flows={name: flow * factor for name, flow in sizing.duct_flows.items()},
+        flows={name: flow * factor for name, flow in sizing.flows.items()},
         reference_thrust=sizing.reference_thrust * factor,
         design_airflow=sizing.design_airflow * factor,
     )

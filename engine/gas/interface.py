@@ -13,8 +13,8 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 Array = NDArray[np.float64]
-Section = Literal["cold", "hot", "reheated"]
-SECTIONS: tuple[Section, ...] = ("cold", "hot", "reheated")
+Section = Literal["cold", "hot", "mixed", "reheated"]
+SECTIONS: tuple[Section, ...] = ("cold", "hot", "mixed", "reheated")
 
 
 class Gas(Protocol):

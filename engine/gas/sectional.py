@@ -1,8 +1,9 @@
 """Gas of constant heat capacity and ratio of heat capacities in each section, for hand checks.
 
-The textbooks' model: one pair for the cold, one for the hot, one for the reheated section, with
+The textbooks' model: one pair each for the cold, the hot, the mixed and the reheated section, with
 ``R = cp (gamma - 1) / gamma`` in each. Enthalpy is ``cp T`` from the absolute zero, as the authors
 write their energy balances; with one pair for the whole engine their examples do not come out.
+The mixed pair stays the same whatever the shares of the streams that mix.
 """
 
 from __future__ import annotations

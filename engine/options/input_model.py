@@ -6,165 +6,26 @@ from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
 
-from engine.quantities import (
-    Altitude,
-    Day,
-    Density,
-    Force,
-    MassFlow,
-    Power,
-    Pressure,
-    SpecificEnergy,
-    SpecificFuelConsumption,
-    SpecificHeat,
-    Temperature,
+from engine.options.fuel_table import FuelTable
+from engine.options.tables import (
+    AfterburnerTable,
+    CombustorTable,
+    CoolingTable,
+    DesignPointBase,
+    EfficiencyTable,
+    EfficiencyValue,
+    IdlesTable,
+    InletTable,
+    MixerTable,
+    NozzleTable,
+    OffTakesTable,
+    PressureRatio,
+    PropellerTable,
+    RatingsTable,
+    SectionalGasTable,
 )
+from engine.quantities import Day, Force, SpecificFuelConsumption
 from engine.reading import Table
-
-Ratio = Annotated[float, Field(gt=0.0, allow_inf_nan=False)]
-PressureRatio = Annotated[float, Field(ge=1.0, le=100.0, allow_inf_nan=False)]
-Share = Annotated[float, Field(ge=0.0, lt=1.0, allow_inf_nan=False)]
-EfficiencyValue = Annotated[float, Field(gt=0.3, le=1.0, allow_inf_nan=False)]
-MachNumber = Annotated[float, Field(ge=0.0, le=5.0, allow_inf_nan=False)]
-
-
-class EfficiencyTable(Table):
-    """One of the two definitions."""
-
-    polytropic: EfficiencyValue | None = None
-    isentropic: EfficiencyValue | None = None
-
-    @model_validator(mode="after")
-    def _one_definition(self) -> EfficiencyTable:
-        if (self.polytropic is None) == (self.isentropic is None):
-            raise ValueError("give either polytropic or isentropic, for example {polytropic = 0.9}")
-        return self
-
-
-class DesignPointBase(Table):
-    """Where the engine is sized, and how large."""
-
-    pressure_altitude: Altitude
-    mach: MachNumber
-    day: Day = 0.0
-    net_thrust: Annotated[Force, Field(gt=0.0, le=5e6)] | None = None
-    airflow: Annotated[MassFlow, Field(gt=0.0, le=1e4)] | None = None
-    turbine_entry_temperature: Annotated[Temperature, Field(gt=500.0, le=2500.0)]
-
-    @model_validator(mode="after")
-    def _one_size(self) -> DesignPointBase:
-        if (self.net_thrust is None) == (self.airflow is None):
-            raise ValueError("give either net_thrust or airflow, to say how large the engine is")
-        return self
-
-
-class TurbojetDesignPoint(DesignPointBase):
-    compressor_pressure_ratio: PressureRatio
-
-
-class TurbofanDesignPoint(DesignPointBase):
-    bypass_ratio: Annotated[float, Field(gt=0.0, le=30.0)]
-    fan_pressure_ratio: Annotated[float, Field(gt=1.0, le=10.0)]
-    booster_pressure_ratio: PressureRatio = 1.0
-    high_pressure_compressor_pressure_ratio: PressureRatio
-
-
-class FuelTable(Table):
-    """Kerosene where nothing is said."""
-
-    name: str = "kerosene"
-    hydrogen_carbon_ratio: Annotated[float, Field(ge=0.0, le=4.0)] = 23.0 / 12.0
-    lower_heating_value: Annotated[SpecificEnergy, Field(gt=0.0)] = 43.0319e6
-    density: Annotated[Density, Field(gt=0.0)] = 800.0
-
-
-class GasSection(Table):
-    heat_capacity: Annotated[SpecificHeat, Field(gt=0.0)]
-    heat_capacity_ratio: Annotated[float, Field(gt=1.0, lt=2.0)]
-
-
-class SectionalGasTable(Table):
-    """Constant properties by section, for hand checks."""
-
-    cold: GasSection
-    hot: GasSection
-    reheated: GasSection | None = None
-
-
-class InletTable(Table):
-    total_pressure_recovery: Annotated[float, Field(gt=0.3, le=1.0)] = 1.0
-    has_standard_ram_recovery: bool = False
-    isentropic_efficiency: EfficiencyValue | None = None
-
-
-class CombustorTable(Table):
-    efficiency: EfficiencyValue = 0.995
-    pressure_loss_fraction: Share = 0.05
-
-
-class CoolingTable(Table):
-    """Fractions of high-pressure-compressor entry flow, all taken at its delivery."""
-
-    vane_fraction: Share = 0.0
-    rotor_fraction: Share = 0.0
-    downstream_fraction: Share = 0.0
-
-
-class OffTakesTable(Table):
-    customer_bleed_fraction: Share = 0.0
-    shaft_power: Annotated[Power, Field(ge=0.0)] = 0.0
-
-
-class NozzleTable(Table):
-    kind: Literal["convergent", "convergent-divergent", "given exit pressure"] = "convergent"
-    isentropic_efficiency: EfficiencyValue = 1.0
-    gross_thrust_coefficient: EfficiencyValue = 1.0
-    pressure_loss_fraction: Share = 0.0
-    exit_pressure_ratio: Ratio = 1.0
-
-
-class RatingTable(Table):
-    """Ceilings; the least governs. Speeds are relative to the design point."""
-
-    turbine_entry_temperature: Annotated[Temperature, Field(gt=300.0, le=2500.0)] | None = None
-    compressor_delivery_temperature: Annotated[Temperature, Field(gt=200.0)] | None = None
-    compressor_delivery_pressure: Annotated[Pressure, Field(gt=0.0)] | None = None
-    corrected_low_pressure_speed: Ratio | None = None
-    low_pressure_speed: Ratio | None = None
-    corrected_high_pressure_speed: Ratio | None = None
-    high_pressure_speed: Ratio | None = None
-
-    @model_validator(mode="after")
-    def _some_limit(self) -> RatingTable:
-        if not self.model_fields_set:
-            raise ValueError("a rating needs at least one limit, turbine_entry_temperature say")
-        return self
-
-
-class RatingsTable(Table):
-    take_off: RatingTable
-    maximum_continuous: RatingTable
-    climb: RatingTable
-    cruise: RatingTable
-
-
-class IdleTable(Table):
-    """Floors; the highest governs. Speed is relative to the design point."""
-
-    corrected_high_pressure_speed: Ratio | None = None
-    compressor_delivery_pressure: Annotated[Pressure, Field(gt=0.0)] | None = None
-    fuel_air_ratio: Annotated[float, Field(gt=0.0, lt=0.06)] | None = None
-
-    @model_validator(mode="after")
-    def _some_floor(self) -> IdleTable:
-        if not self.model_fields_set:
-            raise ValueError("idle needs at least one floor, corrected_high_pressure_speed say")
-        return self
-
-
-class IdlesTable(Table):
-    flight: IdleTable
-    ground: IdleTable
 
 
 class CycleEngineFile(Table):
@@ -182,26 +43,81 @@ class CycleEngineFile(Table):
     idle: IdlesTable
 
 
-class TurbojetEfficiencies(Table):
+class EfficienciesBase(Table):
+    mechanical: EfficiencyValue = 0.99
+    away_from_design: Literal["fall off", "constant"] = "fall off"
+
+
+class TurbojetDesignPoint(DesignPointBase):
+    compressor_pressure_ratio: PressureRatio
+
+
+class TurbojetEfficiencies(EfficienciesBase):
     compressor: EfficiencyTable
     turbine: EfficiencyTable
-    mechanical: EfficiencyValue = 0.99
 
 
-class TurbojetFile(CycleEngineFile):
+class ReheatedFile(CycleEngineFile):
+    """A kind that may have an afterburner."""
+
+    nozzle: NozzleTable = NozzleTable()
+    afterburner: AfterburnerTable | None = None
+
+    @model_validator(mode="after")
+    def _reheat_needs_an_afterburner(self) -> ReheatedFile:
+        named = [
+            name
+            for name, rating in self.ratings
+            if rating is not None and rating.afterburner_temperature is not None
+        ]
+        if self.afterburner is None and named:
+            raise ValueError(
+                f"ratings.{named[0]} has an afterburner_temperature, but there is no [afterburner]"
+            )
+        return self
+
+
+class TurbojetFile(ReheatedFile):
     kind: Literal["turbojet"]
     design_point: TurbojetDesignPoint
     efficiencies: TurbojetEfficiencies
-    nozzle: NozzleTable = NozzleTable()
 
 
-class TurbofanEfficiencies(Table):
+class TwoSpoolDesignPoint(DesignPointBase):
+    low_pressure_compressor_pressure_ratio: Annotated[float, Field(gt=1.0, le=20.0)]
+    high_pressure_compressor_pressure_ratio: PressureRatio
+
+
+class TwoSpoolEfficiencies(EfficienciesBase):
+    low_pressure_compressor: EfficiencyTable
+    high_pressure_compressor: EfficiencyTable
+    high_pressure_turbine: EfficiencyTable
+    low_pressure_turbine: EfficiencyTable
+
+
+class TwoSpoolTurbojetFile(ReheatedFile):
+    kind: Literal["two-spool turbojet"]
+    design_point: TwoSpoolDesignPoint
+    efficiencies: TwoSpoolEfficiencies
+
+
+class TurbofanDesignPoint(DesignPointBase):
+    """``fan_hub_pressure_ratio`` is that of the core's side, where it differs."""
+
+    bypass_ratio: Annotated[float, Field(gt=0.0, le=30.0)]
+    fan_pressure_ratio: Annotated[float, Field(gt=1.0, le=10.0)]
+    fan_hub_pressure_ratio: Annotated[float, Field(gt=1.0, le=10.0)] | None = None
+    booster_pressure_ratio: PressureRatio = 1.0
+    high_pressure_compressor_pressure_ratio: PressureRatio
+
+
+class TurbofanEfficiencies(EfficienciesBase):
     fan: EfficiencyTable
+    fan_hub: EfficiencyTable | None = None
     booster: EfficiencyTable | None = None
     high_pressure_compressor: EfficiencyTable
     high_pressure_turbine: EfficiencyTable
     low_pressure_turbine: EfficiencyTable
-    mechanical: EfficiencyValue = 0.99
     gearbox: EfficiencyValue = 1.0
 
 
@@ -213,6 +129,53 @@ class TurbofanFile(CycleEngineFile):
     bypass_nozzle: NozzleTable = NozzleTable()
 
 
+class MixedTurbofanFile(ReheatedFile):
+    kind: Literal["mixed turbofan"]
+    design_point: TurbofanDesignPoint
+    efficiencies: TurbofanEfficiencies
+    mixer: MixerTable = MixerTable()
+
+    @model_validator(mode="after")
+    def _reheat_needs_full_mixing(self) -> MixedTurbofanFile:
+        if self.afterburner is not None and self.mixer.effectiveness != 1.0:
+            raise ValueError(
+                "mixer.effectiveness is for an engine without afterburner, which burns in a stream "
+                "that is mixed; leave it out"
+            )
+        return self
+
+
+class TurbopropDesignPoint(DesignPointBase):
+    """``power_turbine_share`` is of the ideal drop of enthalpy down to ambient pressure."""
+
+    compressor_pressure_ratio: PressureRatio
+    power_turbine_share: Annotated[float, Field(gt=0.2, lt=1.0)]
+
+
+class TurbopropEfficiencies(EfficienciesBase):
+    compressor: EfficiencyTable
+    turbine: EfficiencyTable
+    power_turbine: EfficiencyTable
+    gearbox: EfficiencyValue = 0.985
+
+
+class TurbopropFile(CycleEngineFile):
+    kind: Literal["turboprop"]
+    design_point: TurbopropDesignPoint
+    efficiencies: TurbopropEfficiencies
+    propeller: PropellerTable
+    nozzle: NozzleTable = NozzleTable()
+
+    @model_validator(mode="after")
+    def _efficiency_needs_speed(self) -> TurbopropFile:
+        if self.propeller.efficiency is not None and self.design_point.mach == 0.0:
+            raise ValueError(
+                "propeller.efficiency is thrust power over shaft power, which is 0 at rest, where "
+                "the design point is; give propeller.profile_factor, 0.85 say"
+            )
+        return self
+
+
 class ConstantConsumptionFile(Table):
     """Static sea-level thrust and one specific fuel consumption."""
 
@@ -221,12 +184,29 @@ class ConstantConsumptionFile(Table):
     note: str = ""
     specific_fuel_consumption: Annotated[SpecificFuelConsumption, Field(gt=0.0)]
     static_thrust: Annotated[Force, Field(gt=0.0)]
+    fuel: FuelTable = FuelTable()
     density_exponent: Annotated[float, Field(ge=0.0, le=2.0)] = 0.0
+
+
+class TabulatedFile(Table):
+    """An engine known by the points of a table, which holds for one day."""
+
+    kind: Literal["tabulated"]
+    name: str
+    note: str = ""
+    points: str
+    day: Day = 0.0
+    fuel: FuelTable = FuelTable()
+
+
+AnyCycleFile = (
+    TurbojetFile | TwoSpoolTurbojetFile | TurbofanFile | MixedTurbofanFile | TurbopropFile
+)
 
 
 class EngineFile(Table):
     """Any engine, told apart by its kind."""
 
     engine: Annotated[
-        TurbojetFile | TurbofanFile | ConstantConsumptionFile, Field(discriminator="kind")
+        AnyCycleFile | ConstantConsumptionFile | TabulatedFile, Field(discriminator="kind")
     ]

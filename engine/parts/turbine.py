@@ -1,4 +1,4 @@
-"""Turbines: power drawn to temperature and pressure drop, and the flow they can swallow.
+"""Turbines: power drawn to temperature and pressure drop and back, and the flow they can swallow.
 
 Flow capacity follows Stodola's ellipse; with a critical pressure ratio it is the law of a single
 choking row: constant where the exit pressure is below it. Source: A. Stodola, Steam and Gas
@@ -31,6 +31,27 @@ def expand_by_power(gas: Gas, stream: Stream, power: Array, efficiency: Efficien
         ideal = gas.temperature_from_enthalpy(ideal_enthalpy, f, section, guess=temperature)
         change = gas.entropy(ideal, f, section) - entropy_in
     pressure = stream.total_pressure * np.exp(change / gas.gas_constant(f, section))
+    return Stream(temperature, pressure, stream.mass_flow, f, enthalpy, section)
+
+
+def expand_by_pressure(
+    gas: Gas, stream: Stream, exit_to_entry_pressure: Array, efficiency: Efficiency
+) -> Stream:
+    """The stream after a turbine that takes its total pressure down by a ratio."""
+    f, section = stream.fuel_air_ratio, stream.section
+    entropy_in = gas.entropy(stream.total_temperature, f, section)
+    ideal_change = gas.gas_constant(f, section) * np.log(exit_to_entry_pressure)
+    guess = stream.total_temperature * exit_to_entry_pressure ** (0.25 * efficiency.value)
+    if efficiency.kind == "polytropic":
+        entropy_out = entropy_in + efficiency.value * ideal_change
+        temperature = gas.temperature_from_entropy(entropy_out, f, section, guess=guess)
+        enthalpy = gas.enthalpy(temperature, f, section)
+    else:
+        ideal = gas.temperature_from_entropy(entropy_in + ideal_change, f, section, guess=guess)
+        drop = efficiency.value * (stream.enthalpy - gas.enthalpy(ideal, f, section))
+        enthalpy = stream.enthalpy - drop
+        temperature = gas.temperature_from_enthalpy(enthalpy, f, section, guess=guess)
+    pressure = stream.total_pressure * exit_to_entry_pressure
     return Stream(temperature, pressure, stream.mass_flow, f, enthalpy, section)
 
 

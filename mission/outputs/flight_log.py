@@ -9,6 +9,7 @@ from rich.console import Group, RenderableType
 from rich.table import Table
 from rich.text import Text
 
+from engine.fuels import KEROSENE
 from mission.outputs.assumptions import assumed_by_file
 from mission.outputs.failure import failure_headline, failure_statement, limit_scale
 from mission.outputs.margins import least_margin, room
@@ -194,7 +195,18 @@ def _totals(flight: Flight, scales: Scales, width: int) -> Group:
     ]  # fmt: skip
     table = Table.grid(padding=(0, 2 * _gap(width), 0, 0))
     table.add_row(*(_right_aligned(block, _gap(width)) for block in blocks))
-    return section("Totals", table)
+    return section("Totals", table, note(_burnt(flight, fuel)))
+
+
+def _burnt(flight: Flight, scale: Scale) -> str:
+    """The fuel by name, how it is kept, and what carbon dioxide comes of it."""
+    fuel = flight.fuel
+    kept = f" ({fuel.storage})" if fuel.storage not in ("", KEROSENE.storage) else ""
+    return (
+        f"Fuel: {fuel.name}{kept}. Carbon dioxide of the block fuel: "
+        f"{scale.full(flight.carbon_dioxide)}, {number(fuel.carbon_dioxide_index, 3)} times its "
+        "mass."
+    )
 
 
 def _right_aligned(rows: Iterable[tuple[str, str]], gap: int) -> Table:

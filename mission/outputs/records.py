@@ -7,6 +7,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.fuels import Fuel
 from engine.interface import EngineState, Outcome
 from mission.comparison import Comparison, mean_cruise_consumption
 from mission.outputs.margins import least_margin
@@ -27,6 +28,7 @@ def flight_record(flight: Flight) -> Record:
         "mission": flight.mission,
         "aircraft": flight.aircraft,
         "engine": flight.engine,
+        "fuel": _fuel(flight.fuel),
         "day": day_in_words(flight.day),
         "flown": flight.flown,
         "totals": _totals(flight),
@@ -57,10 +59,21 @@ def _kilograms(name: str) -> str:
     return "_".join(name.replace(",", "").split()) + "_kg"
 
 
+def _fuel(fuel: Fuel) -> Record:
+    return {
+        "name": fuel.name,
+        "lower_heating_value_j_per_kg": fuel.lower_heating_value,
+        "density_kg_per_m3": fuel.density,
+        "carbon_dioxide_kg_per_kg": fuel.carbon_dioxide_index,
+        "water_kg_per_kg": fuel.water_index,
+    }
+
+
 def _totals(flight: Flight) -> Record:
     total = flight.totals
     return {
         "block_fuel_kg": total.block_fuel,
+        "carbon_dioxide_kg": flight.carbon_dioxide,
         "trip_fuel_kg": total.trip_fuel,
         "reserve_fuel_kg": total.reserve_fuel,
         "loaded_fuel_kg": total.loaded_fuel,

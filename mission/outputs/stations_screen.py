@@ -11,7 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from engine.energy import EnergyAccount
-from engine.interface import EngineState, Outcome, Station
+from engine.interface import Coverage, EngineState, Outcome, Station
 from mission.outputs.page import (
     WIDEST,
     Column,
@@ -59,11 +59,15 @@ _FORCE, _CONSUMPTION = METRIC.force, METRIC.specific_fuel_consumption
 
 @dataclass(frozen=True)
 class Question:
-    """What was asked of an engine: a rating by name, or a net thrust [N] below it."""
+    """What was asked of an engine: a rating by name, or a net thrust [N] below it.
+
+    ``coverage`` is where alone it can be asked, if it is a table.
+    """
 
     engine: str
     rating: str
     thrust: float | None = None
+    coverage: Coverage | None = None
 
     @property
     def in_words(self) -> str:
@@ -109,6 +113,7 @@ def is_short_of_thrust(state: EngineState) -> bool:
         Outcome.BEYOND_RATING,
         Outcome.NOT_CONVERGED,
         Outcome.UNPHYSICAL,
+        Outcome.OUTSIDE_TABLE,
     )
 
 
@@ -131,7 +136,25 @@ def flag_in_words(state: EngineState, question: Question) -> str:
     if outcome in (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL):
         why = "finds no balance" if outcome == Outcome.NOT_CONVERGED else "has no physical state"
         return f"No answer: the engine {why} at this altitude, speed and demand."
+    if outcome == Outcome.OUTSIDE_TABLE and question.coverage is not None:
+        return f"No answer outside the engine's table: {_outside(state, question.coverage)}."
     return ""
+
+
+def _outside(state: EngineState, table: Coverage) -> str:
+    """By what the flight condition lies outside a table, with value and range."""
+    flight, (low, high), (slow, fast) = state.flight, table.pressure_altitude, table.mach
+    altitude, mach = float(flight.pressure_altitude), float(flight.mach)
+    day = float(flight.temperature_deviation)
+    found = []
+    if table.is_beyond(flight.pressure_altitude, table.pressure_altitude):
+        found.append(f"pressure altitude is {altitude:g} m and it holds {low:g} to {high:g} m")
+    if table.is_beyond(flight.mach, table.mach):
+        found.append(f"Mach number is {mach:g} and it holds {slow:g} to {fast:g}")
+    if not table.is_day(flight.temperature_deviation):
+        theirs = day_in_words(table.temperature_deviation)
+        found.append(f"the day is {day_in_words(day)} and it is of {theirs}")
+    return "; ".join(found)
 
 
 def _kilonewtons(force: float) -> str:

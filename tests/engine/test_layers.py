@@ -25,7 +25,7 @@ FLOORS = [
     {"cycle_engine", "envelope"},
     {"options"},
 ]
-ROOF = {"mission/outputs", "mission/command_line.py"}
+ROOF = {"mission/outputs", "mission/commands", "mission/command_line.py"}
 
 
 def sources(package: str) -> list[Path]:

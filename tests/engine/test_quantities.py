@@ -30,6 +30,8 @@ from engine.quantities import FOOT, KINDS, STANDARD_GRAVITY, parse_day, parse_qu
         ("0.8 kg/L", "density", 800.0),
         ("120kg/s", "mass flow", 120.0),
         ("61 m**2", "area", 61.0),
+        ("11000 L", "volume", 11.0),
+        ("14 m**3", "volume", 14.0),
         ("16 mg/N/s", "specific fuel consumption", 16e-6),
         ("0.6 lb/h/lbf", "specific fuel consumption", 0.6 * 0.45359237 / 3600 / 4.4482216152605),
         ("0.6 1/h", "specific fuel consumption", 0.6 / 3600 / STANDARD_GRAVITY),

@@ -9,9 +9,10 @@ import pytest
 from mission_files import Content, aircraft_content, write
 
 from engine.errors import InputRefused
+from engine.fuels import FUELS, KEROSENE
 from engine.quantities import KNOT
 from mission.aerodynamics import best_lift_coefficient, drag_coefficient
-from mission.aircraft import Aircraft, load_aircraft
+from mission.aircraft import Aircraft, governing_tank_limit, load_aircraft, usable_fuel
 
 
 def loaded(folder: Path, content: Content) -> Aircraft:
@@ -22,11 +23,29 @@ def test_values_come_in_si(tmp_path: Path) -> None:
     plane = loaded(tmp_path, aircraft_content(fuel_tanks={"capacity": "9 t", "unusable": "60 kg"}))
     assert plane.operating_empty_mass == 15500.0
     assert plane.maximum_ramp_mass == 27200.0
-    assert plane.usable_fuel == 8940.0
+    assert usable_fuel(plane, KEROSENE) == 8940.0
     assert plane.unusable_fuel == 60.0
     assert plane.wing_area == 62.0
     assert plane.engine_count == 2
     assert plane.maximum_operating_calibrated_airspeed == pytest.approx(340.0 * KNOT)
+
+
+@pytest.mark.parametrize(
+    ("tanks", "fuel", "usable", "governs"),
+    [
+        ({"capacity": "9 t"}, "hydrogen", 8940.0, "capacity"),
+        ({"capacity": "9 t", "volume": "12 m**3"}, "kerosene", 8940.0, "capacity"),
+        ({"capacity": "9 t", "volume": "11000 L"}, "kerosene", 11.0 * 800.0 - 60.0, "volume"),
+        ({"capacity": "9 t", "volume": "12 m**3"}, "hydrogen", 12.0 * 70.8 - 60.0, "volume"),
+        ({"capacity": None, "volume": "12 m**3"}, "methane", 12.0 * 422.6 - 60.0, "volume"),
+    ],
+)
+def test_tanks_hold_the_lesser_of_a_mass_and_a_volume(
+    tmp_path: Path, tanks: Content, fuel: str, usable: float, governs: str
+) -> None:
+    plane = loaded(tmp_path, aircraft_content(fuel_tanks={**tanks, "unusable": "60 kg"}))
+    assert usable_fuel(plane, FUELS[fuel]) == pytest.approx(usable, rel=1e-12)
+    assert governing_tank_limit(plane, FUELS[fuel]) == governs
 
 
 def test_induced_drag_from_oswald_efficiency(tmp_path: Path) -> None:
@@ -87,7 +106,10 @@ def test_nothing_is_listed_that_is_said(tmp_path: Path) -> None:
         ({"masses": {"operating_empty": "20 t"}}, "operating_empty is above.*maximum_zero_fuel"),
         ({"masses": {"maximum_zero_fuel": "29 t"}}, "maximum_zero_fuel is above.*maximum_take_off"),
         ({"masses": {"maximum_ramp": "20 t"}}, "maximum_ramp is below.*maximum_take_off"),
-        ({"fuel_tanks": {"unusable": "9 t"}}, "unusable is not below.*capacity"),
+        ({"fuel_tanks": {"unusable": "9 t"}}, "fuel_tanks: unusable is not below capacity"),
+        ({"fuel_tanks": {"capacity": None}}, 'fuel_tanks: give capacity = "9 t", or volume = '),
+        ({"fuel_tanks": {"volume": "11 t"}}, r"fuel_tanks\.volume: 't' is not a unit of volume"),
+        ({"fuel_tanks": {"volume": "0 L"}}, r"fuel_tanks\.volume.*greater than 0"),
         (
             {"drag_polar": {"aspect_ratio": 9.0}},
             "either induced_drag_factor, or oswald_efficiency with aspect_ratio",

@@ -19,9 +19,9 @@ from mission.outputs.files import check_target, json_text, write_text
 from mission.outputs.records import comparison_record, flight_record, stations_record
 
 TOTALS = {
-    "block_fuel_kg", "trip_fuel_kg", "reserve_fuel_kg", "loaded_fuel_kg", "fuel_left_kg",
-    "fuel_margin_kg", "block_time_s", "trip_time_s", "ground_distance_m", "air_distance_m",
-    "ramp_mass_kg", "takeoff_mass_kg", "landing_mass_kg", "integration_error",
+    "block_fuel_kg", "carbon_dioxide_kg", "trip_fuel_kg", "reserve_fuel_kg", "loaded_fuel_kg",
+    "fuel_left_kg", "fuel_margin_kg", "block_time_s", "trip_time_s", "ground_distance_m",
+    "air_distance_m", "ramp_mass_kg", "takeoff_mass_kg", "landing_mass_kg", "integration_error",
 }  # fmt: skip
 SEGMENT = {
     "name", "kind", "purpose", "fuel_kg", "time_s", "ground_distance_m", "mass_start_kg",
@@ -32,8 +32,8 @@ STEPS = {
     "thrust_n", "fuel_flow_kg_per_s", "flight_path_angle_rad",
 }  # fmt: skip
 FLIGHT = {
-    "format", "version", "mission", "aircraft", "engine", "day", "flown", "totals", "segments",
-    "reserves", "cross_check", "margins", "assumed", "warnings", "failure",
+    "format", "version", "mission", "aircraft", "engine", "fuel", "day", "flown", "totals",
+    "segments", "reserves", "cross_check", "margins", "assumed", "warnings", "failure",
 }  # fmt: skip
 # Cruise at flight level 350 and Mach 0.78 of the engine that all engine tests share.
 CRUISE = flight_condition(35000.0 * 0.3048, 0.78)

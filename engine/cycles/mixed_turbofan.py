@@ -1,0 +1,187 @@
+"""Turbofan whose core and bypass streams leave through one nozzle, with afterburner or without.
+
+Unknowns: fan pressure ratio, bypass ratio, high-pressure-compressor pressure ratio, turbine entry
+temperature over engine-face temperature, corrected core airflow. Held from the design point: flow
+capacity of both turbines, both areas of the mixer and the nozzle throat. Where the streams meet in
+the mixer their static pressures are equal: the core's, in its own area, is the bypass stream's, and
+says which area that stream needs.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from engine.cycles.core import Core, run_core
+from engine.cycles.exhaust import Exhaust, let_out
+from engine.cycles.flowpath import Flowpath, core_limits, corrected_flow_factor
+from engine.cycles.low_spool import LowSpool, drive, run_front
+from engine.cycles.situation import Situation
+from engine.fuels import Fuel
+from engine.gas import Gas
+from engine.parts.afterburner import Afterburner
+from engine.parts.inlet import Inlet
+from engine.parts.mixer import Passage, at_mach, at_static_pressure, in_area, mix
+from engine.parts.nozzle import Jet, Nozzle, discharge
+from engine.parts.stream import Array, Stream, mix_in
+
+
+@dataclass(frozen=True)
+class Mixer:
+    """Where core and bypass streams meet.
+
+    Attributes
+    ----------
+    core_mach : Mach number of the core stream at mixer entry, at the design point
+    core_pressure_loss_fraction, bypass_pressure_loss_fraction : of the ducts ahead of it
+    pressure_loss_fraction : friction of the mixer itself
+    effectiveness : share of the gain of gross thrust by full mixing that is had; 1 for mixing
+        complete by momentum
+    """
+
+    core_mach: float = 0.45
+    core_pressure_loss_fraction: float = 0.0
+    bypass_pressure_loss_fraction: float = 0.0
+    pressure_loss_fraction: float = 0.0
+    effectiveness: float = 1.0
+
+
+@dataclass(frozen=True)
+class MixedTurbofan:
+    """A mixed-exhaust turbofan and its design point."""
+
+    gas: Gas
+    fuel: Fuel
+    inlet: Inlet
+    low_spool: LowSpool
+    core: Core
+    mixer: Mixer
+    exhaust_nozzle: Nozzle
+    bypass_ratio: float
+    fan_pressure_ratio: float
+    high_pressure_compressor_pressure_ratio: float
+    turbine_entry_temperature: float
+    afterburner: Afterburner | None = None
+    unknown_names: tuple[str, ...] = (
+        "fan_pressure_ratio",
+        "bypass_ratio",
+        "high_pressure_compressor_pressure_ratio",
+        "turbine_entry_temperature_ratio",
+        "corrected_core_airflow",
+    )
+
+    def design_unknowns(self, face: Stream) -> Array:
+        return np.log(
+            [
+                self.fan_pressure_ratio,
+                self.bypass_ratio,
+                self.high_pressure_compressor_pressure_ratio,
+                self.turbine_entry_temperature / float(face.total_temperature),
+                1.0 / float(corrected_flow_factor(face)),
+            ]
+        )
+
+    def _meet(
+        self, last: Stream, bypass: Stream, situation: Situation
+    ) -> tuple[Passage, Passage, Passage]:
+        """Core, bypass and mixed stream in the mixer, friction left out."""
+        gas, mixer, sizing = self.gas, self.mixer, situation.sizing
+        core = last.with_pressure_loss(
+            situation.duct_loss("core_duct", mixer.core_pressure_loss_fraction, last)
+        )
+        outer = bypass.with_pressure_loss(
+            situation.duct_loss("bypass_duct", mixer.bypass_pressure_loss_fraction, bypass)
+        )
+        if sizing is None:
+            inside = at_mach(gas, core, np.asarray(mixer.core_mach))
+        else:
+            inside = in_area(gas, core, np.asarray(sizing.flows["mixer_core_area"]))
+        around = at_static_pressure(gas, outer, inside.static_pressure)
+        return inside, around, mix(gas, inside, around)
+
+    def _jet(self, exhaust: Exhaust, parts: tuple[Passage, Passage], situation: Situation) -> Jet:
+        """The jet of a mixer that leaves a share of the streams unmixed.
+
+        Each stream alone loses the same fraction of pressure on its way to the nozzle.
+        """
+        share, ambient = self.mixer.effectiveness, situation.flight.static_pressure
+        if share == 1.0:
+            return exhaust.jet
+        inside, around = (
+            discharge(
+                self.gas, self.exhaust_nozzle, part.stream.with_pressure_loss(exhaust.lost), ambient
+            )
+            for part in parts
+        )
+        return replace(
+            exhaust.jet,
+            gross_thrust=share * exhaust.jet.gross_thrust
+            + (1.0 - share) * (inside.gross_thrust + around.gross_thrust),
+            throat_area=share * exhaust.jet.throat_area
+            + (1.0 - share) * (inside.throat_area + around.throat_area),
+        )
+
+    def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:
+        gas, low, core, face = self.gas, self.low_spool, self.core, situation.face
+        fan_ratio, bypass_ratio, core_ratio, temperature_ratio, airflow = np.exp(unknowns)
+        core_flow = airflow * corrected_flow_factor(face)
+        front = run_front(gas, low, core_flow, fan_ratio, bypass_ratio, situation)
+        hot = temperature_ratio * face.total_temperature
+        flow = run_core(gas, core, front.core_entry, core_ratio, hot, situation)
+        turbine = drive(gas, low, flow, front, situation)
+        last = turbine.exit
+        if core.downstream_cooling_fraction:
+            last = mix_in(gas, last, flow.downstream_cooling)
+        inside, around, together = self._meet(last, front.bypass, situation)
+        friction = situation.duct_loss("mixer", self.mixer.pressure_loss_fraction, together.stream)
+        mixed = together.stream.with_pressure_loss(friction)
+        exhaust = let_out(gas, self.exhaust_nozzle, self.afterburner, mixed, situation)
+        jet = self._jet(exhaust, (inside, around), situation)
+        rises = {
+            "low_pressure": (front.fan_rise, front.entry.total_temperature),
+            "high_pressure": (flow.rise, front.core_entry.total_temperature),
+        }
+        return Flowpath(
+            stations={
+                "2": front.entry,
+                "21": front.hub,
+                "25": front.core_entry,
+                "3": flow.delivery,
+                "4": flow.combustor_exit,
+                "41": flow.rotor_entry,
+                "44": flow.rotor_exit,
+                "45": flow.turbine_exit,
+                "5": last,
+                "6": inside.stream,
+                "64": mixed,
+                "7": exhaust.nozzle_entry,
+                "13": front.bypass,
+                "16": around.stream,
+            },
+            jets={"9": (exhaust.nozzle_entry, jet)},
+            areas={
+                "high_pressure_turbine": flow.turbine_area,
+                "low_pressure_turbine": turbine.area,
+                "mixer_bypass": around.area,
+                "core_nozzle": jet.throat_area,
+            },
+            flows={
+                **front.flows,
+                **flow.flows,
+                **exhaust.flows,
+                "core_duct": last.duct_flow,
+                "bypass_duct": front.bypass.duct_flow,
+                "mixer": together.stream.duct_flow,
+                "mixer_core_area": inside.area,
+            },
+            loadings={**flow.loadings, **turbine.loadings},
+            limits=core_limits(flow.combustor_exit, flow.delivery, rises, situation.sizing),
+            shaft_power=situation.taken.shaft_power + np.zeros_like(flow.rise),
+            bleed=flow.bleed,
+            mechanical_loss=flow.mechanical_loss + turbine.mechanical_loss,
+            unburnt_fuel=flow.unburnt_fuel,
+            fuel_flow=flow.fuel_flow,
+            spool_rises=rises,
+            work_ratios=front.work_ratios,
+        )

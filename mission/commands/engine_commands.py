@@ -1,0 +1,193 @@
+"""Commands about one engine: its stations at a flight condition, and its whole envelope."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Annotated
+
+import typer
+
+from engine.errors import InputRefused
+from mission.commands.shared import (
+    NOT_FLYABLE,
+    DayName,
+    EngineName,
+    JsonTarget,
+    check_json,
+    read,
+    show,
+)
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+    import numpy as np
+    from numpy.typing import NDArray
+
+_UNLIMITED = "windmilling"  # asked for like a rating, though it is none
+
+
+def stations_command(
+    engine: EngineName,
+    altitude: Annotated[str, typer.Option(help='Pressure altitude: "35000 ft" or FL350.')],
+    mach: Annotated[float, typer.Option(help="Flight Mach number.")],
+    thrust: Annotated[
+        str | None,
+        typer.Option(help='Net thrust of one engine, "9 kN" say, held below the rating.'),
+    ] = None,
+    rating: Annotated[
+        str | None,
+        typer.Option(
+            help="take_off, maximum_continuous, climb, cruise, flight_idle, ground_idle or "
+            "windmilling; with a thrust the ceiling, by default maximum_continuous."
+        ),
+    ] = None,
+    day: DayName = "ISA",
+    json: JsonTarget = None,
+) -> None:
+    """Show an engine at one flight condition."""
+    from engine import flight_condition, load_engine
+    from engine.quantities import parse_day, parse_quantity
+    from mission.library import find
+    from mission.outputs.records import stations_record
+    from mission.outputs.stations_screen import (
+        Question,
+        flag_in_words,
+        is_short_of_thrust,
+        stations_screen,
+    )
+
+    check_json(json)
+    condition = flight_condition(
+        read("--altitude", parse_quantity, altitude, "altitude"),
+        mach,
+        read("--day", parse_day, day),
+    )
+    wanted = None if thrust is None else read("--thrust", parse_quantity, thrust, "force")
+    ceiling = _rating(rating, has_thrust=wanted is not None)
+    chosen = load_engine(find(engine, "engine"))
+    if ceiling == _UNLIMITED:
+        state = chosen.windmilling(condition)
+    else:
+        state = chosen.at(condition, rating=ceiling, net_thrust=wanted)
+    question = Question(chosen.name, ceiling, wanted, chosen.coverage)
+
+    show(
+        lambda width: stations_screen(state, question, width=width),
+        lambda: stations_record(state, engine=chosen.name, rating=ceiling),
+        json,
+    )
+    if json == "-" and (flag := flag_in_words(state, question)):
+        typer.echo(flag, err=True)
+    if is_short_of_thrust(state):
+        raise typer.Exit(NOT_FLYABLE)
+
+
+def envelope_command(
+    engine: EngineName,
+    rating: Annotated[
+        str | None,
+        typer.Option(help="Rating or idle of the screen; climb where none is given."),
+    ] = None,
+    day: Annotated[
+        str | None, typer.Option("--day", help='Temperature, "ISA+10" say; ISA, or a table\'s own.')
+    ] = None,
+    altitudes: Annotated[
+        str | None, typer.Option(help='Pressure altitudes between commas: "0 ft, FL100, FL350".')
+    ] = None,
+    machs: Annotated[
+        str | None, typer.Option(help='Flight Mach numbers between commas: "0, 0.4, 0.8".')
+    ] = None,
+    to_altitude: Annotated[
+        str | None, typer.Option(help="Where the altitudes end if not listed; FL450 if not said.")
+    ] = None,
+    to_mach: Annotated[
+        float | None,
+        typer.Option(help="Where the Mach numbers end if not listed; 0.9 if not said."),
+    ] = None,
+    csv: Annotated[
+        str | None,
+        typer.Option(
+            "--csv",
+            metavar="FILE",
+            help="Write every rating, idle and share of thrust on a finer grid, for an engine of "
+            "kind tabulated.",
+        ),
+    ] = None,
+    json: JsonTarget = None,
+) -> None:
+    """Show an engine's thrust and fuel flow over altitude and Mach number."""
+    from engine import load_engine
+    from engine.envelope import default_levels, envelope
+    from mission.commands.grids import Reach
+    from mission.library import find
+    from mission.outputs.envelope_record import envelope_csv, envelope_record
+    from mission.outputs.envelope_screen import envelope_screen
+    from mission.outputs.files import check_target, write_text
+
+    check_json(json)
+    if csv is not None:
+        check_target(csv, "--csv", ".csv")
+    path = find(engine, "engine")
+    chosen = load_engine(path)
+    reach = Reach.of(chosen, day, to_altitude, to_mach, altitudes, machs)
+    name = _level(rating, (*chosen.ratings, *chosen.idles))
+    found = envelope(chosen, *reach.screen, reach.day, levels=(name,))
+    written = ""
+    if csv is not None:
+        _refuse_own_points(csv, path)
+        table = envelope(chosen, *reach.table, reach.day, levels=default_levels(chosen))
+        write_text(csv, envelope_csv(table), "--csv")
+        written = _written(table.is_answered, csv)
+    show(
+        lambda width: envelope_screen(found, written=written, width=width),
+        lambda: envelope_record(found),
+        json,
+    )
+
+
+def _rating(rating: str | None, *, has_thrust: bool) -> str:
+    """The rating asked for, or the one that bounds a thrust."""
+    from engine.interface import IDLES, RATINGS
+
+    if rating is None:
+        if not has_thrust:
+            raise InputRefused('give --thrust "9 kN" or --rating cruise, say', key="--rating")
+        return "maximum_continuous"
+    allowed = RATINGS if has_thrust else (*RATINGS, *IDLES, _UNLIMITED)
+    name = rating.replace("-", "_")
+    if name not in allowed:
+        beside = " with --thrust" if has_thrust else ""
+        raise InputRefused(f'"{rating}" is none{beside} of {", ".join(allowed)}', key="--rating")
+    return name
+
+
+def _level(rating: str | None, known: tuple[str, ...]) -> str:
+    """The rating or idle asked for, climb or else the first there is where none is."""
+    if rating is None:
+        return "climb" if "climb" in known else known[0]
+    name = rating.replace("-", "_")
+    if name not in known:
+        raise InputRefused(f'"{rating}" is none of {", ".join(known)}', key="--rating")
+    return name
+
+
+def _refuse_own_points(csv: str, path: Path) -> None:
+    """Keep the points that an engine is read from."""
+    import tomllib
+    from pathlib import Path
+
+    points = tomllib.loads(path.read_text(encoding="utf-8-sig")).get("points")
+    if points is not None and (path.parent / points).resolve() == Path(csv).resolve():
+        raise InputRefused(f'"{csv}" holds the points that {path.name} is read from', key="--csv")
+
+
+def _written(is_answered: NDArray[np.bool_], csv: str) -> str:
+    """What went to the file, and what could not."""
+    lost = int((~is_answered).sum())
+    left_out = (
+        f"; {lost:,} without an answer are left out, so that the grid has holes and no tabulated "
+        "engine can be made of it: narrow it"
+        if lost
+        else ""
+    )
+    return f"Written to {csv}: {is_answered.size - lost:,} points{left_out}."

@@ -1,0 +1,51 @@
+"""What a flight asks of an engine that is a table, which has no answer outside it."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.errors import InputRefused
+from engine.interface import Coverage, Engine, Outcome
+from engine.quantities import day_text
+from mission.mission_file import Mission
+from mission.results import Steps
+
+Array = NDArray[np.float64]
+
+
+def refuse_other_day(mission: Mission, engine: Engine) -> None:
+    """Refuse a mission on another day than the engine's table, before anything is flown."""
+    table, day = engine.coverage, mission.written.day
+    if table is not None and not table.is_day(day):
+        ours, theirs = day_text(day), day_text(table.temperature_deviation)
+        raise InputRefused(
+            f'= "{ours}", and the table of {engine.name} is of {theirs}; fly it on {theirs}, or '
+            f"write a table of {ours} with `longlegs envelope ENGINE --day {ours} --csv FILE`",
+            where=mission.where,
+            key="day",
+        )
+
+
+def outside(
+    table: Coverage | None, steps: Steps, outcome: NDArray[np.int64]
+) -> list[tuple[NDArray[np.bool_], str, Array, Array, str, str]]:
+    """Steps at which the engine has no answer for want of table: by quantity, with value, bound,
+    unit, and what to try.
+    """
+    if table is None:
+        return []
+    (low, high), (slow, fast) = table.pressure_altitude, table.mach
+    advice = (
+        f"stay inside the engine's table, pressure altitude {low:g} to {high:g} m and Mach "
+        f"{slow:g} to {fast:g}, or give it one that reaches further"
+    )
+    is_lost = outcome == Outcome.OUTSIDE_TABLE
+    return [
+        (is_lost & table.is_beyond(value, ends), f"{name} in the engine's table", value,
+         np.where(value > ends[1], ends[1], ends[0]), unit, advice)
+        for name, value, ends, unit in (
+            ("pressure altitude", steps.pressure_altitude, table.pressure_altitude, "m"),
+            ("Mach number", steps.mach, table.mach, ""),
+        )
+    ]  # fmt: skip
