@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -12,6 +13,7 @@ from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath
 from engine.cycles.reheating import Reheat, light
 from engine.cycles.situation import NOTHING_TAKEN, Situation, Sizing
 from engine.finished import SLACK, Finished, is_physical
+from engine.installation.pod import GivenPod, Pod
 from engine.interface import Engine, EngineState, Outcome, is_unanswered
 from engine.matching import Demand, Solution, Throttle, evaluate_at, solve
 from engine.parts.stream import Stream
@@ -23,11 +25,20 @@ _UNBOUNDED = np.full(len(LIMIT_NAMES), np.inf)
 
 @dataclass(frozen=True)
 class CycleEngine(Engine):
-    """A sized arrangement with its ratings and idles by name."""
+    """A sized arrangement with its ratings and idles by name, and what is known of its pod."""
 
     arrangement: Arrangement
     sizing: Sizing
     bounds: Ratings
+    given_pod: GivenPod = GivenPod()
+    greatest_mach: float = 0.85
+
+    @cached_property
+    def pod(self) -> Pod:
+        """Size, mass and skin drag, estimated where not given."""
+        from engine.size import pod_of  # which scales engines of this class
+
+        return pod_of(self, self.given_pod, self.greatest_mach)
 
     @property
     def ratings(self) -> tuple[str, ...]:

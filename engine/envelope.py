@@ -168,9 +168,10 @@ def _at_shares(
     """Levels between flight idle and the highest rating at each point, and from there up.
 
     A thrust is asked for under the lowest rating that gives it: what the aircraft takes off an
-    engine goes with its rating, and part power is what cruise is flown at.
+    engine goes with its rating, and part power is what cruise is flown at. Of equal ones it is
+    the one named last, ratings being named from take-off down.
     """
-    dry = [name for name in engine.ratings if name != REHEATED]
+    dry = [name for name in reversed(engine.ratings) if name != REHEATED]
     tops = np.stack([rows[name].net_thrust for name in dry])
     idle, most = rows[LOWEST].net_thrust, tops.max(axis=0)
     highest = rows[REHEATED].net_thrust if REHEATED in engine.ratings else most

@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
 from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath, shares_of
+from engine.cycles.installed import run
 from engine.cycles.situation import OffTakes, Situation, Sizing
 from engine.parts.inlet import take_in
 from engine.parts.stream import Stream
@@ -198,7 +199,7 @@ def evaluate_at(
     with np.errstate(all="ignore"):
         ahead, face = take_in(arrangement.gas, arrangement.inlet, flight)
         situation = Situation(face, flight, taken, sizing, is_lit=is_lit)
-        return ahead, situation, arrangement.evaluate(unknowns, situation)
+        return ahead, situation, run(arrangement, unknowns, situation)
 
 
 def _residuals_now(
@@ -244,7 +245,7 @@ def _residuals(problem: _Problem, trials: Array) -> Array:
     """Residuals (m, k, N) of k trials (n, k, N)."""
     sizing, situation = problem.sizing, problem.situation
     with np.errstate(all="ignore"):
-        path = problem.arrangement.evaluate(problem.unknowns(trials), situation)
+        path = run(problem.arrangement, problem.unknowns(trials), situation)
         # Flow squared is linear in a small pressure drop, so it, not flow, is what is matched.
         flows = [sizing.areas[name] / area for name, area in path.areas.items()]
         rows = [0.5 * (flow * np.abs(flow) - 1.0) for flow in flows]

@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from engine.cycles.flowpath import Arrangement, Flowpath
+from engine.cycles.installed import charge
 from engine.cycles.situation import Situation
 from engine.gas import Gas
 from engine.parts.afterburner import Afterburner, reheat
@@ -63,11 +64,12 @@ def with_reheat(
         "afterburner_temperature": lit.total_temperature,
         "afterburner_fuel_air_ratio": lit.fuel_air_ratio,
     }
-    return replace(
+    hot = replace(
         path,
-        stations={**path.stations, "6": dry, "7": lit},
+        stations={**path.stations, "7": lit},
         jets={**path.jets, "9": (lit, jet)},
         limits={**path.limits, **limits},
         fuel_flow=path.fuel_flow + fuel_flow,
         unburnt_fuel=path.unburnt_fuel + heat * (1.0 - np.asarray(afterburner.efficiency)),
     )
+    return charge(hot, arrangement.installation, situation)

@@ -13,6 +13,7 @@ from engine.atmosphere import FlightCondition
 from engine.cycles.situation import Situation, Sizing
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Jet, Nozzle
@@ -69,6 +70,7 @@ class Flowpath:
     spool_rises : specific work [J/kg] and inlet total temperature [K] that estimate each speed
     propeller : what a propeller does, if there is one
     installation_drag : spillage and afterbody drag charged to the engine [N]
+    misfits : by what inlet or nozzle do not fit what surrounds them, zero where they do
     """
 
     stations: Mapping[str, Stream]
@@ -86,6 +88,7 @@ class Flowpath:
     work_ratios: Mapping[str, Array] = field(default_factory=dict)
     propeller: PropellerWork | None = None
     installation_drag: Array | float = 0.0
+    misfits: Mapping[str, Array] = field(default_factory=dict)
 
     @property
     def gross_thrust(self) -> Array:
@@ -162,6 +165,11 @@ class Arrangement(Protocol):
     @property
     def exhaust_nozzle(self) -> Nozzle:
         """The nozzle behind the last turbine, and behind the afterburner where there is one."""
+        ...
+
+    @property
+    def installation(self) -> Installation | None:
+        """What surrounds it, where drag that goes with the throttle is charged to it."""
         ...
 
     def design_unknowns(self, face: Stream) -> Array:

@@ -20,6 +20,7 @@ from engine.cycles.low_spool import LowSpool, drive, run_front
 from engine.cycles.situation import Situation
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.mixer import Passage, at_mach, at_static_pressure, in_area, mix
@@ -63,6 +64,7 @@ class MixedTurbofan:
     high_pressure_compressor_pressure_ratio: float
     turbine_entry_temperature: float
     afterburner: Afterburner | None = None
+    installation: Installation | None = None
     unknown_names: tuple[str, ...] = (
         "fan_pressure_ratio",
         "bypass_ratio",
@@ -98,7 +100,9 @@ class MixedTurbofan:
         else:
             inside = in_area(gas, core, np.asarray(sizing.flows["mixer_core_area"]))
         around = at_static_pressure(gas, outer, inside.static_pressure)
-        return inside, around, mix(gas, inside, around)
+        # Backward flow, which no answer has, is mixed as if forward: the iteration comes through.
+        forward = replace(around, velocity=np.abs(around.velocity), area=np.abs(around.area))
+        return inside, around, mix(gas, inside, forward)
 
     def _jet(self, exhaust: Exhaust, parts: tuple[Passage, Passage], situation: Situation) -> Jet:
         """The jet of a mixer that leaves a share of the streams unmixed.

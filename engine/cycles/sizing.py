@@ -8,6 +8,7 @@ import numpy as np
 
 from engine.atmosphere import FlightCondition
 from engine.cycles.flowpath import Arrangement, Flowpath
+from engine.cycles.installed import run
 from engine.cycles.situation import NOTHING_TAKEN, OffTakes, Situation, Sizing
 from engine.errors import CycleCannotRun
 from engine.parts.inlet import take_in
@@ -35,29 +36,34 @@ def size(
     """
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     unknowns = arrangement.design_unknowns(face)
-    path = _run(arrangement, flight, taken, unknowns)
-    _refuse_impossible(path, flight)
+    # The shaft power is nothing that the first round's 1 kg/s could give; it comes with the size.
+    path = _run(arrangement, flight, replace(taken, shaft_power=np.zeros(())), unknowns)
     for _ in range(_MOST_ROUNDS):
-        # All is proportional to airflow but a given shaft power: repeat until that settles too.
+        _refuse_impossible(path, flight, taken)
         if airflow is not None:
             factor = airflow / float(path.stations["2"].mass_flow)
         else:
-            thrust = float(path.net_thrust(flight))
-            if not thrust > 0.0:
-                raise CycleCannotRun(
-                    f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
-                    f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); raise "
-                    "turbine_entry_temperature or lower the pressure ratios"
-                )
             assert net_thrust is not None
-            factor = net_thrust / thrust
+            factor = net_thrust / _thrust(path, flight)
         unknowns = unknowns.copy()
         unknowns[-1] += np.log(factor)
         path = _run(arrangement, flight, taken, unknowns)
         if abs(factor - 1.0) < 1e-13:
             break
-    _refuse_impossible(path, flight)
+    _refuse_impossible(path, flight, taken)
     return _sizing(arrangement, flight, unknowns, path), path
+
+
+def _thrust(path: Flowpath, flight: FlightCondition) -> float:
+    """Net thrust [N] of a design point, which must be positive."""
+    thrust = float(path.net_thrust(flight))
+    if not thrust > 0.0:
+        raise CycleCannotRun(
+            f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
+            f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); raise "
+            "turbine_entry_temperature or lower the pressure ratios"
+        )
+    return thrust
 
 
 def _run(
@@ -65,7 +71,7 @@ def _run(
 ) -> Flowpath:
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     with np.errstate(all="ignore"):
-        return arrangement.evaluate(unknowns, Situation(face, flight, taken, None))
+        return run(arrangement, unknowns, Situation(face, flight, taken, None))
 
 
 def _sizing(

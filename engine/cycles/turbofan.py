@@ -18,6 +18,7 @@ from engine.cycles.low_spool import LowSpool, drive, run_front
 from engine.cycles.situation import Situation
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
 from engine.parts.stream import Array, Stream, mix_in
@@ -39,6 +40,7 @@ class Turbofan:
     high_pressure_compressor_pressure_ratio: float
     turbine_entry_temperature: float
     afterburner: None = None
+    installation: Installation | None = None
     unknown_names: tuple[str, ...] = (
         "fan_pressure_ratio",
         "bypass_ratio",

@@ -16,6 +16,7 @@ from engine.cycles.flowpath import Flowpath, core_limits, corrected_flow_factor
 from engine.cycles.situation import Situation
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
@@ -34,6 +35,7 @@ class Turbojet:
     pressure_ratio: float
     turbine_entry_temperature: float
     afterburner: Afterburner | None = None
+    installation: Installation | None = None
     unknown_names: tuple[str, ...] = (
         "compressor_pressure_ratio",
         "turbine_entry_temperature_ratio",

@@ -19,6 +19,7 @@ from engine.cycles.flowpath import Flowpath, PropellerWork, core_limits, correct
 from engine.cycles.situation import Situation
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts import propeller as blades
 from engine.parts.efficiency import Efficiency
 from engine.parts.inlet import Inlet
@@ -64,6 +65,7 @@ class Turboprop:
     turbine_entry_temperature: float
     power_turbine_share: float
     afterburner: None = None
+    installation: Installation | None = None
     unknown_names: tuple[str, ...] = (
         "compressor_pressure_ratio",
         "turbine_entry_temperature_ratio",

@@ -17,6 +17,7 @@ from engine.cycles.low_spool import LowSpool, drive, run_front
 from engine.cycles.situation import Situation
 from engine.fuels import Fuel
 from engine.gas import Gas
+from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
@@ -37,6 +38,7 @@ class TwoSpoolTurbojet:
     high_pressure_compressor_pressure_ratio: float
     turbine_entry_temperature: float
     afterburner: Afterburner | None = None
+    installation: Installation | None = None
     unknown_names: tuple[str, ...] = (
         "low_pressure_compressor_pressure_ratio",
         "high_pressure_compressor_pressure_ratio",

@@ -49,6 +49,22 @@ class AfterbodyDrag:
     excess_exit_area: Array
 
 
+@dataclass(frozen=True)
+class Installation:
+    """What surrounds an engine; each drag is charged where its area is known.
+
+    Attributes
+    ----------
+    capture_area : [m2] of the inlet, for spillage above Mach 1
+    afterbody_area : [m2] greatest cross-section of the body that the nozzle ends
+    afterbody_coefficient : drag over dynamic pressure and that area less the nozzle's exit
+    """
+
+    capture_area: float | None = None
+    afterbody_area: float | None = None
+    afterbody_coefficient: float = 0.0
+
+
 def capture_area(flight: FlightCondition, air_flow: ArrayLike) -> Array:
     """Area [m2] of free stream that holds an air flow [kg/s]; the least one for an inlet there.
 

@@ -19,6 +19,8 @@ from engine.cycles.turboprop import PowerTrain, Turboprop
 from engine.cycles.two_spool_turbojet import TwoSpoolTurbojet
 from engine.errors import InputRefused
 from engine.gas import Gas, RealGas, SectionalGas
+from engine.installation.drag import Installation
+from engine.installation.inlets import inlet_type
 from engine.interface import OPTIONAL_RATINGS, RATINGS
 from engine.matching import Throttle
 from engine.options.input_model import (
@@ -138,8 +140,27 @@ def _common(written: CycleEngineFile) -> dict[str, Any]:
     return {
         "gas": _gas(written),
         "fuel": written.fuel.to_fuel(),
-        "inlet": Inlet(**written.inlet.model_dump()),
+        "inlet": _inlet(written),
+        "installation": _installation(written),
     }
+
+
+def _inlet(written: CycleEngineFile) -> Inlet:
+    table, recovery = written.inlet, written.inlet.total_pressure_recovery
+    if table.type is not None:
+        recovery = inlet_type(table.type).total_pressure_recovery
+    return Inlet(
+        1.0 if recovery is None else recovery,
+        table.has_standard_ram_recovery,
+        table.isentropic_efficiency,
+    )
+
+
+def _installation(written: CycleEngineFile) -> Installation | None:
+    table = written.installation
+    if table.capture_area is None and table.afterbody_area is None:
+        return None
+    return Installation(**table.model_dump())
 
 
 def _nozzle(table: NozzleTable) -> Nozzle:

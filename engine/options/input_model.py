@@ -16,12 +16,15 @@ from engine.options.tables import (
     EfficiencyValue,
     IdlesTable,
     InletTable,
+    InstallationTable,
     MixerTable,
     NozzleTable,
     OffTakesTable,
+    PodTable,
     PressureRatio,
     PropellerTable,
     RatingsTable,
+    ScaleTable,
     SectionalGasTable,
 )
 from engine.quantities import Day, Force, SpecificFuelConsumption
@@ -36,6 +39,9 @@ class CycleEngineFile(Table):
     fuel: FuelTable = FuelTable()
     sectional_gas: SectionalGasTable | None = None
     inlet: InletTable = InletTable()
+    installation: InstallationTable = InstallationTable()
+    pod: PodTable = PodTable()
+    scale: ScaleTable | None = None
     combustor: CombustorTable = CombustorTable()
     cooling: CoolingTable = CoolingTable()
     off_takes: OffTakesTable = OffTakesTable()
@@ -195,7 +201,7 @@ class TabulatedFile(Table):
     name: str
     note: str = ""
     points: str
-    day: Day = 0.0
+    day: Day  # of the table: nothing in it would show a wrong one
     fuel: FuelTable = FuelTable()
 
 

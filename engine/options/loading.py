@@ -7,9 +7,10 @@ from typing import Any
 
 from engine.atmosphere import flight_condition
 from engine.cycle_engine import CycleEngine
-from engine.cycles.sizing import size
 from engine.cycles.situation import OffTakes
+from engine.cycles.sizing import size
 from engine.errors import InputRefused, OutOfRange
+from engine.installation.pod import GivenPod
 from engine.interface import RATINGS, Engine
 from engine.options.assembly import arrange, fit_afterburner, ratings_of
 from engine.options.constant_consumption import ConstantConsumptionEngine
@@ -19,8 +20,10 @@ from engine.options.input_model import (
     EngineFile,
     TabulatedFile,
 )
+from engine.options.tables import ScaleTable
 from engine.options.tabulated import load_table
 from engine.reading import check, defaults_used, read_toml
+from engine.size import scaled, scaled_to
 
 
 def load_engine(path: str | Path) -> Engine:
@@ -79,14 +82,27 @@ def _cycle_engine(written: AnyCycleFile, where: str, assumed: tuple[str, ...]) -
     except InputRefused as refusal:
         key = refusal.key or "design_point"
         raise type(refusal)(refusal.what, where=where, key=key) from None
-    return CycleEngine(
+    given = written.pod.model_dump()
+    engine = CycleEngine(
         name=written.name,
         arrangement=arrangement,
         sizing=sizing,
         bounds=ratings_of(written),
+        greatest_mach=given.pop("greatest_mach"),
+        given_pod=GivenPod(**given),
         fuel=arrangement.fuel,
         assumed=assumed,
     )
+    return engine if written.scale is None else _scaled(engine, written.scale, where)
+
+
+def _scaled(engine: CycleEngine, table: ScaleTable, where: str) -> CycleEngine:
+    if table.factor is not None:
+        return scaled(engine, table.factor)
+    try:
+        return scaled_to(engine, static_thrust=table.static_thrust, airflow=table.airflow)
+    except InputRefused as refusal:
+        raise InputRefused(refusal.what, where=where, key=refusal.key) from None
 
 
 def _assumed(written: AnyCycleFile | ConstantConsumptionFile | TabulatedFile) -> tuple[str, ...]:

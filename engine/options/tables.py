@@ -6,11 +6,14 @@ from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
 
+from engine.installation.drag import AFTERBODY_COEFFICIENT
 from engine.quantities import (
     Altitude,
+    Area,
     Day,
     Force,
     Length,
+    Mass,
     MassFlow,
     Power,
     Pressure,
@@ -72,9 +75,56 @@ class SectionalGasTable(Table):
 
 
 class InletTable(Table):
-    total_pressure_recovery: Annotated[float, Field(gt=0.3, le=1.0)] = 1.0
+    """Subsonic recovery as a number or by the type of inlet."""
+
+    type: Literal["podded", "straight duct", "S-duct"] | None = None
+    total_pressure_recovery: Annotated[float, Field(gt=0.3, le=1.0)] | None = None
     has_standard_ram_recovery: bool = False
     isentropic_efficiency: EfficiencyValue | None = None
+
+    @model_validator(mode="after")
+    def _one_recovery(self) -> InletTable:
+        ways = (self.type, self.total_pressure_recovery, self.isentropic_efficiency)
+        if sum(way is not None for way in ways) > 1:
+            raise ValueError("give one of type, total_pressure_recovery or isentropic_efficiency")
+        return self
+
+
+class InstallationTable(Table):
+    """Areas of what surrounds the engine; a drag is charged where its area is given."""
+
+    capture_area: Annotated[Area, Field(gt=0.0)] | None = None
+    afterbody_area: Annotated[Area, Field(gt=0.0)] | None = None
+    afterbody_coefficient: Annotated[float, Field(ge=0.0, le=1.0)] = AFTERBODY_COEFFICIENT
+
+
+class PodTable(Table):
+    """What is known of the pod; the rest is estimated, for the Mach number it is built for."""
+
+    greatest_mach: Annotated[float, Field(gt=0.0, le=5.0)] = 0.85
+    fan_diameter: Annotated[Length, Field(gt=0.0)] | None = None
+    length: Annotated[Length, Field(gt=0.0)] | None = None
+    maximum_diameter: Annotated[Length, Field(gt=0.0)] | None = None
+    dry_mass: Annotated[Mass, Field(gt=0.0)] | None = None
+    installed_mass: Annotated[Mass, Field(gt=0.0)] | None = None
+    wetted_area: Annotated[Area, Field(gt=0.0)] | None = None
+    drag_area: Annotated[Area, Field(gt=0.0)] | None = None
+
+
+class ScaleTable(Table):
+    """The whole engine larger or smaller; ``static_thrust`` is that of take-off on a standard day
+    at sea level, ``airflow`` that of the design point.
+    """
+
+    factor: Ratio | None = None
+    static_thrust: Annotated[Force, Field(gt=0.0)] | None = None
+    airflow: Annotated[MassFlow, Field(gt=0.0)] | None = None
+
+    @model_validator(mode="after")
+    def _one_way(self) -> ScaleTable:
+        if len(self.model_fields_set) != 1:
+            raise ValueError("give one of factor, static_thrust or airflow")
+        return self
 
 
 class CombustorTable(Table):

@@ -119,6 +119,9 @@ def in_area(gas: Gas, stream: Stream, area: Array) -> Passage:
 def mix(gas: Gas, first: Passage, second: Passage) -> Passage:
     """Both streams as one, in the sum of their areas, subsonic and without friction.
 
+    Each area is what the stream really has: the fixed one away from the design point, for the
+    area that an iterate needs may be endless.
+
     ``V + R T / V`` is the impulse per mass flow; with ``h(T) + V^2 / 2`` given too, constant heat
     capacity leaves a quadratic for V, repeated on the tangent of h at the last T. Where the impulse
     is too small for the flow (a Mach number of 1 in the answer), momentum is not conserved: only an

@@ -50,6 +50,7 @@ class Jet:
     throat_area : [m2] that the stream needs; negative where it would have to flow backwards
     throat_static_temperature, throat_static_pressure, throat_velocity : [K], [Pa], [m/s]
     exit_static_temperature, exit_static_pressure, exit_velocity : [K], [Pa], [m/s]
+    exit_area : [m2]
     choking : total-to-ambient pressure ratio over the critical one, less one; choked above 0
     """
 
@@ -61,6 +62,7 @@ class Jet:
     exit_static_temperature: Array
     exit_static_pressure: Array
     exit_velocity: Array
+    exit_area: Array
     choking: Array
 
 
@@ -133,5 +135,6 @@ def discharge(gas: Gas, nozzle: Nozzle, stream: Stream, ambient_pressure: Array)
         exit_static_temperature=exit_temperature,
         exit_static_pressure=exit_pressure,
         exit_velocity=exit_velocity,
+        exit_area=exit_area,
         choking=choking,
     )

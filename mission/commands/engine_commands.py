@@ -23,6 +23,8 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import NDArray
 
+    from engine.interface import Engine
+
 _UNLIMITED = "windmilling"  # asked for like a rating, though it is none
 
 
@@ -38,7 +40,8 @@ def stations_command(
         str | None,
         typer.Option(
             help="take_off, maximum_continuous, climb, cruise, flight_idle, ground_idle or "
-            "windmilling; with a thrust the ceiling, by default maximum_continuous."
+            "windmilling, or another that the engine has; with a thrust the ceiling, by default "
+            "maximum_continuous."
         ),
     ] = None,
     day: DayName = "ISA",
@@ -63,8 +66,8 @@ def stations_command(
         read("--day", parse_day, day),
     )
     wanted = None if thrust is None else read("--thrust", parse_quantity, thrust, "force")
-    ceiling = _rating(rating, has_thrust=wanted is not None)
     chosen = load_engine(find(engine, "engine"))
+    ceiling = _rating(rating, chosen, has_thrust=wanted is not None)
     if ceiling == _UNLIMITED:
         state = chosen.windmilling(condition)
     else:
@@ -130,8 +133,7 @@ def envelope_command(
     path = find(engine, "engine")
     chosen = load_engine(path)
     reach = Reach.of(chosen, day, to_altitude, to_mach, altitudes, machs)
-    name = _level(rating, (*chosen.ratings, *chosen.idles))
-    found = envelope(chosen, *reach.screen, reach.day, levels=(name,))
+    found = envelope(chosen, *reach.screen, reach.day, levels=(_level(rating, chosen),))
     written = ""
     if csv is not None:
         _refuse_own_points(csv, path)
@@ -145,30 +147,30 @@ def envelope_command(
     )
 
 
-def _rating(rating: str | None, *, has_thrust: bool) -> str:
+def _rating(rating: str | None, engine: Engine, *, has_thrust: bool) -> str:
     """The rating asked for, or the one that bounds a thrust."""
-    from engine.interface import IDLES, RATINGS
-
     if rating is None:
         if not has_thrust:
             raise InputRefused('give --thrust "9 kN" or --rating cruise, say', key="--rating")
         return "maximum_continuous"
-    allowed = RATINGS if has_thrust else (*RATINGS, *IDLES, _UNLIMITED)
-    name = rating.replace("-", "_")
-    if name not in allowed:
-        beside = " with --thrust" if has_thrust else ""
-        raise InputRefused(f'"{rating}" is none{beside} of {", ".join(allowed)}', key="--rating")
-    return name
+    if has_thrust:
+        return _one_of(rating, engine.ratings, " with --thrust")
+    return _one_of(rating, (*engine.ratings, *engine.idles, _UNLIMITED))
 
 
-def _level(rating: str | None, known: tuple[str, ...]) -> str:
-    """The rating or idle asked for, climb or else the first there is where none is."""
-    if rating is None:
-        return "climb" if "climb" in known else known[0]
+def _one_of(rating: str, known: tuple[str, ...], beside: str = "") -> str:
+    """A rating by name, dashes read as underscores."""
     name = rating.replace("-", "_")
     if name not in known:
-        raise InputRefused(f'"{rating}" is none of {", ".join(known)}', key="--rating")
+        raise InputRefused(f'"{rating}" is none{beside} of {", ".join(known)}', key="--rating")
     return name
+
+
+def _level(rating: str | None, engine: Engine) -> str:
+    """The rating or idle asked for, climb or else the first there is where none is."""
+    if rating is not None:
+        return _one_of(rating, (*engine.ratings, *engine.idles))
+    return "climb" if "climb" in engine.ratings else (*engine.ratings, *engine.idles)[0]
 
 
 def _refuse_own_points(csv: str, path: Path) -> None:

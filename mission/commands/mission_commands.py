@@ -13,6 +13,7 @@ from mission.commands.shared import (
     MissionName,
     UnitsName,
     check_json,
+    engine_options,
     mission_and_aircraft,
     named,
     setting,
@@ -76,7 +77,7 @@ def compare_command(
     engine: Annotated[
         list[str] | None,
         typer.Option(
-            help="Engine option, once for each; all built-in engines where none is given."
+            help="Engine option, once for each, in place of the mission's engine_options."
         ),
     ] = None,
     aircraft: AircraftName = None,
@@ -86,13 +87,11 @@ def compare_command(
     """Rank engine options by block fuel on one mission."""
     from engine import load_engine
     from mission.comparison import compare
-    from mission.library import find, names_of
     from mission.outputs.records import comparison_record
 
     check_json(json)
     written, plane = mission_and_aircraft(mission, aircraft)
-    options = list(dict.fromkeys(engine or names_of("engine")))
-    engines = {name: load_engine(find(name, "engine", key="--engine")) for name in options}
+    engines = {name: load_engine(path) for name, path in engine_options(engine, written).items()}
     comparison = compare(written, plane, engines)
 
     def screen(width: int) -> RenderableType:

@@ -126,3 +126,25 @@ def print_screen(screen: Callable[[int], RenderableType]) -> None:
     has_styles = sys.stdout.isatty() and not os.environ.get("NO_COLOR")
     text = as_text(screen(width), width, with_styles=has_styles)
     typer.echo(plain_characters(text, sys.stdout.encoding or "utf-8"), nl=False)
+
+
+def engine_options(given: list[str] | None, mission: Mission) -> dict[str, Path]:
+    """Engine files by name: those of options, or those that the mission lists."""
+    from pathlib import Path
+
+    from mission.library import find
+
+    if given:
+        return {name: find(name, "engine", key="--engine") for name in dict.fromkeys(given)}
+    names = dict.fromkeys(mission.written.engine_options or [mission.written.engine])
+    if not any(names):
+        raise InputRefused(
+            'is missing; add engine_options = ["bypass_5", "bypass_10"] say, or give --engine',
+            where=mission.where,
+            key="engine_options",
+        )
+    folder = Path(mission.where).parent
+    return {
+        name: find(name, "engine", folder=folder, where=mission.where, key="engine_options")
+        for name in names
+    }

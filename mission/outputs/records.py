@@ -257,6 +257,7 @@ def energy_terms(account: Any) -> dict[str, float]:
         terms[f"jet_kinetic_{name}_w"] = float(power)
     for name, power in account.jet_heat.items():
         terms[f"jet_heat_{name}_w"] = float(power)
-    for name in ("intake_heat", "bleed", "shaft", "mechanical_loss", "unburnt_fuel"):
+    others = ("intake_heat", "bleed", "shaft", "mechanical_loss", "unburnt_fuel")
+    for name in (*others, "propeller_loss", "installation"):
         terms[f"{name}_w"] = float(getattr(account, name))
     return terms

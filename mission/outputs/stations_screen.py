@@ -42,12 +42,15 @@ _HOT = {
     "44": "high-pressure turbine exit",
     "45": "low-pressure turbine entry",
     "5": "last turbine's exit",
+    "6": "core side of the mixer",
+    "64": "mixer exit",
     "7": "core nozzle entry",
     "8": "core nozzle throat",
     "9": "core nozzle exit",
 }
 _BYPASS = {
     "13": "fan exit, bypass side",
+    "16": "bypass side of the mixer",
     "17": "bypass nozzle entry",
     "18": "bypass nozzle throat",
     "19": "bypass nozzle exit",
@@ -290,6 +293,12 @@ def _energy(account: EnergyAccount) -> list[RenderableType]:
         ("mechanical and gearbox loss", float(account.mechanical_loss)),
         ("unburnt fuel", float(account.unburnt_fuel)),
     ]  # fmt: skip
+    for name, power in (
+        ("propeller: blade drag and what the slipstream keeps", float(account.propeller_loss)),
+        ("spillage and afterbody drag", float(account.installation)),
+    ):
+        if power != 0.0:
+            terms.append((name, power))
     table = ruled_table([words("term"), Column("kW"), Column("of fuel\n%")])
     for name, power in terms:
         share = number(100.0 * power / fuel, 2) if fuel > 0.0 else ABSENT

@@ -10,7 +10,7 @@ from mission.march.span import Span, SpeedRule
 from mission.segments.here import Here
 from mission.segments.schedule import Scheduled, lay_schedule, schedule_start
 
-RatingName = Literal["take_off", "maximum_continuous", "climb", "cruise"]
+RatingName = Literal["take_off", "maximum_continuous", "climb", "cruise", "maximum_afterburning"]
 
 
 class Climb(Scheduled):

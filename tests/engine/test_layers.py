@@ -22,7 +22,10 @@ FLOORS = [
     {"cycles"},
     {"energy", "matching"},
     {"interface"},
-    {"cycle_engine", "envelope"},
+    {"ratings"},
+    {"finished"},
+    {"cycle_engine"},
+    {"envelope", "size"},
     {"options"},
 ]
 ROOF = {"mission/outputs", "mission/commands", "mission/command_line.py"}

@@ -13,7 +13,7 @@ propellers = {
     "power": st.floats(1e3, 8e6),
     "speed": st.floats(0.0, 230.0),
     "density": st.floats(0.2, 1.3),
-    "mach": st.floats(0.0, 0.85),
+    "mach": st.floats(0.6, 0.85),
 }
 PROPELLER = Propeller(diameter=3.9, profile_factor=0.9, solidity=0.12)
 

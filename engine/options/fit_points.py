@@ -1,0 +1,229 @@
+"""Reading the points that an engine is to meet: thrust and fuel flow, one point a line."""
+
+from __future__ import annotations
+
+import difflib
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+from pathlib import Path
+
+import numpy as np
+from numpy.typing import NDArray
+
+from engine.atmosphere import (
+    HIGHEST_PRESSURE_ALTITUDE,
+    LARGEST_TEMPERATURE_DEVIATION,
+    LOWEST_PRESSURE_ALTITUDE,
+)
+from engine.envelope import COLUMNS
+from engine.errors import InputRefused
+from engine.interface import IDLES, OPTIONAL_RATINGS, RATINGS
+from engine.quantities import parse_day
+
+Array = NDArray[np.float64]
+DAY_COLUMN = "temperature_deviation_k"
+DEMAND = ""  # the rating of a point whose thrust is asked for, not told
+_ALTITUDE, _MACH, _RATING, _THRUST, _FUEL = COLUMNS
+_WORDS = (*RATINGS, *OPTIONAL_RATINGS, *IDLES)
+_HIGHEST_MACH, _HIGHEST_SHARE = 5.0, 2.0
+_LARGEST_FILE = 20_000_000  # bytes; as for the points of a table
+_DAY_REMARK = "# day:"  # how the points that `longlegs envelope` writes tell their day
+
+
+@dataclass(frozen=True)
+class FitPoints:
+    """The points of a file, N of them.
+
+    Attributes
+    ----------
+    where : the file
+    line : (N,) of the file
+    pressure_altitude, mach, temperature_deviation : (N,) [m], [-], [K]
+    rating : (N,) names of ratings and idles, or :data:`DEMAND`
+    net_thrust : (N,) [N]: what a rating or idle gives, NaN where the point does not tell; where
+        the rating is :data:`DEMAND` what is asked for
+    fuel_flow : (N,) [kg/s], NaN where the point does not tell
+    """
+
+    where: str
+    line: NDArray[np.int64]
+    pressure_altitude: Array
+    mach: Array
+    temperature_deviation: Array
+    rating: NDArray[np.str_]
+    net_thrust: Array
+    fuel_flow: Array
+
+    @property
+    def is_demand(self) -> NDArray[np.bool_]:
+        """Where a thrust is asked for, and only fuel flow is a datum."""
+        return np.asarray(self.rating == DEMAND)
+
+    @property
+    def has_thrust(self) -> NDArray[np.bool_]:
+        """Where thrust is a datum."""
+        return ~self.is_demand & np.isfinite(self.net_thrust)
+
+    @property
+    def has_fuel(self) -> NDArray[np.bool_]:
+        """Where fuel flow is a datum."""
+        return np.isfinite(self.fuel_flow)
+
+    @property
+    def data_count(self) -> int:
+        """How many numbers the engine is to meet."""
+        return int(self.has_thrust.sum() + self.has_fuel.sum())
+
+
+def read_fit_points(path: Path) -> FitPoints:
+    """The points of a CSV file; its header names the columns, in any order.
+
+    The columns are those of ``longlegs envelope --csv`` and, if the day is not standard,
+    ``temperature_deviation_k``. A rating that is a number, a share of thrust there, is a point
+    whose thrust is asked for, like one whose rating is empty.
+
+    Raises :class:`InputRefused` naming file, line, column, value and what is allowed.
+    """
+    try:
+        return _points(_text(path), str(path))
+    except InputRefused as refusal:
+        raise InputRefused(refusal.what, where=str(path), key=refusal.key) from None
+
+
+def _text(path: Path) -> str:
+    try:
+        if path.is_dir():
+            raise InputRefused("is a folder, not a file of points")
+        if (size := path.stat().st_size) > _LARGEST_FILE:
+            raise InputRefused(f"is {size / 1e6:.0f} MB; a file of points has at most 20 MB")
+        return path.read_bytes().decode("utf-8-sig")
+    except FileNotFoundError:
+        raise InputRefused("there is no such file") from None
+    except UnicodeDecodeError:
+        raise InputRefused("is not a text file in UTF-8") from None
+    except OSError as error:
+        raise InputRefused(f"cannot be read: {error.strerror}") from None
+
+
+def _points(text: str, where: str) -> FitPoints:
+    lines = _lines(text)
+    line, header = next(lines, (1, []))
+    _check_header(header, line)
+    if DAY_COLUMN not in header:
+        _refuse_unsaid_day(text)
+    rows = []
+    for line, cells in lines:
+        try:
+            rows.append((line, *_row(header, cells)))
+        except ValueError as error:
+            raise InputRefused(str(error), key=f"line {line}") from None
+    if not rows:
+        raise InputRefused("there are no points below the header; add one a line")
+    line_numbers, altitude, mach, day, rating, thrust, fuel = zip(*rows, strict=True)
+    return FitPoints(
+        where,
+        np.array(line_numbers),
+        *(np.array(column, dtype=float) for column in (altitude, mach, day)),
+        np.array(rating),
+        np.array(thrust, dtype=float),
+        np.array(fuel, dtype=float),
+    )
+
+
+def _lines(text: str) -> Iterator[tuple[int, list[str]]]:
+    """Cells by line number; comments and blank lines left out."""
+    for number, line in enumerate(text.splitlines(), start=1):
+        if line.strip() and not line.lstrip().startswith("#"):
+            yield number, [cell.strip() for cell in line.split(",")]
+
+
+def _check_header(header: list[str], line: int) -> None:
+    allowed = (*COLUMNS, DAY_COLUMN)
+    layout = f"the header is {','.join(COLUMNS)} and, where it is needed, {DAY_COLUMN}"
+    for name in header:
+        if name not in allowed:
+            near = difflib.get_close_matches(name, allowed, n=1)
+            hint = f"; did you mean {near[0]}?" if near else ";"
+            raise InputRefused(f"'{name}' is no column{hint} {layout}", key=f"line {line}")
+        if header.count(name) > 1:
+            raise InputRefused(f"{name} stands there twice; {layout}", key=f"line {line}")
+    for name in COLUMNS:
+        if name not in header:
+            raise InputRefused(f"there is no column {name}; {layout}", key=f"line {line}")
+
+
+def _refuse_unsaid_day(text: str) -> None:
+    """A table written for a day that is not standard says so in a comment alone."""
+    for number, line in enumerate(text.splitlines(), start=1):
+        if line.lower().startswith(_DAY_REMARK):
+            try:
+                deviation = parse_day(line[len(_DAY_REMARK) :])
+            except ValueError:
+                continue
+            if deviation:
+                raise InputRefused(
+                    f"the points are of a day {deviation:+g} K from standard: say so in a column "
+                    f"{DAY_COLUMN}, {deviation:g} in every row; without it they would be taken as "
+                    "ISA",
+                    key=f"line {number}",
+                )
+
+
+def _row(
+    header: list[str], cells: list[str]
+) -> tuple[float, float, float, str, float | None, float | None]:
+    """One point; ValueError where it is none."""
+    if len(cells) != len(header):
+        raise ValueError(f"{len(cells)} values stand where the header names {len(header)}")
+    given = dict(zip(header, cells, strict=True))
+    altitude = _number(given, _ALTITUDE, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
+    mach = _number(given, _MACH, 0.0, _HIGHEST_MACH)
+    most = LARGEST_TEMPERATURE_DEVIATION
+    day = _number(given, DAY_COLUMN, -most, most) if given.get(DAY_COLUMN) else 0.0
+    rating = _rating(given)
+    thrust = _number(given, _THRUST, -math.inf, math.inf) if given[_THRUST] else None
+    fuel = _number(given, _FUEL, -math.inf, math.inf) if given[_FUEL] else None
+    if fuel is not None and not fuel > 0.0:
+        raise ValueError(f"{_FUEL} = {fuel:g}; a lit engine burns fuel: it is above 0")
+    if rating == DEMAND and (thrust is None or fuel is None):
+        missing = _THRUST if thrust is None else _FUEL
+        raise ValueError(
+            f"{missing} is empty; where no rating is named, {_THRUST} is what is asked for and "
+            f"{_FUEL} what it takes: give both, or name a rating of {', '.join(_WORDS)}"
+        )
+    if thrust is None and fuel is None:
+        raise ValueError(
+            f"{_THRUST} and {_FUEL} are both empty; give one at least, or take the line out"
+        )
+    return altitude, mach, day, rating, thrust, fuel
+
+
+def _number(given: dict[str, str], name: str, low: float, high: float) -> float:
+    text = given[name]
+    try:
+        value = float(text)
+    except ValueError:
+        raise ValueError(f"{name} = '{text}' is no number; write it bare, 1234.5 say") from None
+    if not math.isfinite(value):
+        raise ValueError(f"{name} = {text} is no finite number")
+    if not low <= value <= high:
+        raise ValueError(f"{name} = {value:g} is outside {low:g} to {high:g}")
+    return value
+
+
+def _rating(given: dict[str, str]) -> str:
+    """A rating or idle by name; a share of thrust is a thrust asked for."""
+    text = given[_RATING]
+    name = text.replace("-", "_")
+    if name in (DEMAND, *_WORDS):
+        return name
+    if name[:1].isdigit() or name[:1] == ".":
+        _number(given, _RATING, 0.0, _HIGHEST_SHARE)
+        return DEMAND
+    near = difflib.get_close_matches(name, _WORDS, n=1)
+    hint = f"; did you mean {near[0]}?" if near else ""
+    raise ValueError(
+        f"{_RATING} = '{text}' is none of {', '.join(_WORDS)}{hint} Leave it empty where the "
+        "thrust is asked for"
+    )
