@@ -13,6 +13,7 @@ from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath
 from engine.cycles.reheating import Reheat, light
 from engine.cycles.situation import NOTHING_TAKEN, Situation, Sizing
 from engine.finished import SLACK, Finished, is_physical
+from engine.gas import DISSOCIATION_FELT_ABOVE, RealGas
 from engine.installation.pod import GivenPod, Pod
 from engine.interface import Engine, EngineState, Outcome, is_unanswered
 from engine.matching import Demand, Solution, Throttle, evaluate_at, solve
@@ -32,6 +33,18 @@ class CycleEngine(Engine):
     bounds: Ratings
     given_pod: GivenPod = GivenPod()
     greatest_mach: float = 0.85
+
+    @property
+    def doubts(self) -> dict[str, str]:
+        """Ratings so hot that dissociation, which the gas model leaves out, is felt."""
+        if not isinstance(self.arrangement.gas, RealGas):
+            return {}
+        return {
+            name: f"dissociation, left out, lowers a temperature by more than 1 % above "
+            f"{DISSOCIATION_FELT_ABOVE:.0f} K, and {name} allows {rating.hottest:.0f} K"
+            for name, rating in self.bounds.items()
+            if rating.hottest > DISSOCIATION_FELT_ABOVE
+        }
 
     @cached_property
     def pod(self) -> Pod:

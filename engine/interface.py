@@ -17,6 +17,7 @@ from engine.cycles.flowpath import Flowpath
 from engine.energy import EnergyAccount, energy_account
 from engine.fuels import KEROSENE, Fuel
 from engine.gas import Gas
+from engine.installation.pod import Pod
 from engine.parts.stream import Stream
 
 if TYPE_CHECKING:
@@ -256,6 +257,16 @@ class Engine(ABC):
     name: str
     assumed: tuple[str, ...] = field(default=(), kw_only=True)
     fuel: Fuel = field(default=KEROSENE, kw_only=True)
+
+    @property
+    def pod(self) -> Pod | None:
+        """Size, mass and skin drag of the engine in its nacelle; None where nothing is known."""
+        return None
+
+    @property
+    def doubts(self) -> Mapping[str, str]:
+        """What to keep in mind of a rating's answers, by rating."""
+        return {}
 
     @property
     def ratings(self) -> tuple[str, ...]:

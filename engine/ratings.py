@@ -56,6 +56,12 @@ class Rating:
         is_ceiling = self.throttle == Throttle.CEILING
         return is_ceiling and bool(np.isfinite(self.bounds[AFTERBURNER_TEMPERATURE]))
 
+    @property
+    def hottest(self) -> float:
+        """Highest total temperature [K] that its ceilings name; 0 where none does."""
+        named = self.bounds[[_TURBINE_ENTRY, AFTERBURNER_TEMPERATURE]]
+        return float(np.max(named[np.isfinite(named)], initial=0.0))
+
     def dry_bounds(self, flight: FlightCondition) -> Array:
         """Bounds on the gas generator at N flight conditions, (L, N)."""
         bounds = np.repeat(self.bounds[:, None], flight.mach.size, axis=1)
@@ -179,5 +185,6 @@ def reheat_bounds(ratings: Ratings, names: NDArray[np.str_], bounds: Array) -> A
     bounds = bounds.copy()
     for name in np.unique(names):
         here = np.flatnonzero(names == name)
-        bounds[np.ix_(REHEAT_ROWS, here)] = ratings[str(name)].bounds[REHEAT_ROWS, None]
+        for row in REHEAT_ROWS:
+            bounds[row, here] = ratings[str(name)].bounds[row]
     return bounds

@@ -86,14 +86,7 @@ def scaled(engine: CycleEngine, factor: float) -> CycleEngine:
         arrangement = replace(arrangement, train=train)
     around = arrangement.installation
     if around is not None:
-        grown = {
-            name: None if value is None else value * factor
-            for name, value in (
-                ("capture_area", around.capture_area),
-                ("afterbody_area", around.afterbody_area),
-            )
-        }
-        arrangement = replace(arrangement, installation=replace(around, **grown))  # type: ignore[type-var]
+        arrangement = replace(arrangement, installation=around.scaled(factor))
     return replace(
         engine,
         arrangement=arrangement,

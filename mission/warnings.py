@@ -22,6 +22,8 @@ def warnings_of(world: World, plan: FlightPlan, marched: Marched) -> tuple[str, 
         found.append(
             f"{last.name}: the mission ends in the air; put a descent and an approach at its end"
         )
+    used = {track.span.rating for track in marched.tracks if track.nodes is not None}
+    found += [text for rating, text in world.engine.doubts.items() if rating in used]
     for track in marched.tracks:
         nodes, name = track.nodes, plan.rows[track.span.segment].name
         if nodes is None:

@@ -96,7 +96,7 @@ class Flowpath:
         return np.asarray(sum(jet.gross_thrust for _, jet in self.jets.values()))
 
     def net_thrust(self, flight: FlightCondition) -> Array:
-        """Gross and propeller thrust, less the momentum of the air taken in and installation [N]."""
+        """Gross and propeller thrust less ram drag (of the air taken in) and installation [N]."""
         net = self.gross_thrust - self.stations["2"].mass_flow * flight.true_airspeed
         if self.propeller is not None:
             net = net + self.propeller.thrust

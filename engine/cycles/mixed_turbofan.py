@@ -1,10 +1,10 @@
 """Turbofan whose core and bypass streams leave through one nozzle, with afterburner or without.
 
 Unknowns: fan pressure ratio, bypass ratio, high-pressure-compressor pressure ratio, turbine entry
-temperature over engine-face temperature, corrected core airflow. Held from the design point: flow
-capacity of both turbines, both areas of the mixer and the nozzle throat. Where the streams meet in
-the mixer their static pressures are equal: the core's, in its own area, is the bypass stream's, and
-says which area that stream needs.
+temperature over engine-face temperature, static pressure in the mixer, corrected core airflow. Held
+from the design point: flow capacity of both turbines, both areas of the mixer and the nozzle
+throat. Where the streams meet in the mixer their static pressures are equal: each then needs an
+area, and has one.
 """
 
 from __future__ import annotations
@@ -23,7 +23,7 @@ from engine.gas import Gas
 from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
-from engine.parts.mixer import Passage, at_mach, at_static_pressure, in_area, mix
+from engine.parts.mixer import Passage, at_mach, at_static_pressure, mix
 from engine.parts.nozzle import Jet, Nozzle, discharge
 from engine.parts.stream import Array, Stream, mix_in
 
@@ -70,6 +70,7 @@ class MixedTurbofan:
         "bypass_ratio",
         "high_pressure_compressor_pressure_ratio",
         "turbine_entry_temperature_ratio",
+        "mixer_static_pressure",
         "corrected_core_airflow",
     )
 
@@ -80,14 +81,20 @@ class MixedTurbofan:
                 self.bypass_ratio,
                 self.high_pressure_compressor_pressure_ratio,
                 self.turbine_entry_temperature / float(face.total_temperature),
+                1.0,
                 1.0 / float(corrected_flow_factor(face)),
             ]
         )
 
     def _meet(
-        self, last: Stream, bypass: Stream, situation: Situation
+        self, last: Stream, bypass: Stream, static_pressure: Array, situation: Situation
     ) -> tuple[Passage, Passage, Passage]:
-        """Core, bypass and mixed stream in the mixer, friction left out."""
+        """Core, bypass and mixed stream in the mixer, friction left out.
+
+        ``static_pressure`` is an unknown, over that of the design point as a share of the bypass
+        stream's total pressure. The streams are mixed in the areas that are there, whatever areas
+        they would need.
+        """
         gas, mixer, sizing = self.gas, self.mixer, situation.sizing
         core = last.with_pressure_loss(
             situation.duct_loss("core_duct", mixer.core_pressure_loss_fraction, last)
@@ -97,12 +104,16 @@ class MixedTurbofan:
         )
         if sizing is None:
             inside = at_mach(gas, core, np.asarray(mixer.core_mach))
-        else:
-            inside = in_area(gas, core, np.asarray(sizing.flows["mixer_core_area"]))
-        around = at_static_pressure(gas, outer, inside.static_pressure)
-        # Backward flow, which no answer has, is mixed as if forward: the iteration comes through.
-        forward = replace(around, velocity=np.abs(around.velocity), area=np.abs(around.area))
-        return inside, around, mix(gas, inside, forward)
+            around = at_static_pressure(gas, outer, inside.static_pressure)
+            return inside, around, mix(gas, inside, around)
+        pressure = static_pressure * sizing.loadings["mixer_static_share"] * outer.total_pressure
+        inside = at_static_pressure(gas, core, pressure)
+        around = at_static_pressure(gas, outer, pressure)
+        built = (np.asarray(sizing.areas[name]) for name in ("mixer_core", "mixer_bypass"))
+        parts = (
+            replace(part, area=area) for part, area in zip((inside, around), built, strict=True)
+        )
+        return inside, around, mix(gas, *parts)
 
     def _jet(self, exhaust: Exhaust, parts: tuple[Passage, Passage], situation: Situation) -> Jet:
         """The jet of a mixer that leaves a share of the streams unmixed.
@@ -128,7 +139,7 @@ class MixedTurbofan:
 
     def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:
         gas, low, core, face = self.gas, self.low_spool, self.core, situation.face
-        fan_ratio, bypass_ratio, core_ratio, temperature_ratio, airflow = np.exp(unknowns)
+        fan_ratio, bypass_ratio, core_ratio, temperature_ratio, static, airflow = np.exp(unknowns)
         core_flow = airflow * corrected_flow_factor(face)
         front = run_front(gas, low, core_flow, fan_ratio, bypass_ratio, situation)
         hot = temperature_ratio * face.total_temperature
@@ -137,7 +148,7 @@ class MixedTurbofan:
         last = turbine.exit
         if core.downstream_cooling_fraction:
             last = mix_in(gas, last, flow.downstream_cooling)
-        inside, around, together = self._meet(last, front.bypass, situation)
+        inside, around, together = self._meet(last, front.bypass, static, situation)
         friction = situation.duct_loss("mixer", self.mixer.pressure_loss_fraction, together.stream)
         mixed = together.stream.with_pressure_loss(friction)
         exhaust = let_out(gas, self.exhaust_nozzle, self.afterburner, mixed, situation)
@@ -167,6 +178,7 @@ class MixedTurbofan:
             areas={
                 "high_pressure_turbine": flow.turbine_area,
                 "low_pressure_turbine": turbine.area,
+                "mixer_core": inside.area,
                 "mixer_bypass": around.area,
                 "core_nozzle": jet.throat_area,
             },
@@ -177,9 +189,12 @@ class MixedTurbofan:
                 "core_duct": last.duct_flow,
                 "bypass_duct": front.bypass.duct_flow,
                 "mixer": together.stream.duct_flow,
-                "mixer_core_area": inside.area,
             },
-            loadings={**flow.loadings, **turbine.loadings},
+            loadings={
+                **flow.loadings,
+                **turbine.loadings,
+                "mixer_static_share": inside.static_pressure / around.stream.total_pressure,
+            },
             limits=core_limits(flow.combustor_exit, flow.delivery, rises, situation.sizing),
             shaft_power=situation.taken.shaft_power + np.zeros_like(flow.rise),
             bleed=flow.bleed,

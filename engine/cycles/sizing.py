@@ -12,8 +12,10 @@ from engine.cycles.installed import run
 from engine.cycles.situation import NOTHING_TAKEN, OffTakes, Situation, Sizing
 from engine.errors import CycleCannotRun
 from engine.parts.inlet import take_in
+from engine.parts.mixer import at_static_pressure
 
 _MOST_ROUNDS = 60
+SLOWEST_BYPASS = 0.0
 
 
 def size(
@@ -36,34 +38,29 @@ def size(
     """
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     unknowns = arrangement.design_unknowns(face)
-    # The shaft power is nothing that the first round's 1 kg/s could give; it comes with the size.
+    # The first round's 1 kg/s could not give the shaft power, which comes with the size.
     path = _run(arrangement, flight, replace(taken, shaft_power=np.zeros(())), unknowns)
     for _ in range(_MOST_ROUNDS):
-        _refuse_impossible(path, flight, taken)
         if airflow is not None:
             factor = airflow / float(path.stations["2"].mass_flow)
         else:
             assert net_thrust is not None
-            factor = net_thrust / _thrust(path, flight)
+            thrust = float(path.net_thrust(flight))
+            if not thrust > 0.0:
+                _refuse_impossible(arrangement, path, flight, taken)
+                raise CycleCannotRun(
+                    f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
+                    f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); "
+                    f"{_remedy(path, taken)}"
+                )
+            factor = net_thrust / thrust
         unknowns = unknowns.copy()
         unknowns[-1] += np.log(factor)
         path = _run(arrangement, flight, taken, unknowns)
         if abs(factor - 1.0) < 1e-13:
             break
-    _refuse_impossible(path, flight, taken)
+    _refuse_impossible(arrangement, path, flight, taken)
     return _sizing(arrangement, flight, unknowns, path), path
-
-
-def _thrust(path: Flowpath, flight: FlightCondition) -> float:
-    """Net thrust [N] of a design point, which must be positive."""
-    thrust = float(path.net_thrust(flight))
-    if not thrust > 0.0:
-        raise CycleCannotRun(
-            f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
-            f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); raise "
-            "turbine_entry_temperature or lower the pressure ratios"
-        )
-    return thrust
 
 
 def _run(
@@ -93,7 +90,9 @@ def _sizing(
     )
 
 
-def _refuse_impossible(path: Flowpath, flight: FlightCondition) -> None:
+def _refuse_impossible(
+    arrangement: Arrangement, path: Flowpath, flight: FlightCondition, taken: OffTakes
+) -> None:
     """Say what stops a design point from running, from the front of the engine backwards."""
     hot, delivery = path.stations["4"], path.stations["3"]
     if not float(hot.fuel_air_ratio) > 0.0:
@@ -103,38 +102,57 @@ def _refuse_impossible(path: Flowpath, flight: FlightCondition) -> None:
             "the pressure ratios"
         )
     if "mixer_bypass" in path.areas:
-        _refuse_mixer(path)
+        _refuse_mixer(arrangement, path)
     ambient = float(flight.static_pressure)
     for exit_station, (stream, jet) in path.jets.items():
         pressure = float(stream.total_pressure)
-        runs = np.isfinite(float(jet.gross_thrust)) and pressure > ambient
-        if not runs:
-            stand = "core nozzle" if exit_station == "9" else "bypass nozzle"
-            why = (
-                "the turbines cannot drive the compressors: little or no pressure is left"
-                if exit_station == "9"
-                else "the fan does not raise the pressure enough"
-            )
-            raise CycleCannotRun(
-                f"the {stand} cannot flow: total pressure ahead of it = {pressure / 1e3:.1f} kPa, "
-                f"ambient {ambient / 1e3:.1f} kPa; {why}; raise turbine_entry_temperature or "
-                "lower bypass_ratio or fan_pressure_ratio"
-            )
+        if np.isfinite(float(jet.gross_thrust)) and pressure > ambient:
+            continue
+        stand, why = "bypass nozzle", "the fan does not raise the pressure enough"
+        remedy = "raise fan_pressure_ratio"
+        if exit_station == "9":
+            stand, remedy = "core nozzle", _remedy(path, taken)
+            why = "the turbines cannot drive the compressors: little or no pressure is left"
+        raise CycleCannotRun(
+            f"the {stand} cannot flow: total pressure ahead of it = {pressure / 1e3:.1f} kPa, "
+            f"ambient {ambient / 1e3:.1f} kPa; {why}; {remedy}"
+        )
 
 
-def _refuse_mixer(path: Flowpath) -> None:
-    """Say when core and bypass streams cannot meet at one static pressure, and what helps."""
-    area, mixed = float(path.areas["mixer_bypass"]), path.stations["64"]
-    if area > 0.0 and np.isfinite(float(mixed.total_pressure)):
+def _remedy(path: Flowpath, taken: OffTakes) -> str:
+    """What leaves more energy behind the turbines."""
+    less = ["the pressure ratios"]
+    if path.propeller is not None:
+        less.insert(0, "power_turbine_share")
+    elif "13" in path.stations:
+        less = ["bypass_ratio", "fan_pressure_ratio"]
+    if float(taken.shaft_power) > 0.0:
+        less.append(f"off_takes.shaft_power, {float(taken.shaft_power) / 1e3:.4g} kW")
+    return f"raise turbine_entry_temperature or lower {' or '.join(less)}"
+
+
+def _refuse_mixer(arrangement: Arrangement, path: Flowpath) -> None:
+    """Say when core and bypass streams cannot meet at one static pressure, and what helps.
+
+    The bypass stream must flow forward, and it must not be faster than sound.
+    """
+    core, bypass = path.stations["6"], path.stations["16"]
+    static_pressure = path.loadings["mixer_static_share"] * bypass.total_pressure
+    with np.errstate(all="ignore"):
+        mach = float(at_static_pressure(arrangement.gas, bypass, static_pressure).mach)
+    if SLOWEST_BYPASS < mach < 1.0 and np.isfinite(float(path.stations["64"].total_pressure)):
         return
-    core, bypass = (float(path.stations[name].total_pressure) / 1e3 for name in ("6", "16"))
-    if core > bypass:
-        remedy = "raise fan_pressure_ratio, or lower turbine_entry_temperature or mixer.core_mach"
+    if mach < 0.5:
+        why = f"the bypass stream would enter the mixer at Mach {mach:.2f}, {SLOWEST_BYPASS} is least"
+        remedy = "raise fan_pressure_ratio or mixer.core_mach, or lower turbine_entry_temperature"
     else:
-        remedy = "lower fan_pressure_ratio, or raise turbine_entry_temperature"
+        why = "the bypass stream would enter the mixer faster than sound"
+        remedy = "lower fan_pressure_ratio or mixer.core_mach, or raise turbine_entry_temperature"
     raise CycleCannotRun(
-        f"the mixer's streams cannot meet at one static pressure: the core brings {core:.1f} kPa "
-        f"of total pressure, the bypass {bypass:.1f} kPa; {remedy}"
+        "the mixer's streams cannot meet at one static pressure: the core brings "
+        f"{float(core.total_pressure) / 1e3:.1f} kPa of total pressure, "
+        f"{float(static_pressure) / 1e3:.1f} kPa of static pressure, the bypass "
+        f"{float(bypass.total_pressure) / 1e3:.1f} kPa of total pressure; {why}; {remedy}"
     )
 
 

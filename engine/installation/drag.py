@@ -64,6 +64,12 @@ class Installation:
     afterbody_area: float | None = None
     afterbody_coefficient: float = 0.0
 
+    def scaled(self, factor: float) -> Installation:
+        """The same around an engine of ``factor`` times the areas."""
+        areas = (self.capture_area, self.afterbody_area)
+        grown = (None if area is None else area * factor for area in areas)
+        return Installation(*grown, self.afterbody_coefficient)
+
 
 def capture_area(flight: FlightCondition, air_flow: ArrayLike) -> Array:
     """Area [m2] of free stream that holds an air flow [kg/s]; the least one for an inlet there.

@@ -222,7 +222,7 @@ def _rating(given: dict[str, str]) -> str:
         _number(given, _RATING, 0.0, _HIGHEST_SHARE)
         return DEMAND
     near = difflib.get_close_matches(name, _WORDS, n=1)
-    hint = f"; did you mean {near[0]}?" if near else ""
+    hint = f"; did you mean {near[0]}?" if near else "."
     raise ValueError(
         f"{_RATING} = '{text}' is none of {', '.join(_WORDS)}{hint} Leave it empty where the "
         "thrust is asked for"

@@ -72,11 +72,13 @@ def stations_command(
         state = chosen.windmilling(condition)
     else:
         state = chosen.at(condition, rating=ceiling, net_thrust=wanted)
-    question = Question(chosen.name, ceiling, wanted, chosen.coverage)
+    question = Question(
+        chosen.name, ceiling, wanted, chosen.coverage, chosen.doubts.get(ceiling, "")
+    )
 
     show(
-        lambda width: stations_screen(state, question, width=width),
-        lambda: stations_record(state, engine=chosen.name, rating=ceiling),
+        lambda width: stations_screen(state, question, chosen.pod, width=width),
+        lambda: stations_record(state, chosen, rating=ceiling),
         json,
     )
     if json == "-" and (flag := flag_in_words(state, question)):

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.atmosphere import flight_condition
 from engine.envelope import ALTITUDE_STEP, HIGHEST_ALTITUDE, HIGHEST_MACH, MACH_STEP, grid
 from engine.errors import InputRefused
 from engine.interface import Engine
@@ -48,6 +49,7 @@ class Reach:
         heights, speeds = _heights(altitudes), _speeds(machs)
         chosen_day = own_day if day is None else read("--day", parse_day, day)
         _refuse_other_day(engine, chosen_day)
+        flight_condition(high, fast, chosen_day)  # refused by the values written, not by a grid's
         return cls(
             day=chosen_day,
             screen=(

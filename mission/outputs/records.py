@@ -8,7 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.fuels import Fuel
-from engine.interface import EngineState, Outcome
+from engine.installation.pod import Pod
+from engine.interface import Engine, EngineState, Outcome
 from mission.comparison import Comparison, mean_cruise_consumption
 from mission.outputs.margins import least_margin
 from mission.outputs.partial import flown_segments
@@ -181,7 +182,7 @@ def _option(name: str, flight: Flight, least: float) -> Record:
     }
 
 
-def stations_record(state: EngineState, *, engine: str, rating: str) -> Record:
+def stations_record(state: EngineState, engine: Engine, *, rating: str) -> Record:
     """One engine at one flight condition as ``longlegs-stations``."""
     flight = state.flight
     consumption = float(state.specific_fuel_consumption)
@@ -189,7 +190,7 @@ def stations_record(state: EngineState, *, engine: str, rating: str) -> Record:
     return {
         "format": "longlegs-stations",
         "version": VERSION,
-        "engine": engine,
+        "engine": engine.name,
         "rating": rating,
         "pressure_altitude_m": float(flight.pressure_altitude),
         "mach": float(flight.mach),
@@ -212,7 +213,20 @@ def stations_record(state: EngineState, *, engine: str, rating: str) -> Record:
             "propulsive": float(account.propulsive_efficiency),
             "overall": float(account.overall_efficiency),
         },
+        "pod": {} if engine.pod is None else _pod(engine.pod),
     }
+
+
+_POD_UNITS = {"mass": "kg", "area": "m2"}
+
+
+def _pod(pod: Pod) -> Record:
+    """Lengths in m, masses in kg, areas in m2, and where each came from."""
+    record: Record = {
+        f"{name}_{_POD_UNITS.get(name.rpartition('_')[2], 'm')}": float(getattr(pod, name))
+        for name in pod.origins
+    }
+    return {**record, "origins": dict(pod.origins), "doubts": list(pod.doubts)}
 
 
 def _binding_limit(state: EngineState) -> str:

@@ -11,6 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from engine.energy import EnergyAccount
+from engine.installation.pod import Pod
 from engine.interface import Coverage, EngineState, Outcome, Station
 from mission.outputs.page import (
     WIDEST,
@@ -40,7 +41,7 @@ _HOT = {
     "4": "combustor exit, turbine entry",
     "41": "turbine rotor entry",
     "44": "high-pressure turbine exit",
-    "45": "low-pressure turbine entry",
+    "45": "low-pressure or power turbine entry",
     "5": "last turbine's exit",
     "6": "core side of the mixer",
     "64": "mixer exit",
@@ -71,6 +72,7 @@ class Question:
     rating: str
     thrust: float | None = None
     coverage: Coverage | None = None
+    doubt: str = ""
 
     @property
     def in_words(self) -> str:
@@ -83,7 +85,9 @@ class Question:
         return f"{_kilonewtons(self.thrust)} asked for under {name} rating"
 
 
-def stations_screen(state: EngineState, question: Question, *, width: int = 100) -> Group:
+def stations_screen(
+    state: EngineState, question: Question, pod: Pod | None = None, *, width: int = 100
+) -> Group:
     """Everything known of the engine at this point, the answer first."""
     flight = state.flight
     level = flight_level(float(flight.pressure_altitude))
@@ -98,6 +102,8 @@ def stations_screen(state: EngineState, question: Question, *, width: int = 100)
     remark = flag_in_words(state, question)
     if remark:
         parts += [Text(remark, "bold"), Text()]
+    if question.doubt:
+        parts += [Text(f"Doubt: {question.doubt}."), Text()]
     parts.append(pairs(_answer(state), strong=True))
     if state.stations:
         parts.append(section("Stations after SAE AS755", _stations(state, is_wide=width >= WIDEST)))
@@ -107,6 +113,8 @@ def stations_screen(state: EngineState, question: Question, *, width: int = 100)
         parts.append(section("Limits", _limits(state)))
     if state.energy is not None:
         parts.append(section("Where the fuel's power goes", *_energy(state.energy)))
+    if pod is not None:
+        parts.append(section("Size of the engine in its nacelle", *_pod(pod)))
     return Group(*parts, caution())
 
 
@@ -305,3 +313,22 @@ def _energy(account: EnergyAccount) -> list[RenderableType]:
         table.add_row(name, number(power / 1000.0, 1), share)
     closes = abs(float(account.residual))
     return [table, note(f"The terms below the first add up to it within {closes:.0e} of it.")]
+
+
+_POD_ROWS = (
+    ("fan_diameter", "fan or compressor face, diameter", "m", 3),
+    ("length", "nacelle, length", "m", 2),
+    ("maximum_diameter", "nacelle, greatest diameter", "m", 2),
+    ("dry_mass", "mass, dry and bare", "kg", 0),
+    ("installed_mass", "mass, installed", "kg", 0),
+    ("wetted_area", "nacelle, wetted area", "m2", 2),
+    ("drag_area", "skin friction drag over dynamic pressure", "m2", 4),
+)
+
+
+def _pod(pod: Pod) -> list[RenderableType]:
+    """What hangs under the wing, each with where it came from."""
+    table = ruled_table([words("quantity"), Column("value"), words("unit"), words("from")])
+    for key, name, unit, decimals in _POD_ROWS:
+        table.add_row(name, number(getattr(pod, key), decimals), unit, pod.origins[key])
+    return [table, *(note(f"Doubt: {doubt}.") for doubt in pod.doubts)]

@@ -2,54 +2,21 @@
 
 from __future__ import annotations
 
-import json
 import re
 import subprocess
 import sys
-from collections.abc import Callable
 from pathlib import Path
-from typing import Any, NamedTuple
 
 import pytest
 
 from mission import command_line
 from mission.library import built_in, find, names_of
 from mission.outputs.wording import CAUTION, NOT_CHARGED
+from tests.terminal import Longlegs, read_json
 
 ROOT = Path(__file__).parents[2]
 PROFILES = ROOT / "profiles"
 HEAVY = {"numpy", "scipy", "pydantic", "pint", "ambiance", "matplotlib"}
-
-
-class Run(NamedTuple):
-    """What a command gave back."""
-
-    status: int
-    out: str
-    err: str
-
-
-Longlegs = Callable[..., Run]
-
-
-@pytest.fixture
-def longlegs(
-    monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str], tmp_path: Path
-) -> Longlegs:
-    """Run the command in an empty folder, on a terminal of 100 columns without colour."""
-    monkeypatch.chdir(tmp_path)
-    monkeypatch.setenv("COLUMNS", "100")
-    monkeypatch.setenv("NO_COLOR", "1")
-
-    def run(*words: str) -> Run:
-        monkeypatch.setattr(sys, "argv", ["longlegs", *words])
-        with pytest.raises(SystemExit) as ended:
-            command_line.main()
-        code = ended.value.code
-        captured = capsys.readouterr()
-        return Run(code if isinstance(code, int) else 0, captured.out, captured.err)
-
-    return run
 
 
 def demo() -> str:
@@ -63,16 +30,6 @@ def written(name: str, old: str, new: str) -> str:
     assert old in text
     Path(name).write_text(text.replace(old, new), encoding="utf-8")
     return name
-
-
-def read_json(text: str) -> dict[str, Any]:
-    """JSON without NaN or infinities in it."""
-
-    def refuse(constant: str) -> None:
-        raise AssertionError(f"{constant} is no number")
-
-    record: dict[str, Any] = json.loads(text, parse_constant=refuse)
-    return record
 
 
 def test_without_a_file_the_demo_is_flown(longlegs: Longlegs) -> None:
@@ -179,12 +136,6 @@ REFUSED = [
      ["--thrust", "'kg' is not a unit of force"]),
     (["stations", "bypass_5", "--altitude", "FL350", "--mach", "0.8", "--rating", "cruise",
       "--day", "hot"], ["--day", "'hot' is not a day"]),
-    (["envelope", "bypass_5", "--rating", "fast"], ["--rating", '"fast" is none of take_off']),
-    (["envelope", "bypass_5", "--machs", "0,x"], ["--machs", '"0,x" is no list of Mach numbers']),
-    (["envelope", "bypass_5", "--altitudes", "0 ft,9"], ["--altitudes", "'9'", '"35000 ft"']),
-    (["envelope", "bypass_5", "--to-altitude", "0 ft"], ["--to-altitude = 0 m is not above 0"]),
-    (["envelope", "bypass_5", "--to-mach", "9"], ["Mach number = 9 is outside 0 to 5"]),
-    (["envelope", "bypass_5", "--csv", "x.toml"], ["--csv", "let it end in .csv"]),
 ]  # fmt: skip
 
 
@@ -346,84 +297,6 @@ def test_windmilling_is_asked_for_like_a_rating(longlegs: Longlegs) -> None:
     record = read_json(run.out)
     assert record["thrust_n"] < 0.0
     assert record["specific_fuel_consumption_kg_per_n_s"] is None
-
-
-@pytest.mark.parametrize("columns", [80, 100])
-def test_envelope_shows_thrust_with_what_holds_it_and_fuel_flow(
-    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch, columns: int
-) -> None:
-    monkeypatch.setenv("COLUMNS", str(columns))
-    run = longlegs("envelope", "bypass_5", "--day", "ISA+10")
-    assert run.status == 0
-    lines = run.out.splitlines()
-    assert lines[:2] == ["bypass-5 turbofan", "one engine at climb rating, ISA+10"]
-    assert lines[3].startswith("Net thrust from ")
-    assert max(map(len, lines)) <= columns
-    thrust, fuel = run.out.split("Fuel flow, kg/h")
-    at_sea_level = longlegs("stations", "bypass_5", "--altitude", "FL0", "--mach", "0.15",
-                            "--rating", "climb", "--day", "ISA+10", "--json", "-")  # fmt: skip
-    record = read_json(at_sea_level.out)
-    row = next(line.split() for line in thrust.splitlines() if line.startswith("      000 "))
-    assert row[3:5] == [f"{record['thrust_n'] / 1e3:.2f}", "a"]
-    row = next(line.split() for line in fuel.splitlines() if line.startswith("      000 "))
-    assert row[2] == f"{record['fuel_flow_kg_per_s'] * 3600:,.0f}"
-    assert "a turbine entry temperature; b corrected low pressure speed." in " ".join(
-        run.out.split()
-    )
-    assert " ".join(run.out.split()).endswith(CAUTION)
-
-
-def test_an_envelope_as_json_has_nothing_where_there_is_no_answer(longlegs: Longlegs) -> None:
-    words = ("envelope", "straight_jet", "--altitudes", "0 ft, FL350", "--machs", "0.5,2.0")
-    run = longlegs(*words, "--rating", "take-off", "--json", "-")
-    assert run.status == 0
-    record = read_json(run.out)
-    assert record["rating"] == "take_off"
-    assert record["mach"] == [0.5, 2.0]
-    assert record["pressure_altitude_m"] == pytest.approx([0.0, 10668.0])
-    assert record["net_thrust_n"][0][1] is None
-    assert record["outcome"][0][1] in ("not_converged", "unphysical")
-    assert record["net_thrust_n"][1][1] > 0.0
-    shown = " ".join(longlegs(*words).out.split())
-    assert "1 of 4 points have no answer (–): the engine" in shown
-    assert " at FL000, Mach 2. " in shown
-
-
-def test_an_envelope_written_as_csv_is_an_engine(longlegs: Longlegs, tmp_path: Path) -> None:
-    words = ("envelope", "bypass_5", "--day", "ISA+10", "--csv", "points.csv")
-    run = longlegs(*words, "--altitudes", "0 ft, 6000 m, FL350", "--machs", "0,0.4,0.8")
-    assert run.status == 0
-    assert "Written to points.csv: 171 points." in run.out
-    text = (tmp_path / "points.csv").read_text(encoding="utf-8")
-    assert text.startswith("# engine: bypass-5 turbofan\n# day: ISA+10\n# units: SI")
-    assert "share of the thrust span" in text
-    toml = 'kind = "tabulated"\nname = "table"\npoints = "points.csv"\nday = "ISA+10"\n'
-    (tmp_path / "table.toml").write_text(toml, encoding="utf-8")
-    there = ["--altitude", "FL350", "--mach", "0.8", "--rating", "climb", "--day", "ISA+10"]
-    table, cycle = (
-        read_json(longlegs("stations", name, *there, "--json", "-").out)
-        for name in ("table", "bypass_5")
-    )
-    assert table["thrust_n"] == pytest.approx(cycle["thrust_n"], rel=1e-6)
-    assert table["fuel_flow_kg_per_s"] == pytest.approx(cycle["fuel_flow_kg_per_s"], rel=1e-6)
-    beyond = longlegs(
-        "stations", "table", "--altitude", "FL360", "--mach", "0.8", "--rating", "climb"
-    )
-    assert beyond.status == 3
-    assert "No answer outside the engine's table: pressure altitude is 10972.8 m and it holds 0 to" \
-        " 10668 m; the day is ISA and it is of ISA+10." in " ".join(beyond.out.split())  # fmt: skip
-    assert longlegs("envelope", "table").out.startswith(
-        "table\none engine at climb rating, ISA+10\n"
-    )
-    kept = longlegs("envelope", "table", "--csv", "points.csv")
-    assert (kept.status, kept.err) == (
-        2, 'Refused: --csv: "points.csv" holds the points that table.toml is read from\n',
-    )  # fmt: skip
-    day = longlegs("envelope", "table", "--day", "ISA")
-    assert '--day = "ISA", and the table of table is of ISA+10 alone' in day.err
-    assert longlegs("fly", "ferry", "--engine", "table").status == 2
-    assert longlegs("fly", "--engine", "table", "--json", "points.csv").status == 2
-    assert (tmp_path / "points.csv").read_text(encoding="utf-8") == text
 
 
 def test_list_shows_what_there_is(longlegs: Longlegs) -> None:

@@ -136,7 +136,7 @@ def test_a_comparison_ranks_and_keeps_what_was_lost() -> None:
 @pytest.mark.parametrize("rating", ["take_off", "cruise", "flight_idle"])
 def test_stations_close_their_energy_account(turbofan: CycleEngine, rating: str) -> None:
     record = round_trip(
-        stations_record(turbofan.at_rating(CRUISE, rating), engine="it", rating=rating)
+        stations_record(turbofan.at_rating(CRUISE, rating), turbofan, rating=rating)
     )
     terms = dict(record["energy"])
     fuel = terms.pop("fuel_w")
@@ -151,7 +151,7 @@ def test_stations_close_their_energy_account(turbofan: CycleEngine, rating: str)
 
 def test_without_thrust_there_is_no_consumption(turbofan: CycleEngine) -> None:
     record = round_trip(
-        stations_record(turbofan.windmilling(CRUISE), engine="it", rating="windmilling")
+        stations_record(turbofan.windmilling(CRUISE), turbofan, rating="windmilling")
     )
     assert record["thrust_n"] < 0.0
     assert list(nulls(record)) == ["specific_fuel_consumption_kg_per_n_s"]

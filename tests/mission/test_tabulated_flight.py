@@ -72,8 +72,9 @@ def test_the_demo_burns_the_same_from_the_table(tmp_path: Path, name: str) -> No
     assert read.flown == cycle.flown == (name != "straight_jet")
     assert read.totals.block_fuel == pytest.approx(cycle.totals.block_fuel, rel=2e-4)
     assert read.totals.block_time == pytest.approx(cycle.totals.block_time, rel=2e-4)
+    part = 5e-4 * cycle.totals.block_fuel  # what a climb covers more, the cruise covers less
     for ours, theirs in zip(read.segments, cycle.segments, strict=True):
-        assert ours.fuel == pytest.approx(theirs.fuel, rel=2e-3, abs=0.5), ours.name
+        assert ours.fuel == pytest.approx(theirs.fuel, abs=part), ours.name
 
 
 @pytest.mark.parametrize("rating", ["take_off", "climb", "cruise", "flight_idle"])
