@@ -12,12 +12,14 @@ from engine.atmosphere import FlightCondition, broadcast_condition, flight_condi
 from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath
 from engine.cycles.reheating import Reheat, light
 from engine.cycles.situation import NOTHING_TAKEN, Situation, Sizing
+from engine.errors import CycleCannotRun
 from engine.finished import SLACK, Finished, is_physical
 from engine.gas import DISSOCIATION_FELT_ABOVE, RealGas
 from engine.installation.pod import GivenPod, Pod
-from engine.interface import Engine, EngineState, Outcome, is_unanswered
+from engine.interface import OPTIONAL_RATINGS, Engine, EngineState, Outcome, is_unanswered
 from engine.matching import Demand, Solution, Throttle, evaluate_at, solve
 from engine.parts.stream import Stream
+from engine.pods import pod_of
 from engine.ratings import FLAT, Asked, Ratings, ask_rating, join, pick, reheat_bounds
 
 Array = NDArray[np.float64]
@@ -48,10 +50,20 @@ class CycleEngine(Engine):
 
     @cached_property
     def pod(self) -> Pod:
-        """Size, mass and skin drag, estimated where not given."""
-        from engine.size import pod_of  # which scales engines of this class
+        """Size, mass and skin drag, estimated where not given.
 
-        return pod_of(self, self.given_pod, self.greatest_mach)
+        Raises
+        ------
+        CycleCannotRun
+            where there is no greatest rating at rest from which to estimate them.
+        """
+        greatest = OPTIONAL_RATINGS[0] if OPTIONAL_RATINGS[0] in self.ratings else "take_off"
+        at_rest = self.at_rating(flight_condition(0.0, 0.0), greatest)
+        if is_unanswered(at_rest.outcome).any():
+            raise CycleCannotRun(
+                f"{self.name} has no state at {greatest} at rest, from which its size is reckoned"
+            )
+        return pod_of(self.arrangement, self.sizing, at_rest, self.given_pod, self.greatest_mach)
 
     @property
     def ratings(self) -> tuple[str, ...]:
@@ -130,9 +142,18 @@ class CycleEngine(Engine):
         if index.size:
             is_upper = top.is_believed & (asked.thrust > 0.5 * (upper + lower))
             start = np.where(is_upper | ~bottom.is_believed, most.unknowns, least.unknowns)
-            inside = asked.at(index)
-            again = self._solve(inside, start[:, index])
-            met = self._finish(inside, again).is_answer(at_bottom.bounds[:, index])
+            inside, floors = asked.at(index), at_bottom.bounds[:, index]
+            again = self._match(inside, start[:, index])
+            met = self._finish(inside, again).is_answer(floors)
+            lost = np.flatnonzero(~met & top.is_believed[index])
+            if lost.size:
+                # Close to idle thrust hardly moves with speed: it is come upon from above.
+                above = (upper[index] - inside.thrust)[lost]
+                thrusts = inside.thrust[lost] + np.outer(0.5 ** np.arange(1, 9), above)
+                there = inside.at(lost)
+                near = self._throttled_back(there, thrusts, most.unknowns[:, index[lost]])
+                again = again.replaced(lost, self._match(there, near))
+                met = self._finish(inside, again).is_answer(floors)
             solution = solution.replaced(index, again)
             outcome[index[met]] = Outcome.MET
         return solution, outcome
@@ -188,11 +209,19 @@ class CycleEngine(Engine):
         return solve(self.arrangement, self.sizing, asked.flat, asked.taken, asked.demand, start)
 
     def _low_power(self, asked: Asked) -> Array:
-        """Unknowns of an engine throttled back step by step, as far as that goes."""
+        """Unknowns close to idle, for a cold engine."""
         pressure_ratio = asked.flat.static_pressure / self.sizing.reference_pressure
-        unknowns = np.full((len(self.sizing.unknowns), asked.thrust.size), np.nan)
-        for share in (0.5, 0.2, 0.1, 0.05, 0.02):
-            thrust = share * self.sizing.reference_thrust * pressure_ratio
+        shares = np.array([0.5, 0.2, 0.1, 0.05, 0.02])
+        thrusts = np.outer(shares, self.sizing.reference_thrust * pressure_ratio)
+        cold = np.full((len(self.sizing.unknowns), asked.thrust.size), np.nan)
+        return self._throttled_back(asked, thrusts, cold)
+
+    def _throttled_back(self, asked: Asked, thrusts: Array, unknowns: Array) -> Array:
+        """Unknowns of an engine throttled back step by step, as far as that goes.
+
+        ``thrusts`` (k, N) [N] are the steps, ``unknowns`` (n, N) where they begin.
+        """
+        for thrust in thrusts:
             step = self._match(asked.with_thrust(thrust), unknowns)
             unknowns = np.where(step.is_converged, step.unknowns, unknowns)
         return unknowns
@@ -210,6 +239,7 @@ class CycleEngine(Engine):
             np.full(count, Throttle.CEILING),
             np.repeat(_UNBOUNDED[:, None], count, axis=1),
             taken,
+            np.zeros(count),
         )
         state = self._finish(asked, solution, is_lit=False)
         met = np.full(count, Outcome.MET)
@@ -265,6 +295,8 @@ def _windmilling_start(arrangement: Arrangement, sizing: Sizing, mach: Array) ->
             start[row] += np.log(8.0)
         elif name == "corrected_core_airflow":
             start[row] += np.log(0.03 * moving)
+        elif name == "mixer_static_pressure":
+            start[row] = np.log((1.0 - 0.1 * moving**2) / sizing.loadings["mixer_static_share"])
     return start
 
 

@@ -10,12 +10,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.errors import InputRefused
-from engine.interface import (
-    OPTIONAL_RATINGS,
-    Engine,
-    Outcome,
-    is_unanswered,
-)
+from engine.interface import OPTIONAL_RATINGS, Engine, Outcome, is_unanswered
 
 Array = NDArray[np.float64]
 Level = str | float
@@ -26,6 +21,7 @@ REHEATED = OPTIONAL_RATINGS[0]
 SHARE = (
     "a rating that is a number is a share of the thrust span at its point:",
     "  net thrust = flight idle + share x (highest rating without reheat - flight idle);",
+    "  asked for under the lowest rating that gives it, with what is taken off the engine there;",
     "  from 1 to 2 it is that rating + (share - 1) x (maximum afterburning - that rating)",
 )
 # Steps of a grid that gives the fuel of a mission back within 0.01 %, where 0.1 % is asked for.

@@ -14,7 +14,7 @@ from engine.gas import Gas, RealGas
 from engine.interface import EngineState, Evidence, Outcome
 from engine.matching import Solution
 from engine.parts.stream import Stream
-from engine.ratings import LIT_ROWS, Asked
+from engine.ratings import LIT_ROWS, REHEAT_ROWS, Asked
 
 Array = NDArray[np.float64]
 SLACK = 1e-9
@@ -54,9 +54,15 @@ class Finished:
         With the afterburner lit the gas generator stands at its dry limit anyway: what governs is
         one of the afterburner's own.
         """
+        return self._governing(is_dry=False)
+
+    def _governing(self, *, is_dry: bool) -> NDArray[np.int64]:
         bounds, shares = self.asked.bounds, self.limit_shares
-        of_reheat = np.isin(np.arange(len(LIMIT_NAMES)), LIT_ROWS)[:, None]
-        highest = np.where(~self.is_reheated | of_reheat, shares, -np.inf)
+        rows = np.arange(len(LIMIT_NAMES))[:, None]
+        counts = (
+            ~np.isin(rows, REHEAT_ROWS) if is_dry else ~self.is_reheated | np.isin(rows, LIT_ROWS)
+        )
+        highest = np.where(counts, shares, -np.inf)
         row = np.where(self.asked.is_ceiling, np.argmax(highest, axis=0), np.argmin(shares, axis=0))
         is_bounded = np.any(np.isfinite(bounds) & (bounds > 0.0), axis=0)
         return np.where(is_bounded, row, -1)
@@ -85,7 +91,9 @@ class Finished:
         believed = self.is_believed & (outcome != Outcome.NOT_CONVERGED)
         unknowns = np.where(solution.is_converged, solution.unknowns, np.nan)
         shape = flight.shape
-        choking = np.stack([jet.choking for _, jet in self.path.jets.values()])
+        kinks = np.stack(
+            [jet.choking for _, jet in self.path.jets.values()] + [self.asked.past_break]
+        )
         return EngineState(
             flight=flight,
             net_thrust=np.where(believed, self.net_thrust, 0.0).reshape(shape),
@@ -94,7 +102,8 @@ class Finished:
             binding_limit=self.binding_limit.reshape(shape),
             limit_names=LIMIT_NAMES,
             limit_shares=self.limit_shares.reshape(len(LIMIT_NAMES), *shape),
-            choking=choking.reshape(len(choking), *shape),
+            dry_limit=self._governing(is_dry=True).reshape(shape),
+            kinks=kinks.reshape(len(kinks), *shape),
             unknowns=unknowns.reshape(len(unknowns), *shape),
             residual=solution.residual.reshape(shape),
             iterations=solution.iterations.reshape(shape),

@@ -172,7 +172,9 @@ class EngineState:
     outcome : values of :class:`Outcome`
     binding_limit : index into ``limit_names`` of the limit that governs, or stands nearest
     limit_shares : value over bound of each limit, shape (len(limit_names), ...)
-    choking : per nozzle, above 0 where choked, shape (nozzles, ...)
+    dry_limit : the same as ``binding_limit`` with the afterburner's own limits left out
+    kinks : quantities at whose change of sign thrust has a kink, shape (k, ...): the choking of
+        each nozzle, above 0 where choked, then total temperature against a theta break
     unknowns : what a nearby call may start from, shape (n, ...)
     residual, iterations : of the matching
     evidence : what stations and energy account are made from, when they are asked for
@@ -185,7 +187,8 @@ class EngineState:
     binding_limit: NDArray[np.int64]
     limit_names: tuple[str, ...]
     limit_shares: Array
-    choking: Array
+    dry_limit: NDArray[np.int64]
+    kinks: Array
     unknowns: Array
     residual: Array
     iterations: NDArray[np.int64]

@@ -67,10 +67,15 @@ class Rating:
         bounds = np.repeat(self.bounds[:, None], flight.mach.size, axis=1)
         if self.throttle == Throttle.CEILING:
             bounds[REHEAT_ROWS] = np.inf
-        if self.throttle_ratio is not None:
-            theta = flight.static_temperature * (1.0 + 0.2 * flight.mach**2) / 288.15
-            bounds[_TURBINE_ENTRY] *= np.minimum(theta / self.throttle_ratio, 1.0)
+        bounds[_TURBINE_ENTRY] *= 1.0 + np.minimum(self.past_break(flight), 0.0)
         return bounds
+
+    def past_break(self, flight: FlightCondition) -> Array:
+        """Total temperature over that of the theta break, less one; 0 where there is none."""
+        if self.throttle_ratio is None:
+            return np.zeros_like(flight.mach)
+        theta = flight.static_temperature * (1.0 + 0.2 * flight.mach**2) / 288.15
+        return theta / self.throttle_ratio - 1.0
 
 
 Ratings = Mapping[str, Rating]
@@ -87,7 +92,8 @@ def pick(ratings: Ratings, name: str, owner: str) -> Rating:
 class Asked:
     """A call as flat arrays: net thrust [N], NaN where a rating or idle is asked for itself.
 
-    ``throttle`` (N,), ``bounds`` (L, N) and ``taken`` (N,) are those of the rating.
+    ``throttle`` (N,), ``bounds`` (L, N) and ``taken`` (N,) are those of the rating;
+    ``past_break`` (N,) is total temperature over that of the theta break less one, 0 without one.
     """
 
     flat: FlightCondition
@@ -95,6 +101,7 @@ class Asked:
     throttle: NDArray[np.int64]
     bounds: Array
     taken: OffTakes
+    past_break: Array
 
     @property
     def is_thrust(self) -> NDArray[np.bool_]:
@@ -120,6 +127,7 @@ class Asked:
             self.throttle[index],
             self.bounds[:, index],
             self.taken.at(index),
+            self.past_break[index],
         )
 
     def without_thrust(self) -> Asked:
@@ -156,6 +164,7 @@ def ask_rating(rating: Rating, flat: FlightCondition) -> Asked:
         np.full(count, rating.throttle),
         rating.dry_bounds(flat),
         rating.taken.spread(count),
+        rating.past_break(flat),
     )
 
 
@@ -170,11 +179,13 @@ def join(
         np.zeros(count, dtype=np.int64),
         np.zeros((len(LIMIT_NAMES), count)),
         OffTakes(np.zeros(count), np.zeros(count)),
+        np.zeros(count),
     )
     for name, part in parts.items():
         here = np.flatnonzero(names == name)
         whole.throttle[here] = part.throttle
         whole.bounds[:, here] = part.bounds
+        whole.past_break[here] = part.past_break
         whole.taken.customer_bleed_fraction[here] = part.taken.customer_bleed_fraction
         whole.taken.shaft_power[here] = part.taken.shaft_power
     return whole

@@ -10,7 +10,7 @@ import gc
 import typer
 
 from engine.errors import InputRefused, LonglegsError
-from mission.commands.engine_commands import envelope_command, stations_command
+from mission.commands.engine_commands import envelope_command, fit_command, stations_command
 from mission.commands.listing import list_command
 from mission.commands.mission_commands import compare_command, fly_command
 from mission.outputs.wording import CAUTION
@@ -30,6 +30,7 @@ app.command("fly")(fly_command)
 app.command("compare")(compare_command)
 app.command("stations")(stations_command)
 app.command("envelope")(envelope_command)
+app.command("fit")(fit_command)
 app.command("list")(list_command)
 
 

@@ -63,7 +63,7 @@ class MissionFile(Table):
     note: str = ""
     aircraft: str = ""
     engine: str = ""
-    engine_options: list[str] = []
+    engine_options: tuple[str, ...] = ()
     payload: Annotated[Mass, Field(ge=0.0)]
     distance: Annotated[Length, Field(gt=0.0, le=LONGEST)] | None = None
     day: Day = 0.0

@@ -8,9 +8,9 @@ import numpy as np
 
 from engine.cycles.situation import Situation
 from engine.gas import Gas
-from engine.parts.combustor import Combustor, burn, combustor_loading, pass_unlit
+from engine.parts.combustor import Combustor, air_loading, burn, pass_unlit, relative_loading
 from engine.parts.compressor import compress
-from engine.parts.efficiency import Efficiency
+from engine.parts.efficiency import Efficiency, shaft_drag
 from engine.parts.stream import Array, Stream, mix_in
 from engine.parts.turbine import corrected_flow_area, expand_by_power, flow_share
 
@@ -27,7 +27,7 @@ class Core:
     downstream_cooling_fraction : of compressor entry flow, joins behind the last turbine
     rotor_cooling_rise, downstream_cooling_rise : share of the compressor's rise of enthalpy at
         which that air is taken; 1 at delivery
-    mechanical_efficiency : of the spool
+    mechanical_efficiency : of the spool at the design point
     turbine_critical_pressure_ratio : below this exit-to-entry ratio the turbine is choked
     """
 
@@ -91,13 +91,19 @@ def run_core(
     )
     taken = bleed.mass_flow + vane_air.mass_flow + rotor_air.mass_flow + last_air.mass_flow
     burner_air = delivery.with_flow(flow - taken)
-    loading = combustor_loading(burner_air)
+    loading = air_loading(burner_air)
     hot, unburnt = _heat(gas, core, burner_air, turbine_entry_temperature, loading, situation)
 
     rotor_entry = mix_in(gas, hot, vane_air) if core.vane_cooling_fraction else hot
     compressor_power = flow * rise - rotor_saved - last_saved
     shaft_power = situation.taken.shaft_power
-    turbine_power = (compressor_power + shaft_power) / core.mechanical_efficiency
+    delivered = compressor_power + shaft_power
+    turbine_power = delivered + shaft_drag(
+        delivered,
+        core.mechanical_efficiency,
+        core.turbine_efficiency.falls_off and situation.is_lit,
+        situation.flow_ratio("high_pressure_compressor", entry.duct_flow),
+    )
     speed_over_work = rise * rotor_entry.mass_flow / turbine_power
     turbine_efficiency = core.turbine_efficiency.of_turbine(
         situation.loading_ratio("high_pressure_turbine", speed_over_work)
@@ -155,7 +161,13 @@ def _heat(
     if not situation.is_lit:
         loss = situation.duct_loss("combustor", combustor.pressure_loss_fraction, air)
         return pass_unlit(gas, loss, air), np.zeros_like(air.mass_flow)
-    efficiency = combustor.efficiency_at(situation.flow_ratio("combustor_loading", loading))
+    efficiency = np.asarray(combustor.efficiency)
+    if situation.sizing is not None:
+        design = situation.sizing.flows
+        efficiency = combustor.efficiency_at(
+            relative_loading(loading, design["combustor"]),
+            float(relative_loading(design["combustor_loading"], design["combustor"])),
+        )
     hot = burn(gas, combustor, air, temperature, efficiency)
     fuel_flow = hot.mass_flow - air.mass_flow
     return hot, fuel_flow * combustor.lower_heating_value * (1.0 - efficiency)

@@ -14,7 +14,7 @@ from engine.cycles.core import CoreFlow
 from engine.cycles.situation import Situation
 from engine.gas import Gas
 from engine.parts.compressor import compress, compress_by_work
-from engine.parts.efficiency import Efficiency
+from engine.parts.efficiency import Efficiency, shaft_drag
 from engine.parts.stream import Array, Stream
 from engine.parts.turbine import corrected_flow_area, expand_by_power, flow_share
 
@@ -131,7 +131,12 @@ def drive(
     """The turbine that gives fan and booster what they need."""
     entry = flow.turbine_exit
     drive_power = front.fan_power / low.gearbox_efficiency + front.booster_power
-    power = drive_power / low.mechanical_efficiency
+    power = drive_power + shaft_drag(
+        drive_power,
+        low.mechanical_efficiency,
+        low.turbine_efficiency.falls_off and situation.is_lit,
+        situation.flow_ratio("fan", front.entry.duct_flow),
+    )
     speed_over_work = front.fan_rise * entry.mass_flow / power
     efficiency = low.turbine_efficiency.of_turbine(
         situation.loading_ratio("low_pressure_turbine", speed_over_work)

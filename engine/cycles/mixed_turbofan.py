@@ -105,7 +105,9 @@ class MixedTurbofan:
         if sizing is None:
             inside = at_mach(gas, core, np.asarray(mixer.core_mach))
             around = at_static_pressure(gas, outer, inside.static_pressure)
-            return inside, around, mix(gas, inside, around)
+            # Backward flow, which sizing refuses, has a mixed state, too: a size hangs on it.
+            forward = replace(around, velocity=abs(around.velocity), area=abs(around.area))
+            return inside, around, mix(gas, inside, forward)
         pressure = static_pressure * sizing.loadings["mixer_static_share"] * outer.total_pressure
         inside = at_static_pressure(gas, core, pressure)
         around = at_static_pressure(gas, outer, pressure)
@@ -118,7 +120,9 @@ class MixedTurbofan:
     def _jet(self, exhaust: Exhaust, parts: tuple[Passage, Passage], situation: Situation) -> Jet:
         """The jet of a mixer that leaves a share of the streams unmixed.
 
-        Each stream alone loses the same fraction of pressure on its way to the nozzle.
+        Each stream alone loses the same fraction of pressure on its way to the nozzle. Only thrust
+        is shared out: the throat passes the mixed stream, for at idle one stream alone may be
+        below ambient pressure and need no throat that there is.
         """
         share, ambient = self.mixer.effectiveness, situation.flight.static_pressure
         if share == 1.0:
@@ -133,8 +137,6 @@ class MixedTurbofan:
             exhaust.jet,
             gross_thrust=share * exhaust.jet.gross_thrust
             + (1.0 - share) * (inside.gross_thrust + around.gross_thrust),
-            throat_area=share * exhaust.jet.throat_area
-            + (1.0 - share) * (inside.throat_area + around.throat_area),
         )
 
     def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:

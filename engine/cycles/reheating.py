@@ -55,7 +55,8 @@ class Reheat:
 def _chosen_stream(mask: NDArray[np.bool_], lit: Stream, dry: Stream) -> Stream:
     """A stream that is lit where the mask says so; the section is that of the lit one."""
     names = [f.name for f in fields(Stream) if f.name != "section"]
-    return Stream(*(np.where(mask, getattr(lit, n), getattr(dry, n)) for n in names), lit.section)
+    chosen = {n: np.where(mask, getattr(lit, n), getattr(dry, n)) for n in names}
+    return replace(lit, **chosen)
 
 
 def _chosen_jet(mask: NDArray[np.bool_], lit: Jet, dry: Jet) -> Jet:
@@ -96,4 +97,5 @@ def light(
         )
         # Where even the dry engine is beyond a bound the afterburner stays at its entry's
         # temperature, where nothing is burnt.
-        return np.where(found.success, found.x, coldest)
+        temperature: Array = np.where(found.success, found.x, coldest)
+    return temperature

@@ -15,7 +15,8 @@ from engine.parts.inlet import take_in
 from engine.parts.mixer import at_static_pressure
 
 _MOST_ROUNDS = 60
-SLOWEST_BYPASS = 0.0
+_SETTLED = 1e-10  # of thrust
+_BYPASS_MACH = (0.05, 0.95)  # at mixer entry
 
 
 def size(
@@ -38,28 +39,34 @@ def size(
     """
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     unknowns = arrangement.design_unknowns(face)
-    # The first round's 1 kg/s could not give the shaft power, which comes with the size.
+    # What shaft power there is comes with the size: the first round, for 1 kg/s, is without it.
     path = _run(arrangement, flight, replace(taken, shaft_power=np.zeros(())), unknowns)
+    specific = float(path.net_thrust(flight) / path.stations["2"].mass_flow)
+    if not specific > 0.0:
+        _refuse_impossible(arrangement, path, flight, taken)
+        raise CycleCannotRun(
+            f"the cycle gives no thrust at its design point ({specific:.4g} N for each kg/s of "
+            f"air); {_remedy(path, taken)}"
+        )
     for _ in range(_MOST_ROUNDS):
+        flow = float(path.stations["2"].mass_flow)
         if airflow is not None:
-            factor = airflow / float(path.stations["2"].mass_flow)
+            factor = airflow / flow
         else:
             assert net_thrust is not None
-            thrust = float(path.net_thrust(flight))
-            if not thrust > 0.0:
-                _refuse_impossible(arrangement, path, flight, taken)
-                raise CycleCannotRun(
-                    f"the cycle gives no thrust at its design point ({thrust:.4g} N for "
-                    f"{float(path.stations['2'].mass_flow):.3g} kg/s of air); "
-                    f"{_remedy(path, taken)}"
-                )
-            factor = net_thrust / thrust
+            # Thrust goes with size, less what the shaft power costs, which hardly does.
+            factor = 1.0 + (net_thrust - float(path.net_thrust(flight))) / (specific * flow)
         unknowns = unknowns.copy()
         unknowns[-1] += np.log(factor)
         path = _run(arrangement, flight, taken, unknowns)
-        if abs(factor - 1.0) < 1e-13:
+        if not abs(factor - 1.0) > 1e-13:
             break
     _refuse_impossible(arrangement, path, flight, taken)
+    if not abs(factor - 1.0) < _SETTLED:
+        raise CycleCannotRun(
+            f"no size gives net_thrust = {net_thrust:.4g} N beside the shaft power taken off, "
+            f"{float(taken.shaft_power) / 1e3:.0f} kW; lower off_takes.shaft_power"
+        )
     return _sizing(arrangement, flight, unknowns, path), path
 
 
@@ -101,22 +108,28 @@ def _refuse_impossible(
             f"compressor delivery, {float(delivery.total_temperature):.0f} K; raise it or lower "
             "the pressure ratios"
         )
+    ambient = float(flight.static_pressure)
+    if not float(path.stations["5"].total_pressure) > ambient:
+        _refuse_nozzle(path, taken, "5", ambient)
     if "mixer_bypass" in path.areas:
         _refuse_mixer(arrangement, path)
-    ambient = float(flight.static_pressure)
-    for exit_station, (stream, jet) in path.jets.items():
-        pressure = float(stream.total_pressure)
-        if np.isfinite(float(jet.gross_thrust)) and pressure > ambient:
-            continue
-        stand, why = "bypass nozzle", "the fan does not raise the pressure enough"
-        remedy = "raise fan_pressure_ratio"
-        if exit_station == "9":
-            stand, remedy = "core nozzle", _remedy(path, taken)
-            why = "the turbines cannot drive the compressors: little or no pressure is left"
-        raise CycleCannotRun(
-            f"the {stand} cannot flow: total pressure ahead of it = {pressure / 1e3:.1f} kPa, "
-            f"ambient {ambient / 1e3:.1f} kPa; {why}; {remedy}"
-        )
+    for name in ("7", "17"):
+        if name in path.stations and not float(path.stations[name].total_pressure) > ambient:
+            _refuse_nozzle(path, taken, name, ambient)
+
+
+def _refuse_nozzle(path: Flowpath, taken: OffTakes, station: str, ambient: float) -> None:
+    """Say that a nozzle has no pressure [Pa] to flow with, why, and what helps."""
+    stand, remedy = "core nozzle", _remedy(path, taken)
+    why = "the turbines cannot drive the compressors: little or no pressure is left"
+    if station == "17":
+        stand, remedy = "bypass nozzle", "raise fan_pressure_ratio"
+        why = "the fan does not raise the pressure enough"
+    pressure = np.nan_to_num(float(path.stations[station].total_pressure))
+    raise CycleCannotRun(
+        f"the {stand} cannot flow: total pressure ahead of it = {pressure / 1e3:.1f} kPa, "
+        f"ambient {ambient / 1e3:.1f} kPa; {why}; {remedy}"
+    )
 
 
 def _remedy(path: Flowpath, taken: OffTakes) -> str:
@@ -127,32 +140,32 @@ def _remedy(path: Flowpath, taken: OffTakes) -> str:
     elif "13" in path.stations:
         less = ["bypass_ratio", "fan_pressure_ratio"]
     if float(taken.shaft_power) > 0.0:
-        less.append(f"off_takes.shaft_power, {float(taken.shaft_power) / 1e3:.4g} kW")
+        less.append(f"off_takes.shaft_power, {float(taken.shaft_power) / 1e3:.0f} kW")
     return f"raise turbine_entry_temperature or lower {' or '.join(less)}"
 
 
 def _refuse_mixer(arrangement: Arrangement, path: Flowpath) -> None:
     """Say when core and bypass streams cannot meet at one static pressure, and what helps.
 
-    The bypass stream must flow forward, and it must not be faster than sound.
+    The bypass stream must flow forward and may not choke, and away from the design point it moves.
     """
     core, bypass = path.stations["6"], path.stations["16"]
     static_pressure = path.loadings["mixer_static_share"] * bypass.total_pressure
     with np.errstate(all="ignore"):
         mach = float(at_static_pressure(arrangement.gas, bypass, static_pressure).mach)
-    if SLOWEST_BYPASS < mach < 1.0 and np.isfinite(float(path.stations["64"].total_pressure)):
+    slowest, fastest = _BYPASS_MACH
+    if slowest < mach < fastest:
         return
-    if mach < 0.5:
-        why = f"the bypass stream would enter the mixer at Mach {mach:.2f}, {SLOWEST_BYPASS} is least"
+    if mach < slowest:
         remedy = "raise fan_pressure_ratio or mixer.core_mach, or lower turbine_entry_temperature"
     else:
-        why = "the bypass stream would enter the mixer faster than sound"
         remedy = "lower fan_pressure_ratio or mixer.core_mach, or raise turbine_entry_temperature"
     raise CycleCannotRun(
         "the mixer's streams cannot meet at one static pressure: the core brings "
         f"{float(core.total_pressure) / 1e3:.1f} kPa of total pressure, "
         f"{float(static_pressure) / 1e3:.1f} kPa of static pressure, the bypass "
-        f"{float(bypass.total_pressure) / 1e3:.1f} kPa of total pressure; {why}; {remedy}"
+        f"{float(bypass.total_pressure) / 1e3:.1f} kPa of total pressure and would flow at Mach "
+        f"{mach:.2f}, allowed {slowest:g} to {fastest:g}; {remedy}"
     )
 
 

@@ -4,4 +4,4 @@ from engine.gas.interface import SECTIONS, Gas, Section
 from engine.gas.real import DISSOCIATION_FELT_ABOVE, RealGas
 from engine.gas.sectional import SectionalGas
 
-__all__ = ["SECTIONS", "Gas", "RealGas", "Section", "SectionalGas"]
+__all__ = ["DISSOCIATION_FELT_ABOVE", "SECTIONS", "Gas", "RealGas", "Section", "SectionalGas"]

@@ -66,9 +66,11 @@ class Installation:
 
     def scaled(self, factor: float) -> Installation:
         """The same around an engine of ``factor`` times the areas."""
-        areas = (self.capture_area, self.afterbody_area)
-        grown = (None if area is None else area * factor for area in areas)
-        return Installation(*grown, self.afterbody_coefficient)
+        return Installation(
+            None if self.capture_area is None else self.capture_area * factor,
+            None if self.afterbody_area is None else self.afterbody_area * factor,
+            self.afterbody_coefficient,
+        )
 
 
 def capture_area(flight: FlightCondition, air_flow: ArrayLike) -> Array:

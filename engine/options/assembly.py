@@ -53,7 +53,8 @@ from engine.ratings import AFTERBURNER_FUEL, Rating, Ratings
 
 def arrange(written: CycleEngineFile) -> Arrangement:
     """The parts of an engine, joined; its afterburner is fitted once the design point is known."""
-    return _ARRANGE[type(written)](written)
+    arrangement: Arrangement = _ARRANGE[type(written)](written)
+    return arrangement
 
 
 def ratings_of(written: CycleEngineFile) -> Ratings:
@@ -99,7 +100,7 @@ def fit_afterburner(
     fitted = replace(
         _afterburner(written, table), reference_temperature_ratio=table.temperature / entry
     )
-    return replace(arrangement, afterburner=fitted)  # type: ignore[type-var]
+    return replace(arrangement, afterburner=fitted)
 
 
 def _afterburner(written: CycleEngineFile, table: AfterburnerTable | None) -> Any:

@@ -45,6 +45,9 @@ _SPANS = (
     # Size: a file that is wrong by more than a factor of five is of another engine.
     _Span(r"design_point\.net_thrust", 0.2, 5.0, 0.03, "force", is_share=True),
     _Span(r"design_point\.airflow", 0.2, 5.0, 0.03, "mass flow", is_share=True),
+    _Span(r"scale\.factor", 0.2, 5.0, 0.03, is_share=True),
+    _Span(r"scale\.static_thrust", 0.2, 5.0, 0.03, "force", is_share=True),
+    _Span(r"scale\.airflow", 0.2, 5.0, 0.03, "mass flow", is_share=True),
     # From uncooled alloys of the first engines to below the melting of cooled ones in fighters.
     _Span(r"design_point\.turbine_entry_temperature", 800.0, 2200.0, 20.0, "absolute temperature"),
     _Span(r"ratings\..*\.turbine_entry_temperature", 800.0, 2300.0, 20.0, "absolute temperature"),
@@ -150,12 +153,10 @@ def choose(keys: Sequence[str], known: Mapping[str, Parameter]) -> list[Paramete
     for text in keys:
         key = re.sub(r"\.(polytropic|isentropic)$", "", text)
         if key not in known:
-            near = difflib.get_close_matches(key, known, n=3, cutoff=0.4)
-            hint = f"; did you mean {' or '.join(near)}?" if near else "."
+            near = difflib.get_close_matches(key, known, n=3, cutoff=0.5)
+            hint = f"did you mean {' or '.join(near)}?" if near else ", ".join(known) + " can"
             raise InputRefused(
-                f'"{text}" is no key of this engine file that can be freed{hint} '
-                f"Known here: {', '.join(known)}",
-                key="--free",
+                f'"{text}" is no number of this engine file that may be free; {hint}', key="--free"
             )
         if known[key] in chosen:
             raise InputRefused(f'"{text}" is asked for twice', key="--free")
@@ -215,9 +216,7 @@ def _parameter(
     span: _Span, key: str, place: tuple[str, ...], value: float, content: Mapping[str, Any]
 ) -> Parameter:
     share = value if span.is_share else 1.0
-    found = Parameter(
-        key, place, value, span.low * share, span.high * share, span.scale * share
-    )
+    found = Parameter(key, place, value, span.low * share, span.high * share, span.scale * share)
     if not span.kind:
         return found
     unit = _unit(place, content) or KINDS[span.kind][0]

@@ -205,6 +205,19 @@ class TabulatedFile(Table):
     fuel: FuelTable = FuelTable()
 
 
+class BrochureFile(Table):
+    """Four numbers, from which a stated rule makes a cycle: see engine/options/brochure.py."""
+
+    kind: Literal["brochure"]
+    name: str
+    note: str = ""
+    static_thrust: Annotated[Force, Field(gt=0.0, le=5e6)]
+    static_specific_fuel_consumption: Annotated[SpecificFuelConsumption, Field(gt=0.0)]
+    bypass_ratio: Annotated[float, Field(ge=0.0, le=20.0)]
+    overall_pressure_ratio: Annotated[float, Field(ge=3.0, le=80.0)]
+    fuel: FuelTable = FuelTable()
+
+
 AnyCycleFile = (
     TurbojetFile | TwoSpoolTurbojetFile | TurbofanFile | MixedTurbofanFile | TurbopropFile
 )
@@ -214,5 +227,6 @@ class EngineFile(Table):
     """Any engine, told apart by its kind."""
 
     engine: Annotated[
-        AnyCycleFile | ConstantConsumptionFile | TabulatedFile, Field(discriminator="kind")
+        AnyCycleFile | BrochureFile | ConstantConsumptionFile | TabulatedFile,
+        Field(discriminator="kind"),
     ]

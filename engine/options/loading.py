@@ -13,9 +13,11 @@ from engine.errors import InputRefused, OutOfRange
 from engine.installation.pod import GivenPod
 from engine.interface import RATINGS, Engine
 from engine.options.assembly import arrange, fit_afterburner, ratings_of
+from engine.options.brochure import assumptions, cycle_content
 from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.options.input_model import (
     AnyCycleFile,
+    BrochureFile,
     ConstantConsumptionFile,
     EngineFile,
     TabulatedFile,
@@ -23,7 +25,7 @@ from engine.options.input_model import (
 from engine.options.tables import ScaleTable
 from engine.options.tabulated import load_table
 from engine.reading import check, defaults_used, read_toml
-from engine.size import scaled, scaled_to
+from engine.scaling import scaled, scaled_to
 
 
 def load_engine(path: str | Path) -> Engine:
@@ -59,7 +61,22 @@ def engine_from_content(content: dict[str, Any], where: str) -> Engine:
         )
     if isinstance(written, TabulatedFile):
         return load_table(written, Path(where).parent, assumed)
+    if isinstance(written, BrochureFile):
+        return _brochure_engine(written, content.get("fuel"), where, assumed)
     return _cycle_engine(written, where, assumed)
+
+
+def _brochure_engine(
+    brochure: BrochureFile, fuel: Any, where: str, assumed: tuple[str, ...]
+) -> CycleEngine:
+    """The cycle that the rule makes of four numbers; what it put in is told as assumed."""
+    numbers = brochure.model_dump(exclude={"kind", "fuel"})
+    try:
+        whole = check({"engine": cycle_content(**numbers, fuel=fuel)}, EngineFile, where).engine
+    except InputRefused as refusal:
+        raise type(refusal)(refusal.what, where=where, key=refusal.key) from None
+    assert isinstance(whole, AnyCycleFile)
+    return _cycle_engine(whole, where, (*assumed, *assumptions(whole)))
 
 
 def _cycle_engine(written: AnyCycleFile, where: str, assumed: tuple[str, ...]) -> CycleEngine:
@@ -105,7 +122,9 @@ def _scaled(engine: CycleEngine, table: ScaleTable, where: str) -> CycleEngine:
         raise InputRefused(refusal.what, where=where, key=refusal.key) from None
 
 
-def _assumed(written: AnyCycleFile | ConstantConsumptionFile | TabulatedFile) -> tuple[str, ...]:
+def _assumed(
+    written: AnyCycleFile | BrochureFile | ConstantConsumptionFile | TabulatedFile,
+) -> tuple[str, ...]:
     """Values left unsaid; those of a fuel known by name are its own."""
     lines = defaults_used(written)
     if written.fuel.is_by_name:

@@ -1,4 +1,4 @@
-"""Commands about one engine: its stations at a flight condition, and its whole envelope."""
+"""Commands about one engine: its stations at a flight condition, its whole envelope, its fit."""
 
 from __future__ import annotations
 
@@ -145,6 +145,52 @@ def envelope_command(
     show(
         lambda width: envelope_screen(found, written=written, width=width),
         lambda: envelope_record(found),
+        json,
+    )
+
+
+def fit_command(
+    engine: EngineName,
+    points: Annotated[
+        str,
+        typer.Option(
+            metavar="FILE",
+            help="CSV of points to meet: pressure_altitude_m, mach, rating, net_thrust_n, "
+            "fuel_flow_kg_per_s and, where it is needed, temperature_deviation_k. Where the "
+            "rating is empty the thrust is asked for.",
+        ),
+    ],
+    write: Annotated[str, typer.Option(metavar="FILE", help="New engine file, ending in .toml.")],
+    free: Annotated[
+        list[str] | None,
+        typer.Option(
+            metavar="KEY",
+            help="Key of the engine file that may change, efficiencies.fan say; may be given more "
+            "than once. Without it those that the points tell best.",
+        ),
+    ] = None,
+    json: JsonTarget = None,
+) -> None:
+    """Fit an engine to points of thrust and fuel flow, and write it as a new engine file."""
+    from pathlib import Path
+
+    from engine.options.fit_points import read_fit_points
+    from engine.options.fitting import fit
+    from engine.reading import read_toml
+    from mission.library import find
+    from mission.outputs.engine_text import check_engine_target, engine_text, fit_remarks
+    from mission.outputs.files import write_text
+    from mission.outputs.fit_record import fit_record
+    from mission.outputs.fit_screen import fit_screen
+
+    check_json(json)
+    check_engine_target(write, "--write")
+    path = find(engine, "engine")
+    found = fit(read_toml(path), str(path), read_fit_points(Path(points)), free or ())
+    write_text(write, engine_text(found.content, fit_remarks(found, str(path))), "--write")
+    show(
+        lambda width: fit_screen(found, written=write, width=width),
+        lambda: fit_record(found, written=write),
         json,
     )
 

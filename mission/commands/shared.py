@@ -136,7 +136,7 @@ def engine_options(given: list[str] | None, mission: Mission) -> dict[str, Path]
 
     if given:
         return {name: find(name, "engine", key="--engine") for name in dict.fromkeys(given)}
-    names = dict.fromkeys(mission.written.engine_options or [mission.written.engine])
+    names = dict.fromkeys(mission.written.engine_options or (mission.written.engine,))
     if not any(names):
         raise InputRefused(
             'is missing; add engine_options = ["bypass_5", "bypass_10"] say, or give --engine',

@@ -98,12 +98,17 @@ class Span:
         """Whether it flies what is left of the distance."""
         return self.march == "distance" and self.extent is None
 
-    def cut(self, fractions: tuple[float, ...]) -> list[Span]:
-        """The span of a march by altitude in pieces, at fractions of its way, ascending."""
-        rise = self.end_altitude - self.start_altitude
-        marks = [self.start_altitude + f * rise for f in (0.0, *fractions)] + [self.end_altitude]
+    def cut(self, joints: tuple[float, ...]) -> list[Span]:
+        """The span in pieces, at altitudes [m] or Mach numbers in the order flown."""
+        if self.march == "altitude":
+            marks = (self.start_altitude, *joints, self.end_altitude)
+            return [
+                replace(self, start_altitude=low, end_altitude=high)
+                for low, high in pairwise(marks)
+            ]
+        speeds = (self.start_speed, *(SpeedRule("mach", j) for j in joints), self.end_speed)
         return [
-            replace(self, start_altitude=low, end_altitude=high) for low, high in pairwise(marks)
+            replace(self, start_speed=begins, end_speed=ends) for begins, ends in pairwise(speeds)
         ]
 
 

@@ -11,6 +11,7 @@ from engine.errors import InputRefused
 
 _INPUTS = (".toml", ".csv")  # missions, aircraft, engines; the points of a table
 
+
 def json_text(record: dict[str, Any]) -> str:
     """A record as JSON; a value that is no number raises ValueError, it is never written."""
     return json.dumps(record, allow_nan=False, ensure_ascii=False, indent=1) + "\n"

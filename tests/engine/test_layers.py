@@ -23,9 +23,9 @@ FLOORS = [
     {"energy", "matching"},
     {"interface"},
     {"ratings"},
-    {"finished"},
+    {"finished", "pods"},
     {"cycle_engine"},
-    {"envelope", "size"},
+    {"envelope", "scaling"},
     {"options"},
 ]
 ROOF = {"mission/outputs", "mission/commands", "mission/command_line.py"}

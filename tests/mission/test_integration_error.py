@@ -49,8 +49,10 @@ def test_doubling_the_steps_of_built_in_missions(name: str) -> None:
     flights = [fly(mission, aircraft, engine, refinement=steps) for steps in (1, 2)]
     assert flights[0].failure is None
     assert_error_is_honest(flights)
-    # A thousandth of a percent of block fuel: the default steps are enough for any question here.
-    assert flights[0].totals.integration_error < 1e-5 * flights[0].totals.block_fuel
+    # A hundredth of a percent of block fuel, of the steps before the last doubling; the long
+    # bridges of the fast aircraft make the most of it.
+    assert flights[0].totals.integration_error < 1e-4 * flights[0].totals.block_fuel
+    assert flights[1].totals.integration_error < 1e-6 * flights[0].totals.block_fuel
 
 
 def test_there_are_built_in_missions() -> None:

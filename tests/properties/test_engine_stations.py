@@ -321,10 +321,10 @@ def test_turbojet_keeps_its_flow_areas(jet_state: EngineState) -> None:
 
 def test_states_are_of_many_kinds(fan_state: EngineState) -> None:
     """Choked and unchoked nozzles and turbines among them, or the checks above say little."""
-    bypass_choked = fan_state.choking[1] > 0.0
+    bypass_choked = fan_state.kinks[1] > 0.0
     ratio = fan_state.stations["44"].total_pressure / fan_state.stations["41"].total_pressure
 
     assert bypass_choked.any()
     assert (~bypass_choked).any()
-    assert (fan_state.choking[0] < 0.0).any()
+    assert (fan_state.kinks[0] < 0.0).any()
     assert float(np.ptp(ratio)) > 0.01
