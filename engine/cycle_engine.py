@@ -83,8 +83,9 @@ class CycleEngine(Engine):
         wanted = np.nan if net_thrust is None else net_thrust
         flight, thrust = _broadcast(flight, wanted, np.shape(rating))
         names = np.broadcast_to(rating, flight.shape).ravel()
-        asked = self._asked(_flat(flight), names, thrust.ravel())
-        solution = self._solve(asked, _start(start))
+        near = _start(start)
+        asked = self._asked(_flat(flight), names, thrust.ravel(), near)
+        solution = self._solve(asked, near)
         state = self._finish(asked, solution)
         met = state.is_answer(self._idle(idle, asked.flat).bounds)
         outcome = np.where(met, Outcome.MET, Outcome.NOT_CONVERGED)
@@ -96,7 +97,9 @@ class CycleEngine(Engine):
         state, outcome = self._with_reheat(state, names, outcome)
         return state.to_engine_state(self.arrangement, flight, outcome)
 
-    def _asked(self, flat: FlightCondition, names: NDArray[np.str_], thrust: Array) -> Asked:
+    def _asked(
+        self, flat: FlightCondition, names: NDArray[np.str_], thrust: Array, near: Array | None
+    ) -> Asked:
         """The call in numbers: bounds and off-takes of the rating that each member names."""
         parts = {}
         for name in np.unique(names):
@@ -104,21 +107,25 @@ class CycleEngine(Engine):
             rating = pick(self.bounds, str(name), self.name)
             part = ask_rating(rating, flat.at(here))
             if rating.flat_to is not None:
-                part.bounds[FLAT] = self._flat_thrust(str(name), rating.flat_to, part.flat)
+                there = None if near is None else near[:, here]
+                part.bounds[FLAT] = self._flat_thrust(str(name), rating.flat_to, part.flat, there)
             parts[str(name)] = part
         return join(parts, names, flat, thrust)
 
     def _idle(self, idle: str, flat: FlightCondition) -> Asked:
         return ask_rating(pick(self.bounds, idle, self.name), flat)
 
-    def _flat_thrust(self, name: str, warm: float, flat: FlightCondition) -> Array:
+    def _flat_thrust(
+        self, name: str, warm: float, flat: FlightCondition, near: Array | None
+    ) -> Array:
         """Thrust [N] of the warm day on colder ones; no bound on warmer ones."""
         bound = np.full(flat.mach.size, np.inf)
         cold = np.flatnonzero(flat.temperature_deviation < warm)
         if cold.size:
             there = flat.at(cold)
             warm_flight = flight_condition(there.pressure_altitude, there.mach, warm)
-            state = self.at(warm_flight, rating=name)
+            start = None if near is None else near[:, cold]
+            state = self.at(warm_flight, rating=name, start=start)
             bound[cold] = np.where(is_unanswered(state.outcome), np.nan, state.net_thrust)
         return bound
 

@@ -118,27 +118,48 @@ class Finished:
 
 
 def is_physical(gas: Gas, path: Flowpath, *, is_lit: bool) -> NDArray[np.bool_]:
-    """Whether a converged answer may be believed; below idle the equations have others too.
-
-    Fuel-air ratio not negative and nowhere above stoichiometric, turbine entry hotter than
-    compressor delivery, pressure ratios not below one, flows positive, temperatures inside the
-    range of the gas model.
-    """
-    stations = path.stations
+    """Whether a converged answer may be believed; below idle the equations have others too."""
     good = np.isfinite(path.gross_thrust) & np.isfinite(path.fuel_flow)
-    if is_lit:
-        good &= stations["4"].fuel_air_ratio >= 0.0
-        good &= stations["4"].total_temperature >= stations["3"].total_temperature
-        if isinstance(gas, RealGas):
-            richest = gas.stoichiometric_fuel_air_ratio * (1.0 + SLACK)
-            good &= stations["4"].fuel_air_ratio <= richest
-            good &= stations["7"].fuel_air_ratio <= richest
-    order = [name for name in ("2", "21", "25", "3") if name in stations]
-    for before, after in pairwise(order):
-        ratio = stations[after].total_pressure / stations[before].total_pressure
-        good &= ratio >= 1.0 - 1e-6
-    for stream in stations.values():
-        good &= stream.mass_flow > 0.0
-        good &= stream.total_temperature >= gas.lowest_temperature
-        good &= stream.total_temperature <= gas.highest_temperature
+    for is_so in _impossible(gas, path, is_lit=is_lit).values():
+        good &= ~is_so
     return good
+
+
+def why_unphysical(state: EngineState) -> NDArray[np.str_]:
+    """What is impossible in the states that a computed engine found; empty where nothing is."""
+    evidence = state.evidence
+    if evidence is None:
+        return np.full(state.flight.shape, "")
+    causes = _impossible(evidence.gas, evidence.path, is_lit=True)
+    found = np.select(list(causes.values()), list(causes), "").reshape(state.flight.shape)
+    return np.where(state.outcome == Outcome.UNPHYSICAL, found, "")
+
+
+def _impossible(gas: Gas, path: Flowpath, *, is_lit: bool) -> dict[str, NDArray[np.bool_]]:
+    """What cannot be in an engine, and where it is, (N,); the likeliest cause first."""
+    stations, found = path.stations, {}
+    if is_lit:
+        hot, delivery = stations["4"], stations["3"]
+        found["the air alone turns it faster than is asked, and fuel would have to be taken away"] = ~(
+            (hot.fuel_air_ratio >= 0.0) & (hot.total_temperature >= delivery.total_temperature)
+        )
+    if is_lit and isinstance(gas, RealGas):
+        richest = gas.stoichiometric_fuel_air_ratio * (1.0 + SLACK)
+        found["it would need more fuel than its air can burn"] = ~(
+            (hot.fuel_air_ratio <= richest) & (stations["7"].fuel_air_ratio <= richest)
+        )
+    streams = stations.values()
+    found[f"a stream would be hotter than {gas.highest_temperature:.0f} K"] = ~np.all(
+        [stream.total_temperature <= gas.highest_temperature for stream in streams], axis=0
+    )
+    found[f"a stream would be colder than {gas.lowest_temperature:.0f} K"] = ~np.all(
+        [stream.total_temperature >= gas.lowest_temperature for stream in streams], axis=0
+    )
+    order = [stations[name] for name in ("2", "21", "25", "3") if name in stations]
+    found["a compressor would lower the pressure"] = ~np.all(
+        [b.total_pressure >= (1.0 - 1e-6) * a.total_pressure for a, b in pairwise(order)], axis=0
+    )
+    found["a stream would flow backwards"] = ~np.all(
+        [stream.mass_flow > 0.0 for stream in streams], axis=0
+    )
+    return found

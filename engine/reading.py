@@ -69,7 +69,7 @@ def _most_telling(error: ValidationError) -> Any:
 def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
     """Dotted key; an entry of a list is counted from one and named where it has a name."""
     text, at = "", content
-    for step, part in enumerate(place, start=1):
+    for part in place:
         if not isinstance(at, list | dict):
             break
         if isinstance(part, int):
@@ -78,8 +78,7 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
             text += f" {part + 1}" + (f' "{name}"' if name else "") + ":"
             at = entry if entry is not None else {}
         else:
-            is_absent = isinstance(at, dict) and part not in at and step < len(place)
-            if is_absent and part in at.values():
+            if isinstance(at, dict) and part not in at and part == at.get("kind"):
                 continue  # the discriminator of a union, not a key that anybody wrote
             text += ("" if not text else " " if text.endswith(":") else ".") + part
             at = at.get(part, {}) if isinstance(at, dict) else {}

@@ -14,7 +14,8 @@ from mission.coverage import refuse_other_day
 from mission.fuel_plan import Sums, add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
-from mission.march.joints import cut_at_joints
+from mission.march.joints import Ends, Joints, find_joints
+from mission.march.span import Span
 from mission.march.sweep import Marched, Parts, march
 from mission.march.world import World
 from mission.mission_file import Mission, MissionFile
@@ -74,11 +75,16 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
     coarse: Marched | None = None
     for _ in range(_MOST_PLANS):
-        plan = lay_out(mission, aircraft, ends)
-        plan = _with_joints(plan, world)
+        whole = lay_out(mission, aircraft, ends)
+        joints = find_joints(world, [*whole.parts.mission, *whole.parts.reserve])
+        plan = _with_spans(whole, joints.cut())
         close = closure(plan, written, aircraft)
         near = coarse if _has_same_spans(coarse, plan) else None
         coarse = march(world, plan.parts, few, guess, close, near, _COARSE_SETTLED)
+        closer = joints.cut(_flown(joints, coarse))
+        if coarse.is_settled and len(closer) != len(coarse.tracks):
+            plan = _with_spans(whole, closer)
+            coarse = march(world, plan.parts, few, coarse.stop_mass, close, None, _COARSE_SETTLED)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, guess = found, coarse.stop_mass
@@ -110,17 +116,20 @@ def _has_same_spans(marched: Marched | None, plan: FlightPlan) -> bool:
     ]
 
 
-def _with_joints(plan: FlightPlan, world: World) -> FlightPlan:
-    parts = plan.parts
-    cut = cut_at_joints(world, [*parts.mission, *parts.reserve])
-    return replace(
-        plan,
-        parts=replace(
-            parts,
-            mission=tuple(span for span in cut if not span.is_reserve),
-            reserve=tuple(span for span in cut if span.is_reserve),
-        ),
+def _with_spans(plan: FlightPlan, spans: tuple[Span, ...]) -> FlightPlan:
+    parts = replace(
+        plan.parts,
+        mission=tuple(span for span in spans if not span.is_reserve),
+        reserve=tuple(span for span in spans if span.is_reserve),
     )
+    return replace(plan, parts=parts)
+
+
+def _flown(joints: Joints, marched: Marched) -> dict[int, Ends]:
+    """Ends of the changes of speed as they came out, where masses are known."""
+    first = np.array([float(track.mach[0, 0]) for track in marched.tracks])
+    last = np.array([float(track.mach[-1, 0]) for track in marched.tracks])
+    return joints.ends_of(first, last)
 
 
 def _cruise_climb_ends(marched: Marched) -> dict[int, float]:

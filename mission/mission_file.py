@@ -63,7 +63,7 @@ class MissionFile(Table):
     note: str = ""
     aircraft: str = ""
     engine: str = ""
-    engine_options: tuple[str, ...] = ()
+    engine_options: Annotated[list[str], Field(default_factory=list)]
     payload: Annotated[Mass, Field(ge=0.0)]
     distance: Annotated[Length, Field(gt=0.0, le=LONGEST)] | None = None
     day: Day = 0.0

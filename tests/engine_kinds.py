@@ -5,7 +5,13 @@ Plain numbers of no real or notional engine.
 
 from __future__ import annotations
 
-from engine_files import TURBOFAN, TURBOJET, Content, changed
+from functools import cache
+
+import numpy as np
+from engine_files import TURBOFAN, TURBOJET, Content, changed, load
+
+from engine.atmosphere import FlightCondition, flight_condition
+from engine.cycle_engine import CycleEngine
 
 _AFTERBURNING = {
     "corrected_high_pressure_speed": 1.03,
@@ -133,3 +139,23 @@ KINDS: dict[str, Content] = {
     "mixed reheated": MIXED_REHEATED,
     "turboprop": TURBOPROP,
 }
+
+
+@cache
+def engine_of(kind: str) -> CycleEngine:
+    """The engine of a kind; made once."""
+    return load(KINDS[kind])
+
+
+def envelope_of(kind: str, steps: int, *, fastest: float = 2.0) -> FlightCondition:
+    """Where a kind flies, ``steps`` altitudes by as many Mach numbers up to ``fastest``, (N,)."""
+    highest, most = (9000.0, 0.65) if kind == "turboprop" else (13000.0, 0.9)
+    altitude, mach = _grid((0.0, highest), (0.0, min(most, fastest)), steps)
+    if "reheated" in kind and fastest > most:
+        above = _grid((5000.0, highest), (most, min(1.8, fastest)), steps)
+        altitude, mach = np.append(altitude, above[0]), np.append(mach, above[1])
+    return flight_condition(altitude, mach)
+
+
+def _grid(rows: tuple[float, float], columns: tuple[float, float], steps: int) -> np.ndarray:
+    return np.reshape(np.meshgrid(np.linspace(*rows, steps), np.linspace(*columns, steps)), (2, -1))

@@ -46,7 +46,7 @@ def size(
         _refuse_impossible(arrangement, path, flight, taken)
         raise CycleCannotRun(
             f"the cycle gives no thrust at its design point ({specific:.4g} N for each kg/s of "
-            f"air); {_remedy(path, taken)}"
+            f"air); {_remedy(path, NOTHING_TAKEN)}"
         )
     for _ in range(_MOST_ROUNDS):
         flow = float(path.stations["2"].mass_flow)

@@ -91,16 +91,40 @@ def fit_afterburner(
     if not isinstance(written, ReheatedFile) or written.afterburner is None:
         return arrangement
     table, entry = written.afterburner, float(path.jets["9"][0].total_temperature)
-    if table.temperature <= entry:
-        raise InputRefused(
-            f"= {table.temperature:.0f} K is not above the {entry:.0f} K that the dry engine "
-            "leaves at its design point; raise it",
-            key="afterburner.temperature",
-        )
+    _refuse_cold("afterburner.temperature", table.temperature, entry)
+    for name, rating in written.ratings:
+        if rating is not None and rating.afterburner_temperature is not None:
+            key = f"ratings.{name}.afterburner_temperature"
+            _refuse_cold(key, rating.afterburner_temperature, entry)
+            _refuse_rich(arrangement.gas, rating, name)
     fitted = replace(
         _afterburner(written, table), reference_temperature_ratio=table.temperature / entry
     )
     return replace(arrangement, afterburner=fitted)
+
+
+def _refuse_cold(key: str, temperature: float, entry: float) -> None:
+    """An afterburner heats what enters it; both temperatures in K."""
+    if temperature <= entry:
+        raise InputRefused(
+            f"= {temperature:.0f} K is not above the {entry:.0f} K that the dry engine leaves at "
+            "its design point; raise it",
+            key=key,
+        )
+
+
+def _refuse_rich(gas: Gas, rating: RatingTable, name: str) -> None:
+    """More fuel than the air can burn is no bound."""
+    ratio = rating.afterburner_fuel_air_ratio
+    if ratio is None or not isinstance(gas, RealGas):
+        return
+    richest = gas.stoichiometric_fuel_air_ratio
+    if ratio > richest:
+        raise InputRefused(
+            f"= {ratio:g} is above {richest:.4f}, the stoichiometric ratio of the fuel, at which "
+            "all oxygen is used; lower it or leave it out",
+            key=f"ratings.{name}.afterburner_fuel_air_ratio",
+        )
 
 
 def _afterburner(written: CycleEngineFile, table: AfterburnerTable | None) -> Any:

@@ -13,8 +13,9 @@ a standard day, on the bench: no off-takes, no inlet loss. With ``OPR`` the over
   (Mattingly, Elements of Propulsion, component technology levels; from memory).
 - An engine that burns more than the expected one is hotter and less efficient: for every hundredth
   of temperature above the expectation, efficiency is 0.002 below its own.
-- Fan pressure ratio such that the bypass jet has 0.8 of the core jet's velocity (common practice, no
-  source). The high-pressure compressor has ``OPR^0.72``, a booster what then is left.
+- Fan pressure ratio such that the bypass jet has 0.8 of the core jet's velocity (common practice,
+  no source). The high-pressure compressor has ``OPR^0.8`` (that of the Energy Efficient
+  Engine ``OPR^0.87``), a booster what then is left.
 - Mechanical efficiency 0.99 of each shaft, combustion 0.999, combustor pressure loss 5 %, ducts
   1 % (core) and 1.5 % (bypass), gross thrust coefficient 0.99 (common practice, no source).
 - Without a bypass, OPR up to 8 is one spool, more is two of equal pressure ratio.
@@ -25,15 +26,16 @@ the design point alone. The constants were set by hand on the databank rows of
 
 Ratings: take-off at the temperature of the design point on ISA+15, thrust flat on colder days;
 climb and cruise at 0.926 and 0.907 of take-off temperature, with corrected fan speed at most 1.085
-and 1.055: the Energy Efficient Engine's (NASA CR-168219, Table XII: turbine temperatures, and speeds
-estimated as everywhere here from the fan's work). Maximum continuous at 0.96, as fast as climb;
-idle, 5 % of thrust on the ground, by speeds, fuel-air ratios and delivery pressure (common practice,
-no source).
+and 1.055: the Energy Efficient Engine's (NASA CR-168219, Table XII: turbine temperatures, and
+speeds estimated as everywhere here from the fan's work). Maximum continuous at 0.96, as fast as
+climb; idle, 5 % of thrust on the ground, by speeds, fuel-air ratios and delivery pressure (common
+practice, no source).
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from functools import cache
 from itertools import pairwise
 from math import exp, isfinite, log, nan
 from typing import Any
@@ -57,7 +59,7 @@ from engine.reading import check
 
 VELOCITY_RATIO = 0.8
 # Logarithm of turbine entry temperature over the expected one: where an answer is looked for.
-_SURPLUS = (-0.25, -0.1, 0.0, 0.1, 0.2, 0.3, 0.4, 0.5)
+_SURPLUS = (-0.25, -0.1, 0.0, 0.1, 0.25, 0.5)
 _HOTTEST = 2300.0  # [K], beyond which nothing is looked for
 _WARM_DAY = 1.047  # take-off temperature over the design point's, for its thrust at ISA+15
 _GIVEN = ("name", "note", "kind", "fuel", "design_point.net_thrust", "design_point.bypass_ratio")
@@ -93,13 +95,13 @@ def cycle_content(
     surplus = _surplus(bench, wanted)
     if not bench.has_fan:
         return content(surplus)
-    fan_ratio = bench.fan_pressure_ratio(surplus)
+    fan_ratio = round(bench.fan_pressure_ratio(surplus), 5)
     high, booster = _split(overall_pressure_ratio, fan_ratio)
     whole = content(surplus)
     whole["design_point"] |= {
         "fan_pressure_ratio": fan_ratio,
-        "booster_pressure_ratio": booster,
-        "high_pressure_compressor_pressure_ratio": high,
+        "booster_pressure_ratio": round(booster, 5),
+        "high_pressure_compressor_pressure_ratio": round(high, 5),
     }
     return whole
 
@@ -146,7 +148,7 @@ class _Bench:
             engine = _with_fan(engine, fan_ratio, self.overall)
         path = self._run(engine)
         fuel_flow, thrust = float(path.fuel_flow), float(path.net_thrust(self.flight))
-        return fuel_flow / thrust if fuel_flow > 0.0 and thrust > 0.0 else nan
+        return fuel_flow / thrust if fuel_flow > 0.0 < thrust else nan
 
     def fan_pressure_ratio(self, surplus: float) -> float:
         """Where the bypass jet has its share of the core jet's velocity; NaN where nowhere."""
@@ -163,7 +165,7 @@ class _Bench:
         ends = log(0.02), log(0.9 * self.overall - 1.0)
         if not excess(ends[0]) < 0.0 < excess(ends[1]):
             return nan
-        return 1.0 + exp(float(brentq(excess, *ends, xtol=1e-10)))
+        return 1.0 + exp(float(brentq(excess, *ends, xtol=1e-8)))
 
     def _hot(self, surplus: float) -> Any:
         """The engine with the temperature and the efficiency of a surplus."""
@@ -191,15 +193,19 @@ class _Bench:
 
 
 def _surplus(bench: _Bench, wanted: float) -> float:
-    """Where the engine burns what is wanted; of two answers the hotter one."""
-    looked_at = [s for s in _SURPLUS if _temperature(bench.overall, s) <= _HOTTEST]
-    tried = [(s, found) for s in looked_at if isfinite(found := bench.consumption(s))]
-    rising = [
-        (low, high) for (low, less), (high, more) in pairwise(tried) if less <= wanted <= more
-    ]
-    if not rising:
-        raise _refusal(wanted, [found for _, found in tried], has_bypass=bench.has_fan)
-    return float(brentq(lambda s: bench.consumption(s) / wanted - 1.0, *rising[-1], xtol=1e-10))
+    """Where the engine burns what is wanted, looked for from the expected temperature outwards."""
+    burnt = cache(bench.consumption)
+    coldest, *cold, hottest = _SURPLUS
+    hottest = min(hottest, log(_HOTTEST / _temperature(bench.overall, 0.0)))
+    inside = [coldest, *(s for s in cold if s < hottest), hottest]
+    middle = inside.index(0.0)
+    is_thirstier = not burnt(0.0) > wanted  # also where the expected engine does not run
+    steps = inside[middle:] if is_thirstier else inside[middle::-1]
+    for near, far in pairwise(steps):
+        low, high = sorted((near, far))
+        if burnt(low) <= wanted <= burnt(high):
+            return float(brentq(lambda s: burnt(s) / wanted - 1.0, low, high, xtol=1e-8))
+    raise _refusal(wanted, [b for b in map(burnt, inside) if isfinite(b)], has_bypass=bench.has_fan)
 
 
 def _refusal(wanted: float, possible: list[float], *, has_bypass: bool) -> InputRefused:
@@ -222,7 +228,7 @@ def _refusal(wanted: float, possible: list[float], *, has_bypass: bool) -> Input
 
 def _temperature(overall: float, surplus: float) -> float:
     """Turbine entry temperature [K]."""
-    return 1600.0 * (overall / 40.0) ** 0.25 * exp(surplus)
+    return 1600.0 * exp(0.25 * log(overall / 40.0) + surplus)
 
 
 def _quality(overall: float, surplus: float) -> float:
@@ -232,7 +238,7 @@ def _quality(overall: float, surplus: float) -> float:
 
 def _split(overall: float, fan_ratio: float) -> tuple[float, float]:
     """Pressure ratios of the high-pressure compressor and of the booster, 1 for none."""
-    high = min(overall**0.72, overall / fan_ratio)
+    high = min(overall**0.8, overall / fan_ratio)
     return high, max(overall / (fan_ratio * high), 1.0)
 
 
@@ -251,12 +257,12 @@ def _content(
 ) -> dict[str, Any]:
     """The rule at a logarithm of temperature over the expected one; a turbofan's fan is to come."""
     temperature = _temperature(overall, surplus)
-    quality = {"polytropic": _quality(overall, surplus)}
+    quality = {"polytropic": round(_quality(overall, surplus), 5)}
     point = {
         "pressure_altitude": "0 m",
         "mach": 0.0,
         "net_thrust": f"{thrust!r} N",
-        "turbine_entry_temperature": f"{temperature!r} K",
+        "turbine_entry_temperature": f"{temperature:.2f} K",
     }
     core_nozzle = {"pressure_loss_fraction": 0.01, "gross_thrust_coefficient": 0.99}
     common = told | {
@@ -265,7 +271,7 @@ def _content(
         "idle": _idle(overall),
     }
     if bypass_ratio:
-        parts = ("fan", "booster", "high_pressure_compressor")
+        fans = ("fan", "booster", "high_pressure_compressor")
         return common | {
             "kind": "turbofan",
             "design_point": point
@@ -274,7 +280,7 @@ def _content(
                 "fan_pressure_ratio": 1.5,
                 "high_pressure_compressor_pressure_ratio": overall / 1.5,
             },
-            "efficiencies": _efficiencies((*parts, *_TURBINES), quality),
+            "efficiencies": _efficiencies((*fans, *_TURBINES), quality),
             "core_nozzle": core_nozzle,
             "bypass_nozzle": core_nozzle | {"pressure_loss_fraction": 0.015},
         }
@@ -288,7 +294,8 @@ def _content(
     parts = ("low_pressure_compressor", "high_pressure_compressor")
     return common | {
         "kind": "two-spool turbojet",
-        "design_point": point | {f"{part}_pressure_ratio": overall**0.5 for part in parts},
+        "design_point": point
+        | {f"{part}_pressure_ratio": round(overall**0.5, 5) for part in parts},
         "efficiencies": _efficiencies((*parts, *_TURBINES), quality),
         "nozzle": core_nozzle,
     }
@@ -306,7 +313,7 @@ def _ratings(temperature: float) -> dict[str, Any]:
     warm = temperature * _WARM_DAY
 
     def rating(share: float, speed: float, **more: str) -> dict[str, Any]:
-        ceiling = {"turbine_entry_temperature": f"{share * warm!r} K"}
+        ceiling = {"turbine_entry_temperature": f"{share * warm:.2f} K"}
         return ceiling | {"corrected_low_pressure_speed": speed} | more
 
     return {
@@ -319,12 +326,12 @@ def _ratings(temperature: float) -> dict[str, Any]:
 
 def _idle(overall: float) -> dict[str, Any]:
     """Floors: speed near the ground, flame in a fast descent, cabin air up high."""
-    speed = 0.57 + 0.13 * log(overall / 13.0)
+    speed = round(0.57 + 0.13 * log(overall / 13.0), 4)
     return {
         "flight": {
-            "corrected_high_pressure_speed": speed + 0.03,
+            "corrected_high_pressure_speed": round(speed + 0.03, 4),
             "fuel_air_ratio": 0.005,
-            "compressor_delivery_pressure": f"{1.0 + 0.03 * overall!r} bar",
+            "compressor_delivery_pressure": f"{1.0 + 0.03 * overall:.3f} bar",
         },
         "ground": {"corrected_high_pressure_speed": speed, "fuel_air_ratio": 0.004},
     }

@@ -10,7 +10,6 @@ from __future__ import annotations
 import difflib
 import re
 from collections.abc import Iterator, Mapping, Sequence
-from copy import deepcopy
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -173,14 +172,15 @@ def is_inside(parameter: Parameter) -> bool:
 def put(
     content: Mapping[str, Any], values: Mapping[tuple[str, ...], str | float]
 ) -> dict[str, Any]:
-    """A copy of a content with values at their places."""
-    copy = deepcopy(dict(content))
+    """A content with other values at their places; the one given stays, and what it shares."""
+    whole = dict(content)
     for place, value in values.items():
-        table = copy
+        table = whole
         for name in place[:-1]:
-            table = table.setdefault(name, {})
+            table[name] = dict(table.get(name, {}))
+            table = table[name]
         table[place[-1]] = value
-    return copy
+    return whole
 
 
 def _refuse_outside(parameter: Parameter) -> None:

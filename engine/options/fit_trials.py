@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 import numpy as np
@@ -23,6 +23,7 @@ Array = NDArray[np.float64]
 SMALL_THRUST = 0.05
 _PENALTY = 10.0  # relative error where there is no answer, far above any that is one
 _STEP = 1e-4  # of a scale, for differences
+_CLOSE = 0.1  # scales
 _PART_POWER = "part power"
 _NAMED = 3  # points without an answer that are named
 _WHY = {Outcome.NOT_CONVERGED: "finds no balance", Outcome.UNPHYSICAL: "has no physical state"}
@@ -78,7 +79,7 @@ class Bench:
     """Where engines are tried at the points.
 
     ``base`` is the trial that later ones start from; ``evaluations`` counts engines sized and
-    asked, ``failed`` those that had no answer somewhere.
+    asked, and ``failed`` holds where there was one without an answer somewhere.
     """
 
     content: Mapping[str, Any]
@@ -87,7 +88,7 @@ class Bench:
     flight: FlightCondition
     base: Trial
     evaluations: int = 1
-    failed: int = 0
+    failed: list[Array] = field(default_factory=list)
 
     @classmethod
     def of(cls, content: Mapping[str, Any], where: str, points: FitPoints) -> Bench:
@@ -102,7 +103,12 @@ class Bench:
         _refuse_unknown_ratings(engine, points)
         state = _ask(engine, points, flight, None)
         answers = _answers(points, state)
-        _refuse_unanswered(answers, points)
+        refuse_unanswered(
+            answers,
+            points,
+            "the engine to start from",
+            "change the engine file so that it can run there, or take them out",
+        )
         base = Trial(np.zeros(0), answers.rows, answers, state.unknowns)
         return cls(content, where, points, flight, base)
 
@@ -119,13 +125,18 @@ class Bench:
             engine = _engine(put(self.content, values), self.where)
             state = _ask(engine, self.points, self.flight, self.base.unknowns)
         except LonglegsError:
-            self.failed += 1
+            self.failed.append(x)
             away = float(np.linalg.norm(x - self.base.x)) if self.base.x.size else 0.0
             return Trial(x, np.full_like(self.base.rows, _PENALTY * (1.0 + away)))
         answers = _answers(self.points, state)
         trial = Trial(x, answers.rows, answers, state.unknowns)
-        self.failed += not trial.is_answered
+        if not trial.is_answered:
+            self.failed.append(x)
         return trial
+
+    def is_at_edge(self, x: Array) -> bool:
+        """Whether there was no answer close by."""
+        return any(np.linalg.norm(x - lost) < _CLOSE for lost in self.failed if lost.size == x.size)
 
     def slopes(self, parameters: Sequence[Parameter], x: Array) -> Array:
         """Derivatives (rows, p) of the errors at the base, whose parameters in scales are ``x``."""
@@ -217,8 +228,8 @@ def _refuse_unknown_ratings(engine: CycleEngine, points: FitPoints) -> None:
             )
 
 
-def _refuse_unanswered(answers: Answers, points: FitPoints) -> None:
-    """A fit starts where the engine can run."""
+def refuse_unanswered(answers: Answers, points: FitPoints, which: str, remedy: str) -> None:
+    """Refuse an engine, named by ``which``, that has no answer at some point."""
     lost = np.flatnonzero(~answers.is_answered)
     if lost.size == 0:
         return
@@ -229,7 +240,7 @@ def _refuse_unanswered(answers: Answers, points: FitPoints) -> None:
     )
     more = f"; and {lost.size - _NAMED} more" if lost.size > _NAMED else ""
     raise InputRefused(
-        f"the engine to start from has no answer at {lost.size} of {points.line.size} points "
-        f"({named}{more}); change the engine file so that it can run there, or take them out",
+        f"{which} has no answer at {lost.size} of {points.line.size} points ({named}{more}); "
+        f"{remedy}",
         where=points.where,
     )

@@ -18,17 +18,21 @@ from engine.errors import InputRefused
 from engine.options.fit_judgement import Judgement, gaps, judge
 from engine.options.fit_parameters import Parameter, choose, free_parameters, is_inside, put
 from engine.options.fit_points import FitPoints
-from engine.options.fit_trials import Answers, Bench, Trial
-from engine.options.input_model import CycleEngineFile, EngineFile
+from engine.options.fit_trials import Answers, Bench, Trial, refuse_unanswered
+from engine.options.input_model import BrochureFile, CycleEngineFile, EngineFile
+from engine.options.loading import brochure_content
 from engine.reading import check
 
 Array = NDArray[np.float64]
 # Where no keys are asked for: the first of these that the data tell apart.
-LEVERS = (
+_SIZES = (
     "scale.static_thrust",
     "scale.airflow",
     "design_point.net_thrust",
     "design_point.airflow",
+)
+LEVERS = (
+    *_SIZES,
     "efficiencies.high_pressure_compressor",
     "efficiencies.compressor",
     "design_point.turbine_entry_temperature",
@@ -73,6 +77,7 @@ class Fit:
     before, after : the engine at the points, as it was written and as it is written now
     is_free_by_rule : whether the parameters are of :data:`LEVERS`, none having been asked for
     has_settled : whether the fit ended because nothing changed any more
+    is_at_edge : whether close by there is an engine without an answer, which may have held it up
     evaluations : how often an engine was sized and asked
     failed : how many of them had no answer somewhere
     """
@@ -85,6 +90,7 @@ class Fit:
     after: Answers
     is_free_by_rule: bool
     has_settled: bool
+    is_at_edge: bool
     evaluations: int
     failed: int
 
@@ -96,19 +102,22 @@ class Fit:
 def fit(content: Mapping[str, Any], where: str, points: FitPoints, keys: Sequence[str] = ()) -> Fit:
     """Fit parameters of an engine file, ``where`` naming it, to points.
 
+    Of a brochure the engine file is meant that its four numbers make.
     ``keys`` are the parameters (:mod:`engine.options.fit_parameters`). Without them they are the
     first of :data:`LEVERS` that the points tell apart: one for each of the first two data and one
-    for every three more, :data:`MOST_LEVERS` at most.
+    for every three more, :data:`MOST_LEVERS` at most; size only where a thrust is a datum.
 
     Raises
     ------
     InputRefused
         for a kind of engine without a cycle, an unknown key, more parameters than data, parameters
-        that the points do not determine, or points where the engine as written has no answer.
+        that the points do not determine, or points where the engine as written, or as fitted, has
+        no answer.
     CycleCannotRun
         for an engine as written without a physical design point.
     """
-    known = _known(content, where)
+    content = cycle_content(content, where)
+    known = free_parameters(_checked(content, where), content)
     chosen = choose(keys, known)
     _refuse_too_many(chosen, points)
     bench = Bench.of(content, where, points)
@@ -123,6 +132,12 @@ def fit(content: Mapping[str, Any], where: str, points: FitPoints, keys: Sequenc
     values = [_value(p, x, held) for p, x, held in zip(chosen, trial.x, at_bound, strict=True)]
     final = {p.place: p.written(value) for p, value in zip(chosen, values, strict=True)}
     after = bench.cold(final)
+    refuse_unanswered(
+        after,
+        points,
+        "the engine that the fit ended with",
+        "nothing is written: start from other values, or free other keys",
+    )
     judged = judge(chosen, at_bound, slopes, float(after.rows @ after.rows), points.data_count)
     assert first.answers is not None
     return Fit(
@@ -136,26 +151,37 @@ def fit(content: Mapping[str, Any], where: str, points: FitPoints, keys: Sequenc
         after=after,
         is_free_by_rule=not keys,
         has_settled=has_settled,
+        is_at_edge=bench.is_at_edge(trial.x),
         evaluations=bench.evaluations,
-        failed=bench.failed,
+        failed=len(bench.failed),
     )
 
 
-def _known(content: Mapping[str, Any], where: str) -> dict[str, Parameter]:
-    """The keys that may be free; refused for a kind that has no cycle."""
-    try:
-        written = check({"engine": dict(content)}, EngineFile, where).engine
-    except InputRefused as refusal:
-        key = refusal.key.removeprefix("engine").removeprefix(".")
-        raise InputRefused(refusal.what, where=where, key=key) from None
+def cycle_content(content: dict[str, Any], where: str) -> dict[str, Any]:
+    """Content of an engine file with a cycle: a brochure's four numbers written out, others as is.
+
+    Raises :class:`InputRefused` for a kind that has no cycle.
+    """
+    written = _checked(content, where)
+    if isinstance(written, BrochureFile):
+        return brochure_content(written, content.get("fuel"), where)
     if not isinstance(written, CycleEngineFile):
         raise InputRefused(
             f'= "{written.kind}", which has no cycle to fit; start from a turbojet, two-spool '
-            "turbojet, turbofan, mixed turbofan or turboprop",
+            "turbojet, turbofan, mixed turbofan, turboprop or brochure",
             where=where,
             key="kind",
         )
-    return free_parameters(written, content)
+    return content
+
+
+def _checked(content: Mapping[str, Any], where: str) -> Any:
+    """An engine file of any kind."""
+    try:
+        return check({"engine": dict(content)}, EngineFile, where).engine
+    except InputRefused as refusal:
+        key = refusal.key.removeprefix("engine").removeprefix(".")
+        raise InputRefused(refusal.what, where=where, key=key) from None
 
 
 def _refuse_too_many(parameters: Sequence[Parameter], points: FitPoints) -> None:
@@ -192,9 +218,12 @@ def _levers(bench: Bench, known: Mapping[str, Parameter]) -> tuple[list[Paramete
     most = min(count, 2 + max(count - 2, 0) // 3, MOST_LEVERS)
     chosen: list[Parameter] = []
     slopes = np.empty((bench.base.rows.size, 0))
-    for parameter in (known[key] for key in LEVERS if key in known and is_inside(known[key])):
+    skipped = () if bench.points.has_thrust.any() else _SIZES
+    for parameter in (known[key] for key in LEVERS if key in known and key not in skipped):
         if len(chosen) == most:
             break
+        if not is_inside(parameter):
+            continue
         column = bench.slopes([parameter], _start([parameter]))
         trial = np.concatenate([slopes, column], axis=1)
         values = np.linalg.svd(trial, compute_uv=False)

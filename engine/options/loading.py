@@ -70,13 +70,18 @@ def _brochure_engine(
     brochure: BrochureFile, fuel: Any, where: str, assumed: tuple[str, ...]
 ) -> CycleEngine:
     """The cycle that the rule makes of four numbers; what it put in is told as assumed."""
-    numbers = brochure.model_dump(exclude={"kind", "fuel"})
-    try:
-        whole = check({"engine": cycle_content(**numbers, fuel=fuel)}, EngineFile, where).engine
-    except InputRefused as refusal:
-        raise type(refusal)(refusal.what, where=where, key=refusal.key) from None
+    whole = check({"engine": brochure_content(brochure, fuel, where)}, EngineFile, where).engine
     assert isinstance(whole, AnyCycleFile)
     return _cycle_engine(whole, where, (*assumed, *assumptions(whole)))
+
+
+def brochure_content(brochure: BrochureFile, fuel: Any, where: str) -> dict[str, Any]:
+    """Content of the engine file that the rule makes of four numbers, ``fuel`` as it is written."""
+    numbers = brochure.model_dump(exclude={"kind", "fuel"})
+    try:
+        return cycle_content(**numbers, fuel=fuel)
+    except InputRefused as refusal:
+        raise type(refusal)(refusal.what, where=where, key=refusal.key) from None
 
 
 def _cycle_engine(written: AnyCycleFile, where: str, assumed: tuple[str, ...]) -> CycleEngine:

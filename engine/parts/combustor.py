@@ -15,6 +15,7 @@ thrust, 0.8 % at 7 %, and five times as much at an overall pressure ratio of 10 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from math import exp
 
 import numpy as np
 
@@ -25,7 +26,7 @@ from engine.parts.stream import Array, Stream
 # through the combustor as at the design point), and the power of loading it grows with.
 SLOW_BURNING_LOSS = 4.2e-5
 LOADING_EXPONENT = 1.75
-_REFERENCE_LOADING = 3e6**-0.8 * np.exp(-800.0 / 300.0) * 800.0**-0.5
+_REFERENCE_LOADING = 3e6**-0.8 * exp(-800.0 / 300.0) * 800.0**-0.5
 
 
 @dataclass(frozen=True)
@@ -67,7 +68,8 @@ def relative_loading(air_loading: Array | float, design_duct_flow: float) -> Arr
     A combustor's volume is taken to go with the ``W sqrt(T) / p`` that it is designed for: equal
     velocities through equal lengths.
     """
-    return np.asarray(air_loading) / (design_duct_flow * _REFERENCE_LOADING)
+    loading: Array = np.asarray(air_loading) / (design_duct_flow * _REFERENCE_LOADING)
+    return loading
 
 
 def burn(

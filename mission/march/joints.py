@@ -8,7 +8,7 @@ known; the span is cut there.
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -47,10 +47,46 @@ class _Change:
 
 
 _Parts = Mapping[tuple[int, float, float], Array | None]
+Ends = tuple[float, float]
 
 
-def cut_at_joints(world: World, spans: Sequence[Span]) -> tuple[Span, ...]:
-    """Spans with every march at a rating cut where the engine has a kink."""
+@dataclass(frozen=True)
+class Joints:
+    """Spans, the ways along them, and the values at which the engine has a kink, by span."""
+
+    spans: tuple[Span, ...]
+    ways: Mapping[int, Way]
+    values: Mapping[int, tuple[float, ...]]
+
+    def cut(self, flown: Mapping[int, Ends] | None = None) -> tuple[Span, ...]:
+        """The spans in pieces; ``flown`` are the ends of ways as a flight had them.
+
+        Without them a way is cut only where it leads at every mass.
+        """
+        return tuple(piece for _, piece in self._pieces(flown))
+
+    def ends_of(self, first: Array, last: Array) -> dict[int, Ends]:
+        """Ends of the marches by speed, from the Mach numbers at the ends of the first pieces."""
+        ends: dict[int, Ends] = {}
+        for row, (i, piece) in enumerate(self._pieces(None)):
+            if i in self.ways and piece.march != "altitude":
+                begins = ends[i][0] if i in ends else float(first[row])
+                ends[i] = (begins, float(last[row]))
+        return ends
+
+    def _pieces(self, flown: Mapping[int, Ends] | None) -> Iterator[tuple[int, Span]]:
+        for i, span in enumerate(self.spans):
+            if i not in self.ways:
+                yield i, span
+                continue
+            way = self.ways[i]
+            ends = way.surely if flown is None else flown.get(i, way.surely)
+            for piece in _cut(way, ends, self.values.get(i, ())):
+                yield i, piece
+
+
+def find_joints(world: World, spans: Sequence[Span]) -> Joints:
+    """Where the engine has a kink on the way of every march at a rating."""
     ways = ways_of(world, spans)
     parts: _Parts = {(i, way.low, way.high): None for i, way in ways.items()}
     changes: list[_Change] = []
@@ -59,11 +95,8 @@ def cut_at_joints(world: World, spans: Sequence[Span]) -> tuple[Span, ...]:
             break
         changes = _look(world, ways, parts)
         parts = {(change.span, change.low, change.high): change.start for change in changes}
-    return tuple(
-        piece
-        for i, span in enumerate(spans)
-        for piece in ([span] if i not in ways else _cut(ways[i], i, changes))
-    )
+    values = {i: tuple(c.joint for c in changes if c.span == i) for i in ways}
+    return Joints(tuple(spans), ways, values)
 
 
 def _look(world: World, ways: Mapping[int, Way], parts: _Parts) -> list[_Change]:
@@ -119,12 +152,13 @@ def _changes(state: EngineState, first: int, span: int, values: Array) -> list[_
     return found
 
 
-def _cut(way: Way, index: int, changes: list[_Change]) -> list[Span]:
-    """A way's span in pieces at its changes, none shorter than is worth a cut."""
+def _cut(way: Way, ends: Ends, joints: tuple[float, ...]) -> list[Span]:
+    """A way's span in pieces at the joints between its ends, none shorter than worth a cut."""
+    begins, finishes = ends
     direction = 1.0 if way.high > way.low else -1.0
     kept: list[float] = []
-    for joint in sorted((c.joint for c in changes if c.span == index), key=lambda j: direction * j):
-        before = kept[-1] if kept else way.low
-        if direction * (joint - before) > way.least and direction * (way.high - joint) > way.least:
+    for joint in sorted(joints, key=lambda value: direction * value):
+        before = kept[-1] if kept else begins
+        if min(direction * (joint - before), direction * (finishes - joint)) > way.least:
             kept.append(joint)
     return way.span.cut(tuple(kept)) if kept else [way.span]

@@ -1,8 +1,7 @@
 """Ways along which the engine's thrust at a rating is known before any mass is.
 
-A march by altitude on a schedule of speed is one; of a march by speed, at one altitude, so is the
-part that it flies whatever the aircraft weighs: an end that depends on mass lies between those of
-the lightest and the heaviest aircraft.
+A march by altitude on a schedule of speed is one, a march by speed at one altitude another. An end
+of the latter may depend on mass: it lies between those of the lightest and the heaviest aircraft.
 """
 
 from __future__ import annotations
@@ -26,16 +25,18 @@ _LEAST_RISE, _LEAST_MACH = 1.0, 1e-3  # m, Mach number: no piece of a span is sh
 
 @dataclass(frozen=True)
 class Way:
-    """Part of a span, from one value of its march's variable to another.
+    """A span, from one value of its march's variable to another, in the order flown.
 
-    ``low`` and ``high`` are altitudes [m] or Mach numbers, in the order flown; ``least`` is the
-    shortest piece worth a cut.
+    ``low`` and ``high`` are altitudes [m] or Mach numbers, as far apart as any mass may have them;
+    ``surely`` are those between which it flies at every mass; ``least`` is the shortest piece
+    worth a cut.
     """
 
     span: Span
     rating: str
     low: float
     high: float
+    surely: Range
     least: float
 
     def flights(self, world: World, variable: Array) -> FlightCondition:
@@ -56,7 +57,8 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
     for i, span in enumerate(spans):
         way = None
         if span.march == "altitude":
-            way = Way(span, span.rating, span.start_altitude, span.end_altitude, _LEAST_RISE)
+            ends = (span.start_altitude, span.end_altitude)
+            way = Way(span, span.rating, *ends, ends, _LEAST_RISE)
         elif span.march in ("speed", "roll"):
             way = _by_speed(world, spans, i)
         if way is not None:
@@ -65,16 +67,17 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
 
 
 def _by_speed(world: World, spans: Sequence[Span], index: int) -> Way | None:
-    """What a march by speed flies through at any mass; none where its ends are not known apart."""
+    """The way of a march by speed; none where its ends are not known apart."""
     span = spans[index]
     starts = _machs(world, span, span.start_speed, _neighbour(spans[:index], "end"))
     ends = _machs(world, span, span.end_speed, _neighbour(spans[:index:-1], "start"))
     if starts is None or ends is None:
         return None
     if ends[0] - starts[1] > _LEAST_MACH:
-        return Way(span, span.rating, starts[1], ends[0], _LEAST_MACH)
+        return Way(span, span.rating, starts[0], ends[1], (starts[1], ends[0]), _LEAST_MACH)
     if span.march == "speed" and starts[0] - ends[1] > _LEAST_MACH:
-        return Way(span, "flight_idle", starts[0], ends[1], _LEAST_MACH)
+        surely = (starts[0], ends[1])
+        return Way(span, "flight_idle", starts[1], ends[0], surely, _LEAST_MACH)
     return None
 
 

@@ -23,6 +23,7 @@ def fit_record(found: Fit, *, written: str) -> Record:
         "data_count": found.points.data_count,
         "is_free_by_rule": found.is_free_by_rule,
         "has_settled": found.has_settled,
+        "is_at_edge": found.is_at_edge,
         "evaluations": found.evaluations,
         "evaluations_without_answer": found.failed,
         "rms_error_before": found.rms_error(found.before),

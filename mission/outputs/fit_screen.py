@@ -187,14 +187,21 @@ def _remarks(found: Fit, written: str) -> Iterable[str]:
     """What else there is to know, the file last."""
     if not found.has_settled:
         yield f"The fit had not settled after {found.evaluations} engines tried."
+    if found.is_at_edge:
+        yield (
+            "The fit ended beside values with which the engine cannot run, and these may have held "
+            "it up: try another start."
+        )
     if found.is_free_by_rule:
         yield (
             "No --free was given. Free are the first keys of a list that these data tell apart: "
-            f"one for each of the first two data, one for every three more, {MOST_LEVERS} at most."
+            f"one for each of the first two data, one for every three more, {MOST_LEVERS} at most; "
+            "size only where a thrust is told."
         )
     if _is_small(found):
         yield (
-            f"A thrust below {100.0 * SMALL_THRUST:g} % of the greatest is compared with that share of it."
+            f"A thrust below {100.0 * SMALL_THRUST:g} % of the greatest is compared with that "
+            "share of it."
         )
     if any(each.judgement.uncertainty is None for each in found.parameters):
         yield (

@@ -12,6 +12,7 @@ from rich.text import Text
 
 from engine.energy import EnergyAccount
 from engine.installation.pod import Pod
+from engine.finished import why_unphysical
 from engine.interface import Coverage, EngineState, Outcome, Station
 from mission.outputs.page import (
     WIDEST,
@@ -146,7 +147,8 @@ def flag_in_words(state: EngineState, question: Question) -> str:
         )
     if outcome in (Outcome.NOT_CONVERGED, Outcome.UNPHYSICAL):
         why = "finds no balance" if outcome == Outcome.NOT_CONVERGED else "has no physical state"
-        return f"No answer: the engine {why} at this altitude, speed and demand."
+        cause = f": {found}" if (found := str(why_unphysical(state))) else ""
+        return f"No answer: the engine {why} at this altitude, speed and demand{cause}."
     if outcome == Outcome.OUTSIDE_TABLE and question.coverage is not None:
         return f"No answer outside the engine's table: {_outside(state, question.coverage)}."
     return ""

@@ -106,6 +106,8 @@ def test_idle_burns_where_windmilling_does_not(turbofan: CycleEngine) -> None:
             "design_point.mach": 0.0,
             "design_point.fan_pressure_ratio": 1.6,
             "design_point.turbine_entry_temperature": "1640 K",
+            # A quarter of the size of the others, so a quarter of what is taken off them.
+            "off_takes.shaft_power": "15 kW",
         },
     ],
     ids=["bypass 0.5", "bypass 10", "no booster", "sized on the ground"],
@@ -148,7 +150,8 @@ def test_scaling_the_sizing_scales_the_engine(turbofan: CycleEngine) -> None:
 
     assert twice.design_airflow == 2.0 * turbofan.sizing.design_airflow
     assert twice.areas["core_nozzle"] == 2.0 * turbofan.sizing.areas["core_nozzle"]
-    assert twice.duct_flows["combustor"] == 2.0 * turbofan.sizing.duct_flows["combustor"]
+    assert twice.flows["combustor"] == 2.0 * turbofan.sizing.flows["combustor"]
+    assert twice.loadings == turbofan.sizing.loadings
 
 
 def test_the_protocol_face_is_whole(turbofan: CycleEngine) -> None:

@@ -193,17 +193,30 @@ def test_a_trial_that_cannot_run_has_a_large_error_and_is_counted() -> None:
     assert not near.is_answered
     assert not far.is_answered
     assert np.min(near.rows) >= 10.0
+    assert bench.is_at_edge(far.x + 0.05)
+    assert not bench.is_at_edge(bench.base.x)
     assert near.rows.shape == bench.base.rows.shape
-    assert (bench.evaluations, bench.failed) == (3, 2)
+    assert (bench.evaluations, len(bench.failed)) == (3, 2)
+
+
+BYPASS, FAN = "design_point.bypass_ratio", "design_point.fan_pressure_ratio"
 
 
 def test_a_fit_comes_back_from_where_no_engine_runs() -> None:
-    """A consumption that no such cycle has draws it to its edge; it ends at an engine that runs."""
-    points = scaled_fuel(points_of(TURBOFAN, ROWS), 0.8)
-    fitted = fit(TURBOFAN, "test.toml", points, (HOT, "design_point.bypass_ratio", SIZE))
+    """It is drawn there by a consumption that no such cycle has."""
+    points = scaled_fuel(points_of(TURBOFAN, ROWS), 0.7)
+    start = turbofan_content({HOT: "1405 K", BYPASS: 4.05, FAN: 2.09})
+    fitted = fit(start, "test.toml", points, (HOT, BYPASS, FAN))
     assert fitted.failed > 0
-    assert np.all(fitted.after.is_answered)
+    assert not fitted.is_at_edge
     assert fitted.rms_error(fitted.after) < 0.7 * fitted.rms_error(fitted.before)
+
+
+def test_an_engine_without_an_answer_is_not_written() -> None:
+    points = scaled_fuel(points_of(TURBOFAN, ROWS), 1.2)
+    start = turbofan_content({HOT: "1498.2858 K", BYPASS: 8.6937, FAN: 1.768})
+    with pytest.raises(InputRefused, match=r"ended with has no answer .* nothing is written"):
+        fit(start, "test.toml", points, (HOT, BYPASS, FAN))
 
 
 def test_a_thrust_that_is_out_of_reach_draws_the_engine_to_it() -> None:

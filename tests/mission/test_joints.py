@@ -23,7 +23,7 @@ from engine.atmosphere import FlightCondition, flight_condition
 from engine.quantities import FOOT, KNOT
 from mission.aircraft import load_aircraft
 from mission.airspeeds import mach_from_calibrated_airspeed
-from mission.march.joints import cut_at_joints
+from mission.march.joints import Joints, find_joints
 from mission.march.span import Span, SpeedRule
 from mission.march.world import World
 
@@ -64,7 +64,7 @@ def limit_at(world: World, rating: str, altitude: float) -> str:
 
 def test_pieces_follow_one_another(world: World) -> None:
     whole = span(0.0, 29000.0)
-    pieces = cut_at_joints(world, [whole])
+    pieces = find_joints(world, [whole]).cut()
     assert len(pieces) > 1
     assert pieces[0].start_altitude == whole.start_altitude
     assert pieces[-1].end_altitude == whole.end_altitude
@@ -111,14 +111,14 @@ def test_every_change_of_the_binding_limit_is_a_joint(
     whole = span(*ends, rating)
     expected = kinks(there, whole)
     assert expected
-    joints = [piece.end_altitude for piece in cut_at_joints(there, [whole])[:-1]]
+    joints = [piece.end_altitude for piece in find_joints(there, [whole]).cut()[:-1]]
     for kink in expected:
         assert min(abs(joint - kink) for joint in joints) < KINK
 
 
 def test_level_spans_are_left_alone(world: World) -> None:
     level = Span(segment=0, march="time", rating="cruise", start_altitude=9000.0, extent=60.0)
-    assert cut_at_joints(world, [level]) == (level,)
+    assert find_joints(world, [level]).cut() == (level,)
 
 
 def test_an_engine_without_kinks_leaves_a_climb_whole(world: World, tmp_path: Path) -> None:
@@ -135,7 +135,7 @@ def test_an_engine_without_kinks_leaves_a_climb_whole(world: World, tmp_path: Pa
         )
     )
     whole = span(0.0, 29000.0)
-    assert cut_at_joints(World(world.aircraft, engine, 0.0, 0.0), [whole]) == (whole,)
+    assert find_joints(World(world.aircraft, engine, 0.0, 0.0), [whole]).cut() == (whole,)
 
 
 def test_joints_are_what_makes_block_fuel_converge(
@@ -149,7 +149,9 @@ def test_joints_are_what_makes_block_fuel_converge(
     exact = 0.0
     exact = error(4)
     with_joints = error(1)
-    monkeypatch.setattr(mission.flight, "cut_at_joints", lambda world, spans: tuple(spans))
+    monkeypatch.setattr(
+        mission.flight, "find_joints", lambda world, spans: Joints(tuple(spans), {}, {})
+    )
     without = error(1)
     assert without > 20.0 * with_joints
     assert with_joints < 1e-7 * exact

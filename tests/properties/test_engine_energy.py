@@ -102,7 +102,7 @@ def test_account_is_made_of_its_terms(name: str, request: pytest.FixtureRequest)
     assert account.overall_efficiency == pytest.approx(
         account.thermal_efficiency * account.propulsive_efficiency, rel=1e-12
     )
-    assert float(account.shaft) == engine.arrangement.core.shaft_power
+    assert float(account.shaft) == {"turbofan": 60e3, "turbojet": 50e3}[name]
     assert float(account.mechanical_loss) > 0.0
     assert float(account.bleed) > 0.0
 
