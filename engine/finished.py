@@ -140,7 +140,7 @@ def _impossible(gas: Gas, path: Flowpath, *, is_lit: bool) -> dict[str, NDArray[
     stations, found = path.stations, {}
     if is_lit:
         hot, delivery = stations["4"], stations["3"]
-        found["the air alone turns it faster than is asked, and fuel would have to be taken away"] = ~(
+        found["the air alone turns it faster than is asked"] = ~(
             (hot.fuel_air_ratio >= 0.0) & (hot.total_temperature >= delivery.total_temperature)
         )
     if is_lit and isinstance(gas, RealGas):

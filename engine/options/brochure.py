@@ -21,15 +21,15 @@ a standard day, on the bench: no off-takes, no inlet loss. With ``OPR`` the over
 - Without a bypass, OPR up to 8 is one spool, more is two of equal pressure ratio.
 
 Temperature and fan pressure ratio are found so that the fuel consumption is met, by evaluations of
-the design point alone. The constants were set by hand on the databank rows of
+the design point alone. The constants were set by hand with a view of the databank rows of
 ``tests/published/test_databank.py``, in round numbers, and hold for all of them.
 
 Ratings: take-off at the temperature of the design point on ISA+15, thrust flat on colder days;
 climb and cruise at 0.926 and 0.907 of take-off temperature, with corrected fan speed at most 1.085
 and 1.055: the Energy Efficient Engine's (NASA CR-168219, Table XII: turbine temperatures, and
-speeds estimated as everywhere here from the fan's work). Maximum continuous at 0.96, as fast as
-climb; idle, 5 % of thrust on the ground, by speeds, fuel-air ratios and delivery pressure (common
-practice, no source).
+speeds estimated as everywhere here from the fan's work). Maximum continuous at 0.98, as fast
+as climb, flat to ISA+10; idle, 3 to 7 % of thrust on the ground, by speeds, fuel-air ratios and
+delivery pressure (common practice, no source).
 """
 
 from __future__ import annotations
@@ -318,7 +318,7 @@ def _ratings(temperature: float) -> dict[str, Any]:
 
     return {
         "take_off": rating(1.0, 1.085, flat_to="ISA+15"),
-        "maximum_continuous": rating(0.96, 1.085),
+        "maximum_continuous": rating(0.98, 1.085, flat_to="ISA+10"),
         "climb": rating(0.926, 1.085),
         "cruise": rating(0.907, 1.055),
     }
@@ -326,10 +326,10 @@ def _ratings(temperature: float) -> dict[str, Any]:
 
 def _idle(overall: float) -> dict[str, Any]:
     """Floors: speed near the ground, flame in a fast descent, cabin air up high."""
-    speed = round(0.57 + 0.13 * log(overall / 13.0), 4)
+    speed = round(0.56 + 0.13 * log(overall / 13.0), 4)
     return {
         "flight": {
-            "corrected_high_pressure_speed": round(speed + 0.03, 4),
+            "corrected_high_pressure_speed": round(speed + 0.02, 4),
             "fuel_air_ratio": 0.005,
             "compressor_delivery_pressure": f"{1.0 + 0.03 * overall:.3f} bar",
         },

@@ -57,7 +57,7 @@ def gaps(parameters: Sequence[Parameter], jacobian: Array) -> list[tuple[Array, 
 
 def in_words(parameters: Sequence[Parameter], direction: Array) -> str:
     """A direction as changes that go together, its greatest part as one scale of its parameter."""
-    order = np.argsort(-np.abs(direction))
+    order = np.argsort(-np.abs(direction)).tolist()
     step = direction / direction[order[0]]
     return ", ".join(
         f"{parameters[i].key} {parameters[i].in_unit(step[i] * parameters[i].scale):+.3g}"
@@ -79,14 +79,14 @@ def judge(
     ``jacobian`` (rows, p) is by parameters in their scales; ``square_sum`` is that of the relative
     errors left.
     """
-    inside = np.flatnonzero(~at_bound)
+    inside = np.flatnonzero(~at_bound).tolist()
     found = [Judgement(is_at_bound=True)] * len(parameters)
-    if inside.size == 0:
+    if not inside:
         return found
     free = [parameters[i] for i in inside]
     part = jacobian[:, inside]
     open_directions = gaps(free, part)
-    surplus = data_count - inside.size
+    surplus = data_count - len(inside)
     covariance = _covariance(part, len(open_directions))
     deviation = np.sqrt(np.diag(covariance))
     for place, i in enumerate(inside):

@@ -153,7 +153,9 @@ def choose(keys: Sequence[str], known: Mapping[str, Parameter]) -> list[Paramete
         key = re.sub(r"\.(polytropic|isentropic)$", "", text)
         if key not in known:
             near = difflib.get_close_matches(key, known, n=3, cutoff=0.5)
-            hint = f"did you mean {' or '.join(near)}?" if near else ", ".join(known) + " can"
+            hint = (
+                f"did you mean {' or '.join(near)}?" if near else f"these may: {', '.join(known)}"
+            )
             raise InputRefused(
                 f'"{text}" is no number of this engine file that may be free; {hint}', key="--free"
             )

@@ -38,7 +38,7 @@ class FitPoints:
     Attributes
     ----------
     where : the file
-    line : (N,) of the file
+    line : (N,) of the file; 0 for what a brochure tells
     pressure_altitude, mach, temperature_deviation : (N,) [m], [-], [K]
     rating : (N,) names of ratings and idles, or :data:`DEMAND`
     net_thrust : (N,) [N]: what a rating or idle gives, NaN where the point does not tell; where
@@ -74,6 +74,23 @@ class FitPoints:
     def data_count(self) -> int:
         """How many numbers the engine is to meet."""
         return int(self.has_thrust.sum() + self.has_fuel.sum())
+
+    def place(self, i: int) -> str:
+        """Where a point is written, in words."""
+        return f"line {self.line[i]}" if self.line[i] else "the brochure's own point"
+
+    def with_static(self, net_thrust: float, fuel_flow: float) -> FitPoints:
+        """One more, first: the fuel flow [kg/s] of a thrust [N] at rest at sea level."""
+        return FitPoints(
+            self.where,
+            np.append(0, self.line),
+            np.append(0.0, self.pressure_altitude),
+            np.append(0.0, self.mach),
+            np.append(0.0, self.temperature_deviation),
+            np.append(DEMAND, self.rating),
+            np.append(net_thrust, self.net_thrust),
+            np.append(fuel_flow, self.fuel_flow),
+        )
 
 
 def read_fit_points(path: Path) -> FitPoints:
@@ -120,13 +137,15 @@ def _points(text: str, where: str) -> FitPoints:
             raise InputRefused(str(error), key=f"line {line}") from None
     if not rows:
         raise InputRefused("there are no points below the header; add one a line")
-    line_numbers, altitude, mach, day, rating, thrust, fuel = zip(*rows, strict=True)
+    number, altitude, mach, day, rating, thrust, fuel = zip(*rows, strict=True)
     return FitPoints(
         where,
-        np.array(line_numbers),
-        *(np.array(column, dtype=float) for column in (altitude, mach, day)),
+        np.array(number),
+        np.array(altitude),
+        np.array(mach),
+        np.array(day),
         np.array(rating),
-        np.array(thrust, dtype=float),
+        np.array(thrust, dtype=float),  # None becomes NaN
         np.array(fuel, dtype=float),
     )
 

@@ -56,7 +56,8 @@ class Answers:
     def rows(self) -> Array:
         """All errors there are, those of thrust first."""
         both = np.concatenate([self.thrust_error, self.fuel_error])
-        return both[~np.isnan(both)]
+        told: Array = both[~np.isnan(both)]
+        return told
 
 
 @dataclass(frozen=True)
@@ -219,13 +220,12 @@ def _answers(points: FitPoints, state: EngineState) -> Answers:
 
 def _refuse_unknown_ratings(engine: CycleEngine, points: FitPoints) -> None:
     known = (*engine.ratings, *IDLES)
-    for line, rating, is_demand in zip(points.line, points.rating, points.is_demand, strict=True):
-        if not is_demand and rating not in known:
-            raise InputRefused(
-                f"rating = {rating}, which {engine.name} has not; it has {', '.join(known)}",
-                where=points.where,
-                key=f"line {line}",
-            )
+    for i in np.flatnonzero(~points.is_demand & ~np.isin(points.rating, known)).tolist():
+        raise InputRefused(
+            f"rating = {points.rating[i]}, which {engine.name} has not; it has {', '.join(known)}",
+            where=points.where,
+            key=points.place(i),
+        )
 
 
 def refuse_unanswered(answers: Answers, points: FitPoints, which: str, remedy: str) -> None:
@@ -234,9 +234,9 @@ def refuse_unanswered(answers: Answers, points: FitPoints, which: str, remedy: s
     if lost.size == 0:
         return
     named = "; ".join(
-        f"line {points.line[i]}, {points.pressure_altitude[i]:g} m at Mach {points.mach[i]:g}: "
+        f"{points.place(i)}, {points.pressure_altitude[i]:g} m at Mach {points.mach[i]:g}: "
         f"it {_WHY[Outcome(int(answers.outcome[i]))]}"
-        for i in lost[:_NAMED]
+        for i in lost[:_NAMED].tolist()
     )
     more = f"; and {lost.size - _NAMED} more" if lost.size > _NAMED else ""
     raise InputRefused(

@@ -47,7 +47,8 @@ LEVERS = (
 )
 MOST_LEVERS = 6
 _TOLD_APART = 0.02  # of the greatest singular value, for a key that nobody asked for
-_SETTLED = 1e-8  # relative change of the sum of squares, or of the parameters
+_SETTLED = 1e-6  # relative change of the sum of squares
+_SHORT = 1e-8  # relative change of the parameters
 _FLAT = 1e-8  # slope of the sum of squares, by a scale
 _MOST_TRIALS = 60
 _SMALL_STEP, _SMALL_MISS = 0.5, 0.02  # scales, and share of a change: derivatives still hold
@@ -99,10 +100,11 @@ class Fit:
         return float(np.sqrt(np.sum(answers.rows**2) / self.points.data_count))
 
 
-def fit(content: Mapping[str, Any], where: str, points: FitPoints, keys: Sequence[str] = ()) -> Fit:
+def fit(content: dict[str, Any], where: str, points: FitPoints, keys: Sequence[str] = ()) -> Fit:
     """Fit parameters of an engine file, ``where`` naming it, to points.
 
-    Of a brochure the engine file is meant that its four numbers make.
+    Of a brochure the engine file is meant that its four numbers make, and its static fuel
+    consumption is one more datum.
     ``keys`` are the parameters (:mod:`engine.options.fit_parameters`). Without them they are the
     first of :data:`LEVERS` that the points tell apart: one for each of the first two data and one
     for every three more, :data:`MOST_LEVERS` at most; size only where a thrust is a datum.
@@ -116,6 +118,10 @@ def fit(content: Mapping[str, Any], where: str, points: FitPoints, keys: Sequenc
     CycleCannotRun
         for an engine as written without a physical design point.
     """
+    written = _checked(content, where)
+    if isinstance(written, BrochureFile):
+        thrust = written.static_thrust
+        points = points.with_static(thrust, thrust * written.static_specific_fuel_consumption)
     content = cycle_content(content, where)
     known = free_parameters(_checked(content, where), content)
     chosen = choose(keys, known)
@@ -278,7 +284,7 @@ def _solve(
         ),
         method="trf",
         ftol=_SETTLED,
-        xtol=_SETTLED,
+        xtol=_SHORT,
         gtol=_FLAT,
         max_nfev=_MOST_TRIALS,
     )
@@ -295,11 +301,9 @@ class _Slopes:
     def foretell(self, trial: Trial) -> bool:
         """Whether they still hold at another trial."""
         step, change = trial.x - self.at.x, trial.rows - self.at.rows
-        miss = np.linalg.norm(self.slopes @ step - change)
-        return bool(
-            np.max(np.abs(step)) <= _SMALL_STEP
-            and miss <= max(_SMALL_MISS * np.linalg.norm(change), _ROUND_OFF)
-        )
+        miss = float(np.linalg.norm(self.slopes @ step - change))
+        allowed = max(_SMALL_MISS * float(np.linalg.norm(change)), _ROUND_OFF)
+        return float(np.max(np.abs(step))) <= _SMALL_STEP and miss <= allowed
 
 
 def _at_bound(parameters: Sequence[Parameter], trial: Trial, slopes: Array) -> NDArray[np.bool_]:
@@ -307,9 +311,9 @@ def _at_bound(parameters: Sequence[Parameter], trial: Trial, slopes: Array) -> N
     low = np.array([p.low / p.scale for p in parameters])
     high = np.array([p.high / p.scale for p in parameters])
     uphill = slopes.T @ trial.rows
-    return ((trial.x - low < _NEAR_BOUND) & (uphill > 0.0)) | (
-        (high - trial.x < _NEAR_BOUND) & (uphill < 0.0)
-    )
+    is_low = (trial.x - low < _NEAR_BOUND) & (uphill > 0.0)
+    is_high = (high - trial.x < _NEAR_BOUND) & (uphill < 0.0)
+    return np.asarray(is_low | is_high)
 
 
 def _value(parameter: Parameter, x: float, is_at_bound: bool) -> float:

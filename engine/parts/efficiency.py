@@ -15,7 +15,7 @@ root mean square and worst residual; ``tests/published/test_component_falloff.py
   Table 5.3.1-II), and three cycle points of its low-pressure turbine, v = 0.97 to 1: 0.48, 0.98.
 
 What the law does not tell: the textbook's operating line of Farokhi, Aircraft Propulsion, Example
-10.1, hardly falls (its own best k is 0.05; under this law 1.6, 2.7), and the fan of the Energy
+10.1, does not fall (its own best k is -0.07; under this law 1.6, 2.7), and the fan of the Energy
 Efficient Engine, designed at the top of climb, gains 2.1 points at take-off, w = 0.90 (NASA
 CR-165148, Table I), where the law loses 0.2: an engine sized at take-off keeps that fan's best.
 """

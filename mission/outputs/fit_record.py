@@ -33,6 +33,20 @@ def fit_record(found: Fit, *, written: str) -> Record:
     }
 
 
+def written_record(content: dict[str, Any], *, written: str) -> Record:
+    """A brochure written out, fitted to nothing, as ``longlegs-fit``."""
+    return {
+        "format": "longlegs-fit",
+        "version": VERSION,
+        "engine": content["name"],
+        "kind": content["kind"],
+        "written": written,
+        "data_count": 0,
+        "parameters": [],
+        "points": [],
+    }
+
+
 def _parameter(each: FittedParameter) -> Record:
     """Values in the unit that the engine file writes; the uncertainty null where none is told."""
     parameter, judgement = each.parameter, each.judgement
@@ -57,7 +71,7 @@ def _points(found: Fit) -> list[Record]:
     points = found.points
     return [
         {
-            "line": int(points.line[i]),
+            "line": int(points.line[i]) or None,
             "pressure_altitude_m": float(points.pressure_altitude[i]),
             "mach": float(points.mach[i]),
             "temperature_deviation_k": float(points.temperature_deviation[i]),

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from math import floor, log10
+from textwrap import fill
+from typing import Any
 
 import numpy as np
 from rich.console import Group, RenderableType
@@ -19,18 +21,18 @@ from mission.outputs.page import (
     Column,
     bullets,
     caution,
-    fold,
     note,
+    pairs,
     ruled_table,
     section,
     words,
 )
 from mission.outputs.units import ABSENT, METRIC, Scale, flight_level, number, signed
-from mission.outputs.wording import day_in_words, in_plain_words
+from mission.outputs.wording import in_plain_words
 
 _FORCE, _FLOW = METRIC.force, METRIC.fuel_flow
 _MOST_POINTS = 24  # on a screen; the worst ones where there are more
-_LONG_KEY, _NARROW_RATING = 30, 11  # characters
+_LONG_KEY, _NARROW_RATING = 30, 12  # characters
 
 
 def fit_screen(found: Fit, *, written: str, width: int = WIDEST) -> Group:
@@ -54,6 +56,20 @@ def fit_screen(found: Fit, *, written: str, width: int = WIDEST) -> Group:
     return Group(*parts, caution())
 
 
+def written_screen(content: Mapping[str, Any], *, written: str) -> Group:
+    """A brochure written out as the cycle that its four numbers make."""
+    point = content["design_point"]
+    rows = [(in_plain_words(key), str(value)) for key, value in point.items()]
+    return Group(
+        Text(str(content["name"]), "bold"),
+        Text("an engine file made of four numbers, fitted to no points"),
+        Text(),
+        Text(f"Written to {written} as a {content['kind']}.", "bold"),
+        section("Design point", pairs(rows)),
+        caution(),
+    )
+
+
 def _answer(found: Fit) -> str:
     """The errors before and after, and the greatest that is left."""
     before, after = (100.0 * found.rms_error(a) for a in (found.before, found.after))
@@ -62,7 +78,7 @@ def _answer(found: Fit) -> str:
     what = ("net thrust", "fuel flow")[row]
     return (
         f"Root mean square error {number(before, 3)} % before, {number(after, 3)} % now; greatest "
-        f"{_percent(both[row, at])} %, {what} of line {found.points.line[at]}."
+        f"{_percent(both[row, at])} %, {what} of {found.points.place(at)}."
     )
 
 
@@ -115,10 +131,10 @@ def _told(each: FittedParameter) -> str:
     span = f"{low} to {high}" + (f" {parameter.unit}" if parameter.unit else "")
     if judgement.is_at_bound:
         is_low = each.value - parameter.low < parameter.high - each.value
-        side, bound = ("lower", low) if is_low else ("upper", high)
+        side, bound, beyond = ("lower", low, "less") if is_low else ("upper", high, "more")
         return (
-            f"{parameter.key}: at its {side} bound, {bound}, and the points ask for more than "
-            f"that; allowed is {span}"
+            f"{parameter.key}: at its {side} bound, {bound}, and the points ask for {beyond}; "
+            f"allowed is {span}"
         )
     verdict = f"not determined by these points, along {judgement.gap}"
     if not judgement.gap:
@@ -139,8 +155,8 @@ def _points(found: Fit, *, is_wide: bool) -> tuple[str, Table]:
         Column("line"),
         Column("FL"),
         Column("Mach"),
-        *([words("day", is_wrapped=False)] if has_days else []),
-        words("asked"),
+        *([Column("ISA\nK")] if has_days else []),
+        words("asked", is_wrapped=False),
         Column(f"thrust\n{_FORCE.name}"),
         Column("before\n%"),
         Column("now\n%"),
@@ -154,11 +170,11 @@ def _points(found: Fit, *, is_wide: bool) -> tuple[str, Table]:
     for i in shown:
         rating = in_plain_words(str(points.rating[i])) or "thrust"
         table.add_row(
-            str(points.line[i]),
+            str(points.line[i] or ABSENT),
             flight_level(float(points.pressure_altitude[i])),
             number(float(points.mach[i]), 2),
-            *([day_in_words(float(points.temperature_deviation[i]))] if has_days else []),
-            rating if is_wide else fold(rating, _NARROW_RATING),
+            *([signed(f"{points.temperature_deviation[i]:g}")] if has_days else []),
+            rating if is_wide else fill(rating, _NARROW_RATING),
             thrust.bare(float(points.net_thrust[i])),
             *(_thrust_error(found, answers, i) for answers in (found.before, found.after)),
             fuel.bare(float(points.fuel_flow[i])),
@@ -198,6 +214,8 @@ def _remarks(found: Fit, written: str) -> Iterable[str]:
             f"one for each of the first two data, one for every three more, {MOST_LEVERS} at most; "
             "size only where a thrust is told."
         )
+    if not np.all(found.points.line):
+        yield "The point without a line is the brochure's own static fuel consumption."
     if _is_small(found):
         yield (
             f"A thrust below {100.0 * SMALL_THRUST:g} % of the greatest is compared with that "

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from pathlib import Path
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -15,9 +15,9 @@ from engine.errors import CycleCannotRun, InputRefused
 from engine.interface import Outcome
 from engine.options.fit_judgement import gaps, judge
 from engine.options.fit_parameters import Parameter, choose, free_parameters, put
-from engine.options.fit_points import DEMAND, FitPoints, read_fit_points
-from engine.options.fit_trials import Bench
-from engine.options.fitting import LEVERS, MOST_LEVERS, fit
+from engine.options.fit_points import DEMAND, FitPoints
+from engine.options.fit_trials import Answers, Bench
+from engine.options.fitting import LEVERS, MOST_LEVERS, cycle_content, fit
 from engine.options.input_model import CycleEngineFile, EngineFile
 from engine.reading import check
 
@@ -169,8 +169,8 @@ def test_an_engine_that_cannot_start_is_named() -> None:
     with pytest.raises(InputRefused, match=r"no answer at 1 of 2 points \(line 3, 6000 m") as told:
         fit(content, "test.toml", points, (SIZE,))
     assert told.value.where == "points.csv"
+    named = FitPoints(**{**vars(points), "rating": np.array(["maximum_afterburning"] * 2)})
     with pytest.raises(InputRefused, match="maximum_afterburning, which test turbofan has not"):
-        named = FitPoints(**{**vars(points), "rating": np.array(["maximum_afterburning"] * 2)})
         fit(TURBOFAN, "test.toml", named, (SIZE,))
 
 
@@ -212,11 +212,45 @@ def test_a_fit_comes_back_from_where_no_engine_runs() -> None:
     assert fitted.rms_error(fitted.after) < 0.7 * fitted.rms_error(fitted.before)
 
 
-def test_an_engine_without_an_answer_is_not_written() -> None:
-    points = scaled_fuel(points_of(TURBOFAN, ROWS), 1.2)
-    start = turbofan_content({HOT: "1498.2858 K", BYPASS: 8.6937, FAN: 1.768})
-    with pytest.raises(InputRefused, match=r"ended with has no answer .* nothing is written"):
-        fit(start, "test.toml", points, (HOT, BYPASS, FAN))
+def test_an_engine_without_an_answer_is_not_written(monkeypatch: pytest.MonkeyPatch) -> None:
+    points = points_of(TURBOFAN, ROWS)
+
+    def cold(bench: Bench, _: object) -> Answers:
+        assert bench.base.answers is not None
+        outcome = np.array([Outcome.MET] * 4 + [Outcome.UNPHYSICAL, Outcome.NOT_CONVERGED])
+        return replace(bench.base.answers, outcome=outcome)
+
+    monkeypatch.setattr(Bench, "cold", cold)
+    said = r"ended with has no answer at 2 of 6 .* it has no .* it finds .* nothing is written"
+    with pytest.raises(InputRefused, match=said):
+        fit(turbofan_content({SIZE: "15 kN"}), "test.toml", points, (SIZE,))
+
+
+BROCHURE: Content = {
+    "kind": "brochure",
+    "name": "four numbers",
+    "static_thrust": "120 kN",
+    "static_specific_fuel_consumption": "9.6 mg/N/s",
+    "bypass_ratio": 5.1,
+    "overall_pressure_ratio": 30.0,
+}
+
+
+def test_a_brochure_is_written_out_and_its_consumption_is_a_datum() -> None:
+    whole = cycle_content(BROCHURE, "b.toml")
+    assert whole["kind"] == "turbofan"
+    assert cycle_content(whole, "b.toml") is whole
+    cruise = (10668.0, 0.8, DEMAND, 20000.0)
+    points = scaled_fuel(points_of(whole, [cruise, (0.0, 0.0, DEMAND, 36000.0)]), 0.97)
+    fitted = fit(BROCHURE, "b.toml", points)
+    assert fitted.points.data_count == 3
+    assert fitted.points.place(0) == "the brochure's own point"
+    assert fitted.points.fuel_flow[0] == pytest.approx(120e3 * 9.6e-6)
+    assert fitted.before.fuel_error == pytest.approx([0.0, 1 / 0.97 - 1, 1 / 0.97 - 1], abs=2e-5)
+    assert fitted.parameters[0].parameter.key == CORE
+    assert fitted.rms_error(fitted.after) < 0.6 * fitted.rms_error(fitted.before)
+    quality = fitted.content["efficiencies"]
+    assert quality["high_pressure_compressor"] != quality["fan"] == whole["efficiencies"]["fan"]
 
 
 def test_a_thrust_that_is_out_of_reach_draws_the_engine_to_it() -> None:
@@ -312,72 +346,3 @@ def test_what_may_be_free_starts_inside_its_bounds_and_can_be_written(kind: str)
         middle = 0.5 * (parameter.start + min(parameter.high, 1.02 * parameter.start))
         again = known(put(content, {parameter.place: parameter.written(middle)}))
         assert again[key].start == pytest.approx(middle, rel=1e-8), key
-
-
-def csv(folder: Path, text: str) -> Path:
-    path = folder / "points.csv"
-    path.write_text(text, encoding="utf-8")
-    return path
-
-
-HEADER = "pressure_altitude_m,mach,rating,net_thrust_n,fuel_flow_kg_per_s"
-
-
-def test_points_are_read_by_the_names_of_their_columns(tmp_path: Path) -> None:
-    text = """\
-# measured on a stand
-
-rating,mach,pressure_altitude_m,temperature_deviation_k,fuel_flow_kg_per_s,net_thrust_n
-take-off,0,0,15,,75000
-  # indented
-0.5 , 0.78,10668,,0.15,8000
-,0.78,10668,-5,0.2,11000
-"""
-    points = read_fit_points(csv(tmp_path, text))
-    assert points.line.tolist() == [4, 6, 7]
-    assert points.rating.tolist() == ["take_off", DEMAND, DEMAND]
-    assert points.temperature_deviation.tolist() == [15.0, 0.0, -5.0]
-    assert points.net_thrust.tolist() == [75000.0, 8000.0, 11000.0]
-    assert np.isnan(points.fuel_flow[0])
-    assert points.data_count == 3
-
-
-@pytest.mark.parametrize(
-    ("text", "line", "said"),
-    [
-        ("", "line 1", "there is no column pressure_altitude_m"),
-        (HEADER, "", "there are no points below the header"),
-        (HEADER.replace("mach", "mack"), "line 1", "'mack' is no column; did you mean mach?"),
-        (HEADER + ",mach", "line 1", "mach stands there twice"),
-        (HEADER + "\n0,0,climb,1", "line 2", "4 values stand where the header names 5"),
-        (HEADER + "\n0,0,climb,,", "line 2", "both empty"),
-        (HEADER + "\n0,0,,5000,", "line 2", "fuel_flow_kg_per_s is empty; where no rating"),
-        (HEADER + "\n0,0,,,0.1", "line 2", "net_thrust_n is empty; where no rating"),
-        (HEADER + "\n0,0,climb,x,0.1", "line 2", "net_thrust_n = 'x' is no number"),
-        (HEADER + "\n0,0,climb,nan,0.1", "line 2", "net_thrust_n = nan is no finite number"),
-        (HEADER + "\n\n0,0,climb,1,0", "line 3", "fuel_flow_kg_per_s = 0; a lit engine"),
-        (HEADER + "\n0,6,climb,1,1", "line 2", "mach = 6 is outside 0 to 5"),
-        (HEADER + "\n4e4,0,climb,1,1", "line 2", "= 40000 is outside -2000 to 30000"),
-        (HEADER + "\n0,0,clim,1,1", "line 2", "rating = 'clim' is none of take_off"),
-        (HEADER + "\n0,0,clim,1,1", "line 2", "did you mean climb?"),
-        (HEADER + "\n0,0,windmilling,-1,0.1", "line 2", "rating = 'windmilling' is none of"),
-        (HEADER + "\n0,0,2.5,1,1", "line 2", "rating = 2.5 is outside 0 to 2"),
-        ("# day: ISA+10\n" + HEADER + "\n0,0,climb,1,1", "line 1", "10 K from standard"),
-    ],
-)
-def test_points_that_cannot_be_read_are_named(
-    tmp_path: Path, text: str, line: str, said: str
-) -> None:
-    with pytest.raises(InputRefused, match=re.escape(said)) as caught:
-        read_fit_points(csv(tmp_path, text))
-    assert caught.value.key == line
-    assert caught.value.where.endswith("points.csv")
-
-
-def test_files_that_are_none_are_named(tmp_path: Path) -> None:
-    for path, said in ((tmp_path / "no.csv", "no such file"), (tmp_path, "is a folder")):
-        with pytest.raises(InputRefused, match=said):
-            read_fit_points(path)
-    (tmp_path / "b.csv").write_bytes(b"\xff\xfe\x00")
-    with pytest.raises(InputRefused, match="not a text file"):
-        read_fit_points(tmp_path / "b.csv")

@@ -12,9 +12,9 @@ import pytest
 from engine_files import TURBOFAN, Content, load, turbofan_content, turbojet_content
 
 from engine.atmosphere import flight_condition
-from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.errors import CycleCannotRun, InputRefused
 from engine.interface import RATINGS
+from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.options.loading import engine_from_content, load_engine
 
 

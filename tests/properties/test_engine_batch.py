@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from engine_kinds import KINDS, engine_of
 
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.cycle_engine import CycleEngine
@@ -129,3 +130,30 @@ def test_any_shape_goes_in_and_comes_out(engine: CycleEngine) -> None:
     assert state.unknowns.shape[1:] == (2, 3)
     assert scalar.net_thrust.shape == ()
     assert float(scalar.net_thrust) == pytest.approx(float(state.net_thrust[1, 1]), rel=SAME)
+
+
+NEW_KINDS = [kind for kind in KINDS if kind not in ("turbofan", "turbojet")]
+
+
+@pytest.mark.parametrize("kind", NEW_KINDS)
+def test_every_kind_answers_alone_as_in_company(kind: str) -> None:
+    """Ratings, idle and thrusts of each kind in one call; reheated ones partly lit."""
+    engine, flight = engine_of(kind), batch().at(np.arange(10))
+    if kind == "turboprop":
+        flight = flight_condition(0.7 * ALTITUDES[:10], 0.7 * MACHS[:10])
+    top = engine.ratings[-1] if "reheated" in kind else "take_off"
+    most = engine.at_rating(flight, top).net_thrust
+    least = engine.at_rating(flight, "flight_idle").net_thrust
+    wanted = least + np.linspace(0.05, 1.1, 10) * (most - least)
+    wanted[[2, 5]] = np.nan, -0.5 * most[5]
+    ratings = np.array([top] * 8 + ["climb", "flight_idle"])
+    wanted[9] = np.nan
+
+    together = engine.at(flight, rating=ratings, net_thrust=wanted)
+
+    members = [np.array([i]) for i in range(10)]
+    alone = [
+        engine.at(flight.at(i), rating=str(ratings[i][0]), net_thrust=wanted[i]) for i in members
+    ]
+    assert_same(together, alone)
+    assert together.outcome[[2, 5, 9]].tolist() == [Outcome.MET, Outcome.AT_IDLE, Outcome.MET]

@@ -7,63 +7,37 @@ engine cannot change. Station 3 is compressor delivery before bleed and cooling 
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-from math import exp, log, sqrt
+from dataclasses import replace
+from math import exp
 
 import numpy as np
 import pytest
-from engine_files import TURBOFAN, TURBOJET
-from plain_gas import PlainGas, bisect
+from engine_files import TURBOFAN, TURBOJET, load, turbofan_content, turbojet_content
+from plain_engine import (
+    EXACT,
+    LOWER_HEATING_VALUE,
+    Table,
+    check_joining,
+    close,
+    combustion_efficiency,
+    duct_flow,
+    expand,
+    polytropic_compression,
+    polytropic_expansion,
+    spread,
+    tables,
+    turbine_capacity,
+    with_enthalpy,
+)
+from plain_gas import PlainGas
 
 from engine.atmosphere import flight_condition
 from engine.cycle_engine import CycleEngine
-from engine.interface import EngineState, Outcome, Station
+from engine.interface import EngineState, Outcome
+from engine.parts.efficiency import COMPRESSOR_FALL, TURBINE_DESIGN_SPEED
 
 STATES = 20
-# Plain sums of polynomials on both sides: round-off, and the inverse of the last iteration.
-EXACT = 1e-9
-LOWER_HEATING_VALUE = 43.0319e6  # [J/kg] the file's default
-
-
-@dataclass(frozen=True)
-class Place:
-    """One station of one state as plain numbers, with its gas."""
-
-    total_temperature: float
-    total_pressure: float
-    flow: float
-    fuel_air_ratio: float
-
-    @property
-    def gas(self) -> PlainGas:
-        return PlainGas(self.fuel_air_ratio)
-
-    @property
-    def enthalpy(self) -> float:
-        return self.gas.enthalpy(self.total_temperature)
-
-    @property
-    def power(self) -> float:
-        return self.flow * self.enthalpy
-
-    @property
-    def fuel(self) -> float:
-        return self.flow * self.fuel_air_ratio / (1.0 + self.fuel_air_ratio)
-
-
-Table = dict[str, Place]
-
-
-def plain(stations: dict[str, Station], member: int) -> Table:
-    return {
-        name: Place(
-            float(there.total_temperature[member]),
-            float(there.total_pressure[member]),
-            float(there.mass_flow[member]),
-            float(there.fuel_air_ratio[member]),
-        )
-        for name, there in stations.items()
-    }
+CONSTANT = {"efficiencies.away_from_design": "constant"}
 
 
 def states_of(engine: CycleEngine) -> EngineState:
@@ -83,90 +57,32 @@ def states_of(engine: CycleEngine) -> EngineState:
 
 
 @pytest.fixture(scope="module")
-def fan_state(turbofan: CycleEngine) -> EngineState:
-    return states_of(turbofan)
+def fan_state() -> EngineState:
+    return states_of(load(turbofan_content(CONSTANT)))
 
 
 @pytest.fixture(scope="module")
-def jet_state(turbojet: CycleEngine) -> EngineState:
-    return states_of(turbojet)
+def jet_state() -> EngineState:
+    return states_of(load(turbojet_content(CONSTANT)))
 
 
-def tables(state: EngineState) -> list[Table]:
-    return [plain(dict(state.stations), member) for member in range(STATES)]
-
-
-def close(found: float, wanted: float, within: float = EXACT) -> None:
-    assert found == pytest.approx(wanted, rel=within)
-
-
-def polytropic_compression(before: Place, after: Place) -> float:
-    gas = before.gas
-    rise = gas.entropy(after.total_temperature) - gas.entropy(before.total_temperature)
-    return gas.gas_constant * log(after.total_pressure / before.total_pressure) / rise
-
-
-def polytropic_expansion(before: Place, after: Place) -> float:
-    gas = before.gas
-    drop = gas.entropy(before.total_temperature) - gas.entropy(after.total_temperature)
-    return drop / (gas.gas_constant * log(before.total_pressure / after.total_pressure))
-
-
-def turbine_capacity(entry: Place, exit_pressure: float, critical: float) -> float:
-    """Choked throat [m2] of a turbine; Stodola's ellipse below choking."""
-    gas = entry.gas
-    gamma = gas.gamma(entry.total_temperature)
-    choked = sqrt(gamma) * (2.0 / (gamma + 1.0)) ** ((gamma + 1.0) / (2.0 * (gamma - 1.0)))
-    root = sqrt(gas.gas_constant * entry.total_temperature)
-    beyond = max(exit_pressure / entry.total_pressure - critical, 0.0) / (1.0 - critical)
-    return entry.flow * root / (entry.total_pressure * choked) / sqrt(1.0 - beyond**2)
-
-
-@dataclass(frozen=True)
-class PlainJet:
-    """A convergent nozzle by hand: throat area [m2], velocity [m/s], static pressure [Pa]."""
-
-    area: float
-    velocity: float
-    pressure: float
-
-
-def expand(entry: Place, ambient: float) -> PlainJet:
-    gas, total = entry.gas, entry.total_temperature
-    constant, enthalpy, entropy = gas.gas_constant, entry.enthalpy, gas.entropy(total)
-
-    def supersonic(temperature: float) -> float:
-        speed_squared = 2.0 * (enthalpy - gas.enthalpy(temperature))
-        return gas.gamma(temperature) * constant * temperature - speed_squared
-
-    def pressure_at(temperature: float) -> float:
-        return entry.total_pressure * exp((gas.entropy(temperature) - entropy) / constant)
-
-    temperature = bisect(supersonic, 0.5 * total, total)
-    if pressure_at(temperature) < ambient:
-        temperature = bisect(lambda t: pressure_at(t) - ambient, 0.5 * total, total)
-    pressure = pressure_at(temperature)
-    velocity = sqrt(2.0 * (enthalpy - gas.enthalpy(temperature)))
-    return PlainJet(entry.flow * constant * temperature / (pressure * velocity), velocity, pressure)
+@pytest.fixture(scope="module")
+def falling_state(turbofan: CycleEngine) -> EngineState:
+    """The same turbofan with efficiencies that fall off; its last member is its design point."""
+    found = states_of(turbofan)
+    flight = flight_condition(
+        np.append(found.flight.pressure_altitude, 10668.0),
+        np.append(found.flight.mach, 0.78),
+        np.append(found.flight.temperature_deviation, 0.0),
+    )
+    return turbofan.at_thrust(flight, np.append(found.net_thrust, 16e3), rating="take_off")
 
 
 def check_combustor(table: Table, content: dict[str, dict[str, float]], bypassing: float) -> None:
     """Flow past and through the combustor, its heat and its pressure."""
-    delivery, hot = table["3"], table["4"]
-    air = delivery.flow * (1.0 - bypassing)
-    close(hot.flow, air * (1.0 + hot.fuel_air_ratio))
-    heat = content["combustor"]["efficiency"] * LOWER_HEATING_VALUE * hot.fuel
-    close(air * delivery.enthalpy + heat, hot.power)
+    close(combustion_efficiency(table, bypassing), content["combustor"]["efficiency"])
     loss = content["combustor"]["pressure_loss_fraction"]
-    close(hot.total_pressure, delivery.total_pressure * (1.0 - loss))
-
-
-def check_joining(before: Place, after: Place, added: Place, flow: float) -> None:
-    """Cooling air of ``flow`` joins: mass, fuel and energy."""
-    close(after.flow, before.flow + flow)
-    close(after.fuel, before.fuel)
-    close(after.power, before.power + flow * added.enthalpy)
-    close(after.total_pressure, before.total_pressure)
+    close(table["4"].total_pressure, table["3"].total_pressure * (1.0 - loss))
 
 
 @pytest.mark.parametrize("member", range(STATES))
@@ -275,10 +191,6 @@ def test_turbojet_thrust_shaft_and_combustor(jet_state: EngineState, member: int
     assert by_hand == pytest.approx(found, rel=0, abs=1e-6 * (found + ram))
 
 
-def spread(values: list[float]) -> float:
-    return (max(values) - min(values)) / min(values)
-
-
 def test_turbofan_keeps_its_flow_areas(fan_state: EngineState) -> None:
     pressures = fan_state.flight.static_pressure
     capacities: dict[str, list[float]] = {}
@@ -328,3 +240,84 @@ def test_states_are_of_many_kinds(fan_state: EngineState) -> None:
     assert (~bypass_choked).any()
     assert (fan_state.kinks[0] < 0.0).any()
     assert float(np.ptp(ratio)) > 0.01
+
+
+def law_of_compressor(flow_ratio: float) -> float:
+    """Efficiency over that of the design point."""
+    return 1.0 / (1.0 + COMPRESSOR_FALL * (1.0 - flow_ratio) ** 2)
+
+
+def law_of_turbine(speed_ratio: float) -> float:
+    """The same of a turbine, by blade speed over the root of specific work."""
+    best = TURBINE_DESIGN_SPEED
+    return (1.0 + (1.0 - best) ** 2) / (1.0 + (1.0 - best * speed_ratio) ** 2)
+
+
+def low_turbine_work(table: Table) -> float:
+    """[J/kg] before cooling air joins behind the last turbine."""
+    joined = TURBOFAN["cooling"]["downstream_fraction"] * table["25"].flow * table["3"].enthalpy
+    return (table["45"].power + joined - table["5"].power) / table["45"].flow
+
+
+def test_compressors_fall_off_with_corrected_flow(falling_state: EngineState) -> None:
+    found, design = tables(falling_state), tables(falling_state)[-1]
+    given = TURBOFAN["efficiencies"]
+
+    for table in found:
+        for part, before, after in (
+            ("fan", "2", "21"),
+            ("booster", "21", "25"),
+            ("high_pressure_compressor", "25", "3"),
+        ):
+            ratio = duct_flow(table[before]) / duct_flow(design[before])
+            wanted = given[part]["polytropic"] * law_of_compressor(ratio)
+            # Idling fans raise enthalpy by a few kJ/kg: round-off of 300 kJ/kg over that.
+            close(polytropic_compression(table[before], table[after]), wanted, 1e-8)
+
+
+def test_turbines_fall_off_with_loading(falling_state: EngineState) -> None:
+    found, given = tables(falling_state), TURBOFAN["efficiencies"]
+
+    def loadings(table: Table) -> dict[str, float]:
+        """Square of blade speed, which goes with the spool's work, over specific work."""
+        high = table["3"].enthalpy - table["25"].enthalpy
+        low = table["21"].enthalpy - table["2"].enthalpy
+        return {
+            "high": high / (table["41"].enthalpy - table["44"].enthalpy),
+            "low": low / low_turbine_work(table),
+        }
+
+    design = loadings(found[-1])
+    for table in found:
+        ratio = {name: value / design[name] for name, value in loadings(table).items()}
+        high = given["high_pressure_turbine"]["polytropic"] * law_of_turbine(ratio["high"] ** 0.5)
+        close(polytropic_expansion(table["41"], table["44"]), high, 1e-8)
+        leaves = with_enthalpy(table["45"], table["45"].enthalpy - low_turbine_work(table))
+        leaves = replace(leaves, total_pressure=table["5"].total_pressure)
+        low = given["low_pressure_turbine"]["polytropic"] * law_of_turbine(ratio["low"] ** 0.5)
+        close(polytropic_expansion(table["45"], leaves), low, 1e-8)
+
+
+def test_what_falls_off_is_in_the_account(falling_state: EngineState) -> None:
+    """Unburnt fuel and the drag of the shafts, from the stations alone."""
+    account, design = falling_state.energy, TURBOFAN["combustor"]["efficiency"]
+    assert account is not None
+    bypassing = sum(TURBOFAN["cooling"].values()) + 0.01
+
+    burnt = []
+    for member, table in enumerate(tables(falling_state)):
+        burnt.append(combustion_efficiency(table, bypassing))
+        heat = LOWER_HEATING_VALUE * table["4"].fuel
+        close(float(account.unburnt_fuel[member]), (1.0 - burnt[-1]) * heat, 1e-7)
+        given = table["41"].power - table["44"].power + low_turbine_work(table) * table["45"].flow
+        taken = (
+            table["3"].power - table["25"].power
+            + table["21"].power + table["13"].power - table["2"].power
+            + table["25"].power - table["21"].power
+            + 60e3
+        )  # fmt: skip
+        close(float(account.mechanical_loss[member]), given - taken, 1e-6)
+
+    assert burnt[-1] == pytest.approx(design, rel=EXACT)
+    assert min(burnt) < design
+    assert max(burnt) < design + 1e-3
