@@ -17,7 +17,7 @@ from engine.finished import SLACK, Finished, is_physical
 from engine.gas import DISSOCIATION_FELT_ABOVE, RealGas
 from engine.installation.pod import GivenPod, Pod
 from engine.interface import OPTIONAL_RATINGS, Engine, EngineState, Outcome, is_unanswered
-from engine.matching import Demand, Solution, Throttle, evaluate_at, solve
+from engine.matching import Solution, Throttle, evaluate_at, solve
 from engine.parts.stream import Stream
 from engine.pods import pod_of
 from engine.ratings import FLAT, Asked, Ratings, ask_rating, join, pick, reheat_bounds
@@ -197,14 +197,20 @@ class CycleEngine(Engine):
         from low power.
         """
         solution = self._match(asked, start)
+        adrift = np.flatnonzero(~solution.is_converged & ~asked.is_thrust)
+        if adrift.size == 0:
+            return solution
+        near = np.full_like(solution.unknowns, np.nan)
+        at_idle = adrift[~asked.is_ceiling[adrift]]
+        if at_idle.size:
+            near[:, at_idle] = self._low_power(asked.at(at_idle))
         for row in range(len(LIMIT_NAMES)):
             bounded = np.isfinite(asked.bounds[row]) & (asked.bounds[row] > 0.0)
             lost = np.flatnonzero(bounded & ~solution.is_converged & ~asked.is_thrust)
             if lost.size == 0:
                 continue
             there = asked.at(lost)
-            near = np.where(there.is_ceiling, np.nan, self._low_power(there))
-            trial = self._match(there.with_one_limit(row), near)
+            trial = self._match(there.with_one_limit(row), near[:, lost])
             shares = self._finish(there, trial).limit_shares
             low, high = shares >= 1.0 - SLACK, shares <= 1.0 + SLACK
             holds = np.where(there.is_ceiling, high.all(axis=0), low.all(axis=0))

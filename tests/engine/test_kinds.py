@@ -138,7 +138,7 @@ def test_an_option_that_cannot_work_is_refused(
         (
             TURBOPROP,
             {"off_takes.shaft_power": "8 MW"},
-            r"ahead of it = \d+\.\d kPa.*lower power_turbine_share .*off_takes.shaft_power, 8000 kW",
+            r"ahead of it = \d+\.\d kPa.*lower power_turbine_share .*shaft_power, 8000 kW",
         ),
         (
             MIXED,
@@ -178,7 +178,7 @@ def test_a_design_point_without_balance_says_by_how_much_and_what_helps(
 )
 def test_what_the_mixer_s_refusal_advises_helps(remedy: Content) -> None:
     low = {"design_point.fan_pressure_ratio": 3.2}
-    with pytest.raises(CycleCannotRun, match="raise fan_pressure_ratio or mixer.core_mach"):
+    with pytest.raises(CycleCannotRun, match="raise fan_pressure_ratio or mixer"):
         load(changed(MIXED, low))
 
     engine = load(changed(MIXED, {**low, **remedy}))
@@ -198,7 +198,7 @@ def test_thrust_is_sized_for_beside_any_shaft_power() -> None:
 
 
 def test_a_size_that_is_not_found_is_refused() -> None:
-    with pytest.raises(CycleCannotRun, match="lower off_takes.shaft_power|shaft_power, 8000 kW"):
+    with pytest.raises(CycleCannotRun, match=r"off_takes\.shaft_power, 8000 kW|lower off_takes"):
         load(changed(KINDS["turbofan"], {"off_takes.shaft_power": "8 MW"}))
 
 
