@@ -89,7 +89,8 @@ def light(
             stream.fuel_air_ratio / richest[at],
             lit.net_thrust(situation.flight.at(at)) / most_thrust[at],
         )
-        return np.max(np.stack(shares), axis=0) - 1.0
+        worst: Array = np.max(np.stack(shares), axis=0)
+        return worst - 1.0
 
     with np.errstate(all="ignore"):
         found = find_root(

@@ -11,8 +11,8 @@ from rich.table import Table
 from rich.text import Text
 
 from engine.energy import EnergyAccount
-from engine.installation.pod import Pod
 from engine.finished import why_unphysical
+from engine.installation.pod import Pod
 from engine.interface import Coverage, EngineState, Outcome, Station
 from mission.outputs.page import (
     WIDEST,
