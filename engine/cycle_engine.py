@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 
 import numpy as np
@@ -33,7 +33,7 @@ class CycleEngine(Engine):
     arrangement: Arrangement
     sizing: Sizing
     bounds: Ratings
-    given_pod: GivenPod = GivenPod()
+    given_pod: GivenPod = field(default_factory=GivenPod)
     greatest_mach: float = 0.85
 
     @property

@@ -104,8 +104,9 @@ def solve(
 ) -> Solution:
     """Match the engine at N flight conditions (1-d arrays); unlit where ``demand`` is None.
 
-    ``taken`` (N,) is what the aircraft takes off it. ``start`` (n, N) are unknowns of an earlier solution near by; without it the design point is
-    where the iteration starts. Never raises for a member that has no answer.
+    ``taken`` (N,) is what the aircraft takes off it. ``start`` (n, N) are unknowns of an earlier
+    solution near by; without it the design point is where the iteration starts. Never raises for a
+    member that has no answer.
     """
     count = flight.mach.size
     cold = np.repeat(sizing.unknowns[:, None], count, axis=1)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import fields
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -94,7 +95,7 @@ def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: 
         return _booked_steps(track, elapsed, altitude)
     flight, propulsion = nodes.flight, nodes.propulsion
 
-    def column(value: Array) -> Array:
+    def column(value: Any) -> Any:
         return np.broadcast_to(value, track.mass.shape)[:, 0]
 
     thrust = column(propulsion.thrust)
@@ -111,6 +112,7 @@ def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: 
         fuel_flow=column(propulsion.fuel_flow),
         flight_path_angle=column(nodes.path_angle),
         rating_thrust=thrust if rating_thrust is None else rating_thrust,
+        held_by=column(propulsion.held_by),
     )
 
 
@@ -130,6 +132,7 @@ def _booked_steps(track: Track, elapsed: Array, altitude: float) -> Steps:
         fuel_flow=none,
         flight_path_angle=none,
         rating_thrust=none,
+        held_by=np.array(["", ""]),
     )
 
 

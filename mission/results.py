@@ -20,7 +20,8 @@ class Steps:
     """State at the nodes of a segment, both ends included; arrays of one length.
 
     Joints inside a segment stand twice, once for each side. Forces are of the whole aircraft;
-    on the ground lift and drag are zero.
+    on the ground lift and drag are zero. ``held_by`` names the limit of the engine that holds its
+    thrust, empty where thrust follows from drag.
     """
 
     elapsed_time: Array
@@ -35,6 +36,7 @@ class Steps:
     fuel_flow: Array
     flight_path_angle: Array
     rating_thrust: Array
+    held_by: NDArray[np.str_]
 
     @cached_property
     def static_pressure(self) -> Array:

@@ -34,8 +34,9 @@ def size(
     Raises
     ------
     CycleCannotRun
-        a turbine that cannot drive its compressor, a nozzle that cannot flow, no fuel needed, or
-        no positive thrust; the message says which and by how much.
+        a turbine that cannot drive its compressor, a nozzle that cannot flow, streams that cannot
+        meet in a mixer, no fuel needed, no positive thrust, or shaft power beside which no size is
+        found; the message says which and by how much.
     """
     _, face = take_in(arrangement.gas, arrangement.inlet, flight)
     unknowns = arrangement.design_unknowns(face)
@@ -64,8 +65,8 @@ def size(
     _refuse_impossible(arrangement, path, flight, taken)
     if not abs(factor - 1.0) < _SETTLED:
         raise CycleCannotRun(
-            f"no size gives net_thrust = {net_thrust:.4g} N beside the shaft power taken off, "
-            f"{float(taken.shaft_power) / 1e3:.0f} kW; lower off_takes.shaft_power"
+            f"no size is found that gives net_thrust = {net_thrust:.4g} N beside the shaft power "
+            f"taken off, {float(taken.shaft_power) / 1e3:.0f} kW; lower off_takes.shaft_power"
         )
     return _sizing(arrangement, flight, unknowns, path), path
 

@@ -30,12 +30,14 @@ class Request:
 class Answer:
     """Net thrust [N], fuel flow [kg/s] and outcome of one engine, in the request's shape.
 
+    ``held_by`` names the limit that holds the thrust, empty where a thrust was asked for.
     ``unknowns`` (n, ...) are the engine's own, where the next call may start.
     """
 
     net_thrust: Array
     fuel_flow: Array
     outcome: NDArray[np.int64]
+    held_by: NDArray[np.str_]
     unknowns: Array
 
 
@@ -54,7 +56,9 @@ def ask(engine: Engine, requests: dict[int, Request]) -> dict[int, Answer]:
     )
     ratings = np.repeat([request.rating for request in members], sizes)
     state = engine.at(flight, rating=ratings, net_thrust=thrust, start=_start(members))
-    return _split(state, list(requests), [request.flight.shape for request in members])
+    held_by = np.where(np.isnan(thrust), state.binding_limit_names, "")
+    shapes = [request.flight.shape for request in members]
+    return _split(state, held_by, list(requests), shapes)
 
 
 def _start(members: list[Request]) -> Array | None:
@@ -80,7 +84,12 @@ def join(flights: list[FlightCondition]) -> FlightCondition:
     )
 
 
-def _split(state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]) -> dict[int, Answer]:
+def _split(
+    state: EngineState,
+    held_by: NDArray[np.str_],
+    keys: list[int],
+    shapes: list[tuple[int, ...]],
+) -> dict[int, Answer]:
     ends = np.cumsum([int(np.prod(shape)) for shape in shapes])[:-1]
     parts = zip(
         keys,
@@ -88,6 +97,7 @@ def _split(state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]) -
         np.split(state.net_thrust, ends),
         np.split(state.fuel_flow, ends),
         np.split(state.outcome, ends),
+        np.split(held_by, ends),
         np.split(state.unknowns, ends, axis=1),
         strict=True,
     )
@@ -96,7 +106,8 @@ def _split(state: EngineState, keys: list[int], shapes: list[tuple[int, ...]]) -
             thrust.reshape(shape),
             fuel.reshape(shape),
             outcome.reshape(shape),
+            held.reshape(shape),
             unknowns.reshape(-1, *shape) if unknowns.size else np.empty((0, *shape)),
         )
-        for key, shape, thrust, fuel, outcome, unknowns in parts
+        for key, shape, thrust, fuel, outcome, held, unknowns in parts
     }

@@ -114,11 +114,16 @@ class Span:
 
 @dataclass(frozen=True)
 class Propulsion:
-    """All engines together: thrust [N], fuel flow [kg/s], and the engine's outcome."""
+    """All engines together: thrust [N], fuel flow [kg/s], the engine's outcome, what holds it.
+
+    ``held_by`` names the limit of the engine that holds the thrust, empty where thrust follows
+    from drag.
+    """
 
     thrust: Array
     fuel_flow: Array
     outcome: NDArray[np.int64]
+    held_by: NDArray[np.str_]
 
 
 @dataclass(frozen=True)

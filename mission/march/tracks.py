@@ -237,15 +237,17 @@ def set_nodes(world: World, track: Track, rest: Array) -> None:
     aircraft = world.aircraft
     flow_factor = aircraft.engine_count * aircraft.fuel_flow_factor * span.fuel_flow_factor
     flow, thrust, outcome = answer.fuel_flow * flow_factor, answer.net_thrust, answer.outcome
+    held_by = answer.held_by
     if track.is_level and span.end_speed.kind == "least_fuel":
         better = level.least_fuel_step(world, track.flight, mass, flow)
         track.mach_change = float(np.max(np.abs(better - track.mach)))
         track.mach = better
-        flow, thrust, outcome = flow[1], thrust[1], outcome[1]
+        flow, thrust, outcome, held_by = flow[1], thrust[1], outcome[1], held_by[1]
     propulsion = Propulsion(
         np.broadcast_to(thrust * aircraft.engine_count, mass.shape),
         np.broadcast_to(flow, mass.shape),
         np.broadcast_to(outcome, mass.shape),
+        np.broadcast_to(held_by, mass.shape),
     )
     if track.is_level:
         extent = np.maximum(rest, 0.0) if span.extent is None else np.atleast_1d(span.extent)

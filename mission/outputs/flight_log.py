@@ -12,6 +12,7 @@ from rich.text import Text
 from engine.fuels import KEROSENE
 from mission.outputs.assumptions import assumed_by_file
 from mission.outputs.failure import failure_headline, failure_statement, limit_scale
+from mission.outputs.held_by import holders
 from mission.outputs.margins import least_margin, room
 from mission.outputs.page import (
     WIDEST,
@@ -73,6 +74,9 @@ def flight_log(
         parts.append(
             section("Why it cannot be flown", pairs(failure_statement(flight, units, scales)))
         )
+    held = list(holders(shown))
+    if held:
+        parts.append(section("What holds the engine's thrust", pairs(held)))
     parts.append(section("Assumed, as no file states it", pairs(assumed_by_file(flight.assumed))))
     if flight.warnings:
         parts.append(section("Warnings", bullets(flight.warnings)))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import groupby
 from typing import Any
 
 import numpy as np
@@ -104,6 +105,7 @@ def _segment(log: SegmentLog) -> Record:
         "mass_end_kg": log.mass_end,
         "mass_released_kg": log.mass_released,
         "mass_received_kg": log.mass_received,
+        "held_by": [name for name, _ in groupby(steps.held_by.tolist()) if name],
         "steps": {
             "elapsed_time_s": steps.elapsed_time.tolist(),
             "pressure_altitude_m": steps.pressure_altitude.tolist(),

@@ -198,8 +198,13 @@ def test_thrust_is_sized_for_beside_any_shaft_power() -> None:
 
 
 def test_a_size_that_is_not_found_is_refused() -> None:
-    with pytest.raises(CycleCannotRun, match=r"off_takes\.shaft_power, 8000 kW|lower off_takes"):
-        load(changed(KINDS["turbofan"], {"off_takes.shaft_power": "8 MW"}))
+    changes = {
+        "design_point.airflow": None,
+        "design_point.net_thrust": "16 kN",
+        "off_takes.shaft_power": "14.75 MW",
+    }
+    with pytest.raises(CycleCannotRun, match=r"no size is found .*14750 kW; lower off_takes"):
+        load(changed(KINDS["turbojet"], changes))
 
 
 @pytest.mark.parametrize("kind", KINDS)
@@ -294,3 +299,21 @@ def test_low_power_is_asked_for_in_speed_or_thrust(kind: str) -> None:
 
 
 SPEEDS = (("flight", 0.72), ("ground", 0.66))
+
+
+def test_close_to_idle_one_temperature_belongs_to_two_states() -> None:
+    """Why neither part power nor idle is ever asked for by turbine entry temperature."""
+    engine, flight = engine_of("mixed"), flight_condition(12000.0, 0.45)
+    most = float(engine.at_rating(flight, "cruise").net_thrust)
+    least = float(engine.at_rating(flight, "flight_idle").net_thrust)
+
+    state = engine.at_thrust(flight, least + np.geomspace(1e-3, 1.0, 30) * (most - least))
+
+    assert np.all(state.outcome == Outcome.MET)
+    temperature = state.turbine_entry_temperature
+    lowest = int(np.argmin(temperature))
+    assert 3 < lowest < 25
+    assert np.all(np.diff(temperature[: lowest + 1]) < 0.0)
+    assert np.all(np.diff(temperature[lowest:]) > 0.0)
+    assert state.evidence is not None
+    assert np.all(np.diff(state.evidence.path.limits["corrected_high_pressure_speed"]) > 0.0)

@@ -111,9 +111,7 @@ def test_an_engine_given_takes_the_place_of_the_missions(longlegs: Longlegs) -> 
     refused = longlegs("fly", "m")
     assert refused.status == 2
     assert "m.toml" in refused.err
-    assert (
-        'engine is not named; add engine = "brochure_fan" say, or give --engine' in refused.err
-    )
+    assert 'engine is not named; add engine = "brochure_fan" say, or give --engine' in refused.err
     run = longlegs("fly", "m", "--engine", "bypass_10.toml", "--json", "-")
     assert run.status == 0
     assert read_json(run.out)["engine"] == "bypass-10 turbofan"

@@ -29,7 +29,8 @@ DOWN: Content = {"kind": "descent", "calibrated_airspeed": "280 kt", "mach": 0.7
 def assert_finite(flight: Flight) -> None:
     for log in flight.segments:
         for name, values in vars(log.steps).items():
-            assert np.all(np.isfinite(values)), f"{log.name}: {name}"
+            numbers = values if name != "held_by" else np.zeros(0)
+            assert np.all(np.isfinite(numbers)), f"{log.name}: {name}"
     for name, value in vars(flight.totals).items():
         assert np.isfinite(value), name
 

@@ -25,7 +25,7 @@ TOTALS = {
 }  # fmt: skip
 SEGMENT = {
     "name", "kind", "purpose", "fuel_kg", "time_s", "ground_distance_m", "mass_start_kg",
-    "mass_end_kg", "mass_released_kg", "mass_received_kg", "steps",
+    "mass_end_kg", "mass_released_kg", "mass_received_kg", "steps", "held_by",
 }  # fmt: skip
 STEPS = {
     "elapsed_time_s", "pressure_altitude_m", "mach", "mass_kg", "lift_n", "weight_n", "drag_n",

@@ -127,3 +127,13 @@ def test_so_does_a_mach_number_outside_it(tmp_path: Path) -> None:
     assert failure is not None
     assert failure.what == "Mach number in the engine's table"
     assert failure.bound == 0.7 < failure.value <= 0.74
+
+
+def test_the_table_among_the_profiles_is_that_of_its_engine() -> None:
+    # Written on a coarser grid than the default, so as to stay small; 0.1 % is what is asked for.
+    demo_mission = PROFILES / "coast_watch.toml"
+    cycle, table = (
+        flown(demo_mission, load_engine(PROFILES / f"{name}.toml")).totals.block_fuel
+        for name in ("bypass_5", "tabulated_fan")
+    )
+    assert table == pytest.approx(cycle, rel=1e-3)

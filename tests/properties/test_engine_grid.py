@@ -76,11 +76,11 @@ def test_windmilling_drags_and_burns_nothing(kind: str) -> None:
 
 
 # Bypass Mach number at mixer entry from 0.1 to 0.94; outside, the design point is refused.
-@pytest.mark.parametrize("fan_pressure_ratio", [3.25, 3.3, 3.4, 4.2, 4.65])
+@pytest.mark.parametrize("fan_pressure_ratio", [3.25, 3.4, 4.65])
 @pytest.mark.parametrize("base", [MIXED, PART_MIXED], ids=["mixed", "part mixed"])
 def test_mixers_that_hardly_match_run(base: dict[str, object], fan_pressure_ratio: float) -> None:
     engine = load(changed(base, {"design_point.fan_pressure_ratio": fan_pressure_ratio}))
-    altitude, mach = np.meshgrid(np.linspace(0.0, 12000.0, 8), np.linspace(0.0, 0.9, 8))
+    altitude, mach = np.meshgrid(np.linspace(0.0, 12000.0, 6), np.linspace(0.0, 0.9, 6))
     flight = flight_condition(altitude.ravel(), mach.ravel())
 
     for rating in (*engine.ratings, *IDLES):
