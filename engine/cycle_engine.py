@@ -240,7 +240,16 @@ class CycleEngine(Engine):
         return unknowns
 
     def windmilling(self, flight: FlightCondition) -> EngineState:
-        """Unlit state: no fuel, no bleed, no shaft power taken; negative thrust is its drag."""
+        """Unlit state: no fuel, no bleed, no shaft power taken; negative thrust is its drag.
+
+        The little air that it passes loses next to nothing in the inlet's duct; a fixed loss would
+        leave a slow one no pressure to turn by.
+        """
+        inlet = replace(self.arrangement.inlet, total_pressure_recovery=1.0)
+        arrangement = replace(self.arrangement, inlet=inlet)
+        return replace(self, arrangement=arrangement)._windmilling(flight)
+
+    def _windmilling(self, flight: FlightCondition) -> EngineState:
         flat = _flat(flight)
         count = flat.mach.size
         taken = NOTHING_TAKEN.spread(count)

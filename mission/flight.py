@@ -84,6 +84,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         closer = joints.cut(_flown(joints, coarse))
         if coarse.is_settled and len(closer) != len(coarse.tracks):
             plan = _with_spans(whole, closer)
+            close = closure(plan, written, aircraft)
             coarse = march(world, plan.parts, few, coarse.stop_mass, close, None, _COARSE_SETTLED)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)

@@ -1,9 +1,9 @@
 """Joints that only the engine knows: where another limit takes over.
 
 Thrust at a rating has a kink where the binding limit changes or total temperature passes a theta
-break, and a softer one where a nozzle chokes. Along a way (a climb on its schedule, a change of speed at one altitude) both depend on the
-way's variable alone, so that they are found once, by looking closer and closer, before any mass is
-known; the span is cut there.
+break, and a softer one where a nozzle chokes. Along a way (a climb on its schedule, a change of
+speed at one altitude) both depend on the way's variable alone, so that they are found once, by
+looking closer and closer, before any mass is known; the span is cut there.
 """
 
 from __future__ import annotations

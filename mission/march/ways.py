@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition, flight_condition
-from mission.march.rules import level_air, mach_at
+from mission.march.rules import hold_bounds, level_air, mach_at
 from mission.march.span import Span, SpeedRule
 from mission.march.throttled import on_schedule
 from mission.march.world import World
@@ -67,18 +67,26 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
 
 
 def _by_speed(world: World, spans: Sequence[Span], index: int) -> Way | None:
-    """The way of a march by speed; none where its ends are not known apart."""
+    """The way of a march by speed; none where an end has no speed of its own.
+
+    Where its ends may lie on either side of each other it surely leads nowhere yet.
+    """
     span = spans[index]
     starts = _machs(world, span, span.start_speed, _neighbour(spans[:index], "end"))
     ends = _machs(world, span, span.end_speed, _neighbour(spans[:index:-1], "start"))
     if starts is None or ends is None:
         return None
-    if ends[0] - starts[1] > _LEAST_MACH:
-        return Way(span, span.rating, starts[0], ends[1], (starts[1], ends[0]), _LEAST_MACH)
-    if span.march == "speed" and starts[0] - ends[1] > _LEAST_MACH:
-        surely = (starts[0], ends[1])
-        return Way(span, "flight_idle", starts[1], ends[0], surely, _LEAST_MACH)
-    return None
+    slows_down = span.march == "speed" and ends.likely < starts.likely
+    if slows_down:
+        low, high, surely = starts.highest, ends.lowest, (starts.lowest, ends.highest)
+    else:
+        low, high, surely = starts.lowest, ends.highest, (starts.highest, ends.lowest)
+    direction = -1.0 if slows_down else 1.0
+    if direction * (high - low) <= _LEAST_MACH:
+        return None
+    if direction * (surely[1] - surely[0]) <= 0.0:
+        surely = (low, low)
+    return Way(span, "flight_idle" if slows_down else span.rating, low, high, surely, _LEAST_MACH)
 
 
 def _neighbour(others: Sequence[Span], end: str) -> SpeedRule | None:
@@ -89,17 +97,28 @@ def _neighbour(others: Sequence[Span], end: str) -> SpeedRule | None:
     return near.end_speed if end == "end" else near.start_speed
 
 
-def _machs(world: World, span: Span, rule: SpeedRule, neighbour: SpeedRule | None) -> Range | None:
-    """Least and greatest Mach number of a rule over all masses; None where it names none."""
+@dataclass(frozen=True)
+class _Machs:
+    """Mach numbers of a rule over all masses, and a likely one."""
+
+    lowest: float
+    likely: float
+    highest: float
+
+
+def _machs(world: World, span: Span, rule: SpeedRule, neighbour: SpeedRule | None) -> _Machs | None:
+    """What a rule may come to at any mass; None where it names no speed."""
     known = neighbour if rule.kind == "neighbour" else rule
-    if (
-        known is None
-        or known.kind in ("neighbour", "least_fuel")
-        or (known.kind == "lift_coefficient" and known.value is None)
-    ):
+    if known is None or known.kind == "neighbour":
+        return None
+    if known.kind == "lift_coefficient" and known.value is None:
         return None
     aircraft = world.aircraft
     masses = np.array([[aircraft.operating_empty_mass, aircraft.maximum_ramp_mass]])
     air = level_air(span.start_altitude, world.temperature_deviation, 1)
     machs = mach_at(known, aircraft, air, masses)
-    return float(machs.min()), float(machs.max())
+    lowest, highest = machs.min(), machs.max()
+    if known.kind == "least_fuel":
+        slow, fast = hold_bounds(aircraft, air, masses)
+        lowest, highest = slow.min(), fast.max()
+    return _Machs(float(lowest), float(machs.mean()), float(highest))

@@ -96,7 +96,7 @@ def kinks(world: World, piece: Span) -> list[float]:
 @pytest.mark.parametrize(
     ("engine", "rating", "deviation"),
     [
-        ("bypass_1", "climb", 0.0),
+        ("bypass_1", "climb", -10.0),
         ("bypass_5", "climb", -10.0),
         ("bypass_5", "flight_idle", 10.0),
         ("bypass_5", "take_off", 5.0),  # a third limit governs for 200 m between two others
