@@ -10,6 +10,7 @@ if TYPE_CHECKING:
     from engine.errors import CycleCannotRun, InputRefused, LonglegsError, OutOfRange
     from engine.interface import Engine, EngineState, Outcome
     from engine.options.loading import load_engine
+    from engine.scaling import scaled, scaled_to
 
 __all__ = [
     "CycleCannotRun",
@@ -22,6 +23,8 @@ __all__ = [
     "Outcome",
     "flight_condition",
     "load_engine",
+    "scaled",
+    "scaled_to",
 ]
 
 _ROOMS = {
@@ -35,6 +38,8 @@ _ROOMS = {
     "Outcome": "engine.interface",
     "flight_condition": "engine.atmosphere",
     "load_engine": "engine.options.loading",
+    "scaled": "engine.scaling",
+    "scaled_to": "engine.scaling",
 }
 
 

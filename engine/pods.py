@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from engine.atmosphere import SEA_LEVEL_PRESSURE, SEA_LEVEL_TEMPERATURE
 from engine.cycles.flowpath import Arrangement
 from engine.cycles.mixed_turbofan import MixedTurbofan
 from engine.cycles.situation import Sizing
@@ -28,11 +29,11 @@ def pod_of(
     """
     face = at_rest.stations["2"]
     design_flow = sizing.flows.get("fan", sizing.flows["high_pressure_compressor"])
-    flow = max(float(face.mass_flow * np.sqrt(face.total_temperature) / face.total_pressure),
-               design_flow)  # fmt: skip
+    flow = float(face.mass_flow * np.sqrt(face.total_temperature) / face.total_pressure)
+    greatest = max(flow, design_flow)
     return pod(
         _bare(arrangement, at_rest, greatest_mach),
-        corrected_airflow=flow * 101325.0 / 288.15**0.5,
+        corrected_airflow=greatest * SEA_LEVEL_PRESSURE / SEA_LEVEL_TEMPERATURE**0.5,
         proportions=SHORT_COWL if isinstance(arrangement, Turbofan) else FULL_COWL,
         given=given,
     )

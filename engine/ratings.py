@@ -16,7 +16,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import FlightCondition
+from engine.atmosphere import SEA_LEVEL_TEMPERATURE, FlightCondition
 from engine.cycles.flowpath import LIMIT_NAMES
 from engine.cycles.situation import OffTakes
 from engine.errors import InputRefused
@@ -74,8 +74,8 @@ class Rating:
         """Total temperature over that of the theta break, less one; 0 where there is none."""
         if self.throttle_ratio is None:
             return np.zeros_like(flight.mach)
-        theta = flight.static_temperature * (1.0 + 0.2 * flight.mach**2) / 288.15
-        return theta / self.throttle_ratio - 1.0
+        total_temperature = flight.static_temperature * (1.0 + 0.2 * flight.mach**2)
+        return total_temperature / SEA_LEVEL_TEMPERATURE / self.throttle_ratio - 1.0
 
 
 Ratings = Mapping[str, Rating]

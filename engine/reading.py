@@ -22,22 +22,33 @@ class Table(BaseModel):
     model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
 
 
-def read_toml(path: Path) -> dict[str, Any]:
-    """The content of a TOML file; :class:`InputRefused` names the file and what is wrong."""
+def read_text(path: Path, kind: str, most_bytes: int, *, remedy: str = "") -> str:
+    """Text of a file in UTF-8; ``kind`` says what it is, ``remedy`` what to do if it is missing.
+
+    Raises :class:`InputRefused` naming the file and what is wrong.
+    """
     where = str(path)
     try:
         if path.is_dir():
             raise InputRefused("is a folder, not a file", where=where)
-        if path.stat().st_size > _LARGEST_FILE:
-            size = path.stat().st_size / 1e6
-            raise InputRefused(f"is {size:.1f} MB; an input file has at most 1 MB", where=where)
-        text = path.read_bytes().decode("utf-8-sig")
+        if (size := path.stat().st_size) > most_bytes:
+            raise InputRefused(
+                f"is {size / 1e6:.1f} MB; {kind} has at most {most_bytes / 1e6:.0f} MB",
+                where=where,
+            )
+        return path.read_bytes().decode("utf-8-sig")
     except FileNotFoundError:
-        raise InputRefused("there is no such file", where=where) from None
+        raise InputRefused(f"there is no such file{remedy}", where=where) from None
     except UnicodeDecodeError:
         raise InputRefused("is not a text file in UTF-8", where=where) from None
     except OSError as error:
         raise InputRefused(f"cannot be read: {error.strerror}", where=where) from None
+
+
+def read_toml(path: Path) -> dict[str, Any]:
+    """The content of a TOML file; :class:`InputRefused` names the file and what is wrong."""
+    where = str(path)
+    text = read_text(path, "an input file", _LARGEST_FILE)
     try:
         content = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:

@@ -75,10 +75,13 @@ def run_core(
     turbine_entry_temperature: Array,
     situation: Situation,
 ) -> CoreFlow:
-    """The gas generator between its entry and the turbine exit; an unlit one takes no fuel."""
-    efficiency = core.compressor_efficiency.of_compressor(
-        situation.flow_ratio("high_pressure_compressor", entry.duct_flow)
-    )
+    """The gas generator between its entry and the turbine exit; an unlit one takes no fuel.
+
+    ``pressure_ratio`` is of the compressor, ``turbine_entry_temperature`` [K] total, at station 4;
+    arrays of one shape.
+    """
+    flow_ratio = situation.flow_ratio("high_pressure_compressor", entry.duct_flow)
+    efficiency = core.compressor_efficiency.of_compressor(flow_ratio)
     delivery = compress(gas, entry, pressure_ratio, efficiency)
     flow, rise = entry.mass_flow, delivery.enthalpy - entry.enthalpy
     bleed = delivery.with_flow(situation.taken.customer_bleed_fraction * flow)
@@ -95,24 +98,15 @@ def run_core(
     hot, unburnt = _heat(gas, core, burner_air, turbine_entry_temperature, loading, situation)
 
     rotor_entry = mix_in(gas, hot, vane_air) if core.vane_cooling_fraction else hot
-    compressor_power = flow * rise - rotor_saved - last_saved
-    shaft_power = situation.taken.shaft_power
-    delivered = compressor_power + shaft_power
+    delivered = flow * rise - rotor_saved - last_saved + situation.taken.shaft_power
     turbine_power = delivered + shaft_drag(
         delivered,
         core.mechanical_efficiency,
         core.turbine_efficiency.falls_off and situation.is_lit,
-        situation.flow_ratio("high_pressure_compressor", entry.duct_flow),
+        flow_ratio,
     )
     speed_over_work = rise * rotor_entry.mass_flow / turbine_power
-    turbine_efficiency = core.turbine_efficiency.of_turbine(
-        situation.loading_ratio("high_pressure_turbine", speed_over_work)
-    )
-    rotor_exit = expand_by_power(gas, rotor_entry, turbine_power, turbine_efficiency)
-    share = flow_share(
-        rotor_exit.total_pressure / rotor_entry.total_pressure,
-        core.turbine_critical_pressure_ratio,
-    )
+    rotor_exit, area = _expand(gas, core, rotor_entry, turbine_power, speed_over_work, situation)
     turbine_exit = mix_in(gas, rotor_exit, rotor_air) if core.rotor_cooling_fraction else rotor_exit
     return CoreFlow(
         delivery=delivery,
@@ -122,9 +116,9 @@ def run_core(
         rotor_exit=rotor_exit,
         turbine_exit=turbine_exit,
         downstream_cooling=last_air,
-        turbine_area=corrected_flow_area(gas, rotor_entry) / share,
+        turbine_area=area,
         rise=rise,
-        mechanical_loss=turbine_power - compressor_power - shaft_power,
+        mechanical_loss=turbine_power - delivered,
         unburnt_fuel=unburnt,
         fuel_flow=hot.mass_flow - burner_air.mass_flow,
         flows={
@@ -134,6 +128,35 @@ def run_core(
         },
         loadings={"high_pressure_turbine": speed_over_work},
     )
+
+
+def _expand(
+    gas: Gas,
+    core: Core,
+    entry: Stream,
+    power: Array,
+    speed_over_work: Array,
+    situation: Situation,
+) -> tuple[Stream, Array]:
+    """The rotor's exit at the power [W] of its turbine, and the choked throat [m2] it would need.
+
+    ``speed_over_work`` [kg/J] is its loading, with which efficiency goes away from design.
+    """
+    efficiency = core.turbine_efficiency.of_turbine(
+        situation.loading_ratio("high_pressure_turbine", speed_over_work)
+    )
+    leaves = expand_by_power(gas, entry, power, efficiency)
+    share = flow_share(
+        leaves.total_pressure / entry.total_pressure, core.turbine_critical_pressure_ratio
+    )
+    return leaves, corrected_flow_area(gas, entry) / share
+
+
+def behind_last_turbine(gas: Gas, core: Core, leaves: Stream, flow: CoreFlow) -> Stream:
+    """What leaves the last turbine, with the cooling air that joins behind it."""
+    if not core.downstream_cooling_fraction:
+        return leaves
+    return mix_in(gas, leaves, flow.downstream_cooling)
 
 
 def _tap(delivery: Stream, rise: Array, flow: Array, share: float) -> tuple[Stream, Array]:

@@ -9,7 +9,7 @@ from typing import Any, ClassVar, Protocol, cast
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import FlightCondition
+from engine.atmosphere import SEA_LEVEL_PRESSURE, SEA_LEVEL_TEMPERATURE, FlightCondition
 from engine.cycles.situation import Situation, Sizing
 from engine.fuels import Fuel
 from engine.gas import Gas
@@ -183,7 +183,8 @@ class Arrangement(Protocol):
 
 def corrected_flow_factor(face: Stream) -> Array:
     """Physical over corrected mass flow at the engine face: delta over root theta."""
-    return (face.total_pressure / 101325.0) / np.sqrt(face.total_temperature / 288.15)
+    delta = face.total_pressure / SEA_LEVEL_PRESSURE
+    return delta / np.sqrt(face.total_temperature / SEA_LEVEL_TEMPERATURE)
 
 
 def spool_speeds(

@@ -60,9 +60,10 @@ def run_front(
     bypass_ratio: Array,
     situation: Situation,
 ) -> FrontFlow:
-    """Fan and booster at a core airflow [kg/s], a pressure ratio and a bypass ratio."""
+    """Fan and booster at a core airflow [kg/s], a pressure ratio and a bypass ratio; one shape."""
     entry = situation.face.with_flow(core_flow * (1.0 + bypass_ratio))
-    efficiency = low.fan_efficiency.of_compressor(situation.flow_ratio("fan", entry.duct_flow))
+    flow_ratio = situation.flow_ratio("fan", entry.duct_flow)
+    efficiency = low.fan_efficiency.of_compressor(flow_ratio)
     fan_exit = compress(gas, entry, fan_pressure_ratio, efficiency)
     fan_rise = fan_exit.enthalpy - entry.enthalpy
     hub = fan_exit.with_flow(core_flow)
@@ -70,13 +71,11 @@ def run_front(
     flows, ratios = {"fan": entry.duct_flow}, {}
     fan_power = entry.mass_flow * fan_rise
     if low.hub_efficiency is not None:
-        hub_efficiency = low.hub_efficiency.of_compressor(
-            situation.flow_ratio("fan", entry.duct_flow)
-        )
+        hub_entry = entry.with_flow(core_flow)
+        hub_efficiency = low.hub_efficiency.of_compressor(flow_ratio)
         hub = _turned_with_fan(
-            gas, entry.with_flow(core_flow), "hub", low.hub_pressure_ratio, hub_efficiency,
-            fan_rise, situation,
-        )  # fmt: skip
+            gas, hub_entry, "hub", low.hub_pressure_ratio, hub_efficiency, fan_rise, situation
+        )
         ratios["hub"] = (hub.enthalpy - entry.enthalpy) / fan_rise
         fan_power = bypass.mass_flow * fan_rise + core_flow * (hub.enthalpy - entry.enthalpy)
     core_entry = hub

@@ -13,11 +13,12 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core
 from engine.cycles.exhaust import Exhaust, let_out
-from engine.cycles.flowpath import Flowpath, core_limits, corrected_flow_factor
-from engine.cycles.low_spool import LowSpool, drive, run_front
+from engine.cycles.flowpath import Flowpath, corrected_flow_factor
+from engine.cycles.low_spool import LowSpool
 from engine.cycles.situation import Situation
+from engine.cycles.two_spools import join_spools, run_spools
 from engine.fuels import Fuel
 from engine.gas import Gas
 from engine.installation.drag import Installation
@@ -25,7 +26,7 @@ from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.mixer import Passage, at_mach, at_static_pressure, mix
 from engine.parts.nozzle import Jet, Nozzle, discharge
-from engine.parts.stream import Array, Stream, mix_in
+from engine.parts.stream import Array, Stream
 
 
 @dataclass(frozen=True)
@@ -140,69 +141,46 @@ class MixedTurbofan:
         )
 
     def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:
-        gas, low, core, face = self.gas, self.low_spool, self.core, situation.face
         fan_ratio, bypass_ratio, core_ratio, temperature_ratio, static, airflow = np.exp(unknowns)
-        core_flow = airflow * corrected_flow_factor(face)
-        front = run_front(gas, low, core_flow, fan_ratio, bypass_ratio, situation)
-        hot = temperature_ratio * face.total_temperature
-        flow = run_core(gas, core, front.core_entry, core_ratio, hot, situation)
-        turbine = drive(gas, low, flow, front, situation)
-        last = turbine.exit
-        if core.downstream_cooling_fraction:
-            last = mix_in(gas, last, flow.downstream_cooling)
-        inside, around, together = self._meet(last, front.bypass, static, situation)
+        spools = run_spools(
+            self.gas,
+            self.low_spool,
+            self.core,
+            fan_ratio,
+            bypass_ratio,
+            core_ratio,
+            temperature_ratio,
+            airflow,
+            situation,
+        )
+        last, bypass = spools.last, spools.front.bypass
+        inside, around, together = self._meet(last, bypass, static, situation)
         friction = situation.duct_loss("mixer", self.mixer.pressure_loss_fraction, together.stream)
         mixed = together.stream.with_pressure_loss(friction)
-        exhaust = let_out(gas, self.exhaust_nozzle, self.afterburner, mixed, situation)
+        exhaust = let_out(self.gas, self.exhaust_nozzle, self.afterburner, mixed, situation)
         jet = self._jet(exhaust, (inside, around), situation)
-        rises = {
-            "low_pressure": (front.fan_rise, front.entry.total_temperature),
-            "high_pressure": (flow.rise, front.core_entry.total_temperature),
-        }
-        return Flowpath(
+        return join_spools(
+            spools,
+            situation,
             stations={
-                "2": front.entry,
-                "21": front.hub,
-                "25": front.core_entry,
-                "3": flow.delivery,
-                "4": flow.combustor_exit,
-                "41": flow.rotor_entry,
-                "44": flow.rotor_exit,
-                "45": flow.turbine_exit,
-                "5": last,
+                "21": spools.front.hub,
                 "6": inside.stream,
                 "64": mixed,
                 "7": exhaust.nozzle_entry,
-                "13": front.bypass,
+                "13": bypass,
                 "16": around.stream,
             },
             jets={"9": (exhaust.nozzle_entry, jet)},
             areas={
-                "high_pressure_turbine": flow.turbine_area,
-                "low_pressure_turbine": turbine.area,
                 "mixer_core": inside.area,
                 "mixer_bypass": around.area,
                 "core_nozzle": jet.throat_area,
             },
             flows={
-                **front.flows,
-                **flow.flows,
                 **exhaust.flows,
                 "core_duct": last.duct_flow,
-                "bypass_duct": front.bypass.duct_flow,
+                "bypass_duct": bypass.duct_flow,
                 "mixer": together.stream.duct_flow,
             },
-            loadings={
-                **flow.loadings,
-                **turbine.loadings,
-                "mixer_static_share": inside.static_pressure / around.stream.total_pressure,
-            },
-            limits=core_limits(flow.combustor_exit, flow.delivery, rises, situation.sizing),
-            shaft_power=situation.taken.shaft_power + np.zeros_like(flow.rise),
-            bleed=flow.bleed,
-            mechanical_loss=flow.mechanical_loss + turbine.mechanical_loss,
-            unburnt_fuel=flow.unburnt_fuel,
-            fuel_flow=flow.fuel_flow,
-            spool_rises=rises,
-            work_ratios=front.work_ratios,
+            loadings={"mixer_static_share": inside.static_pressure / around.stream.total_pressure},
         )

@@ -68,7 +68,7 @@ def size(
             f"no size is found that gives net_thrust = {net_thrust:.4g} N beside the shaft power "
             f"taken off, {float(taken.shaft_power) / 1e3:.0f} kW; lower off_takes.shaft_power"
         )
-    return _sizing(arrangement, flight, unknowns, path), path
+    return _sizing(flight, unknowns, path), path
 
 
 def _run(
@@ -79,9 +79,7 @@ def _run(
         return run(arrangement, unknowns, Situation(face, flight, taken, None))
 
 
-def _sizing(
-    arrangement: Arrangement, flight: FlightCondition, unknowns: np.ndarray, path: Flowpath
-) -> Sizing:
+def _sizing(flight: FlightCondition, unknowns: np.ndarray, path: Flowpath) -> Sizing:
     return Sizing(
         unknowns=unknowns,
         areas={name: float(area) for name, area in path.areas.items()},

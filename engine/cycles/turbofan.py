@@ -11,17 +11,18 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core
 from engine.cycles.exhaust import let_out
-from engine.cycles.flowpath import Flowpath, core_limits, corrected_flow_factor
-from engine.cycles.low_spool import LowSpool, drive, run_front
+from engine.cycles.flowpath import Flowpath, corrected_flow_factor
+from engine.cycles.low_spool import LowSpool
 from engine.cycles.situation import Situation
+from engine.cycles.two_spools import join_spools, run_spools
 from engine.fuels import Fuel
 from engine.gas import Gas
 from engine.installation.drag import Installation
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
-from engine.parts.stream import Array, Stream, mix_in
+from engine.parts.stream import Array, Stream
 
 
 @dataclass(frozen=True)
@@ -61,35 +62,28 @@ class Turbofan:
         )
 
     def evaluate(self, unknowns: Array, situation: Situation) -> Flowpath:
-        gas, low, core, face = self.gas, self.low_spool, self.core, situation.face
         fan_ratio, bypass_ratio, core_ratio, temperature_ratio, airflow = np.exp(unknowns)
-        core_flow = airflow * corrected_flow_factor(face)
-        front = run_front(gas, low, core_flow, fan_ratio, bypass_ratio, situation)
-        hot = temperature_ratio * face.total_temperature
-        flow = run_core(gas, core, front.core_entry, core_ratio, hot, situation)
-        turbine = drive(gas, low, flow, front, situation)
-        last = turbine.exit
-        if core.downstream_cooling_fraction:
-            last = mix_in(gas, last, flow.downstream_cooling)
-        inner = let_out(gas, self.exhaust_nozzle, None, last, situation)
-        outer = let_out(gas, self.bypass_nozzle, None, front.bypass, situation, "bypass_nozzle")
-        rises = {
-            "low_pressure": (front.fan_rise, front.entry.total_temperature),
-            "high_pressure": (flow.rise, front.core_entry.total_temperature),
-        }
-        return Flowpath(
+        spools = run_spools(
+            self.gas,
+            self.low_spool,
+            self.core,
+            fan_ratio,
+            bypass_ratio,
+            core_ratio,
+            temperature_ratio,
+            airflow,
+            situation,
+        )
+        bypass = spools.front.bypass
+        inner = let_out(self.gas, self.exhaust_nozzle, None, spools.last, situation)
+        outer = let_out(self.gas, self.bypass_nozzle, None, bypass, situation, "bypass_nozzle")
+        return join_spools(
+            spools,
+            situation,
             stations={
-                "2": front.entry,
-                "21": front.hub,
-                "25": front.core_entry,
-                "3": flow.delivery,
-                "4": flow.combustor_exit,
-                "41": flow.rotor_entry,
-                "44": flow.rotor_exit,
-                "45": flow.turbine_exit,
-                "5": last,
+                "21": spools.front.hub,
                 "7": inner.nozzle_entry,
-                "13": front.bypass,
+                "13": bypass,
                 "17": outer.nozzle_entry,
             },
             jets={
@@ -97,19 +91,8 @@ class Turbofan:
                 "19": (outer.nozzle_entry, outer.jet),
             },
             areas={
-                "high_pressure_turbine": flow.turbine_area,
-                "low_pressure_turbine": turbine.area,
                 "core_nozzle": inner.jet.throat_area,
                 "bypass_nozzle": outer.jet.throat_area,
             },
-            flows={**front.flows, **flow.flows, **inner.flows, **outer.flows},
-            loadings={**flow.loadings, **turbine.loadings},
-            limits=core_limits(flow.combustor_exit, flow.delivery, rises, situation.sizing),
-            shaft_power=situation.taken.shaft_power + np.zeros_like(flow.rise),
-            bleed=flow.bleed,
-            mechanical_loss=flow.mechanical_loss + turbine.mechanical_loss,
-            unburnt_fuel=flow.unburnt_fuel,
-            fuel_flow=flow.fuel_flow,
-            spool_rises=rises,
-            work_ratios=front.work_ratios,
+            flows={**inner.flows, **outer.flows},
         )

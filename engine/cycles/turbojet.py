@@ -10,7 +10,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core, behind_last_turbine, run_core
 from engine.cycles.exhaust import let_out
 from engine.cycles.flowpath import Flowpath, core_limits, corrected_flow_factor
 from engine.cycles.situation import Situation
@@ -20,7 +20,7 @@ from engine.installation.drag import Installation
 from engine.parts.afterburner import Afterburner
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
-from engine.parts.stream import Array, Stream, mix_in
+from engine.parts.stream import Array, Stream
 
 
 @dataclass(frozen=True)
@@ -53,9 +53,7 @@ class Turbojet:
         entry = face.with_flow(airflow * corrected_flow_factor(face))
         hot = temperature_ratio * face.total_temperature
         flow = run_core(gas, self.core, entry, pressure_ratio, hot, situation)
-        last = flow.turbine_exit
-        if self.core.downstream_cooling_fraction:
-            last = mix_in(gas, last, flow.downstream_cooling)
+        last = behind_last_turbine(gas, self.core, flow.turbine_exit, flow)
         exhaust = let_out(gas, self.exhaust_nozzle, self.afterburner, last, situation)
         rises = {"high_pressure": (flow.rise, entry.total_temperature)}
         stations = {

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from engine.cycles.core import Core, run_core
+from engine.cycles.core import Core, behind_last_turbine, run_core
 from engine.cycles.exhaust import let_out
 from engine.cycles.flowpath import Flowpath, PropellerWork, core_limits, corrected_flow_factor
 from engine.cycles.situation import Situation
@@ -24,7 +24,7 @@ from engine.parts import propeller as blades
 from engine.parts.efficiency import Efficiency
 from engine.parts.inlet import Inlet
 from engine.parts.nozzle import Nozzle
-from engine.parts.stream import Array, Stream, mix_in
+from engine.parts.stream import Array, Stream
 from engine.parts.turbine import corrected_flow_area, expand_by_pressure, flow_share
 
 
@@ -93,9 +93,7 @@ class Turboprop:
         fall = _pressure_fall(gas, power_entry, share, situation.flight.static_pressure)
         power_exit, loading = self._expand(power_entry, fall, situation)
         power = power_entry.mass_flow * (power_entry.enthalpy - power_exit.enthalpy)
-        last = power_exit
-        if self.core.downstream_cooling_fraction:
-            last = mix_in(gas, power_exit, flow.downstream_cooling)
+        last = behind_last_turbine(gas, self.core, power_exit, flow)
         exhaust = let_out(gas, self.exhaust_nozzle, None, last, situation)
         shaft_power = self.train.mechanical_efficiency * self.train.gearbox_efficiency * power
         work, profile = self._propel(shaft_power, situation)

@@ -29,20 +29,15 @@ HIGHEST_BYPASS_RATIO = 6.0
 HIGHEST_AFTERBURNING_BYPASS_RATIO = 1.0
 
 
-def fan_diameter(
-    corrected_airflow: float,
-    *,
-    specific_airflow: float = SPECIFIC_AIRFLOW,
-    hub_tip_ratio: float = HUB_TIP_RATIO,
-) -> float:
+def fan_diameter(corrected_airflow: float) -> float:
     """Tip diameter [m] of the fan, or of the first compressor stage.
 
-    ``corrected_airflow`` [kg/s] is the greatest that the engine takes in; ``specific_airflow``
-    [kg/(s m2)] is that over annulus area. Continuity alone:
-    ``W = specific flow * pi / 4 * D^2 * (1 - hub_tip_ratio^2)``.
+    ``corrected_airflow`` [kg/s] is the greatest that the engine takes in. Continuity alone:
+    ``W = specific airflow * pi / 4 * D^2 * (1 - hub-tip ratio^2)``, with both ratios of the
+    Energy Efficient Engine.
     """
-    annulus = corrected_airflow / specific_airflow
-    return sqrt(4.0 * annulus / (pi * (1.0 - hub_tip_ratio**2)))
+    annulus = corrected_airflow / SPECIFIC_AIRFLOW
+    return sqrt(4.0 * annulus / (pi * (1.0 - HUB_TIP_RATIO**2)))
 
 
 @dataclass(frozen=True)

@@ -16,7 +16,7 @@ from engine.installation import nacelle
 GIVEN = "given"
 _TORENBEEK = "Torenbeek, Synthesis of Subsonic Airplane Design (from memory)"
 _ROSKAM = "Roskam, Airplane Design, Part II, Eqs 12.5-12.7"
-_E3 = "installed over bare mass of the Energy Efficient Engine, NASA CR-168219"
+_INSTALLED_OVER_BARE = "installed over bare mass of the Energy Efficient Engine, NASA CR-168219"
 
 # A given number follows the thrust of a scaled engine by these powers: Raymer, Aircraft Design,
 # 6th ed., chapter 10, for mass, diameter and length; areas as length times diameter.
@@ -76,7 +76,6 @@ def pod(
     *,
     corrected_airflow: float | None = None,
     proportions: nacelle.NacelleProportions = nacelle.FULL_COWL,
-    friction_coefficient: float = nacelle.FRICTION_COEFFICIENT,
     given: GivenPod = GivenPod(),
 ) -> Pod:
     """The pod of one engine.
@@ -86,7 +85,6 @@ def pod(
     bare : estimates for the engine, by ``jet_engine`` or ``turboprop`` of ``correlations``
     corrected_airflow : [kg/s], the greatest; None only where ``given`` has the fan's diameter
     proportions : of the nacelle; ``SHORT_COWL`` where core and bypass leave apart
-    friction_coefficient : on wetted area
     given : numbers that go before the estimates
 
     Raises
@@ -110,7 +108,7 @@ def pod(
         else f"1.2 times the engine's by {bare.source}",
         **mass_origins,
         "wetted_area": _ROSKAM,
-        "drag_area": f"skin friction coefficient {friction_coefficient:g} on wetted area",
+        "drag_area": f"skin friction coefficient {nacelle.FRICTION_COEFFICIENT:g} on wetted area",
     }
     origins = {
         name: estimate if getattr(given, name) is None else GIVEN
@@ -124,7 +122,7 @@ def pod(
         dry_mass=dry,
         installed_mass=installed,
         wetted_area=area,
-        drag_area=given.drag_area or friction_coefficient * area,
+        drag_area=given.drag_area or nacelle.FRICTION_COEFFICIENT * area,
         origins=origins,
         doubts=bare.doubts if is_estimated else (),
     )
@@ -145,14 +143,14 @@ def scaled_given(given: GivenPod, factor: float) -> GivenPod:
 
 def _masses(given: GivenPod, bare: engines.BareEngine) -> tuple[float, float, dict[str, str]]:
     """Dry and installed mass [kg], the estimate serving where neither is given."""
-    origins = {"dry_mass": bare.source, "installed_mass": _E3}
+    origins = {"dry_mass": bare.source, "installed_mass": _INSTALLED_OVER_BARE}
     ratio = engines.INSTALLED_MASS_RATIO
     dry, installed = given.dry_mass, given.installed_mass
     if dry is None and installed is None:
         dry = bare.mass
     elif dry is None and installed is not None:
         dry = installed / ratio
-        origins["dry_mass"] = _E3
+        origins["dry_mass"] = _INSTALLED_OVER_BARE
     assert dry is not None
     if installed is None:
         installed = ratio * dry

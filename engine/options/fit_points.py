@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import difflib
 import math
-from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -19,6 +18,14 @@ from engine.atmosphere import (
 from engine.envelope import COLUMNS
 from engine.errors import InputRefused
 from engine.interface import IDLES, OPTIONAL_RATINGS, RATINGS
+from engine.options.csv_rows import (
+    HIGHEST_MACH,
+    HIGHEST_SHARE,
+    by_column,
+    read_csv,
+    rows_of,
+    value_of,
+)
 from engine.quantities import parse_day
 
 Array = NDArray[np.float64]
@@ -26,8 +33,6 @@ DAY_COLUMN = "temperature_deviation_k"
 DEMAND = ""  # the rating of a point whose thrust is asked for, not told
 _ALTITUDE, _MACH, _RATING, _THRUST, _FUEL = COLUMNS
 _WORDS = (*RATINGS, *OPTIONAL_RATINGS, *IDLES)
-_HIGHEST_MACH, _HIGHEST_SHARE = 5.0, 2.0
-_LARGEST_FILE = 20_000_000  # bytes; as for the points of a table
 _DAY_REMARK = "# day:"  # how the points that `longlegs envelope` writes tell their day
 
 
@@ -102,29 +107,15 @@ def read_fit_points(path: Path) -> FitPoints:
 
     Raises :class:`InputRefused` naming file, line, column, value and what is allowed.
     """
+    text = read_csv(path)
     try:
-        return _points(_text(path), str(path))
+        return _points(text, str(path))
     except InputRefused as refusal:
         raise InputRefused(refusal.what, where=str(path), key=refusal.key) from None
 
 
-def _text(path: Path) -> str:
-    try:
-        if path.is_dir():
-            raise InputRefused("is a folder, not a file of points")
-        if (size := path.stat().st_size) > _LARGEST_FILE:
-            raise InputRefused(f"is {size / 1e6:.0f} MB; a file of points has at most 20 MB")
-        return path.read_bytes().decode("utf-8-sig")
-    except FileNotFoundError:
-        raise InputRefused("there is no such file") from None
-    except UnicodeDecodeError:
-        raise InputRefused("is not a text file in UTF-8") from None
-    except OSError as error:
-        raise InputRefused(f"cannot be read: {error.strerror}") from None
-
-
 def _points(text: str, where: str) -> FitPoints:
-    lines = _lines(text)
+    lines = rows_of(text)
     line, header = next(lines, (1, []))
     _check_header(header, line)
     if DAY_COLUMN not in header:
@@ -148,13 +139,6 @@ def _points(text: str, where: str) -> FitPoints:
         np.array(thrust, dtype=float),  # None becomes NaN
         np.array(fuel, dtype=float),
     )
-
-
-def _lines(text: str) -> Iterator[tuple[int, list[str]]]:
-    """Cells by line number; comments and blank lines left out."""
-    for number, line in enumerate(text.splitlines(), start=1):
-        if line.strip() and not line.lstrip().startswith("#"):
-            yield number, [cell.strip() for cell in line.split(",")]
 
 
 def _check_header(header: list[str], line: int) -> None:
@@ -193,16 +177,14 @@ def _row(
     header: list[str], cells: list[str]
 ) -> tuple[float, float, float, str, float | None, float | None]:
     """One point; ValueError where it is none."""
-    if len(cells) != len(header):
-        raise ValueError(f"{len(cells)} values stand where the header names {len(header)}")
-    given = dict(zip(header, cells, strict=True))
-    altitude = _number(given, _ALTITUDE, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
-    mach = _number(given, _MACH, 0.0, _HIGHEST_MACH)
+    given = by_column(header, cells)
+    altitude = value_of(given, _ALTITUDE, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
+    mach = value_of(given, _MACH, 0.0, HIGHEST_MACH)
     most = LARGEST_TEMPERATURE_DEVIATION
-    day = _number(given, DAY_COLUMN, -most, most) if given.get(DAY_COLUMN) else 0.0
+    day = value_of(given, DAY_COLUMN, -most, most) if given.get(DAY_COLUMN) else 0.0
     rating = _rating(given)
-    thrust = _number(given, _THRUST, -math.inf, math.inf) if given[_THRUST] else None
-    fuel = _number(given, _FUEL, -math.inf, math.inf) if given[_FUEL] else None
+    thrust = value_of(given, _THRUST, -math.inf, math.inf) if given[_THRUST] else None
+    fuel = value_of(given, _FUEL, -math.inf, math.inf) if given[_FUEL] else None
     if fuel is not None and not fuel > 0.0:
         raise ValueError(f"{_FUEL} = {fuel:g}; a lit engine burns fuel: it is above 0")
     if rating == DEMAND and (thrust is None or fuel is None):
@@ -218,19 +200,6 @@ def _row(
     return altitude, mach, day, rating, thrust, fuel
 
 
-def _number(given: dict[str, str], name: str, low: float, high: float) -> float:
-    text = given[name]
-    try:
-        value = float(text)
-    except ValueError:
-        raise ValueError(f"{name} = '{text}' is no number; write it bare, 1234.5 say") from None
-    if not math.isfinite(value):
-        raise ValueError(f"{name} = {text} is no finite number")
-    if not low <= value <= high:
-        raise ValueError(f"{name} = {value:g} is outside {low:g} to {high:g}")
-    return value
-
-
 def _rating(given: dict[str, str]) -> str:
     """A rating or idle by name; a share of thrust is a thrust asked for."""
     text = given[_RATING]
@@ -238,7 +207,7 @@ def _rating(given: dict[str, str]) -> str:
     if name in (DEMAND, *_WORDS):
         return name
     if name[:1].isdigit() or name[:1] == ".":
-        _number(given, _RATING, 0.0, _HIGHEST_SHARE)
+        value_of(given, _RATING, 0.0, HIGHEST_SHARE)
         return DEMAND
     near = difflib.get_close_matches(name, _WORDS, n=1)
     hint = f"; did you mean {near[0]}?" if near else "."

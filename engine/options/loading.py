@@ -13,7 +13,6 @@ from engine.errors import InputRefused, OutOfRange
 from engine.installation.pod import GivenPod
 from engine.interface import RATINGS, Engine
 from engine.options.assembly import arrange, fit_afterburner, ratings_of
-from engine.options.brochure import assumptions, cycle_content
 from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.options.input_model import (
     AnyCycleFile,
@@ -23,7 +22,6 @@ from engine.options.input_model import (
     TabulatedFile,
 )
 from engine.options.tables import ScaleTable
-from engine.options.tabulated import load_table
 from engine.reading import check, defaults_used, read_toml
 from engine.scaling import scaled, scaled_to
 
@@ -60,6 +58,8 @@ def engine_from_content(content: dict[str, Any], where: str) -> Engine:
             assumed=assumed,
         )
     if isinstance(written, TabulatedFile):
+        from engine.options.tabulated import load_table
+
         return load_table(written, Path(where).parent, assumed)
     if isinstance(written, BrochureFile):
         return _brochure_engine(written, content.get("fuel"), where, assumed)
@@ -70,6 +70,8 @@ def _brochure_engine(
     brochure: BrochureFile, fuel: Any, where: str, assumed: tuple[str, ...]
 ) -> CycleEngine:
     """The cycle that the rule makes of four numbers; what it put in is told as assumed."""
+    from engine.options.brochure import assumptions
+
     whole = check({"engine": brochure_content(brochure, fuel, where)}, EngineFile, where).engine
     assert isinstance(whole, AnyCycleFile)
     return _cycle_engine(whole, where, (*assumed, *assumptions(whole)))
@@ -77,6 +79,8 @@ def _brochure_engine(
 
 def brochure_content(brochure: BrochureFile, fuel: Any, where: str) -> dict[str, Any]:
     """Content of the engine file that the rule makes of four numbers, ``fuel`` as it is written."""
+    from engine.options.brochure import cycle_content
+
     numbers = brochure.model_dump(exclude={"kind", "fuel"})
     try:
         return cycle_content(**numbers, fuel=fuel)

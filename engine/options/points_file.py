@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
 from dataclasses import dataclass
 from itertools import pairwise, product
 from pathlib import Path
@@ -15,13 +14,20 @@ from engine.atmosphere import HIGHEST_PRESSURE_ALTITUDE, LOWEST_PRESSURE_ALTITUD
 from engine.envelope import COLUMNS, LOWEST, REHEATED, Level
 from engine.errors import InputRefused
 from engine.interface import IDLES, RATINGS
+from engine.options.csv_rows import (
+    HIGHEST_MACH,
+    HIGHEST_SHARE,
+    by_column,
+    read_csv,
+    rows_of,
+    value_of,
+)
 
 Array = NDArray[np.float64]
 WINDMILLING = "windmilling"
 _RATINGS = (REHEATED, *RATINGS)
 _WORDS = (*_RATINGS, *IDLES, WINDMILLING)
-_LARGEST_FILE = 20_000_000  # bytes; forty times what `longlegs envelope` writes
-_HIGHEST_MACH, _HIGHEST_SHARE = 5.0, 2.0
+_ALTITUDE, _MACH, _RATING, _THRUST, _FUEL = COLUMNS
 _FEWEST_SHARES = 2  # above idle: from fewer no part power can be read
 _Key = tuple[Level, float, float]
 
@@ -77,31 +83,16 @@ def read_points(path: Path) -> Points:
     Raises :class:`InputRefused` naming file, line, the values that show what is wrong, and what
     to do.
     """
+    text = read_csv(path, remedy="; points names a CSV beside the TOML")
     try:
-        rows = _rows(_text(path))
-        return _gridded(rows)
+        return _gridded(_rows(text))
     except InputRefused as refusal:
         raise InputRefused(refusal.what, where=str(path), key=refusal.key) from None
 
 
-def _text(path: Path) -> str:
-    try:
-        if path.is_dir():
-            raise InputRefused("is a folder, not a file")
-        if (size := path.stat().st_size) > _LARGEST_FILE:
-            raise InputRefused(f"is {size / 1e6:.0f} MB; a table has at most 20 MB")
-        return path.read_bytes().decode("utf-8-sig")
-    except FileNotFoundError:
-        raise InputRefused("there is no such file; points names a CSV beside the TOML") from None
-    except UnicodeDecodeError:
-        raise InputRefused("is not a text file in UTF-8") from None
-    except OSError as error:
-        raise InputRefused(f"cannot be read: {error.strerror}") from None
-
-
 def _rows(text: str) -> dict[_Key, _Row]:
     """Rows by level, altitude and Mach number; comments and blank lines left out."""
-    lines = _cells(text)
+    lines = rows_of(text)
     line, header = next(lines, (1, []))
     if tuple(header) != COLUMNS:
         found = ", ".join(header) or "nothing"
@@ -122,51 +113,32 @@ def _rows(text: str) -> dict[_Key, _Row]:
     return rows
 
 
-def _cells(text: str) -> Iterator[tuple[int, list[str]]]:
-    for number, line in enumerate(text.splitlines(), start=1):
-        if line.strip() and not line.lstrip().startswith("#"):
-            yield number, [cell.strip() for cell in line.split(",")]
-
-
 def _row(line: int, cells: list[str]) -> tuple[_Key, _Row]:
     """One row as numbers within their ranges; ValueError where it is none."""
-    if len(cells) != len(COLUMNS):
-        raise ValueError(f"{len(cells)} values stand where the header names {len(COLUMNS)}")
-    altitude = _number(cells, 0, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
-    mach = _number(cells, 1, 0.0, _HIGHEST_MACH)
-    level = _level(cells)
-    fuel = _number(cells, 4, -math.inf, math.inf)
+    given = by_column(COLUMNS, cells)
+    altitude = value_of(given, _ALTITUDE, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
+    mach = value_of(given, _MACH, 0.0, HIGHEST_MACH)
+    level = _level(given)
+    fuel = value_of(given, _FUEL, -math.inf, math.inf)
     if level == WINDMILLING and fuel != 0.0:
-        raise ValueError(f"{COLUMNS[4]} = {fuel:g}; an engine that windmills burns none: write 0")
+        raise ValueError(f"{_FUEL} = {fuel:g}; an engine that windmills burns none: write 0")
     if level != WINDMILLING and not fuel > 0.0:
-        raise ValueError(f"{COLUMNS[4]} = {fuel:g}; a lit engine burns fuel: it is above 0")
-    thrust = _number(cells, 3, -math.inf, math.inf)
+        raise ValueError(f"{_FUEL} = {fuel:g}; a lit engine burns fuel: it is above 0")
+    thrust = value_of(given, _THRUST, -math.inf, math.inf)
     return (level, altitude, mach), _Row(line, thrust, fuel)
 
 
-def _number(cells: list[str], column: int, low: float, high: float) -> float:
-    name, text = COLUMNS[column], cells[column]
-    try:
-        value = float(text)
-    except ValueError:
-        raise ValueError(f"{name} = '{text}' is no number; write it bare, 1234.5 say") from None
-    if not math.isfinite(value):
-        raise ValueError(f"{name} = {text} is no finite number")
-    if not low <= value <= high:
-        raise ValueError(f"{name} = {value:g} is outside {low:g} to {high:g}")
-    return value
-
-
-def _level(cells: list[str]) -> Level:
+def _level(given: dict[str, str]) -> Level:
     """A rating by name, or a share as a number; a share of zero is flight idle."""
-    name = cells[2].replace("-", "_")
+    text = given[_RATING]
+    name = text.replace("-", "_")
     if name in _WORDS:
         return name
     if not name[:1].isdigit() and name[:1] != ".":
         raise ValueError(
-            f"rating = '{cells[2]}' is none of {', '.join(_WORDS)}, nor a share of thrust from 0 up"
+            f"{_RATING} = '{text}' is none of {', '.join(_WORDS)}, nor a share of thrust from 0 up"
         )
-    return _number(cells, 2, 0.0, _HIGHEST_SHARE) or LOWEST
+    return value_of(given, _RATING, 0.0, HIGHEST_SHARE) or LOWEST
 
 
 def _gridded(rows: dict[_Key, _Row]) -> Points:

@@ -61,20 +61,6 @@ def reheat(gas: Gas, afterburner: Afterburner, dry: Stream, exit_temperature: Ar
     )
 
 
-def hottest_exit(
-    gas: Gas, afterburner: Afterburner, dry: Stream, most_fuel_air_ratio: float
-) -> Array:
-    """Exit total temperature [K] at which the stream has burnt ``most_fuel_air_ratio`` in all.
-
-    With the stoichiometric ratio that is what the oxygen left in the stream allows. It may lie
-    above the highest temperature of the gas model.
-    """
-    heat_release = afterburner.efficiency * afterburner.lower_heating_value
-    share = (most_fuel_air_ratio - dry.fuel_air_ratio) / (1.0 + dry.fuel_air_ratio)
-    enthalpy = (dry.enthalpy + share * heat_release) / (1.0 + share)
-    return gas.temperature_from_enthalpy(enthalpy, most_fuel_air_ratio, "reheated")
-
-
 def _hot_loss(afterburner: Afterburner, exit_temperature: Array, dry: Stream) -> Array:
     """Share of total pressure behind the unlit afterburner that lighting it takes."""
     kept = 1.0 - afterburner.dry_pressure_loss_fraction

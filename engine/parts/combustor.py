@@ -80,7 +80,10 @@ def burn(
     exit_temperature: Array,
     efficiency: Array | None = None,
 ) -> Stream:
-    """The stream at the combustor exit, station 4, at a total temperature [K]."""
+    """The stream at the combustor exit, station 4, at a total temperature [K].
+
+    ``efficiency`` [-] is that of the moment, the combustor's stated one where it is not given.
+    """
     efficiency = np.asarray(combustor.efficiency) if efficiency is None else efficiency
     heat_release = efficiency * combustor.lower_heating_value
     ratio = gas.fuel_air_ratio_burnt(air.enthalpy, exit_temperature, heat_release, "hot")

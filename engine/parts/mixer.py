@@ -6,7 +6,8 @@ duct loss afterwards. Sources: H. Pearson, "Mixing of exhaust and bypass flow in
 J. Royal Aeronautical Society, 1962; Farokhi, Aircraft Propulsion, section on the mixed-exhaust
 turbofan (the first from memory).
 
-Symbols: T static, T0 total temperature; u enthalpy drop ``h(T0) - h(T)``; G mass flow per area.
+Symbols: T static temperature, V velocity, R gas constant, h enthalpy, cp heat capacity; f fuel-air
+ratio.
 """
 
 from __future__ import annotations
@@ -19,7 +20,6 @@ from engine.gas import Gas
 from engine.parts.stream import Array, Stream, signed_root
 
 _MOST_STEPS = 20
-_CURVE = 1.0 - 0.5**0.5
 _LAST_STEP = 1e-8  # Newton squares an error, so that it then is round-off
 
 
@@ -78,41 +78,6 @@ def at_mach(gas: Gas, stream: Stream, mach: Array) -> Passage:
         temperature = temperature - excess / gain
         if not (np.abs(excess / (gain * temperature)) > 1e-11).any():
             break
-    return _isentropic(gas, stream, temperature)
-
-
-def in_area(gas: Gas, stream: Stream, area: Array) -> Passage:
-    """A stream in an area [m2], subsonic; where that is too small, choked in the area it needs.
-
-    Newton's iteration on ``sqrt(ln(G_critical / G))``, which passes the critical state at a
-    slope where G itself has none.
-    """
-    f, section = stream.fuel_air_ratio, stream.section
-    choked = _isentropic(
-        gas, stream, gas.critical_temperature(stream.total_temperature, f, section)
-    )
-    is_subsonic = choked.area < area
-    share = np.where(is_subsonic, choked.area / area, 0.5)  # of the flow that would choke it
-    largest_drop = stream.total_temperature - choked.static_temperature
-    root = np.sqrt(1.0 - share**2)
-    # Close to the branch of Lambert's function that inverts share^2 = s exp(1 - s), and exact at
-    # both ends; s is the drop of temperature over that to the critical state.
-    drop = 1.0 - root / (_CURVE * root + 1.0 - _CURVE)
-    temperature = stream.total_temperature - largest_drop * drop
-    wanted = np.sqrt(-np.log(share))
-    gas_constant = gas.gas_constant(f, section)
-    for _ in range(_MOST_STEPS):
-        there = _isentropic(gas, stream, temperature)
-        log_flow = np.log(choked.area / there.area)
-        found = np.sqrt(np.maximum(-log_flow, 0.0))
-        cp = gas.heat_capacity(temperature, f, section)
-        slope = cp / (gas_constant * _ratio(gas, stream, cp)) * (1.0 / there.mach**2 - 1.0)
-        step = 2.0 * found * (wanted - found) / np.where(slope > 0.0, slope, np.inf)
-        temperature = temperature * (1.0 + step)
-        moved = step * temperature / (stream.total_temperature - temperature)
-        if not (np.abs(moved) > _LAST_STEP).any():
-            break
-    temperature = np.where(is_subsonic, temperature, choked.static_temperature)
     return _isentropic(gas, stream, temperature)
 
 

@@ -23,7 +23,6 @@ import numpy as np
 
 from engine.parts.stream import Array
 
-HIGHEST_MACH = 0.85  # to which the fall of efficiency is given
 _FALL_BEGINS = 0.7
 _MOST_STEPS = 40
 _LAST_STEP = 1e-9  # Newton squares an error, so that it then is round-off
@@ -60,7 +59,7 @@ class PropellerThrust:
 
 
 def efficiency_fall(mach: Array) -> Array:
-    """Efficiency over that below Mach 0.7; the line is kept on beyond Mach 0.85."""
+    """Efficiency over that below Mach 0.7; given up to Mach 0.85, the line is kept on beyond."""
     return 1.0 - np.maximum(np.asarray(mach) - _FALL_BEGINS, 0.0) / 3.0
 
 

@@ -43,6 +43,9 @@ def comparison_screen(
         is_wide = width >= WIDEST
         table = _table(flown, setting, units, is_wide=is_wide)
         parts.append(section("Options by block fuel", table, note(_error(flown, units))))
+        if len({flight.fuel.name for flight in flown.values()}) > 1:
+            rows = [(name, _energy(flight)) for name, flight in flown.items()]
+            parts.append(section("Not the same fuel: compare the heat of it", pairs(rows)))
         if not is_wide:
             rows = [(name, _least(flight)) for name, flight in flown.items()]
             parts.append(section("Least margin of each", pairs(rows)))
@@ -78,6 +81,12 @@ def verdict(comparison: Comparison, units: Units = METRIC) -> str:
         f"{name} burns least, {burns} of block fuel: {fuel.full(lead)} ({number(share, 1)} %) "
         f"less than {second}."
     )
+
+
+def _energy(flight: Flight) -> str:
+    """Lower heating value of the block fuel, and the fuel's name."""
+    heat = flight.totals.block_fuel * flight.fuel.lower_heating_value
+    return f"{number(heat / 1e9, 1)} GJ of {flight.fuel.name}"
 
 
 def _error(flown: dict[str, Flight], units: Units) -> str:

@@ -141,7 +141,7 @@ def _told(each: FittedParameter) -> str:
         verdict = "determined"
     goes = ""
     if judgement.partner:
-        goes = f"; goes most with {judgement.partner}, correlation {judgement.correlation:+.2f}"
+        goes = f"; moves most with {judgement.partner}, correlation {judgement.correlation:+.2f}"
     return f"{parameter.key}: {verdict}{goes}; allowed is {span}"
 
 
@@ -210,9 +210,9 @@ def _remarks(found: Fit, written: str) -> Iterable[str]:
         )
     if found.is_free_by_rule:
         yield (
-            "No --free was given. Free are the first keys of a list that these data tell apart: "
-            f"one for each of the first two data, one for every three more, {MOST_LEVERS} at most; "
-            "size only where a thrust is told."
+            "No --free was given. Free are the first keys of a list that these data can tell "
+            "apart: one for each of the first two data, one for every three more, "
+            f"{MOST_LEVERS} at most; size only where a thrust is given."
         )
     if not np.all(found.points.line):
         yield "The point without a line is the brochure's own static fuel consumption."
@@ -223,8 +223,8 @@ def _remarks(found: Fit, written: str) -> Iterable[str]:
         )
     if any(each.judgement.uncertainty is None for each in found.parameters):
         yield (
-            "No uncertainty where there are as many parameters as data, at a bound, and where the "
-            "points do not determine."
+            "No uncertainty is given where there are as many parameters as data, at a bound, and "
+            "for what the points do not determine."
         )
     failed = f", {found.failed} of them without an answer" if found.failed else ""
     yield f"Engines sized and asked: {found.evaluations}{failed}. Written to {written}."

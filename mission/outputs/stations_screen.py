@@ -66,7 +66,8 @@ _FORCE, _CONSUMPTION = METRIC.force, METRIC.specific_fuel_consumption
 class Question:
     """What was asked of an engine: a rating by name, or a net thrust [N] below it.
 
-    ``coverage`` is where alone it can be asked, if it is a table.
+    ``coverage`` is where alone it can be asked, if it is a table; ``doubt`` what to keep in mind of
+    its answers, empty where there is nothing.
     """
 
     engine: str

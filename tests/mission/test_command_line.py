@@ -332,21 +332,33 @@ def test_help_carries_the_caution(longlegs: Longlegs) -> None:
     run = longlegs("--help")
     assert run.status == 0
     assert CAUTION in " ".join(run.out.split())
-    for command in ("fly", "compare", "stations", "envelope", "list"):
+    for command in ("fly", "compare", "stations", "envelope", "fit", "list"):
         assert longlegs(command, "--help").status == 0
 
 
-def test_help_loads_nothing_heavy() -> None:
-    """``--help`` has to answer at once."""
+def loaded_by(*words: str) -> set[str]:
+    """Names of all modules that a process of the command ends with."""
     code = (
-        "import sys; sys.argv = ['longlegs', '--help']\n"
+        f"import sys; sys.argv = {['longlegs', *words]}\n"
         "from mission.command_line import main\n"
         "try:\n    main()\nexcept SystemExit as end:\n    assert not end.code\n"
-        "print('loaded:', *sorted({name.split('.')[0] for name in sys.modules}))"
+        "print('loaded:', *sorted(sys.modules))"
     )
     done = subprocess.run(
         [sys.executable, "-c", code], cwd=ROOT, capture_output=True, text=True, check=True
     )
-    loaded = set(done.stdout.splitlines()[-1].split())
+    return set(done.stdout.splitlines()[-1].split())
+
+
+def test_help_loads_nothing_heavy() -> None:
+    """``--help`` has to answer at once."""
+    loaded = {name.split(".")[0] for name in loaded_by("--help")}
     assert "typer" in loaded
     assert not loaded & HEAVY
+
+
+def test_flying_loads_no_room_that_it_does_not_use() -> None:
+    loaded = loaded_by("fly")
+    assert "engine.cycles.turbofan" in loaded
+    unused = ("fitting", "fit_points", "brochure", "tabulated", "points_file")
+    assert not loaded & {"tomli_w", "engine.envelope", *(f"engine.options.{n}" for n in unused)}

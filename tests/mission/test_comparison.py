@@ -7,7 +7,9 @@ from pathlib import Path
 import pytest
 from mission_files import (
     AIRCRAFT,
+    BYPASS_5,
     OUT_AND_DOWN,
+    PROFILES,
     engine_content,
     load_all,
     mission_content,
@@ -15,8 +17,14 @@ from mission_files import (
 )
 
 from engine import load_engine
+from engine.options.loading import engine_from_content
+from mission.aircraft import load_aircraft
 from mission.comparison import compare, mean_cruise_consumption
 from mission.flight import fly
+from mission.mission_file import load_mission
+from mission.outputs.comparison_screen import comparison_screen
+from mission.outputs.page import as_text
+from mission.outputs.setting import Setting
 
 CONSUMPTIONS = {"thirsty": "0.8 1/h", "frugal": "0.5 1/h", "middling": "0.65 1/h"}
 
@@ -78,3 +86,17 @@ def test_mean_cruise_consumption_of_a_constant_engine(tmp_path: Path) -> None:
     )
     found = mean_cruise_consumption(fly(mission, plane, engine))
     assert found == pytest.approx(0.6 / 3600.0 / 9.80665, rel=1e-9)
+
+
+def test_options_of_different_fuels_are_compared_by_heat() -> None:
+    hydrogen = {"kind": "constant consumption", "name": "cold", "fuel": "hydrogen"}
+    hydrogen |= {"specific_fuel_consumption": "0.2 1/h", "static_thrust": "60 kN"}
+    engines = {"cold": engine_from_content(hydrogen, "cold"), "warm": load_engine(BYPASS_5)}
+    mission = load_mission(PROFILES / "coast_watch.toml")
+    twin = load_aircraft(PROFILES / "coast_watch_twin.toml")
+    compared = compare(mission, twin, engines)
+    setting = Setting(payload=1500.0, headwind=5.1, engine_count=2, is_fuel_as_needed=True)
+    text = as_text(comparison_screen(compared, setting), 100)
+    burnt = compared.flights["cold"].totals.block_fuel
+    assert "Not the same fuel: compare the heat of it" in text
+    assert f"{burnt * 119.96051e6 / 1e9:.1f} GJ of hydrogen" in text

@@ -3,20 +3,17 @@
 from __future__ import annotations
 
 import json
-import sys
 import tomllib
-from collections.abc import Callable
 from pathlib import Path
-from typing import NamedTuple
 
 import numpy as np
 import pytest
 
 from engine import load_engine
 from engine.atmosphere import flight_condition
-from mission import command_line
 from mission.library import find
 from mission.outputs.wording import CAUTION
+from tests.terminal import Longlegs
 
 HEADER = "pressure_altitude_m,mach,rating,net_thrust_n,fuel_flow_kg_per_s\n"
 SIZE = "design_point.net_thrust"
@@ -31,35 +28,11 @@ overall_pressure_ratio = 30.0
 """
 
 
-class Run(NamedTuple):
-    """What a command gave back."""
-
-    status: int
-    out: str
-    err: str
-
-
-Longlegs = Callable[..., Run]
-
-
 @pytest.fixture
-def longlegs(
-    monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str], tmp_path: Path
-) -> Longlegs:
-    """Run the command in an empty folder, on a terminal of 80 columns without colour."""
-    monkeypatch.chdir(tmp_path)
+def longlegs(longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch) -> Longlegs:
+    """The command on a narrow terminal."""
     monkeypatch.setenv("COLUMNS", "80")
-    monkeypatch.setenv("NO_COLOR", "1")
-
-    def run(*words: str) -> Run:
-        monkeypatch.setattr(sys, "argv", ["longlegs", *words])
-        with pytest.raises(SystemExit) as ended:
-            command_line.main()
-        code = ended.value.code
-        captured = capsys.readouterr()
-        return Run(code if isinstance(code, int) else 0, captured.out, captured.err)
-
-    return run
+    return longlegs
 
 
 def points_of_bypass_5(path: str) -> None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+
 import numpy as np
 import pytest
 from mission_files import PROFILES
