@@ -122,6 +122,8 @@ def is_physical(gas: Gas, path: Flowpath, *, is_lit: bool) -> NDArray[np.bool_]:
     good = np.isfinite(path.gross_thrust) & np.isfinite(path.fuel_flow)
     for is_so in _impossible(gas, path, is_lit=is_lit).values():
         good &= ~is_so
+    for excess in path.misfits.values():
+        good &= excess <= 0.0
     return good
 
 
@@ -130,9 +132,14 @@ def why_unphysical(state: EngineState) -> NDArray[np.str_]:
     evidence = state.evidence
     if evidence is None:
         return np.full(state.flight.shape, "")
-    causes = _impossible(evidence.gas, evidence.path, is_lit=True)
-    found = np.select(list(causes.values()), list(causes), "").reshape(state.flight.shape)
-    return np.where(state.outcome == Outcome.UNPHYSICAL, found, "")
+    path, count = evidence.path, state.outcome.size
+    causes = _impossible(evidence.gas, path, is_lit=True)
+    found = np.select(list(causes.values()), list(causes), "")
+    for sentence, excess in path.misfits.items():
+        amounts = np.broadcast_to(excess, count)
+        told = np.array([sentence.format(amount) for amount in amounts])
+        found = np.where((found == "") & (amounts > 0.0), told, found)
+    return np.where(state.outcome == Outcome.UNPHYSICAL, found.reshape(state.flight.shape), "")
 
 
 def _impossible(gas: Gas, path: Flowpath, *, is_lit: bool) -> dict[str, NDArray[np.bool_]]:

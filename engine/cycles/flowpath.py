@@ -70,7 +70,8 @@ class Flowpath:
     spool_rises : specific work [J/kg] and inlet total temperature [K] that estimate each speed
     propeller : what a propeller does, if there is one
     installation_drag : spillage and afterbody drag charged to the engine [N]
-    misfits : by what inlet or nozzle do not fit what surrounds them, zero where they do
+    misfits : what lies outside what a part is for, as a sentence with room for by how much, which
+        is zero or less where it does not
     """
 
     stations: Mapping[str, Stream]

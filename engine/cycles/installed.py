@@ -21,7 +21,7 @@ def charge(path: Flowpath, installation: Installation | None, situation: Situati
     if installation.capture_area is not None:
         spillage = spillage_drag(flight, path.stations["2"].mass_flow, installation.capture_area)
         drag = drag + spillage.drag
-        misfits["air beyond what the capture area passes"] = spillage.air_shortage
+        misfits["it takes in {:.3g} kg/s more than its capture area passes"] = spillage.air_shortage
     if installation.afterbody_area is not None:
         pressure = 0.5 * flight.density * flight.true_airspeed**2
         exits: Array = np.asarray(sum(jet.exit_area for _, jet in path.jets.values()))
@@ -29,8 +29,8 @@ def charge(path: Flowpath, installation: Installation | None, situation: Situati
             pressure, installation.afterbody_area, exits, installation.afterbody_coefficient
         )
         drag = drag + slope.drag
-        misfits["nozzle exit beyond the afterbody's area"] = slope.excess_exit_area
-    return replace(path, installation_drag=drag, misfits=misfits)
+        misfits["its nozzles end {:.3g} m2 wider than its afterbody"] = slope.excess_exit_area
+    return replace(path, installation_drag=drag, misfits={**path.misfits, **misfits})
 
 
 def run(arrangement: Arrangement, unknowns: Array, situation: Situation) -> Flowpath:

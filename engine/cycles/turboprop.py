@@ -27,6 +27,8 @@ from engine.parts.nozzle import Nozzle
 from engine.parts.stream import Array, Stream
 from engine.parts.turbine import corrected_flow_area, expand_by_pressure, flow_share
 
+_TOO_FAST = f"it flies {{:.3g}} above Mach {blades.HIGHEST_MACH}, beyond any propeller known here"
+
 
 @dataclass(frozen=True)
 class PowerTrain:
@@ -126,6 +128,7 @@ class Turboprop:
             fuel_flow=flow.fuel_flow,
             spool_rises=rises,
             propeller=work,
+            misfits={_TOO_FAST: situation.flight.mach - blades.HIGHEST_MACH},
         )
 
     def _expand(self, entry: Stream, fall: Array, situation: Situation) -> tuple[Stream, Array]:

@@ -23,6 +23,7 @@ import numpy as np
 
 from engine.parts.stream import Array
 
+HIGHEST_MACH = 0.85  # to which the fall of efficiency is given
 _FALL_BEGINS = 0.7
 _MOST_STEPS = 40
 _LAST_STEP = 1e-9  # Newton squares an error, so that it then is round-off
