@@ -112,7 +112,10 @@ class Evidence:
                 free, flight.static_temperature, flight.static_pressure, flight.true_airspeed
             )
         }
-        table |= {name: _station(stream) for name, stream in path.stations.items()}
+        table |= {
+            name: _station(stream, *path.statics.get(name, ()))
+            for name, stream in path.stations.items()
+        }
         for exit_name, (stream, jet) in path.jets.items():
             throat_name = exit_name[:-1] + "8"
             table[throat_name] = _station(

@@ -1,4 +1,4 @@
-"""What a flight asks of an engine that is a table, which has no answer outside it."""
+"""What a flight asks of an engine that it does not have: a rating, or a point outside its table."""
 
 from __future__ import annotations
 
@@ -9,6 +9,7 @@ from engine.errors import InputRefused
 from engine.interface import Coverage, Engine, Outcome
 from engine.quantities import day_text
 from mission.mission_file import Mission
+from mission.plan import FlightPlan
 from mission.results import Steps
 
 Array = NDArray[np.float64]
@@ -25,6 +26,19 @@ def refuse_other_day(mission: Mission, engine: Engine) -> None:
             where=mission.where,
             key="day",
         )
+
+
+def refuse_missing_ratings(mission: Mission, plan: FlightPlan, engine: Engine) -> None:
+    """Refuse a mission with a segment at a rating that the engine does not have."""
+    known = (*engine.ratings, *engine.idles)
+    for span in (*plan.parts.mission, *plan.parts.reserve):
+        if span.rating and span.rating not in known:
+            raise InputRefused(
+                f'asks for rating = "{span.rating}", which {engine.name} does not have; it has '
+                f"{', '.join(known)}: give the segment one of these, or fly another engine",
+                where=mission.where,
+                key=f'segment "{plan.rows[span.segment].name}"',
+            )
 
 
 def outside(

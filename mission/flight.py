@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from engine.interface import Engine
 from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
-from mission.coverage import refuse_other_day
+from mission.coverage import refuse_missing_ratings, refuse_other_day
 from mission.fuel_plan import Sums, add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
@@ -76,6 +76,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     coarse: Marched | None = None
     for _ in range(_MOST_PLANS):
         whole = lay_out(mission, aircraft, ends)
+        refuse_missing_ratings(mission, whole, world.engine)
         joints = find_joints(world, [*whole.parts.mission, *whole.parts.reserve])
         plan = _with_spans(whole, joints.cut())
         close = closure(plan, written, aircraft)

@@ -69,7 +69,9 @@ class _Laid:
         if _same_speed(before, after, altitude):
             return
         self.here = replace(self.here, row=len(self.rows))
-        rating = "climb" if segment.kind != "cruise" else "maximum_continuous"
+        rating = "maximum_continuous" if segment.kind == "cruise" else "climb"
+        if isinstance(segment, Climb):
+            rating = segment.rating
         self.spans.append(speed_span(self.here, altitude, before, after, rating))
         self.rows.append(Row(f"bridge to {segment.name}", "acceleration", purpose))
         self.here = replace(self.here, speed=after)

@@ -60,6 +60,7 @@ class Flowpath:
     flows : what grows with the engine's size and a loss or an efficiency goes with, by part:
         ``W sqrt(T) / p`` of a compressor or duct, air loading of the combustor
     loadings : square of blade speed over specific work of a turbine, by part
+    statics : static temperature [K] and pressure [Pa] and velocity [m/s] by station, where known
     work_ratios : specific work of what turns with the fan, over the fan's
     limits : values that ratings and idle bound, by name (:data:`LIMIT_NAMES`)
     shaft_power : taken off by the customer [W]
@@ -86,6 +87,7 @@ class Flowpath:
     unburnt_fuel: Array
     fuel_flow: Array
     spool_rises: Mapping[str, tuple[Array, Array]]
+    statics: Mapping[str, tuple[Array, Array, Array]] = field(default_factory=dict)
     work_ratios: Mapping[str, Array] = field(default_factory=dict)
     propeller: PropellerWork | None = None
     installation_drag: Array | float = 0.0

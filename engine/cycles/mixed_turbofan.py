@@ -159,7 +159,7 @@ class MixedTurbofan:
         mixed = together.stream.with_pressure_loss(friction)
         exhaust = let_out(self.gas, self.exhaust_nozzle, self.afterburner, mixed, situation)
         jet = self._jet(exhaust, (inside, around), situation)
-        return join_spools(
+        path = join_spools(
             spools,
             situation,
             stations={
@@ -183,4 +183,11 @@ class MixedTurbofan:
                 "mixer": together.stream.duct_flow,
             },
             loadings={"mixer_static_share": inside.static_pressure / around.stream.total_pressure},
+        )
+        return replace(
+            path,
+            statics={
+                station: (there.static_temperature, there.static_pressure, there.velocity)
+                for station, there in (("6", inside), ("16", around))
+            },
         )

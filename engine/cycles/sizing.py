@@ -111,7 +111,7 @@ def _refuse_impossible(
     if not float(path.stations["5"].total_pressure) > ambient:
         _refuse_nozzle(path, taken, "5", ambient)
     if "mixer_bypass" in path.areas:
-        _refuse_mixer(arrangement, path)
+        _refuse_mixer(arrangement, path, flight, taken)
     for name in ("7", "17"):
         if name in path.stations and not float(path.stations[name].total_pressure) > ambient:
             _refuse_nozzle(path, taken, name, ambient)
@@ -143,15 +143,16 @@ def _remedy(path: Flowpath, taken: OffTakes) -> str:
     return f"raise turbine_entry_temperature or lower {' or '.join(less)}"
 
 
-def _refuse_mixer(arrangement: Arrangement, path: Flowpath) -> None:
+def _refuse_mixer(
+    arrangement: Arrangement, path: Flowpath, flight: FlightCondition, taken: OffTakes
+) -> None:
     """Say when core and bypass streams cannot meet at one static pressure, and what helps.
 
     The bypass stream must flow forward and may not choke, and away from the design point it moves.
     """
     core, bypass = path.stations["6"], path.stations["16"]
     static_pressure = path.loadings["mixer_static_share"] * bypass.total_pressure
-    with np.errstate(all="ignore"):
-        mach = float(at_static_pressure(arrangement.gas, bypass, static_pressure).mach)
+    mach = float(_bypass_mach(arrangement, path))
     slowest, fastest = _BYPASS_MACH
     if slowest < mach < fastest:
         return
@@ -159,6 +160,9 @@ def _refuse_mixer(arrangement: Arrangement, path: Flowpath) -> None:
         remedy = "raise fan_pressure_ratio or mixer.core_mach, or lower turbine_entry_temperature"
     else:
         remedy = "lower fan_pressure_ratio or mixer.core_mach, or raise turbine_entry_temperature"
+    meets = _meeting_fan_pressure_ratio(arrangement, path, flight, taken)
+    if np.isfinite(meets):
+        remedy += f"; a fan_pressure_ratio of {meets:.2f} would do alone"
     raise CycleCannotRun(
         "the mixer's streams cannot meet at one static pressure: the core brings "
         f"{float(core.total_pressure) / 1e3:.1f} kPa of total pressure, "
@@ -166,6 +170,29 @@ def _refuse_mixer(arrangement: Arrangement, path: Flowpath) -> None:
         f"{float(bypass.total_pressure) / 1e3:.1f} kPa of total pressure and would flow at Mach "
         f"{mach:.2f}, allowed {slowest:g} to {fastest:g}; {remedy}"
     )
+
+
+def _bypass_mach(arrangement: Arrangement, path: Flowpath) -> np.ndarray:
+    """Mach number at which the bypass stream would have to enter the mixer."""
+    bypass = path.stations["16"]
+    static_pressure = path.loadings["mixer_static_share"] * bypass.total_pressure
+    with np.errstate(all="ignore"):
+        return at_static_pressure(arrangement.gas, bypass, static_pressure).mach
+
+
+def _meeting_fan_pressure_ratio(
+    arrangement: Arrangement, path: Flowpath, flight: FlightCondition, taken: OffTakes
+) -> float:
+    """The fan pressure ratio nearest to the one given at which the streams meet; NaN for none."""
+    _, face = take_in(arrangement.gas, arrangement.inlet, flight)
+    trials = np.geomspace(1.1, 8.0, 150)
+    given = float(path.stations["13"].total_pressure / path.stations["2"].total_pressure)
+    unknowns = np.repeat(arrangement.design_unknowns(face)[:, None], trials.size, axis=1)
+    unknowns[arrangement.unknown_names.index("fan_pressure_ratio")] = np.log(trials)
+    mach = _bypass_mach(arrangement, _run(arrangement, flight, taken, unknowns))
+    slowest, fastest = _BYPASS_MACH
+    meets = trials[(mach > 2.0 * slowest) & (mach < 0.8 * fastest)]
+    return float(meets[np.argmin(np.abs(np.log(meets / given)))]) if meets.size else np.nan
 
 
 def scaled(sizing: Sizing, factor: float) -> Sizing:

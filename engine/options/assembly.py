@@ -12,7 +12,7 @@ from engine.cycles.core import Core
 from engine.cycles.flowpath import LIMIT_NAMES, Arrangement, Flowpath
 from engine.cycles.low_spool import LowSpool
 from engine.cycles.mixed_turbofan import MixedTurbofan, Mixer
-from engine.cycles.situation import OffTakes
+from engine.cycles.situation import OffTakes, Sizing
 from engine.cycles.turbofan import Turbofan
 from engine.cycles.turbojet import Turbojet
 from engine.cycles.turboprop import PowerTrain, Turboprop
@@ -124,6 +124,20 @@ def _refuse_rich(gas: Gas, rating: RatingTable, name: str) -> None:
             f"= {ratio:g} is above {richest:.4f}, the stoichiometric ratio of the fuel, at which "
             "all oxygen is used; lower it or leave it out",
             key=f"ratings.{name}.afterburner_fuel_air_ratio",
+        )
+
+
+def refuse_propeller(written: CycleEngineFile, sizing: Sizing) -> None:
+    """Refuse a propeller that would be better than its disc without any blade drag."""
+    profile = sizing.loadings.get("propeller_profile", 1.0)
+    if isinstance(written, TurbopropFile) and profile > 1.0:
+        stated, diameter = written.propeller.efficiency, written.propeller.diameter
+        assert stated is not None  # a profile factor that is given is at most 1
+        raise InputRefused(
+            f"= {stated:g} is above the {stated / profile:.3f} that a disc of {diameter:g} m has at "
+            "this power, speed and height with no blade drag at all; lower it to some 0.9 "
+            "of that, or enlarge propeller.diameter",
+            key="propeller.efficiency",
         )
 
 

@@ -24,7 +24,7 @@ Temperature and fan pressure ratio are found so that the fuel consumption is met
 the design point alone. The constants were set by hand with a view of the databank rows of
 ``tests/published/test_databank.py``, in round numbers, and hold for all of them.
 
-Ratings: take-off at the temperature of the design point on ISA+15, thrust flat on colder days;
+Ratings: take-off at the temperature that gives the static thrust on ISA+15, flat on colder days;
 climb and cruise at 0.926 and 0.907 of take-off temperature, with corrected fan speed at most 1.085
 and 1.055: the Energy Efficient Engine's (NASA CR-168219, Table XII: turbine temperatures, and
 speeds estimated as everywhere here from the fan's work). Maximum continuous at 0.98, as fast
@@ -45,12 +45,15 @@ from pydantic import BaseModel
 from scipy.optimize import brentq
 
 from engine.atmosphere import FlightCondition, flight_condition
+from engine.cycle_engine import CycleEngine
 from engine.cycles.flowpath import Flowpath
 from engine.cycles.situation import NOTHING_TAKEN, Situation
+from engine.cycles.sizing import size
 from engine.cycles.turbofan import Turbofan
 from engine.cycles.turbojet import Turbojet
 from engine.errors import InputRefused
-from engine.options.assembly import arrange
+from engine.interface import RATINGS, Outcome
+from engine.options.assembly import arrange, ratings_of
 from engine.options.input_model import AnyCycleFile, EngineFile
 from engine.parts.efficiency import Efficiency
 from engine.parts.inlet import take_in
@@ -61,7 +64,7 @@ VELOCITY_RATIO = 0.8
 # Logarithm of turbine entry temperature over the expected one: where an answer is looked for.
 _SURPLUS = (-0.25, -0.1, 0.0, 0.1, 0.25, 0.5)
 _HOTTEST = 2300.0  # [K], beyond which nothing is looked for
-_WARM_DAY = 1.047  # take-off temperature over the design point's, for its thrust at ISA+15
+_WARM = 15.0  # [K] warmer than standard, up to which take-off thrust is flat
 _GIVEN = ("name", "note", "kind", "fuel", "design_point.net_thrust", "design_point.bypass_ratio")
 
 
@@ -94,7 +97,7 @@ def cycle_content(
     wanted = static_specific_fuel_consumption
     surplus = _surplus(bench, wanted)
     if not bench.has_fan:
-        return content(surplus)
+        return _rated(content(surplus), static_thrust)
     fan_ratio = round(bench.fan_pressure_ratio(surplus), 5)
     high, booster = _split(overall_pressure_ratio, fan_ratio)
     whole = content(surplus)
@@ -103,7 +106,26 @@ def cycle_content(
         "booster_pressure_ratio": round(booster, 5),
         "high_pressure_compressor_pressure_ratio": round(high, 5),
     }
-    return whole
+    return _rated(whole, static_thrust)
+
+
+def _rated(content: dict[str, Any], static_thrust: float) -> dict[str, Any]:
+    """The content with ratings from the temperature that gives the static thrust on a warm day."""
+    hot = content["design_point"]["turbine_entry_temperature"]
+    open_throttle = {name: {"turbine_entry_temperature": "2500 K"} for name in RATINGS}
+    written = check({"engine": content | {"ratings": open_throttle}}, EngineFile, "").engine
+    assert isinstance(written, AnyCycleFile)
+    arrangement = arrange(written)
+    sizing, _ = size(arrangement, flight_condition(0.0, 0.0), net_thrust=static_thrust)
+    engine = CycleEngine("bench", arrangement, sizing, ratings_of(written))
+    state = engine.at_thrust(flight_condition(0.0, 0.0, _WARM), static_thrust, rating=RATINGS[0])
+    if int(state.outcome) != Outcome.MET:
+        raise InputRefused(
+            f"leaves an engine, at {hot}, that cannot give its static thrust on ISA+{_WARM:.0f}; "
+            "lower bypass_ratio or raise overall_pressure_ratio",
+            key="static_specific_fuel_consumption",
+        )
+    return content | {"ratings": _ratings(float(state.turbine_entry_temperature))}
 
 
 def assumptions(model: BaseModel, prefix: str = "") -> list[str]:
@@ -267,8 +289,8 @@ def _content(
     core_nozzle = {"pressure_loss_fraction": 0.01, "gross_thrust_coefficient": 0.99}
     common = told | {
         "combustor": {"efficiency": 0.999, "pressure_loss_fraction": 0.05},
-        "ratings": _ratings(temperature),
-        "idle": _idle(overall),
+        "ratings": _ratings(temperature),  # until the engine is known
+        "idle": _idle(overall, has_bypass=bypass_ratio > 0.0),
     }
     if bypass_ratio:
         fans = ("fan", "booster", "high_pressure_compressor")
@@ -308,9 +330,8 @@ def _efficiencies(parts: tuple[str, ...], quality: dict[str, float]) -> dict[str
     return dict.fromkeys(parts, quality) | {"mechanical": 0.99}
 
 
-def _ratings(temperature: float) -> dict[str, Any]:
-    """Ceilings of temperature [K] and of corrected speed of the fan."""
-    warm = temperature * _WARM_DAY
+def _ratings(warm: float) -> dict[str, Any]:
+    """Ceilings of temperature, from that of take-off [K], and of corrected speed of the fan."""
 
     def rating(share: float, speed: float, **more: str) -> dict[str, Any]:
         ceiling = {"turbine_entry_temperature": f"{share * warm:.2f} K"}
@@ -324,14 +345,15 @@ def _ratings(temperature: float) -> dict[str, Any]:
     }
 
 
-def _idle(overall: float) -> dict[str, Any]:
+def _idle(overall: float, *, has_bypass: bool) -> dict[str, Any]:
     """Floors: speed near the ground, flame in a fast descent, cabin air up high."""
+    pressure = 1.0 + 0.03 * overall if has_bypass else 1.0
     speed = round(0.56 + 0.13 * log(overall / 13.0), 4)
     return {
         "flight": {
             "corrected_high_pressure_speed": round(speed + 0.02, 4),
             "fuel_air_ratio": 0.005,
-            "compressor_delivery_pressure": f"{1.0 + 0.03 * overall:.3f} bar",
+            "compressor_delivery_pressure": f"{pressure:.3f} bar",
         },
         "ground": {"corrected_high_pressure_speed": speed, "fuel_air_ratio": 0.004},
     }

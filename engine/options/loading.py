@@ -12,7 +12,7 @@ from engine.cycles.sizing import size
 from engine.errors import InputRefused, OutOfRange
 from engine.installation.pod import GivenPod
 from engine.interface import RATINGS, Engine
-from engine.options.assembly import arrange, fit_afterburner, ratings_of
+from engine.options.assembly import arrange, fit_afterburner, ratings_of, refuse_propeller
 from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.options.input_model import (
     AnyCycleFile,
@@ -103,6 +103,7 @@ def _cycle_engine(written: AnyCycleFile, where: str, assumed: tuple[str, ...]) -
             taken=OffTakes.of(off_takes.customer_bleed_fraction, off_takes.shaft_power),
         )
         arrangement = fit_afterburner(arrangement, written, path)
+        refuse_propeller(written, sizing)
     except OutOfRange as refusal:
         raise InputRefused(str(refusal), where=where, key="design_point") from None
     except InputRefused as refusal:
@@ -134,8 +135,10 @@ def _scaled(engine: CycleEngine, table: ScaleTable, where: str) -> CycleEngine:
 def _assumed(
     written: AnyCycleFile | BrochureFile | ConstantConsumptionFile | TabulatedFile,
 ) -> tuple[str, ...]:
-    """Values left unsaid; those of a fuel known by name are its own."""
+    """Values left unsaid, but for those that say nothing here."""
+    left_out = ["fuel."] if written.fuel.is_by_name else []
+    for name in ("installation", "pod"):  # which matter to nothing that is flown, unless said
+        if name not in written.model_fields_set:
+            left_out.append(f"{name}.")
     lines = defaults_used(written)
-    if written.fuel.is_by_name:
-        lines = [line for line in lines if not line.startswith("fuel.")]
-    return tuple(lines)
+    return tuple(line for line in lines if not line.startswith(tuple(left_out)))

@@ -35,7 +35,7 @@ def comparison_screen(
     lost = {name: flight for name, flight in flights.items() if not flight.flown}
     parts: list[RenderableType] = [
         Text(comparison.mission, "bold"),
-        Text(f"{comparison.aircraft}, {setting.engine_count} engines of each option, {day}"),
+        Text(f"{comparison.aircraft}, {_engines(setting.engine_count)} of each option, {day}"),
         Text(),
         Text(verdict(comparison, units), "bold"),
     ]
@@ -57,6 +57,10 @@ def comparison_screen(
         ]
         parts.append(section("Options that cannot fly it", pairs(reasons)))
     return Group(*parts, Text(), note(NOT_CHARGED), caution())
+
+
+def _engines(count: int) -> str:
+    return "1 engine" if count == 1 else f"{count} engines"
 
 
 def verdict(comparison: Comparison, units: Units = METRIC) -> str:

@@ -106,6 +106,8 @@ def stations_screen(
         parts += [Text(remark, "bold"), Text()]
     if question.doubt:
         parts += [Text(f"Doubt: {question.doubt}."), Text()]
+    if state.unanswered_count:
+        return Group(*parts[:-1], caution())
     parts.append(pairs(_answer(state), strong=True))
     if state.stations:
         parts.append(section("Stations after SAE AS755", _stations(state, is_wide=width >= WIDEST)))
@@ -188,8 +190,10 @@ def _answer(state: EngineState) -> list[tuple[str, str]]:
         ("specific fuel consumption", sfc),
     ]
     if state.stations:
+        if "13" in state.stations:
+            rows.append(("bypass ratio", number(float(state.bypass_ratio), 2)))
+        rows += _propeller(state)
         rows += [
-            ("bypass ratio", number(float(state.bypass_ratio), 2)),
             ("overall pressure ratio", number(float(state.overall_pressure_ratio), 2)),
             ("turbine entry temperature",
              f"{number(float(state.turbine_entry_temperature), 0)} K"),
@@ -207,6 +211,18 @@ def _answer(state: EngineState) -> list[tuple[str, str]]:
             ("efficiencies", f"thermal {thermal} %, propulsive {propulsive} %, overall {overall} %")
         )
     return rows
+
+
+def _propeller(state: EngineState) -> list[tuple[str, str]]:
+    """What a propeller takes and gives, if the engine has one."""
+    work = None if state.evidence is None else state.evidence.path.propeller
+    if work is None:
+        return []
+    power, thrust = float(work.shaft_power.item()), float(work.thrust.item())
+    useful = thrust * float(state.flight.true_airspeed)
+    share = f", efficiency {number(100.0 * useful / power, 1)} %" if power > 0.0 < useful else ""
+    told = f"{number(power / 1e3, 0)} kW, of it {_kilonewtons(thrust)} of thrust{share}"
+    return [("propeller shaft power", told)]
 
 
 def _binding(state: EngineState) -> str:

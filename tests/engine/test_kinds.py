@@ -22,6 +22,8 @@ from engine_kinds import (
 
 from engine.atmosphere import flight_condition
 from engine.cycle_engine import CycleEngine
+from engine.cycles.situation import OffTakes
+from engine.cycles.sizing import size
 from engine.errors import CycleCannotRun, InputRefused
 from engine.finished import why_unphysical
 from engine.interface import Outcome
@@ -192,9 +194,28 @@ def test_thrust_is_sized_for_beside_any_shaft_power() -> None:
         size = {"design_point.net_thrust": "200 kN", "off_takes.shaft_power": "1 MW"}
         if "airflow" in content["design_point"]:
             size["design_point.airflow"] = None  # type: ignore[assignment]
+        if "propeller" in content:
+            size["propeller.diameter"] = "16 m"  # whatever carries 200 kN
         engine = load(changed(content, size))
 
         assert engine.sizing.reference_thrust == pytest.approx(2e5, rel=1e-9), name
+
+
+def test_a_propeller_better_than_its_disc_is_refused() -> None:
+    """Against momentum theory by hand: ``T = 2 rho A v (V + v)``, efficiency ``V / (V + v)``."""
+    with pytest.raises(InputRefused, match=r"is above the 0\.\d+ that a disc of 1 m") as refused:
+        load(changed(KINDS["turboprop"], {"propeller.diameter": "1 m"}))
+    assert refused.value.key == "propeller.efficiency"
+    best = float(re.findall(r"above the (0\.\d+)", refused.value.what)[0])
+    # The stated efficiency's own thrust loads the disc, whatever that disc could do.
+    flight = flight_condition(6096.0, 0.5)
+    taken = OffTakes.of(0.01, 20e3)
+    _, path = size(engine_of("turboprop").arrangement, flight, airflow=8.0, taken=taken)
+    assert path.propeller is not None
+    speed, area = float(flight.true_airspeed), 0.25 * np.pi
+    thrust = 0.85 * float(path.propeller.shaft_power) / speed
+    past = 0.5 * (speed + (speed**2 + 2.0 * thrust / (float(flight.density) * area)) ** 0.5)
+    assert best == pytest.approx(speed / past, abs=6e-4)
 
 
 def test_a_size_that_is_not_found_is_refused() -> None:

@@ -143,7 +143,7 @@ def test_windmilling_burns_nothing_and_drags(engine: CycleEngine) -> None:
 
 
 def test_windmilling_that_does_not_turn_is_flagged(engine: CycleEngine) -> None:
-    state = engine.windmilling(flight_condition([0.0, 9000.0], [[0.0], [0.05]]))
+    state = engine.windmilling(flight_condition([0.0, 9000.0], 0.0))
 
     assert np.all(state.outcome == Outcome.NOT_CONVERGED)
     assert np.all(state.net_thrust == 0.0)
