@@ -55,7 +55,8 @@ liter = 0.001 * m ** 3 = L
 
 # Kind of quantity -> (coherent SI unit, example shown in a refusal).
 KINDS: dict[str, tuple[str, str]] = {
-    "length": ("m", "1200 nmi"),
+    "length": ("m", "2.1 m"),
+    "distance": ("m", "1200 nmi"),
     "altitude": ("m", "35000 ft"),
     "area": ("m**2", "61 m**2"),
     "volume": ("m**3", "11000 L"),
@@ -135,6 +136,17 @@ def parse_quantity(text: object, kind: str) -> float:
     return float(parts.group(1)) * _unit_factor(parts.group(2), kind)
 
 
+def si_unit_of(text: str) -> str:
+    """The coherent SI unit of a quantity written with its unit; empty where it is none."""
+    for kind, (unit, _) in KINDS.items():
+        try:
+            parse_quantity(text, kind)
+        except ValueError:
+            continue
+        return unit
+    return ""
+
+
 def parse_day(text: object) -> float:
     """Temperature deviation [K] from the standard atmosphere of a day such as ``"ISA+15"``."""
     if isinstance(text, str) and (day := _DAY.match(text)):
@@ -153,6 +165,7 @@ def _reader(kind: str) -> BeforeValidator:
 
 
 Length = Annotated[float, _reader("length")]
+Distance = Annotated[float, _reader("distance")]
 # The range of the standard atmosphere used here, engine.atmosphere.
 Altitude = Annotated[float, _reader("altitude"), Field(ge=-2000.0, le=30000.0)]
 Area = Annotated[float, _reader("area")]

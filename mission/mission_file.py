@@ -7,7 +7,7 @@ from typing import Annotated, Any
 
 from pydantic import Field, model_validator
 
-from engine.quantities import Altitude, Day, Length, Mass, Speed, Time
+from engine.quantities import Altitude, Day, Distance, Mass, Speed, Time
 from engine.reading import Table, check, defaults_used, read_toml
 from mission.segments import AnySegment
 from mission.segments.cruise import LONGEST
@@ -35,7 +35,7 @@ class FuelTable(Table):
 class AlternateTable(Table):
     """Flown from the destination as a climb, a cruise and a descent of its own."""
 
-    distance: Annotated[Length, Field(gt=0.0, le=LONGEST)]
+    distance: Annotated[Distance, Field(gt=0.0, le=LONGEST)]
     pressure_altitude: Altitude
     mach: Annotated[float, Field(gt=0.0, lt=5.0)]
     calibrated_airspeed: Annotated[Speed, Field(gt=0.0)]
@@ -65,7 +65,7 @@ class MissionFile(Table):
     engine: str = ""
     engine_options: Annotated[list[str], Field(default_factory=list)]
     payload: Annotated[Mass, Field(ge=0.0)]
-    distance: Annotated[Length, Field(gt=0.0, le=LONGEST)] | None = None
+    distance: Annotated[Distance, Field(gt=0.0, le=LONGEST)] | None = None
     day: Day = 0.0
     headwind: Annotated[Speed, Field(ge=-100.0, le=100.0)] = 0.0
     departure: PlaceTable = PlaceTable()
