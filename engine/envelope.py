@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from engine.atmosphere import FlightCondition, flight_condition
+from engine.atmosphere import FlightCondition, broadcast_condition, flight_condition
 from engine.errors import InputRefused
 from engine.interface import OPTIONAL_RATINGS, Engine, Outcome, is_unanswered
 
@@ -17,6 +17,7 @@ Level = str | float
 LOWEST = "flight_idle"  # the level that a share of zero would name
 COLUMNS = ("pressure_altitude_m", "mach", "rating", "net_thrust_n", "fuel_flow_kg_per_s")
 REHEATED = OPTIONAL_RATINGS[0]
+WINDMILLING = "windmilling"  # the level of an unlit engine, which is neither a rating nor an idle
 # What a share is, in lines of a comment.
 SHARE = (
     "a rating that is a number is a share of the thrust span at its point:",
@@ -62,6 +63,18 @@ class Envelope:
         """Where the engine has an answer, (levels, A, M)."""
         return ~is_unanswered(self.outcome)
 
+    def without(self, level: Level) -> Envelope:
+        """The same with a level left out."""
+        kept = [i for i, name in enumerate(self.levels) if name != level]
+        return replace(
+            self,
+            levels=tuple(self.levels[i] for i in kept),
+            net_thrust=self.net_thrust[kept],
+            fuel_flow=self.fuel_flow[kept],
+            outcome=self.outcome[kept],
+            binding_limit=self.binding_limit[kept],
+        )
+
 
 def grid(low: float, high: float, step: float) -> Array:
     """From ``low`` to ``high``, both included, at multiples of a step."""
@@ -70,9 +83,10 @@ def grid(low: float, high: float, step: float) -> Array:
 
 
 def default_levels(engine: Engine) -> tuple[Level, ...]:
-    """Every rating and idle of an engine, and the shares that a table needs."""
+    """Every rating and idle of an engine, windmilling, and the shares that a table needs."""
     reheated = REHEATED_SHARES if REHEATED in engine.ratings else ()
-    return (*engine.ratings, *engine.idles, *SHARES, *reheated)
+    unlit = (WINDMILLING,) if engine.is_known_unlit else ()
+    return (*engine.ratings, *engine.idles, *unlit, *SHARES, *reheated)
 
 
 def envelope(
@@ -89,8 +103,8 @@ def envelope(
     ----------
     pressure_altitude, mach : (A,) [m] and (M,), rising
     temperature_deviation : of the day [K]
-    levels : names of ratings and idles, and shares of thrust (:data:`SHARE`) above 0 and up to
-        1, with reheat to 2
+    levels : names of ratings and idles, :data:`WINDMILLING`, and shares of thrust
+        (:data:`SHARE`) above 0 and up to 1, with reheat to 2
 
     Raises
     ------
@@ -101,18 +115,22 @@ def envelope(
 
     Notes
     -----
-    Ratings and idles are one engine call, shares, which need their thrusts, a second.
+    Ratings and idles are one engine call, shares, which need their thrusts, a second, windmilling
+    a third. At rest no air turns an unlit engine: there, by definition, it gives exactly no thrust
+    and burns nothing.
     """
     altitudes, machs = (np.atleast_1d(np.asarray(x, float)) for x in (pressure_altitude, mach))
     shares = [level for level in levels if not isinstance(level, str)]
     _refuse_shares(engine, shares)
     air = flight_condition(altitudes[:, None], machs[None, :], temperature_deviation)
-    named = [level for level in levels if isinstance(level, str)]
+    named = [level for level in levels if isinstance(level, str) and level != WINDMILLING]
     asked = list(dict.fromkeys([*named, *((*engine.ratings, LOWEST) if shares else ())]))
-    found = _ask(engine, air, np.array(asked)[:, None, None], None)
-    rows: dict[Level, _Level] = {
-        name: _Level(*(part[i] for part in found)) for i, name in enumerate(asked)
-    }
+    rows: dict[Level, _Level] = {}
+    if asked:
+        found = _ask(engine, air, np.array(asked)[:, None, None], None)
+        rows |= {name: _Level(*(part[i] for part in found)) for i, name in enumerate(asked)}
+    if WINDMILLING in levels:
+        rows[WINDMILLING] = _unlit(engine, air)
     if shares:
         rows |= _at_shares(engine, air, shares, rows)
     chosen = [rows[level] for level in levels]
@@ -156,6 +174,19 @@ def _ask(
     flight = air.with_mach(np.broadcast_to(air.mach, shape))
     state = engine.at(flight, rating=np.broadcast_to(ratings, shape), net_thrust=thrust)
     return state.net_thrust, state.fuel_flow, state.outcome, state.binding_limit_names
+
+
+def _unlit(engine: Engine, air: FlightCondition) -> _Level:
+    """The engine unlit, which is asked for only where air turns it."""
+    flight = broadcast_condition(air)
+    moves = flight.mach > 0.0
+    thrust, fuel = np.zeros(flight.shape), np.zeros(flight.shape)
+    outcome = np.full(flight.shape, Outcome.MET, dtype=np.int64)
+    if moves.any():
+        state = engine.windmilling(flight.at(moves))
+        thrust[moves], fuel[moves] = state.net_thrust, state.fuel_flow
+        outcome[moves] = state.outcome
+    return _Level(thrust, fuel, outcome, np.full(flight.shape, "none"))
 
 
 def _at_shares(

@@ -305,6 +305,11 @@ class Engine(ABC):
         """Where alone the engine can be asked; None where the atmosphere alone is the bound."""
         return None
 
+    @property
+    def is_known_unlit(self) -> bool:
+        """Whether it can be asked for itself unlit."""
+        return True
+
     @abstractmethod
     def windmilling(self, flight: FlightCondition) -> EngineState:
         """Unlit engine turned by the air: no fuel, negative thrust."""

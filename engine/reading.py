@@ -6,19 +6,24 @@ import difflib
 import tomllib
 from collections.abc import Callable
 from pathlib import Path
-from typing import Any, TypeVar
+from typing import Any, ClassVar, TypeVar, get_args
 
 from pydantic import BaseModel, ConfigDict, ValidationError
 
 from engine.errors import InputRefused
+from engine.quantities import si_unit_of
 
 _LARGEST_FILE = 1_000_000  # bytes; the longest sensible input is a hundredth of this
 _Model = TypeVar("_Model", bound=BaseModel)
 
 
 class Table(BaseModel):
-    """A table of an input file: unknown keys are refused, numbers are not made from text."""
+    """A table of an input file: unknown keys are refused, numbers are not made from text.
 
+    ``example`` is a line of it, shown where the whole table is missing and no key is a must.
+    """
+
+    example: ClassVar[str] = ""
     model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
 
 
@@ -96,6 +101,29 @@ def _key(place: tuple[int | str, ...], content: dict[str, Any]) -> str:
     return text.removesuffix(":")
 
 
+def _no_kind(discriminator: str, model: type[BaseModel], place: tuple[int | str, ...]) -> str:
+    """An entry that does not say of which kind it is, with the kinds that there are."""
+    entry = _below(model, place)
+    tags = [
+        tag
+        for each in (entry if isinstance(entry, tuple) else (entry,))
+        for tag in get_args(each.model_fields[discriminator.strip("'")].annotation)
+    ]
+    return f"{discriminator} is missing; allowed: {', '.join(map(repr, tags))}"
+
+
+def _missing(model: type[BaseModel], place: tuple[int | str, ...]) -> str:
+    """What is missing; of a table, what has to stand in it."""
+    table = _below(model, place)
+    if not (isinstance(table, type) and issubclass(table, Table)):
+        return "is missing"
+    musts = [name for name, info in table.model_fields.items() if info.is_required()]
+    if not table.example and not musts:
+        return "is missing"
+    held = f"{table.example}, say" if table.example else f"at least {', '.join(musts)}"
+    return f"is missing; it is a table with {held}"
+
+
 def _wrong_kind(discriminator: str, tag: str, expected_tags: str) -> str:
     """An entry that says it is of a kind that there is not, with the nearest one there is."""
     kinds = [kind.strip().strip("'") for kind in expected_tags.split(",")]
@@ -106,9 +134,7 @@ def _wrong_kind(discriminator: str, tag: str, expected_tags: str) -> str:
 
 # What pydantic found, by its kind of error, said to the person who wrote the file.
 _WORDS: dict[str, Callable[[Any], str]] = {
-    "missing": lambda found: "is missing",
     "value_error": lambda found: str(found["ctx"]["error"]),
-    "union_tag_not_found": lambda found: f"{found['ctx']['discriminator']} is missing",
     "union_tag_invalid": lambda found: _wrong_kind(**found["ctx"]),
     "literal_error": lambda found: f"= {found['input']!r}; allowed: {found['ctx']['expected']}",
     "float_type": lambda found: f"= {found['input']!r}; a bare number belongs here",
@@ -125,12 +151,17 @@ _BOUNDS = ("greater_than", "greater_than_equal", "less_than", "less_than_equal")
 
 def _in_words(found: Any, model: type[BaseModel]) -> str:
     """One entry of a ValidationError as a sentence."""
+    if found["type"] == "missing":
+        return _missing(model, found["loc"])
+    if found["type"] == "union_tag_not_found":
+        return _no_kind(found["ctx"]["discriminator"], model, found["loc"])
     if found["type"] in _WORDS:
         return _WORDS[found["type"]](found)
     if found["type"] != "extra_forbidden":
         message = found["msg"].replace("Input should be", "it should be")
         is_quantity = isinstance(found["input"], str) and found["type"] in _BOUNDS
-        return f"= {found['input']!r}; {message}" + (" in SI units" if is_quantity else "")
+        unit = si_unit_of(found["input"]) if is_quantity else ""
+        return f"= {found['input']!r}; {message} {unit}".rstrip()
     allowed = _keys_beside(model, found["loc"])
     key = str(found["loc"][-1])
     close = difflib.get_close_matches(key, allowed, n=1)
@@ -144,9 +175,16 @@ def _keys_beside(model: Any, place: tuple[int | str, ...]) -> list[str]:
     for part in place[:-1]:
         found = _member(model, part)
         if found is None:
-            return sorted(getattr(model, "model_fields", {}))
+            break
         model = found
     return sorted(getattr(model, "model_fields", {}))
+
+
+def _below(model: Any, place: tuple[int | str, ...]) -> Any:
+    """The model, or the tuple of models, at a place; None where no table belongs there."""
+    for part in place:
+        model = _member(model, part)
+    return model or None
 
 
 def _member(model: Any, part: int | str) -> Any:

@@ -107,7 +107,7 @@ class Reference:
         sound, pressure = float(air.speed_of_sound), float(air.static_pressure)
 
         # The limit that governs may change along the way: no joint here, so closer steps.
-        exact = 1e-2 * self.tolerance
+        exact = 0.1 * self.tolerance
 
         def lift_off(mass: float) -> float:
             force = 0.7 * pressure * aircraft.wing_area * aircraft.take_off_lift_coefficient

@@ -134,8 +134,8 @@ def refuse_propeller(written: CycleEngineFile, sizing: Sizing) -> None:
         stated, diameter = written.propeller.efficiency, written.propeller.diameter
         assert stated is not None  # a profile factor that is given is at most 1
         raise InputRefused(
-            f"= {stated:g} is above the {stated / profile:.3f} that a disc of {diameter:g} m has at "
-            "this power, speed and height with no blade drag at all; lower it to some 0.9 "
+            f"= {stated:g} is above the {stated / profile:.3f} that a disc of {diameter:g} m has "
+            "at this power, speed and height with no blade drag at all; lower it to some 0.9 "
             "of that, or enlarge propeller.diameter",
             key="propeller.efficiency",
         )

@@ -125,7 +125,7 @@ def _rated(content: dict[str, Any], static_thrust: float) -> dict[str, Any]:
             "lower bypass_ratio or raise overall_pressure_ratio",
             key="static_specific_fuel_consumption",
         )
-    return content | {"ratings": _ratings(float(state.turbine_entry_temperature))}
+    return content | {"ratings": _ratings(float(state.turbine_entry_temperature), content["kind"])}
 
 
 def assumptions(model: BaseModel, prefix: str = "") -> list[str]:
@@ -289,7 +289,7 @@ def _content(
     core_nozzle = {"pressure_loss_fraction": 0.01, "gross_thrust_coefficient": 0.99}
     common = told | {
         "combustor": {"efficiency": 0.999, "pressure_loss_fraction": 0.05},
-        "ratings": _ratings(temperature),  # until the engine is known
+        "ratings": _ratings(temperature, _kind(bypass_ratio, overall)),  # until the engine is known
         "idle": _idle(overall, has_bypass=bypass_ratio > 0.0),
     }
     if bypass_ratio:
@@ -306,7 +306,7 @@ def _content(
             "core_nozzle": core_nozzle,
             "bypass_nozzle": core_nozzle | {"pressure_loss_fraction": 0.015},
         }
-    if overall <= 8.0:
+    if _kind(bypass_ratio, overall) == "turbojet":
         return common | {
             "kind": "turbojet",
             "design_point": point | {"compressor_pressure_ratio": overall},
@@ -330,12 +330,21 @@ def _efficiencies(parts: tuple[str, ...], quality: dict[str, float]) -> dict[str
     return dict.fromkeys(parts, quality) | {"mechanical": 0.99}
 
 
-def _ratings(warm: float) -> dict[str, Any]:
-    """Ceilings of temperature, from that of take-off [K], and of corrected speed of the fan."""
+def _kind(bypass_ratio: float, overall: float) -> str:
+    """The arrangement that the rule takes."""
+    return "turbofan" if bypass_ratio else "turbojet" if overall <= 8.0 else "two-spool turbojet"
+
+
+def _ratings(warm: float, kind: str) -> dict[str, Any]:
+    """Ceilings of temperature, from that of take-off [K], and of corrected speed of what is first.
+
+    That is the fan or low-pressure compressor, or, of one spool, its compressor.
+    """
+    spool = "high" if kind == "turbojet" else "low"
 
     def rating(share: float, speed: float, **more: str) -> dict[str, Any]:
         ceiling = {"turbine_entry_temperature": f"{share * warm:.2f} K"}
-        return ceiling | {"corrected_low_pressure_speed": speed} | more
+        return ceiling | {f"corrected_{spool}_pressure_speed": speed} | more
 
     return {
         "take_off": rating(1.0, 1.085, flat_to="ISA+15"),

@@ -15,7 +15,7 @@ from engine.atmosphere import (
     LARGEST_TEMPERATURE_DEVIATION,
     LOWEST_PRESSURE_ALTITUDE,
 )
-from engine.envelope import COLUMNS
+from engine.envelope import COLUMNS, WINDMILLING
 from engine.errors import InputRefused
 from engine.interface import IDLES, OPTIONAL_RATINGS, RATINGS
 from engine.options.csv_rows import (
@@ -26,13 +26,17 @@ from engine.options.csv_rows import (
     rows_of,
     value_of,
 )
-from engine.quantities import parse_day
+from engine.quantities import day_text, parse_day
 
 Array = NDArray[np.float64]
 DAY_COLUMN = "temperature_deviation_k"
 DEMAND = ""  # the rating of a point whose thrust is asked for, not told
 _ALTITUDE, _MACH, _RATING, _THRUST, _FUEL = COLUMNS
 _WORDS = (*RATINGS, *OPTIONAL_RATINGS, *IDLES)
+# Fuel flow over thrust [kg/(N s)] of anything that burns, from an open rotor to reheat at part
+# thrust, with room around it: common practice, no source.
+_LEAST_CONSUMPTION, _MOST_CONSUMPTION = 2e-6, 300e-6
+_Point = tuple[float, float, float, str, float | None]  # with the thrust where it is asked for
 _DAY_REMARK = "# day:"  # how the points that `longlegs envelope` writes tell their day
 
 
@@ -49,6 +53,7 @@ class FitPoints:
     net_thrust : (N,) [N]: what a rating or idle gives, NaN where the point does not tell; where
         the rating is :data:`DEMAND` what is asked for
     fuel_flow : (N,) [kg/s], NaN where the point does not tell
+    unlit_count : rows of the file that are left out, being of an unlit engine
     """
 
     where: str
@@ -59,6 +64,7 @@ class FitPoints:
     rating: NDArray[np.str_]
     net_thrust: Array
     fuel_flow: Array
+    unlit_count: int = 0
 
     @property
     def is_demand(self) -> NDArray[np.bool_]:
@@ -95,6 +101,7 @@ class FitPoints:
             np.append(DEMAND, self.rating),
             np.append(net_thrust, self.net_thrust),
             np.append(fuel_flow, self.fuel_flow),
+            self.unlit_count,
         )
 
 
@@ -103,7 +110,8 @@ def read_fit_points(path: Path) -> FitPoints:
 
     The columns are those of ``longlegs envelope --csv`` and, if the day is not standard,
     ``temperature_deviation_k``. A rating that is a number, a share of thrust there, is a point
-    whose thrust is asked for, like one whose rating is empty.
+    whose thrust is asked for, like one whose rating is empty. Rows rated windmilling, which tables
+    for flying have, are counted and left out.
 
     Raises :class:`InputRefused` naming file, line, column, value and what is allowed.
     """
@@ -120,15 +128,24 @@ def _points(text: str, where: str) -> FitPoints:
     _check_header(header, line)
     if DAY_COLUMN not in header:
         _refuse_unsaid_day(text)
-    rows = []
+    rows: dict[_Point, tuple[int, float | None, float | None]] = {}
+    unlit_count = 0
     for line, cells in lines:
         try:
-            rows.append((line, *_row(header, cells)))
+            given = by_column(header, cells)
+            if _is_unlit(given):
+                unlit_count += 1
+                continue
+            point, thrust, fuel = _row(given)
+            if point in rows:
+                raise ValueError(_given_twice(point, rows[point], thrust, fuel))
         except ValueError as error:
             raise InputRefused(str(error), key=f"line {line}") from None
+        rows[point] = (line, thrust, fuel)
     if not rows:
         raise InputRefused("there are no points below the header; add one a line")
-    number, altitude, mach, day, rating, thrust, fuel = zip(*rows, strict=True)
+    altitude, mach, day, rating, _ = zip(*rows, strict=True)
+    number, thrusts, fuels = zip(*rows.values(), strict=True)
     return FitPoints(
         where,
         np.array(number),
@@ -136,8 +153,9 @@ def _points(text: str, where: str) -> FitPoints:
         np.array(mach),
         np.array(day),
         np.array(rating),
-        np.array(thrust, dtype=float),  # None becomes NaN
-        np.array(fuel, dtype=float),
+        np.array(thrusts, dtype=float),  # None becomes NaN
+        np.array(fuels, dtype=float),
+        unlit_count,
     )
 
 
@@ -173,11 +191,8 @@ def _refuse_unsaid_day(text: str) -> None:
                 )
 
 
-def _row(
-    header: list[str], cells: list[str]
-) -> tuple[float, float, float, str, float | None, float | None]:
-    """One point; ValueError where it is none."""
-    given = by_column(header, cells)
+def _row(given: dict[str, str]) -> tuple[_Point, float | None, float | None]:
+    """One point, its thrust and its fuel flow; ValueError where it is none."""
     altitude = value_of(given, _ALTITUDE, LOWEST_PRESSURE_ALTITUDE, HIGHEST_PRESSURE_ALTITUDE)
     mach = value_of(given, _MACH, 0.0, HIGHEST_MACH)
     most = LARGEST_TEMPERATURE_DEVIATION
@@ -197,7 +212,62 @@ def _row(
         raise ValueError(
             f"{_THRUST} and {_FUEL} are both empty; give one at least, or take the line out"
         )
-    return altitude, mach, day, rating, thrust, fuel
+    if thrust is not None:
+        _refuse_thrust(given, rating, thrust, fuel)
+    return (altitude, mach, day, rating, thrust if rating == DEMAND else None), thrust, fuel
+
+
+def _refuse_thrust(given: dict[str, str], rating: str, thrust: float, fuel: float | None) -> None:
+    """ValueError for a thrust that no rating gives, or that no engine gives for its fuel.
+
+    Idle thrust, and a small share of thrust in a table, may be near zero.
+    """
+    if rating not in (*IDLES, DEMAND) and thrust < 0.0:
+        raise ValueError(f"{_THRUST} = {thrust:g}; only an idle may give less than none")
+    if rating in IDLES or fuel is None or not thrust > 0.0:
+        return
+    consumption, is_share = fuel / thrust, bool(given[_RATING]) and rating == DEMAND
+    if consumption < _LEAST_CONSUMPTION or (consumption > _MOST_CONSUMPTION and not is_share):
+        slips = {3600.0: "kg/h in place of kg/s", 1000.0: "kN in place of N"}
+        fitting = [
+            slip
+            for factor, slip in slips.items()
+            if _LEAST_CONSUMPTION <= consumption / factor <= _MOST_CONSUMPTION
+        ]
+        hint = f": {' or '.join(fitting)}?" if fitting else "; check both"
+        raise ValueError(
+            f"{_FUEL} = {fuel:g} over {_THRUST} = {thrust:g} is {consumption * 1e6:.4g} mg/(N s), "
+            f"outside the {_LEAST_CONSUMPTION * 1e6:g} to {_MOST_CONSUMPTION * 1e6:g} of engines"
+            f"{hint}"
+        )
+
+
+def _is_unlit(given: dict[str, str]) -> bool:
+    """Whether a row is of an engine that burns nothing and is turned by the air."""
+    return given[_RATING] == WINDMILLING and given[_FUEL] in ("0", "0.0", "")
+
+
+def _given_twice(
+    point: _Point,
+    before: tuple[int, float | None, float | None],
+    thrust: float | None,
+    fuel: float | None,
+) -> str:
+    """What is said of a point that stands there already."""
+    altitude, mach, day, rating, _ = point
+    line, *values = before
+    there, here = (
+        " and ".join(
+            f"{value:g} {unit}"
+            for value, unit in zip(pair, ("N", "kg/s"), strict=True)
+            if value is not None
+        )
+        for pair in (values, (thrust, fuel))
+    )
+    return (
+        f"{rating or 'this thrust'} at {altitude:g} m, Mach {mach:g}, {day_text(day)} is given "
+        f"already in line {line}: {there} there, {here} here; take one out"
+    )
 
 
 def _rating(given: dict[str, str]) -> str:

@@ -18,10 +18,10 @@ from engine.errors import InputRefused
 from engine.options.fit_judgement import Judgement, gaps, judge
 from engine.options.fit_parameters import Parameter, choose, free_parameters, is_inside, put
 from engine.options.fit_points import FitPoints
+from engine.options.fit_reach import refuse_far
 from engine.options.fit_trials import Answers, Bench, Trial, refuse_unanswered
-from engine.options.input_model import BrochureFile, CycleEngineFile, EngineFile
+from engine.options.input_model import AnyCycleFile, BrochureFile, CycleEngineFile, check_engine
 from engine.options.loading import brochure_content
-from engine.reading import check
 
 Array = NDArray[np.float64]
 # Where no keys are asked for: the first of these that the data tell apart.
@@ -113,21 +113,28 @@ def fit(content: dict[str, Any], where: str, points: FitPoints, keys: Sequence[s
     ------
     InputRefused
         for a kind of engine without a cycle, an unknown key, more parameters than data, parameters
-        that the points do not determine, or points where the engine as written, or as fitted, has
-        no answer.
+        that the points do not determine, data far from what the engine as written gives
+        (:mod:`engine.options.fit_reach`), or points where it, or the engine fitted, has no answer.
     CycleCannotRun
         for an engine as written without a physical design point.
     """
-    written = _checked(content, where)
+    written = check_engine(content, where)
     if isinstance(written, BrochureFile):
         thrust = written.static_thrust
         points = points.with_static(thrust, thrust * written.static_specific_fuel_consumption)
     content = cycle_content(content, where)
-    known = free_parameters(_checked(content, where), content)
+    whole = check_engine(content, where)
+    assert isinstance(whole, AnyCycleFile)  # as it is the content of a cycle
+    known = free_parameters(whole, content)
     chosen = choose(keys, known)
     _refuse_too_many(chosen, points)
     bench = Bench.of(content, where, points)
     first = bench.base
+    assert first.answers is not None
+    sized = {p.key for p in chosen} if chosen else known.keys() if points.has_thrust.any() else ()
+    refuse_far(
+        first.answers, points, is_size_free=any(key in sized for key in (*_SIZES, "scale.factor"))
+    )
     if chosen:
         slopes = bench.slopes(chosen, _start(chosen))
         _refuse_undetermined(chosen, slopes, points)
@@ -145,7 +152,6 @@ def fit(content: dict[str, Any], where: str, points: FitPoints, keys: Sequence[s
         "nothing is written: start from other values, or free other keys",
     )
     judged = judge(chosen, at_bound, slopes, float(after.rows @ after.rows), points.data_count)
-    assert first.answers is not None
     return Fit(
         engine=str(content["name"]),
         content=put(content, final),
@@ -168,7 +174,7 @@ def cycle_content(content: dict[str, Any], where: str) -> dict[str, Any]:
 
     Raises :class:`InputRefused` for a kind that has no cycle.
     """
-    written = _checked(content, where)
+    written = check_engine(content, where)
     if isinstance(written, BrochureFile):
         return brochure_content(written, content.get("fuel"), where)
     if not isinstance(written, CycleEngineFile):
@@ -179,15 +185,6 @@ def cycle_content(content: dict[str, Any], where: str) -> dict[str, Any]:
             key="kind",
         )
     return content
-
-
-def _checked(content: Mapping[str, Any], where: str) -> Any:
-    """An engine file of any kind."""
-    try:
-        return check({"engine": dict(content)}, EngineFile, where).engine
-    except InputRefused as refusal:
-        key = refusal.key.removeprefix("engine").removeprefix(".")
-        raise InputRefused(refusal.what, where=where, key=key) from None
 
 
 def _refuse_too_many(parameters: Sequence[Parameter], points: FitPoints) -> None:

@@ -44,9 +44,14 @@ class FuelTable(Table):
                 f"'{self.name}' has values of its own here: write fuel = \"{self.name}\", or give "
                 "your fuel another name"
             )
-        has_composition = self.hydrogen_carbon_ratio is not None or self.carbon_atoms is not None
-        if not has_composition or not {"lower_heating_value", "density"} <= said:
-            raise ValueError(f"a fuel of your own is {_OWN}")
+        missing = [name for name in ("lower_heating_value", "density") if name not in said]
+        if self.hydrogen_carbon_ratio is None and self.carbon_atoms is None:
+            missing.insert(0, "hydrogen_carbon_ratio (or carbon_atoms and hydrogen_atoms)")
+        if missing:
+            raise ValueError(
+                f"'{self.name}' is no fuel known here, and of your own it lacks "
+                f"{' and '.join(missing)}: a fuel of your own is {_OWN}"
+            )
         return self
 
     @model_validator(mode="after")

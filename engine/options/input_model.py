@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from typing import Annotated, Literal
+from collections.abc import Mapping
+from typing import Annotated, Any, Literal
 
 from pydantic import Field, model_validator
 
+from engine.errors import InputRefused
 from engine.options.fuel_table import FuelTable
 from engine.options.tables import (
     AfterburnerTable,
@@ -28,7 +30,7 @@ from engine.options.tables import (
     SectionalGasTable,
 )
 from engine.quantities import Day, Force, SpecificFuelConsumption
-from engine.reading import Table
+from engine.reading import Table, check
 
 
 class CycleEngineFile(Table):
@@ -47,6 +49,17 @@ class CycleEngineFile(Table):
     off_takes: OffTakesTable = OffTakesTable()
     ratings: RatingsTable
     idle: IdlesTable
+
+
+def _refuse_second_spool(ratings: RatingsTable) -> None:
+    """Refuse ceilings on the speed of a spool that a kind does not have."""
+    for name, rating in ratings:
+        for key in ("low_pressure_speed", "corrected_low_pressure_speed"):
+            if rating is not None and getattr(rating, key) is not None:
+                raise ValueError(
+                    f"ratings.{name}.{key}: the gas generator of this kind has one spool; use "
+                    "corrected_high_pressure_speed"
+                )
 
 
 class EfficienciesBase(Table):
@@ -87,6 +100,11 @@ class TurbojetFile(ReheatedFile):
     kind: Literal["turbojet"]
     design_point: TurbojetDesignPoint
     efficiencies: TurbojetEfficiencies
+
+    @model_validator(mode="after")
+    def _one_spool(self) -> TurbojetFile:
+        _refuse_second_spool(self.ratings)
+        return self
 
 
 class TwoSpoolDesignPoint(DesignPointBase):
@@ -173,6 +191,11 @@ class TurbopropFile(CycleEngineFile):
     nozzle: NozzleTable = NozzleTable()
 
     @model_validator(mode="after")
+    def _one_spool(self) -> TurbopropFile:
+        _refuse_second_spool(self.ratings)
+        return self
+
+    @model_validator(mode="after")
     def _efficiency_needs_speed(self) -> TurbopropFile:
         if self.propeller.efficiency is not None and self.design_point.mach == 0.0:
             raise ValueError(
@@ -223,10 +246,32 @@ AnyCycleFile = (
 )
 
 
+AnyEngineFile = AnyCycleFile | BrochureFile | ConstantConsumptionFile | TabulatedFile
+
+
 class EngineFile(Table):
     """Any engine, told apart by its kind."""
 
-    engine: Annotated[
-        AnyCycleFile | BrochureFile | ConstantConsumptionFile | TabulatedFile,
-        Field(discriminator="kind"),
-    ]
+    engine: Annotated[AnyEngineFile, Field(discriminator="kind")]
+
+
+# Keys that only files of other subjects have.
+_OTHER_FILES = {"segment": "a mission", "masses": "an aircraft"}
+
+
+def check_engine(content: Mapping[str, Any], where: str) -> AnyEngineFile:
+    """The content of an engine file, checked; :class:`InputRefused` names key and value."""
+    if "kind" not in content:
+        for key, subject in _OTHER_FILES.items():
+            if key in content:
+                raise InputRefused(
+                    f"is the file of {subject}, and one of an engine is wanted; `longlegs list` "
+                    "names engines",
+                    where=where,
+                )
+    try:
+        return check({"engine": dict(content)}, EngineFile, where).engine
+    except InputRefused as refusal:
+        key = refusal.key.removeprefix("engine").removeprefix(".")
+        shown = "" if "kind" in content else "; the engines of `longlegs list` are examples"
+        raise InputRefused(refusal.what + shown, where=where, key=key) from None

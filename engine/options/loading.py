@@ -18,11 +18,11 @@ from engine.options.input_model import (
     AnyCycleFile,
     BrochureFile,
     ConstantConsumptionFile,
-    EngineFile,
     TabulatedFile,
+    check_engine,
 )
 from engine.options.tables import ScaleTable
-from engine.reading import check, defaults_used, read_toml
+from engine.reading import defaults_used, read_toml
 from engine.scaling import scaled, scaled_to
 
 
@@ -42,11 +42,7 @@ def load_engine(path: str | Path) -> Engine:
 
 def engine_from_content(content: dict[str, Any], where: str) -> Engine:
     """The same from the content of a file, ``where`` naming it in a refusal."""
-    try:
-        written = check({"engine": content}, EngineFile, where).engine
-    except InputRefused as refusal:
-        key = refusal.key.removeprefix("engine").removeprefix(".")
-        raise InputRefused(refusal.what, where=where, key=key) from None
+    written = check_engine(content, where)
     assumed = _assumed(written)
     if isinstance(written, ConstantConsumptionFile):
         return ConstantConsumptionEngine(
@@ -72,7 +68,7 @@ def _brochure_engine(
     """The cycle that the rule makes of four numbers; what it put in is told as assumed."""
     from engine.options.brochure import assumptions
 
-    whole = check({"engine": brochure_content(brochure, fuel, where)}, EngineFile, where).engine
+    whole = check_engine(brochure_content(brochure, fuel, where), where)
     assert isinstance(whole, AnyCycleFile)
     return _cycle_engine(whole, where, (*assumed, *assumptions(whole)))
 

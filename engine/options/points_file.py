@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import HIGHEST_PRESSURE_ALTITUDE, LOWEST_PRESSURE_ALTITUDE
-from engine.envelope import COLUMNS, LOWEST, REHEATED, Level
+from engine.envelope import COLUMNS, LOWEST, REHEATED, WINDMILLING, Level
 from engine.errors import InputRefused
 from engine.interface import IDLES, RATINGS
 from engine.options.csv_rows import (
@@ -24,7 +24,6 @@ from engine.options.csv_rows import (
 )
 
 Array = NDArray[np.float64]
-WINDMILLING = "windmilling"
 _RATINGS = (REHEATED, *RATINGS)
 _WORDS = (*_RATINGS, *IDLES, WINDMILLING)
 _ALTITUDE, _MACH, _RATING, _THRUST, _FUEL = COLUMNS

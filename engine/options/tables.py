@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Annotated, Literal
+from typing import Annotated, ClassVar, Literal
 
 from pydantic import Field, model_validator
 
@@ -27,6 +27,7 @@ PressureRatio = Annotated[float, Field(ge=1.0, le=100.0, allow_inf_nan=False)]
 Share = Annotated[float, Field(ge=0.0, lt=1.0, allow_inf_nan=False)]
 EfficiencyValue = Annotated[float, Field(gt=0.3, le=1.0, allow_inf_nan=False)]
 MachNumber = Annotated[float, Field(ge=0.0, le=5.0, allow_inf_nan=False)]
+Speed = Annotated[float, Field(ge=0.3, le=1.5, allow_inf_nan=False)]  # over the design point's
 HotTemperature = Annotated[Temperature, Field(gt=500.0, le=2500.0)]
 
 
@@ -116,7 +117,7 @@ class ScaleTable(Table):
     at sea level, ``airflow`` that of the design point.
     """
 
-    factor: Ratio | None = None
+    factor: Annotated[float, Field(ge=0.02, le=20.0)] | None = None
     static_thrust: Annotated[Force, Field(gt=0.0)] | None = None
     airflow: Annotated[MassFlow, Field(gt=0.0)] | None = None
 
@@ -214,6 +215,7 @@ class MixerTable(Table):
 class PropellerTable(Table):
     """``efficiency`` is that of the design point; at rest a ``profile_factor`` stands for it."""
 
+    example: ClassVar[str] = 'diameter = "3.6 m" and efficiency = 0.85'
     diameter: Annotated[Length, Field(gt=0.0)]
     efficiency: Annotated[float, Field(gt=0.1, lt=1.0)] | None = None
     profile_factor: Annotated[float, Field(gt=0.1, le=1.0)] | None = None
@@ -229,13 +231,14 @@ class PropellerTable(Table):
 class RatingTable(Table):
     """Ceilings; the least governs. Speeds are relative to the design point."""
 
+    example: ClassVar[str] = 'turbine_entry_temperature = "1400 K"'
     turbine_entry_temperature: Annotated[Temperature, Field(gt=300.0, le=2500.0)] | None = None
     compressor_delivery_temperature: Annotated[Temperature, Field(gt=200.0)] | None = None
     compressor_delivery_pressure: Annotated[Pressure, Field(gt=0.0)] | None = None
-    corrected_low_pressure_speed: Ratio | None = None
-    low_pressure_speed: Ratio | None = None
-    corrected_high_pressure_speed: Ratio | None = None
-    high_pressure_speed: Ratio | None = None
+    corrected_low_pressure_speed: Speed | None = None
+    low_pressure_speed: Speed | None = None
+    corrected_high_pressure_speed: Speed | None = None
+    high_pressure_speed: Speed | None = None
     propeller_shaft_power: Annotated[Power, Field(gt=0.0)] | None = None
     throttle_ratio: Annotated[float, Field(ge=0.7, le=1.5)] | None = None
     flat_to: Day | None = None
@@ -260,11 +263,22 @@ class RatingsTable(Table):
     cruise: RatingTable
     maximum_afterburning: RatingTable | None = None
 
+    @model_validator(mode="after")
+    def _lights_the_afterburner(self) -> RatingsTable:
+        lit = self.maximum_afterburning
+        if lit is not None and lit.afterburner_temperature is None:
+            raise ValueError(
+                'maximum_afterburning needs an afterburner_temperature, "1900 K" say; without one '
+                "it lights nothing"
+            )
+        return self
+
 
 class IdleTable(Table):
     """Floors; the highest governs. Speed is relative to the design point."""
 
-    corrected_high_pressure_speed: Ratio | None = None
+    example: ClassVar[str] = "corrected_high_pressure_speed = 0.6"
+    corrected_high_pressure_speed: Annotated[float, Field(ge=0.1, le=1.0)] | None = None
     compressor_delivery_pressure: Annotated[Pressure, Field(gt=0.0)] | None = None
     fuel_air_ratio: Annotated[float, Field(gt=0.0, lt=0.06)] | None = None
 

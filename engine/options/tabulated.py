@@ -14,12 +14,12 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from engine.atmosphere import FlightCondition, broadcast_condition
-from engine.envelope import LOWEST
+from engine.envelope import LOWEST, WINDMILLING
 from engine.errors import InputRefused
 from engine.interface import IDLES, Coverage, Engine, EngineState, Outcome
 from engine.options.input_model import TabulatedFile
 from engine.options.monotone import interpolate
-from engine.options.points_file import WINDMILLING, Points, read_points
+from engine.options.points_file import Points, read_points
 from engine.options.surfaces import Reading, Surfaces
 
 Array = NDArray[np.float64]
@@ -79,13 +79,21 @@ class TabulatedEngine(Engine):
         share = np.where(positive, thrust / np.where(positive, most[0], 1.0), 1.0)
         return self._state(flight, thrust, fuel, outcome, share)
 
+    @property
+    def is_known_unlit(self) -> bool:
+        """Whether the table has rows of the engine unlit."""
+        return WINDMILLING in self.points.words
+
     def windmilling(self, flight: FlightCondition) -> EngineState:
-        """Unlit: no fuel; drag as the table has it, none where it has no such rows."""
+        """Unlit: no fuel, and drag as the table has it; refused where it has no such rows."""
+        if not self.is_known_unlit:
+            raise InputRefused(
+                f"the table of {self.name} has no rows rated {WINDMILLING}; add them, a row for "
+                "each altitude and Mach number, with fuel flow 0"
+            )
         flight = broadcast_condition(flight)
         none = np.zeros(flight.mach.size)
-        thrust = none
-        if WINDMILLING in self.points.words:
-            thrust = self._read(flight).words[WINDMILLING][0]
+        thrust = self._read(flight).words[WINDMILLING][0]
         met = np.full(none.shape, Outcome.MET, dtype=np.int64)
         return self._state(flight, thrust, none, met, none)
 
@@ -131,14 +139,12 @@ class TabulatedEngine(Engine):
 
 def load_table(written: TabulatedFile, folder: Path, assumed: tuple[str, ...]) -> TabulatedEngine:
     """The engine of a file whose points stand in a CSV below ``folder``."""
-    points = read_points(folder / written.points)
-    unsaid = () if WINDMILLING in points.words else ("drag of an unlit engine = 0",)
     return TabulatedEngine(
         name=written.name,
-        points=points,
+        points=read_points(folder / written.points),
         temperature_deviation=written.day,
         fuel=written.fuel.to_fuel(),
-        assumed=(*assumed, *unsaid),
+        assumed=assumed,
     )
 
 

@@ -9,9 +9,9 @@ import typer
 from engine.errors import InputRefused
 from mission.commands.shared import (
     NOT_FLYABLE,
-    DayName,
     EngineName,
     JsonTarget,
+    OwnDay,
     check_json,
     read,
     show,
@@ -23,9 +23,9 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import NDArray
 
+    from engine.envelope import Envelope
     from engine.interface import Engine
-
-_UNLIMITED = "windmilling"  # asked for like a rating, though it is none
+    from mission.commands.grids import Reach
 
 
 def stations_command(
@@ -44,12 +44,14 @@ def stations_command(
             "maximum_continuous."
         ),
     ] = None,
-    day: DayName = "ISA",
+    day: OwnDay = None,
     json: JsonTarget = None,
 ) -> None:
     """Show an engine at one flight condition."""
-    from engine import flight_condition, load_engine
-    from engine.quantities import parse_day, parse_quantity
+    from engine import load_engine
+    from engine.envelope import WINDMILLING
+    from engine.quantities import parse_quantity
+    from mission.commands.grids import condition_at, day_of
     from mission.library import find
     from mission.outputs.records import stations_record
     from mission.outputs.stations_screen import (
@@ -60,15 +62,12 @@ def stations_command(
     )
 
     check_json(json)
-    condition = flight_condition(
-        read("--altitude", parse_quantity, altitude, "altitude"),
-        mach,
-        read("--day", parse_day, day),
-    )
+    height = read("--altitude", parse_quantity, altitude, "altitude")
     wanted = None if thrust is None else read("--thrust", parse_quantity, thrust, "force")
     chosen = load_engine(find(engine, "engine"))
+    condition = condition_at(height, mach, day_of(chosen, day))
     ceiling = _rating(rating, chosen, has_thrust=wanted is not None)
-    if ceiling == _UNLIMITED:
+    if ceiling == WINDMILLING:
         state = chosen.windmilling(condition)
     else:
         state = chosen.at(condition, rating=ceiling, net_thrust=wanted)
@@ -93,9 +92,7 @@ def envelope_command(
         str | None,
         typer.Option(help="Rating or idle of the screen; climb where none is given."),
     ] = None,
-    day: Annotated[
-        str | None, typer.Option("--day", help='Temperature, "ISA+10" say; ISA, or a table\'s own.')
-    ] = None,
+    day: OwnDay = None,
     altitudes: Annotated[
         str | None, typer.Option(help='Pressure altitudes between commas: "0 ft, FL100, FL350".')
     ] = None,
@@ -114,20 +111,20 @@ def envelope_command(
         typer.Option(
             "--csv",
             metavar="FILE",
-            help="Write every rating, idle and share of thrust on a finer grid, for an engine of "
-            "kind tabulated.",
+            help="Write every rating, idle, windmilling and share of thrust on a finer grid, for "
+            "an engine of kind tabulated.",
         ),
     ] = None,
     json: JsonTarget = None,
 ) -> None:
     """Show an engine's thrust and fuel flow over altitude and Mach number."""
     from engine import load_engine
-    from engine.envelope import default_levels, envelope
+    from engine.envelope import envelope
     from mission.commands.grids import Reach
     from mission.library import find
-    from mission.outputs.envelope_record import envelope_csv, envelope_record
+    from mission.outputs.envelope_record import envelope_record
     from mission.outputs.envelope_screen import envelope_screen
-    from mission.outputs.files import check_target, write_text
+    from mission.outputs.files import check_target
 
     check_json(json)
     if csv is not None:
@@ -139,9 +136,7 @@ def envelope_command(
     written = ""
     if csv is not None:
         _refuse_own_points(csv, path)
-        table = envelope(chosen, *reach.table, reach.day, levels=default_levels(chosen))
-        write_text(csv, envelope_csv(table), "--csv")
-        written = _written(table.is_answered, csv)
+        written = _write_table(chosen, reach, csv)
     show(
         lambda width: envelope_screen(found, written=written, width=width),
         lambda: envelope_record(found),
@@ -226,14 +221,19 @@ def _write_out(
 
 
 def _rating(rating: str | None, engine: Engine, *, has_thrust: bool) -> str:
-    """The rating asked for, or the one that bounds a thrust."""
+    """The rating asked for, or the one that bounds a thrust; windmilling is asked for like one."""
+    from engine.envelope import WINDMILLING
+
     if rating is None:
         if not has_thrust:
             raise InputRefused('give --thrust "9 kN" or --rating cruise, say', key="--rating")
         return "maximum_continuous"
     if has_thrust:
         return _one_of(rating, engine.ratings, " with --thrust")
-    return _one_of(rating, (*engine.ratings, *engine.idles, _UNLIMITED))
+    if rating == WINDMILLING:
+        return rating  # where a table has no such rows the engine says what it wants
+    unlit = (WINDMILLING,) if engine.is_known_unlit else ()
+    return _one_of(rating, (*engine.ratings, *engine.idles, *unlit))
 
 
 def _one_of(rating: str, known: tuple[str, ...], beside: str = "") -> str:
@@ -259,6 +259,42 @@ def _refuse_own_points(csv: str, path: Path) -> None:
     points = tomllib.loads(path.read_text(encoding="utf-8-sig")).get("points")
     if points is not None and (path.parent / points).resolve() == Path(csv).resolve():
         raise InputRefused(f'"{csv}" holds the points that {path.name} is read from', key="--csv")
+
+
+def _refuse_no_fuel(table: Envelope) -> None:
+    """Refuse to write what is no table of a tabulated engine: one that is lit burns fuel."""
+    import numpy as np
+
+    from engine.envelope import WINDMILLING
+
+    lit = table.without(WINDMILLING)
+    burns_none = np.any(lit.is_answered & (lit.fuel_flow <= 0.0), axis=(1, 2))
+    for i in np.flatnonzero(burns_none)[:1].tolist():
+        raise InputRefused(
+            f"{table.engine} burns nothing at {lit.levels[i]}, and in a table an engine that is "
+            "lit burns fuel: no tabulated engine can be made of it; name its own file instead",
+            key="--csv",
+        )
+
+
+def _write_table(engine: Engine, reach: Reach, csv: str) -> str:
+    """The table of a tabulated engine, written, and what went to the file in words.
+
+    Where windmilling alone would make holes in the grid it is left out as a whole.
+    """
+    from engine.envelope import WINDMILLING, default_levels, envelope
+    from mission.outputs.envelope_record import envelope_csv
+    from mission.outputs.files import write_text
+
+    table = envelope(engine, *reach.table, reach.day, levels=default_levels(engine))
+    _refuse_no_fuel(table)
+    lit, remark = table.without(WINDMILLING), ""
+    unlit_lost = int((~table.is_answered).sum() - (~lit.is_answered).sum())
+    if unlit_lost and lit.is_answered.all():
+        table = lit
+        remark = f" Windmilling is left out: {unlit_lost:,} of its points have no answer."
+    write_text(csv, envelope_csv(table), "--csv")
+    return _written(table.is_answered, csv) + remark
 
 
 def _written(is_answered: NDArray[np.bool_], csv: str) -> str:

@@ -5,11 +5,11 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
-from engine.atmosphere import flight_condition
+from engine.atmosphere import FlightCondition, flight_condition
 from engine.envelope import ALTITUDE_STEP, HIGHEST_ALTITUDE, HIGHEST_MACH, MACH_STEP, grid
-from engine.errors import InputRefused
+from engine.errors import InputRefused, OutOfRange
 from engine.interface import Engine
 from engine.quantities import day_text, parse_day, parse_quantity
 from mission.commands.shared import read
@@ -37,19 +37,25 @@ class Reach:
         machs: str | None,
     ) -> Reach:
         """From the options as they are written; a table is asked from where it begins."""
-        low, high, slow, fast, own_day = 0.0, HIGHEST_ALTITUDE, 0.0, HIGHEST_MACH, 0.0
+        low, high, slow, fast = 0.0, HIGHEST_ALTITUDE, 0.0, HIGHEST_MACH
         if engine.coverage is not None:
             (low, high), (slow, fast) = engine.coverage.pressure_altitude, engine.coverage.mach
-            own_day = engine.coverage.temperature_deviation
         if to_altitude is not None:
             high = read("--to-altitude", parse_quantity, to_altitude, "altitude")
         fast = fast if to_mach is None else to_mach
         _refuse_backwards("--to-altitude", low, high, "m")
         _refuse_backwards("--to-mach", slow, fast, "")
         heights, speeds = _heights(altitudes), _speeds(machs)
-        chosen_day = own_day if day is None else read("--day", parse_day, day)
-        _refuse_other_day(engine, chosen_day)
-        flight_condition(high, fast, chosen_day)  # refused by the values written, not by a grid's
+        chosen_day = day_of(engine, day)
+        # Refused by the values written, not by a grid's.
+        condition_at(high, fast, chosen_day, altitude="--to-altitude", speed="--to-mach")
+        condition_at(
+            0.0 if heights is None else heights[:, None],
+            0.0 if speeds is None else speeds,
+            chosen_day,
+            altitude="--altitudes",
+            speed="--machs",
+        )
         return cls(
             day=chosen_day,
             screen=(
@@ -61,6 +67,36 @@ class Reach:
                 grid(slow, fast, MACH_STEP) if speeds is None else speeds,
             ),
         )
+
+
+def condition_at(
+    height: ArrayLike,
+    mach: ArrayLike,
+    day: float,
+    *,
+    altitude: str = "--altitude",
+    speed: str = "--mach",
+) -> FlightCondition:
+    """A flight condition from the options so named; a refusal names the one that is wrong."""
+    checks: dict[str, tuple[ArrayLike, ArrayLike, float]] = {
+        altitude: (height, 0.0, 0.0),
+        speed: (0.0, mach, 0.0),
+        "--day": (0.0, 0.0, day),
+    }
+    for option, there in checks.items():
+        try:
+            flight_condition(*there)
+        except OutOfRange as refusal:
+            raise InputRefused(str(refusal), key=option) from None
+    return flight_condition(height, mach, day)
+
+
+def day_of(engine: Engine, day: str | None) -> float:
+    """The day asked for, or a table's own, or ISA; another than a table's is refused."""
+    own = 0.0 if engine.coverage is None else engine.coverage.temperature_deviation
+    chosen = own if day is None else read("--day", parse_day, day)
+    _refuse_other_day(engine, chosen)
+    return chosen
 
 
 def _refuse_other_day(engine: Engine, day: float) -> None:

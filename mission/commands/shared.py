@@ -35,7 +35,9 @@ AircraftName = Annotated[
     ),
 ]
 EngineName = Annotated[str, typer.Argument(help="Engine file or built-in engine.")]
-DayName = Annotated[str, typer.Option("--day", help='Temperature, "ISA+10" say.')]
+OwnDay = Annotated[
+    str | None, typer.Option("--day", help='Temperature, "ISA+10" say; ISA, or a table\'s own.')
+]
 JsonTarget = Annotated[
     str | None,
     typer.Option("--json", metavar="FILE|-", help="Write JSON to a file, or print only it with -."),

@@ -216,6 +216,8 @@ def _remarks(found: Fit, written: str) -> Iterable[str]:
         )
     if not np.all(found.points.line):
         yield "The point without a line is the brochure's own static fuel consumption."
+    if found.points.unlit_count:
+        yield f"{found.points.unlit_count} rows rated windmilling are left out: nothing burns."
     if _is_small(found):
         yield (
             f"A thrust below {100.0 * SMALL_THRUST:g} % of the greatest is compared with that "

@@ -97,7 +97,8 @@ def stations_screen(
         Text(question.engine, "bold"),
         Text(
             f"one engine at FL{level}, Mach {float(flight.mach):.3f}, "
-            f"{day_in_words(float(flight.temperature_deviation))}, {question.in_words}"
+            f"{day_in_words(float(flight.temperature_deviation))}"
+            f"{', the day of its table' * (question.coverage is not None)}, {question.in_words}"
         ),
         Text(),
     ]

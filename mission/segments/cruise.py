@@ -38,7 +38,7 @@ class Cruise(Table):
     def _distance(cls, text: object) -> object:
         if text == "rest":
             return text
-        length = parse_quantity(text, "length")
+        length = parse_quantity(text, "distance")
         if not 0.0 < length <= LONGEST:
             raise ValueError(f"'{text}' is not a distance above zero and up to 100,000 km")
         return length

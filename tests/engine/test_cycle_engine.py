@@ -131,7 +131,7 @@ def test_turbojet_runs_in_all_its_envelope(turbojet: CycleEngine, rating: str) -
 
 
 def test_idle_below_self_sustaining_is_said_to_be_unphysical() -> None:
-    engine = load(turbojet_content({"idle.ground.corrected_high_pressure_speed": 0.05}))
+    engine = load(turbojet_content({"idle.ground.corrected_high_pressure_speed": 0.1}))
 
     state = engine.at_rating(flight_condition(0.0, 0.0), "ground_idle")
 

@@ -14,6 +14,7 @@ from engine.envelope import (
     ALTITUDE_STEP,
     HIGHEST_ALTITUDE,
     SHARES,
+    WINDMILLING,
     Envelope,
     default_levels,
     envelope,
@@ -101,6 +102,22 @@ def test_part_power_is_asked_for_under_the_lowest_rating_that_gives_it() -> None
     tops = dict(zip(RATINGS, found.net_thrust, strict=False))
     chosen = np.choose([[RATINGS.index(name) for name in row] for row in full], [*tops.values()])
     assert chosen == pytest.approx(np.stack([*tops.values()]).max(axis=0), rel=1e-9)
+
+
+def test_unlit_it_is_asked_where_air_turns_it_and_gives_nothing_at_rest() -> None:
+    engine = load(turbofan_content())
+    assert WINDMILLING in default_levels(engine)
+    found = envelope(engine, HEIGHTS, MACHS, 10.0, levels=(WINDMILLING, "climb"))
+    assert found.is_answered.all()
+    thrust, fuel = level(found, WINDMILLING)
+    assert thrust[:, 0].tolist() == [0.0] * 3
+    assert np.all(fuel == 0.0)
+    flight = flight_condition(HEIGHTS[:, None], MACHS[None, 1:], 10.0)
+    assert thrust[:, 1:] == pytest.approx(engine.windmilling(flight).net_thrust, rel=1e-9)
+    assert np.all(thrust[:, 1:] < 0.0)
+    assert level(found.without(WINDMILLING), "climb")[0].tolist() == found.net_thrust[1].tolist()
+    alone = envelope(engine, HEIGHTS, [0.0], levels=(WINDMILLING,))
+    assert alone.net_thrust.tolist() == [[[0.0]] * 3]
 
 
 def test_what_has_no_answer_is_flagged_and_its_shares_with_it() -> None:

@@ -60,6 +60,23 @@ take-off,0,0,15,,75000
         (HEADER + "\n0,0,clim,1,1", "line 2", "did you mean climb?"),
         (HEADER + "\n0,0,windmilling,-1,0.1", "line 2", "rating = 'windmilling' is none of"),
         (HEADER + "\n0,0,2.5,1,1", "line 2", "rating = 2.5 is outside 0 to 2"),
+        (HEADER + "\n0,0,climb,100,1.03", "line 2", "is 1.03e+04 mg/(N s), outside the 2 to 300"),
+        (HEADER + "\n0,0,climb,100,1.03", "line 2", "kg/h in place of kg/s or kN in place of N?"),
+        (HEADER + "\n0,0,climb,100,0.5", "line 2", "of engines: kN in place of N?"),
+        (HEADER + "\n0,0,climb,100,100", "line 2", "of engines: kg/h in place of kg/s?"),
+        (
+            HEADER + "\n0,0,,100000,0.1",
+            "line 2",
+            "is 1 mg/(N s), outside the 2 to 300 of engines; c",
+        ),
+        (HEADER + "\n0,0,climb,-1,", "line 2", "net_thrust_n = -1; only an idle may give less"),
+        (
+            HEADER + "\n0,0,climb,100000,1.03\n0,0,climb,120000,1",
+            "line 3",
+            "climb at 0 m, Mach 0, ISA is given already in line 2: 100000 N and 1.03 kg/s there",
+        ),
+        (HEADER + "\n0,0,,1e4,.2\n0,0,,1e4,.3", "line 3", "this thrust at 0 m, Mach 0, ISA is"),
+        (HEADER + "\n0,0,climb,1e4,\n0,0,climb,,1", "line 3", "10000 N there, 1 kg/s here"),
         ("# day: ISA+10\n" + HEADER + "\n0,0,climb,1,1", "line 1", "10 K from standard"),
     ],
 )
@@ -70,6 +87,25 @@ def test_points_that_cannot_be_read_are_named(
         read_fit_points(csv(tmp_path, text))
     assert caught.value.key == line
     assert caught.value.where.endswith("points.csv")
+
+
+def test_what_looks_alike_and_is_not_is_read(tmp_path: Path) -> None:
+    """Thrust near idle, other thrusts and days, and rows of an unlit engine, which are counted."""
+    text = f"""\
+{HEADER},temperature_deviation_k
+9000,0.8,flight_idle,-300,0.05,0
+9000,0.8,ground_idle,3,0.05,0
+9000,0.8,0.02,2,0.051,0
+9000,0.8,0.05,40,0.053,0
+9000,0.8,,5000,0.1,0
+9000,0.8,,5000,0.11,10
+9000,0.8,,6000,0.12,0
+9000,0.8,windmilling,-900,0,0
+"""
+    points = read_fit_points(csv(tmp_path, text))
+    assert points.line.tolist() == [2, 3, 4, 5, 6, 7, 8]
+    assert points.unlit_count == 1
+    assert points.with_static(1e4, 0.1).unlit_count == 1
 
 
 def test_files_that_are_none_are_named(tmp_path: Path) -> None:

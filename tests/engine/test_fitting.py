@@ -174,6 +174,27 @@ def test_an_engine_that_cannot_start_is_named() -> None:
         fit(TURBOFAN, "test.toml", named, (SIZE,))
 
 
+def test_data_of_another_engine_or_unit_are_refused() -> None:
+    points = points_of(TURBOFAN, ROWS)
+    there = points.fuel_flow[0]
+    said = r"net_thrust_n = 441529, and the engine to start from gives 73588\.1 N .*check the units"
+    large = replace(points, net_thrust=6.0 * points.net_thrust, fuel_flow=6.0 * points.fuel_flow)
+    with pytest.raises(InputRefused, match=said) as caught:
+        fit(TURBOFAN, "test.toml", large, (CORE,))
+    assert (caught.value.where, caught.value.key) == ("points.csv", "line 2")
+    one = np.array([6.0, 1.0, 1.0, 1.0, 1.0, 1.0])
+    said = rf"fuel_flow_kg_per_s = {6.0 * there:g}, and the engine to start from gives {there:g}"
+    for factor, keys in ((one, (SIZE,)), (one, ()), (1.0 / one, (CORE,))):
+        with pytest.raises(InputRefused, match=said if factor is one else "5 times off"):
+            fit(TURBOFAN, "test.toml", scaled_fuel(points, factor), keys)
+
+
+def test_a_larger_engine_of_the_same_consumption_is_let_through_where_size_is_free() -> None:
+    content = turbofan_content({"off_takes.shaft_power": "0 kW"})
+    start = changed(content, {SIZE: "2.9 kN"})
+    assert found(start, points_of(content, ROWS[:3]), SIZE)[SIZE] == pytest.approx(14500.0)
+
+
 def test_a_parameter_stops_at_its_bound() -> None:
     points = scaled_fuel(points_of(TURBOFAN, ROWS), 0.97)
     fitted = fit(TURBOFAN, "test.toml", points, ("combustor.efficiency", SIZE))

@@ -9,13 +9,16 @@ from typing import Any
 
 import numpy as np
 import pytest
-from engine_files import TURBOFAN, Content, load, turbofan_content, turbojet_content
+from engine_files import TURBOFAN, Content, changed, load, turbofan_content, turbojet_content
+from engine_kinds import KINDS
 
 from engine.atmosphere import flight_condition
 from engine.errors import CycleCannotRun, InputRefused
 from engine.interface import RATINGS
 from engine.options.constant_consumption import ConstantConsumptionEngine
 from engine.options.loading import engine_from_content, load_engine
+
+_IDLE_SPEED = "idle.flight.corrected_high_pressure_speed"
 
 
 @pytest.mark.parametrize(
@@ -36,7 +39,7 @@ from engine.options.loading import engine_from_content, load_engine
             "design_point.pressure_altitude",
             "200000 ft",
             "design_point.pressure_altitude",
-            "less than or equal to 30000 in SI units",
+            "it should be less than or equal to 30000 m",
         ),
         ("design_point.day", "ISA-300", "design_point", "temperature deviation = -300 K"),
         ("design_point.day", "warm", "design_point.day", 'write for example "ISA" or "ISA+15"'),
@@ -52,7 +55,34 @@ from engine.options.loading import engine_from_content, load_engine
         ("core_nozzle.kind", "plug", "core_nozzle.kind", "= 'plug'; allowed: 'convergent'"),
         ("ratings.cruise", {}, "ratings.cruise", "a rating needs at least one limit"),
         ("idle.flight", {}, "idle.flight", "idle needs at least one floor"),
-        ("ratings.cruise", None, "ratings.cruise", "is missing"),
+        (
+            "ratings.cruise",
+            None,
+            "ratings.cruise",
+            'it is a table with turbine_entry_temperature = "1400 K", say',
+        ),
+        ("idle.flight", None, "idle.flight", "corrected_high_pressure_speed = 0.6, say"),
+        ("efficiencies", None, "efficiencies", "at least fan, high_pressure_compressor, high_p"),
+        ("idle.flight.corrected_high_pressure_speed", 1.1, _IDLE_SPEED, "less than or equal to 1"),
+        ("idle.flight.corrected_high_pressure_speed", 0.05, _IDLE_SPEED, "than or equal to 0.1"),
+        ("ratings.climb.low_pressure_speed", 0.2, "ratings.climb.low_pressure_speed", "to 0.3"),
+        ("ratings.climb.low_pressure_speed", 15.0, "ratings.climb.low_pressure_speed", "to 1.5"),
+        ("scale", {"factor": 0.01}, "scale.factor", "greater than or equal to 0.02"),
+        ("scale", {"factor": 21.0}, "scale.factor", "less than or equal to 20"),
+        (
+            "ratings.maximum_afterburning",
+            {"turbine_entry_temperature": "1640 K"},
+            "ratings",
+            "maximum_afterburning needs an afterburner_temperature",
+        ),
+        ("design_point.net_thrust", "-2 kN", "design_point.net_thrust", "greater than 0 N"),
+        ("pod.length", "2.1 kg", "pod.length", 'write for example "2.1 m"'),
+        (
+            "fuel",
+            {"name": "mine", "density": "0.8 kg/L"},
+            "fuel",
+            "it lacks hydrogen_carbon_ratio (or carbon_atoms and hydrogen_atoms) and lower_heating",
+        ),
         ("inlet", "good", "inlet", "= 'good'; a table belongs here"),
     ],
 )
@@ -62,6 +92,28 @@ def test_what_cannot_be_read_is_named(key: str, value: Any, place: str, said: st
 
     assert caught.value.where == "some.toml"
     assert caught.value.key == place
+
+
+def test_a_file_without_a_kind_is_told_the_kinds_and_where_examples_are() -> None:
+    said = "'two-spool turbojet', 'turbofan', .*; the engines of `longlegs list` are examples"
+    with pytest.raises(InputRefused, match=said):
+        engine_from_content(turbofan_content({"kind": None}), "some.toml")
+
+
+@pytest.mark.parametrize(
+    ("name", "what"), [("coast_watch", "a mission"), ("coast_watch_twin", "an aircraft")]
+)
+def test_the_file_of_another_subject_is_recognised(name: str, what: str) -> None:
+    with pytest.raises(InputRefused, match=f"is the file of {what}, and one of an engine is want"):
+        load_engine(Path(__file__).parents[2] / "profiles" / f"{name}.toml")
+
+
+@pytest.mark.parametrize("kind", ["turbojet", "turboprop"])
+@pytest.mark.parametrize("key", ["low_pressure_speed", "corrected_low_pressure_speed"])
+def test_one_spool_has_no_low_pressure_speed(kind: str, key: str) -> None:
+    content = changed(KINDS[kind], {f"ratings.climb.{key}": 1.0})
+    with pytest.raises(InputRefused, match=f"climb.{key}: .*use corrected_high_pressure_speed"):
+        engine_from_content(content, "some.toml")
 
 
 @pytest.mark.parametrize(

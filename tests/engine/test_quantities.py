@@ -4,7 +4,14 @@ from __future__ import annotations
 
 import pytest
 
-from engine.quantities import FOOT, KINDS, STANDARD_GRAVITY, parse_day, parse_quantity
+from engine.quantities import (
+    FOOT,
+    KINDS,
+    STANDARD_GRAVITY,
+    parse_day,
+    parse_quantity,
+    si_unit_of,
+)
 
 
 @pytest.mark.parametrize(
@@ -15,7 +22,8 @@ from engine.quantities import FOOT, KINDS, STANDARD_GRAVITY, parse_day, parse_qu
         ("fl 350", "altitude", 35000 * 0.3048),
         ("11 km", "altitude", 11000.0),
         ("-500 ft", "altitude", -152.4),
-        ("1200 nmi", "length", 1200 * 1852.0),
+        ("1200 nmi", "distance", 1200 * 1852.0),
+        ("2.1 m", "length", 2.1),
         ("12.5 t", "mass", 12500.0),
         ("1000 lb", "mass", 453.59237),
         ("450 kt", "speed", 450 * 1852.0 / 3600.0),
@@ -97,3 +105,14 @@ def test_what_is_no_day_is_refused_with_an_example(text: object) -> None:
 
 def test_flight_level_is_hundreds_of_feet() -> None:
     assert parse_quantity("FL90", "altitude") == 9000.0 * FOOT
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_the_si_unit_of_a_quantity_is_that_of_its_kind(kind: str) -> None:
+    unit, example = KINDS[kind]
+    assert si_unit_of(example) == unit
+
+
+def test_other_text_has_no_si_unit() -> None:
+    assert si_unit_of("ISA+10") == si_unit_of("7 zebras") == ""
+    assert si_unit_of("FL350") == "m"

@@ -87,6 +87,11 @@ ONE = {"name": "one", "altitude": "FL100"}
             "= '0.8'; a bare number belongs here",
         ),
         ({"leg": [{**ONE, "mach": 7.0}]}, 'leg 1 "one": mach', "= 7.0; it should be less than or"),
+        (
+            {"leg": [{**ONE, "altitude": "FL999"}]},
+            'leg 1 "one": altitude',
+            "= 'FL999'; it should be less than or equal to 30000 m",
+        ),
         ({"leg": [ONE], "home": 3}, "home", "= 3; a table belongs here"),
         ({"leg": [ONE], "title": 3}, "title", "= 3; it should be a valid string"),
         (

@@ -150,7 +150,6 @@ def test_beyond_the_table_there_is_no_answer_and_neighbours_are_not_touched(
     for state in (
         engine.at_rating(flight, "climb"),
         engine.at_thrust(flight, 3e3, rating="climb"),
-        engine.windmilling(flight),
     ):
         inside = [0, 5, 5, 5, 0]
         assert state.outcome.tolist() == inside
@@ -171,18 +170,22 @@ def test_a_rating_that_the_table_lacks_is_refused_by_name(tmp_path: Path) -> Non
             engine.at_rating(flight, name)
 
 
-def test_an_unlit_engine_drags_as_the_table_says_or_is_said_to_have_none(
+def test_an_unlit_engine_drags_as_the_table_says_or_is_refused(
     tmp_path: Path, engine: Engine
 ) -> None:
     flight = flight_condition(5000.0, [0.2, 0.8], 10.0)
-    assert engine.windmilling(flight).net_thrust.tolist() == [0.0, 0.0]
-    assert "drag of an unlit engine = 0" in engine.assumed
+    assert not engine.is_known_unlit
+    with pytest.raises(InputRefused, match="table of table has no rows rated windmilling; add"):
+        engine.windmilling(flight)
     unlit = [f"{h},{m},windmilling,{-1e3 * m},0" for h in HEIGHTS for m in MACHS]
     other = engine_of(tmp_path, table(*lines(), *unlit))
     state = other.windmilling(flight)
     assert state.net_thrust == pytest.approx([-200.0, -800.0], rel=1e-12)
     assert state.fuel_flow.tolist() == [0.0, 0.0]
-    assert not any("unlit" in line for line in other.assumed)
+    beyond = other.windmilling(flight_condition(5000.0, [0.2, 0.95], 10.0))
+    assert beyond.outcome.tolist() == [Outcome.MET, Outcome.OUTSIDE_TABLE]
+    assert beyond.net_thrust[1] == 0.0
+    assert other.is_known_unlit
 
 
 def test_comments_blank_lines_dashes_and_a_share_of_zero(tmp_path: Path, engine: Engine) -> None:

@@ -61,7 +61,9 @@ def dry_turbojet(flight: FlightCondition, throttle_ratio: float) -> Array:
     return delta0 * (1.0 - 0.16 * np.sqrt(mach) - 24.0 * hotter / ((9.0 + mach) * theta0))
 
 
-def rated(way: str, static_temperature: float, throttle_ratio: float) -> Content:
+def rated(
+    way: str, static_temperature: float, throttle_ratio: float, spool: str = "low"
+) -> Content:
     """Limits of the ratings for a turbine entry temperature [K] of static sea level."""
     hottest = {"turbine_entry_temperature": f"{static_temperature * throttle_ratio} K"}
     if way == BY_TEMPERATURE:
@@ -69,7 +71,7 @@ def rated(way: str, static_temperature: float, throttle_ratio: float) -> Content
             "efficiencies.away_from_design": "constant",
             **one_rating(**hottest, throttle_ratio=throttle_ratio),
         }
-    return one_rating(**hottest, corrected_low_pressure_speed=1.0)
+    return one_rating(**hottest, **{f"corrected_{spool}_pressure_speed": 1.0})
 
 
 def turbofan(bypass_ratio: float, fan_pressure_ratio: float, way: str) -> CycleEngine:
@@ -107,7 +109,7 @@ def turbojet(kind: str, way: str) -> CycleEngine:
                 "off_takes": {},
                 "inlet": {"total_pressure_recovery": 0.98, "has_standard_ram_recovery": True},
                 "nozzle.kind": kind,
-                **rated(way, 1400.0, 1.1),
+                **rated(way, 1400.0, 1.1, "high"),
             }
         )
     )
