@@ -14,6 +14,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.atmosphere import flight_condition
 from engine.interface import EngineState
 from mission.march.asking import join
 from mission.march.span import Span
@@ -103,7 +104,13 @@ def _look(world: World, ways: Mapping[int, Way], parts: _Parts) -> list[_Change]
     """All changes inside some parts of ways, all looked at in one engine call."""
     steps = np.linspace(0.0, 1.0, _PIECES + 1)
     values = np.array([_inside(low + steps * (high - low)) for _, low, high in parts])
-    flights = [ways[i].flights(world, values[row]) for row, (i, _, _) in enumerate(parts)]
+    along = [ways[i] for i, _, _ in parts]
+    altitudes = [way.altitudes(row) for way, row in zip(along, values, strict=True)]
+    air = flight_condition(np.array(altitudes), 0.0, world.temperature_deviation)
+    flights = [
+        way.flights(world, row, air.at(place))
+        for place, (way, row) in enumerate(zip(along, values, strict=True))
+    ]
     starts = [start for start in parts.values() if start is not None]
     state = world.engine.at(
         join(flights),

@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import FlightCondition, flight_condition
+from engine.atmosphere import FlightCondition
 from mission.march.rules import hold_bounds, level_air, mach_at
 from mission.march.span import Span, SpeedRule
 from mission.march.throttled import on_schedule
@@ -39,16 +39,17 @@ class Way:
     surely: Range
     least: float
 
-    def flights(self, world: World, variable: Array) -> FlightCondition:
-        """Flight condition at values of the variable."""
-        deviation = world.temperature_deviation
+    def altitudes(self, variable: Array) -> Array:
+        """Pressure altitude [m] at values of the variable."""
         if self.span.march == "altitude":
-            air = flight_condition(variable, 0.0, deviation)
+            return variable
+        return np.full_like(variable, self.span.start_altitude)
+
+    def flights(self, world: World, variable: Array, air: FlightCondition) -> FlightCondition:
+        """Flight condition at values of the variable, in the still air of its altitudes."""
+        if self.span.march == "altitude":
             return on_schedule(self.span, world, air)
-        air = level_air(self.span.start_altitude, deviation, variable.size)
-        return FlightCondition(
-            *(getattr(air, name)[:, 0] for name in air.__dataclass_fields__)
-        ).with_mach(variable)
+        return air.with_mach(variable)
 
 
 def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
