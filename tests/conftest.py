@@ -42,3 +42,9 @@ def turbofan() -> CycleEngine:
 def turbojet() -> CycleEngine:
     """A straight jet."""
     return load(turbojet_content())
+
+
+def pytest_ignore_collect(collection_path: Path, config: pytest.Config) -> bool | None:
+    """Benchmarks run where they are asked for by name, from whatever folder."""
+    is_asked = any("benchmarks" in str(argument) for argument in config.args)
+    return True if collection_path.name == "benchmarks" and not is_asked else None
