@@ -24,7 +24,8 @@ class Table(BaseModel):
     """
 
     example: ClassVar[str] = ""
-    model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
+    # Built when first asked for: an engine file of one kind needs none of the others' tables.
+    model_config = ConfigDict(extra="forbid", frozen=True, strict=True, defer_build=True)
 
 
 def read_text(path: Path, kind: str, most_bytes: int, *, remedy: str = "") -> str:

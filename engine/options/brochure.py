@@ -54,11 +54,10 @@ from engine.cycles.turbojet import Turbojet
 from engine.errors import InputRefused
 from engine.interface import RATINGS, Outcome
 from engine.options.assembly import arrange, ratings_of
-from engine.options.input_model import AnyCycleFile, EngineFile
+from engine.options.input_model import AnyCycleFile, check_engine
 from engine.parts.efficiency import Efficiency
 from engine.parts.inlet import take_in
 from engine.parts.stream import Stream
-from engine.reading import check
 
 VELOCITY_RATIO = 0.8
 # Logarithm of turbine entry temperature over the expected one: where an answer is looked for.
@@ -113,7 +112,7 @@ def _rated(content: dict[str, Any], static_thrust: float) -> dict[str, Any]:
     """The content with ratings from the temperature that gives the static thrust on a warm day."""
     hot = content["design_point"]["turbine_entry_temperature"]
     open_throttle = {name: {"turbine_entry_temperature": "2500 K"} for name in RATINGS}
-    written = check({"engine": content | {"ratings": open_throttle}}, EngineFile, "").engine
+    written = check_engine(content | {"ratings": open_throttle}, "")
     assert isinstance(written, AnyCycleFile)
     arrangement = arrange(written)
     sizing, _ = size(arrangement, flight_condition(0.0, 0.0), net_thrust=static_thrust)
@@ -151,7 +150,7 @@ class _Bench:
 
     @classmethod
     def of(cls, content: dict[str, Any], overall: float) -> _Bench:
-        written = check({"engine": content}, EngineFile, "").engine
+        written = check_engine(content, "")
         assert isinstance(written, AnyCycleFile)
         engine, flight = arrange(written), flight_condition(0.0, 0.0)
         return cls(engine, overall, flight, take_in(engine.gas, engine.inlet, flight)[1])

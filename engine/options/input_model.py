@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any, Literal, get_args
 
 from pydantic import Field, model_validator
 
@@ -255,6 +255,9 @@ class EngineFile(Table):
     engine: Annotated[AnyEngineFile, Field(discriminator="kind")]
 
 
+_MODELS: dict[str, type[AnyEngineFile]] = {
+    get_args(model.model_fields["kind"].annotation)[0]: model for model in get_args(AnyEngineFile)
+}
 # Keys that only files of other subjects have.
 _OTHER_FILES = {"segment": "a mission", "masses": "an aircraft"}
 
@@ -269,6 +272,9 @@ def check_engine(content: Mapping[str, Any], where: str) -> AnyEngineFile:
                     "names engines",
                     where=where,
                 )
+    model = _MODELS.get(str(content.get("kind")))
+    if model is not None:
+        return check(dict(content), model, where)
     try:
         return check({"engine": dict(content)}, EngineFile, where).engine
     except InputRefused as refusal:
