@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import isnan
 from typing import Any
 
 from engine.interface import Outcome
@@ -99,4 +100,4 @@ def _answer(answers: Answers, i: int) -> Record:
 
 
 def _number(value: Any) -> float | None:
-    return float(value) if value == value else None  # noqa: PLR0124  NaN is not itself
+    return None if isnan(value) else float(value)
