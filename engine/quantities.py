@@ -51,6 +51,8 @@ megawatt = 1000000 * W = MW
 milligram = 0.000001 * kg = mg
 rankine_degree = K / 1.8 = R
 liter = 0.001 * m ** 3 = L
+radian = [] = rad
+degree = 0.017453292519943295 * rad = deg
 """
 
 # Kind of quantity -> (coherent SI unit, example shown in a refusal).
@@ -58,6 +60,7 @@ KINDS: dict[str, tuple[str, str]] = {
     "length": ("m", "2.1 m"),
     "distance": ("m", "1200 nmi"),
     "altitude": ("m", "35000 ft"),
+    "angle": ("rad", "25 deg"),
     "area": ("m**2", "61 m**2"),
     "volume": ("m**3", "11000 L"),
     "mass": ("kg", "12.5 t"),
@@ -168,6 +171,7 @@ Length = Annotated[float, _reader("length")]
 Distance = Annotated[float, _reader("distance")]
 # The range of the standard atmosphere used here, engine.atmosphere.
 Altitude = Annotated[float, _reader("altitude"), Field(ge=-2000.0, le=30000.0)]
+Angle = Annotated[float, _reader("angle")]
 Area = Annotated[float, _reader("area")]
 Volume = Annotated[float, _reader("volume")]
 Mass = Annotated[float, _reader("mass")]

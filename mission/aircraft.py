@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, field
 from math import inf, pi
 from pathlib import Path
-from typing import Annotated, Literal
+from typing import Annotated, Any, Literal
 
 from pydantic import Field, model_validator
 
@@ -47,6 +48,8 @@ class Aircraft:
     maximum_operating_calibrated_airspeed: float
     reference_engine: str
     assumed: tuple[str, ...] = ()
+    stores: Mapping[str, Any] = field(default_factory=dict)
+    maximum_load_factor: float = 2.5
 
 
 def usable_fuel(aircraft: Aircraft, fuel: Fuel) -> float:

@@ -13,6 +13,8 @@ from engine.errors import InputRefused, LonglegsError
 from mission.commands.engine_commands import envelope_command, fit_command, stations_command
 from mission.commands.listing import list_command
 from mission.commands.mission_commands import compare_command, fly_command
+from mission.commands.shared import NOT_FLYABLE
+from mission.errors import CannotBeFlown
 from mission.outputs.wording import CAUTION
 
 REFUSED = 2
@@ -41,7 +43,8 @@ def main() -> None:
         app(prog_name="longlegs")
     except LonglegsError as refusal:
         typer.echo(_refusal(refusal), err=True)
-        raise SystemExit(REFUSED) from None
+        cannot_fly = isinstance(refusal, CannotBeFlown)
+        raise SystemExit(NOT_FLYABLE if cannot_fly else REFUSED) from None
     finally:
         gc.freeze()  # what is there at the end need not be looked through then either
         gc.enable()
@@ -51,10 +54,11 @@ def _refusal(refusal: LonglegsError) -> str:
     """A refusal over a few lines: which file, then which key and what is wrong with it."""
     if not isinstance(refusal, InputRefused):
         return f"Refused: {refusal}"
+    head = "Cannot be flown" if isinstance(refusal, CannotBeFlown) else "Refused"
     joint = " " if refusal.what.startswith(("=", "is ")) else ": "
     said = f"{refusal.key}{joint}{refusal.what}" if refusal.key else refusal.what
     notes = "".join(f"\n  {note}" for note in getattr(refusal, "__notes__", ()))
-    return (f"Refused: {refusal.where}\n  {said}" if refusal.where else f"Refused: {said}") + notes
+    return (f"{head}: {refusal.where}\n  {said}" if refusal.where else f"{head}: {said}") + notes
 
 
 if __name__ == "__main__":

@@ -9,7 +9,7 @@ from engine.errors import InputRefused
 from engine.interface import Coverage, Engine, Outcome
 from engine.quantities import day_text
 from mission.mission_file import Mission
-from mission.plan import FlightPlan
+from mission.plan import FlightPlan, legs_of
 from mission.results import Steps
 
 Array = NDArray[np.float64]
@@ -17,9 +17,13 @@ Array = NDArray[np.float64]
 
 def refuse_other_day(mission: Mission, engine: Engine) -> None:
     """Refuse a mission on another day than the engine's table, before anything is flown."""
-    table, day = engine.coverage, mission.written.day
-    if table is not None and not table.is_day(day):
-        ours, theirs = day_text(day), day_text(table.temperature_deviation)
+    table = engine.coverage
+    if table is None:
+        return
+    days = np.array([d for leg in legs_of(mission.written) for d in leg.air.temperature_deviation])
+    other = days[~table.is_day(days)]
+    if other.size:
+        ours, theirs = day_text(float(other[0])), day_text(table.temperature_deviation)
         raise InputRefused(
             f'= "{ours}", and the table of {engine.name} is of {theirs}; fly it on {theirs}, or '
             f"write a table of {ours} with `longlegs envelope ENGINE --day {ours} --csv FILE`",

@@ -16,11 +16,12 @@ from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
 from mission.march.joints import Ends, Joints, find_joints
 from mission.march.span import Span
-from mission.march.sweep import Marched, Parts, march
+from mission.march.sweep import Marched, march
 from mission.march.world import World
 from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
 from mission.results import Failure, Flight, ReserveItem
+from mission.segments.choices import Choices
 from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
@@ -53,12 +54,12 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
     """
     refuse_other_day(mission, engine)
     written = mission.written
-    world = World(aircraft, engine, written.day, -written.headwind)
+    world = World(aircraft, engine)
     solved = _solve(mission, world, refinement)
     has_no_mass = not solved.fine.is_settled and not solved.fine.is_lost
     if written.fuel.as_needed and has_no_mass:
-        most = aircraft.maximum_take_off_mass - aircraft.operating_empty_mass - written.payload
-        load = max(min(usable_fuel(aircraft, engine.fuel), most - aircraft.unusable_fuel), 1.0)
+        most = aircraft.maximum_take_off_mass - solved.plan.first_empty_mass
+        load = max(min(usable_fuel(aircraft, engine.fuel), most), 1.0)
         written = written.model_copy(
             update={"fuel": written.fuel.model_copy(update={"load": load, "as_needed": False})}
         )
@@ -67,15 +68,19 @@ def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int
 
 
 def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
-    """Plan and march, again where a cruise-climb ends elsewhere than the plan had it."""
+    """Plan and march, again while the masses found change what was planned."""
     ends: dict[int, float] = {}
+    masses: dict[int, tuple[float, float]] = {}
+    choices = Choices()
     written, aircraft = mission.written, world.aircraft
-    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
-    guess = np.array([empty + 0.1 * (written.fuel.load or empty)])
+    guess: Array | None = None
     few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
     coarse: Marched | None = None
     for _ in range(_MOST_PLANS):
-        whole = lay_out(mission, aircraft, ends)
+        whole = lay_out(mission, world, masses, ends, choices)
+        if guess is None:
+            empty = whole.stop_empty_mass
+            guess = np.array([empty + 0.1 * (written.fuel.load or empty)])
         refuse_missing_ratings(mission, whole, world.engine)
         joints = find_joints(world, [*whole.parts.mission, *whole.parts.reserve])
         plan = _with_spans(whole, joints.cut())
@@ -90,7 +95,9 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, guess = found, coarse.stop_mass
-        if moved < _SAME_ALTITUDE or not coarse.is_settled:
+        masses = _masses(coarse)
+        choices.fit(masses)
+        if not coarse.is_settled or (moved < _SAME_ALTITUDE and choices.is_at_rest):
             break
     assert coarse is not None
     fine = coarse
@@ -134,6 +141,16 @@ def _flown(joints: Joints, marched: Marched) -> dict[int, Ends]:
     return joints.ends_of(first, last)
 
 
+def _masses(marched: Marched) -> dict[int, tuple[float, float]]:
+    """Mass [kg] at both ends of each row."""
+    masses: dict[int, tuple[float, float]] = {}
+    for track in marched.tracks:
+        row = track.span.segment
+        start = masses[row][0] if row in masses else float(track.mass[0, 0])
+        masses[row] = (start, float(track.mass[-1, 0]))
+    return masses
+
+
 def _cruise_climb_ends(marched: Marched) -> dict[int, float]:
     """Pressure altitude [m] at the end of each cruise-climb, by row."""
     return {
@@ -147,9 +164,9 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
     plan, fine = solved.plan, solved.fine
     sums = add_up(plan, written, fine.integrals)
     coarse_sums = add_up(plan, written, solved.coarse.integrals)
-    logs = segment_logs(world, plan, fine, written)
+    logs = segment_logs(world, plan, fine)
     error = abs(sums.mission_fuel - coarse_sums.mission_fuel)
-    total = totals(world, plan, fine, written, sums, error)
+    total = totals(plan, fine, sums, error)
     closes = mission.written.fuel == written.fuel
     failure = first_failure(world, plan, fine, written, total, logs, closes=closes)
     flown = failure is None
@@ -215,7 +232,7 @@ def _reserves(
     if items and with_cost:
         coarse = solved.coarse
         lighter = coarse.stop_mass - np.array([item[1] for item in items])
-        parts = Parts(plan.parts.mission, (), plan.parts.mission_distance, None)
+        parts = replace(plan.parts, reserve=())
         flown = march(
             world,
             parts,

@@ -13,6 +13,7 @@ from mission.aircraft import Aircraft
 Array = NDArray[np.float64]
 STEEPEST = 60.0  # degrees of path angle; a steeper answer is refused
 _STEEPEST_SINE = 0.9  # what an iterate may visit, beyond it
+_HALVINGS = 52  # of an interval of load factors, down to round-off
 
 
 def dynamic_pressure(flight: FlightCondition) -> Array:
@@ -26,14 +27,22 @@ def lift_coefficient(aircraft: Aircraft, flight: FlightCondition, lift: ArrayLik
 
 
 def drag(
-    aircraft: Aircraft, flight: FlightCondition, lift: ArrayLike, drag_factor: float = 1.0
+    aircraft: Aircraft,
+    flight: FlightCondition,
+    lift: ArrayLike,
+    drag_factor: ArrayLike = 1.0,
+    drag_area: ArrayLike = 0.0,
 ) -> Array:
-    """Drag [N] at a lift force [N]; ``drag_factor`` multiplies the aircraft's own."""
+    """Drag [N] at a lift force [N].
+
+    ``drag_factor`` multiplies the aircraft's own; ``drag_area`` [m2] is added for what stands in
+    the wind.
+    """
     coefficient = drag_coefficient(
         aircraft.polar, lift_coefficient(aircraft, flight, lift), flight.mach
     )
-    area = aircraft.wing_area * aircraft.drag_factor * drag_factor
-    return coefficient * dynamic_pressure(flight) * area
+    area = aircraft.wing_area * aircraft.drag_factor * np.asarray(drag_factor)
+    return dynamic_pressure(flight) * (coefficient * area + np.asarray(drag_area))
 
 
 def stall_mach(
@@ -44,6 +53,30 @@ def stall_mach(
     return np.sqrt(weight / (0.7 * flight.static_pressure * aircraft.wing_area * lift_limit))
 
 
+def load_factor_of_drag(
+    aircraft: Aircraft,
+    flight: FlightCondition,
+    mass: Array,
+    force: Array,
+    most: Array,
+    drag_factor: float = 1.0,
+    drag_area: float = 0.0,
+) -> Array:
+    """Load factor at which drag is a given force [N], at most ``most`` and not below one.
+
+    Drag rises with lift above its least, so that halving the interval finds it; where drag at one
+    g is above the force the answer is one, and drag stays above it.
+    """
+    weight = mass * STANDARD_GRAVITY
+    low = np.ones(np.broadcast_shapes(weight.shape, force.shape, most.shape))
+    high = np.maximum(np.broadcast_to(most, low.shape), 1.0)
+    for _ in range(_HALVINGS):
+        middle = 0.5 * (low + high)
+        is_more = drag(aircraft, flight, middle * weight, drag_factor, drag_area) > force
+        low, high = np.where(is_more, low, middle), np.where(is_more, middle, high)
+    return 0.5 * (low + high)
+
+
 def path_angle_sine(
     aircraft: Aircraft,
     flight: FlightCondition,
@@ -51,6 +84,8 @@ def path_angle_sine(
     thrust: Array,
     acceleration_factor: Array,
     near: Array | None = None,
+    drag_factor: ArrayLike = 1.0,
+    drag_area: ArrayLike = 0.0,
 ) -> Array:
     """Sine of the geometric path angle where thrust [N] is not drag.
 
@@ -62,7 +97,8 @@ def path_angle_sine(
     sine = np.zeros(np.broadcast_shapes(weight.shape, thrust.shape)) if near is None else near
     for _ in range(60):
         lift = weight * np.sqrt(1.0 - sine**2)
-        new = (thrust - drag(aircraft, flight, lift)) / (weight * acceleration_factor)
+        resistance = drag(aircraft, flight, lift, drag_factor, drag_area)
+        new = (thrust - resistance) / (weight * acceleration_factor)
         new = np.minimum(np.maximum(new, -_STEEPEST_SINE), _STEEPEST_SINE)
         change = np.max(np.abs(new - sine), initial=0.0)
         sine = new

@@ -93,17 +93,30 @@ def _consumption(
 
 def closure(plan: FlightPlan, written: MissionFile, aircraft: Aircraft) -> Closure:
     """The mass at the end of the mission that the fuel asked for leaves."""
-    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
+    spans = plan.parts.mission
+    received = sum(span.received for span in spans)
+    first = trip_rows(plan)[0]
+    before = [i for i, span in enumerate(spans) if span.segment < first]
 
     def as_needed(stop: Array, integrals: Integrals) -> Array:
-        return np.array([empty + add_up(plan, written, integrals).reserves])
+        reserves = [add_up(plan, written, integrals, m).reserves for m in range(stop.size)]
+        return plan.stop_empty_mass + np.array(reserves)
 
     def given(stop: Array, integrals: Integrals) -> Array:
         assert written.fuel.load is not None
-        burnt = add_up(plan, written, integrals).mission_fuel
-        return np.array([empty + written.fuel.load - burnt])
+        burnt = sum(fuel[-1] for fuel in integrals.fuel[: len(spans)])
+        return plan.first_empty_mass + written.fuel.load + received - burnt
 
-    return as_needed if written.fuel.as_needed else given
+    def to_take_off_mass(stop: Array, integrals: Integrals) -> Array:
+        mass = written.fuel.to_take_off_mass
+        wanted = mass if isinstance(mass, float) else aircraft.maximum_take_off_mass
+        burnt = sum(fuel[-1] for fuel in integrals.fuel[: len(spans)])
+        on_ground = sum(integrals.fuel[i][-1] - spans[i].received for i in before)
+        return np.broadcast_to(wanted + on_ground + received - burnt, stop.shape)
+
+    if written.fuel.as_needed:
+        return as_needed
+    return to_take_off_mass if written.fuel.load is None else given
 
 
 def tank_warnings(aircraft: Aircraft, fuel: Fuel, loaded: float) -> tuple[str, ...]:

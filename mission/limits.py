@@ -15,8 +15,9 @@ from mission.airspeeds import calibrated_airspeed
 from mission.coverage import outside
 from mission.forces import STEEPEST
 from mission.march.level import SLOWEST_GROUND_SPEED
+from mission.march.span import SLOWEST_CLIMB
 from mission.march.sweep import Marched
-from mission.march.throttled import SLOWEST_ACCELERATION, SLOWEST_CLIMB
+from mission.march.throttled import SLOWEST_ACCELERATION
 from mission.march.tracks import Track
 from mission.march.world import World
 from mission.mission_file import MissionFile
@@ -62,14 +63,14 @@ def first_failure(
 
     What fuel as needed comes to depends on the whole way, so that its limits are looked at last.
     """
-    masses = list(_passed_masses(world, written, total, logs))
+    masses = list(_passed_masses(world, plan, written, total, logs))
     known_first = masses if written.fuel.load and closes else masses[:0]
     on_the_way = (
         failure
         for number, log in enumerate(logs)
         for failure in sorted(
             chain(
-                _dry(world, written, total, log),
+                _dry(world, _least_empty(plan, number), total, log),
                 _passed_speeds(world, log),
                 _passed_on_the_way(
                     world, [t for t in marched.tracks if t.span.segment == number], log
@@ -79,7 +80,7 @@ def first_failure(
         )
     )
     in_order = chain(
-        _passed_payload(world, written, logs),
+        _passed_payload(world, plan, logs),
         (
             failure
             for log in logs
@@ -96,11 +97,10 @@ def first_failure(
 
 
 def _passed_payload(
-    world: World, written: MissionFile, logs: tuple[SegmentLog, ...]
+    world: World, plan: FlightPlan, logs: tuple[SegmentLog, ...]
 ) -> Iterator[Failure]:
-    """Zero-fuel mass, unusable fuel included, which no flight changes."""
-    aircraft = world.aircraft
-    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
+    """Zero-fuel mass at its greatest, unusable fuel included, which no flight changes."""
+    empty = max(plan.first_empty_mass, *(row.empty_mass for row in plan.rows))
     most = world.aircraft.maximum_zero_fuel_mass
     if empty > most * (1.0 + 1e-9):
         yield Failure(logs[0].name, 0, "zero-fuel mass", empty, most, "kg", "carry less payload")
@@ -110,6 +110,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     """Limits passed at the steps of one segment, each at its first step."""
     aircraft, steps = world.aircraft, log.steps
     outcome, rates = _along(tracks)
+    slowest = max((track.span.least_rate for track in tracks), default=SLOWEST_CLIMB)
     vertical, acceleration, over_ground = rates["altitude"], rates["speed"], rates["distance"]
     steepness = np.degrees(np.abs(steps.flight_path_angle))
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
@@ -122,7 +123,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
         (outcome == Outcome.BEYOND_RATING, f"thrust at {log.rating} rating against drag",
          steps.thrust, steps.drag, "N",
          "fly lower or slower, carry less, or take a larger engine"),
-        (vertical < SLOWEST_CLIMB, f"rate of {log.kind}", vertical, SLOWEST_CLIMB, "m/s",
+        (vertical < slowest, f"rate of {log.kind}", vertical, slowest, "m/s",
          "end it lower, change its speeds, or carry less"),
         (steepness > STEEPEST, "path angle", steepness, STEEPEST, "deg",
          "the engine is too strong for these equations: climb at a lower rating"),
@@ -180,14 +181,18 @@ def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], dict[str, Array]]:
 
 
 def _passed_masses(
-    world: World, written: MissionFile, total: Totals, logs: tuple[SegmentLog, ...]
+    world: World,
+    plan: FlightPlan,
+    written: MissionFile,
+    total: Totals,
+    logs: tuple[SegmentLog, ...],
 ) -> Iterator[Failure]:
     """Limits of tanks and mass, those that loading meets before those that landing meets."""
     aircraft = world.aircraft
     first, last = logs[0].name, _last_of_mission(logs).name
     lighter = "carry less payload or fly less far"
     tanks = "load less fuel" if written.fuel.load else "shorten the mission or the reserves"
-    most = usable_fuel(aircraft, world.engine.fuel)
+    most = usable_fuel(aircraft, world.engine.fuel) + plan.first_tank_capacity
     for segment, what, value, bound, advice in (
         (first, f"usable fuel to load, {_tanks(world)}", total.loaded_fuel, most, tanks),
         (first, "ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass, lighter),
@@ -211,10 +216,14 @@ def _last_of_mission(logs: tuple[SegmentLog, ...]) -> SegmentLog:
 _RESERVES = "usable fuel left at the stop against the reserves to keep"
 
 
-def _dry(world: World, written: MissionFile, total: Totals, log: SegmentLog) -> Iterator[Failure]:
+def _least_empty(plan: FlightPlan, number: int) -> float:
+    """Mass [kg] without usable fuel at the lighter end of a row."""
+    before = plan.rows[number - 1].empty_mass if number else plan.first_empty_mass
+    return min(before, plan.rows[number].empty_mass)
+
+
+def _dry(world: World, empty: float, total: Totals, log: SegmentLog) -> Iterator[Failure]:
     """The step of the mission at which the tanks run dry."""
-    aircraft = world.aircraft
-    empty = aircraft.operating_empty_mass + written.payload + aircraft.unusable_fuel
     is_dry = log.steps.mass < empty - 1e-6
     if log.purpose == "mission" and np.any(is_dry):
         yield Failure(
@@ -254,15 +263,13 @@ def _passed_reserves(
 
 def _passed_distance(world: World, marched: Marched, plan: FlightPlan) -> Iterator[Failure]:
     """A distance shorter than what is flown besides the cruise that takes the rest of it."""
-    for parts, total in (
-        (False, plan.parts.mission_distance),
-        (True, plan.parts.reserve_distance),
-    ):
+    for leg, distance in plan.parts.distances.items():
+        total = float(np.max(distance))
         tracks = zip(marched.tracks, marched.integrals.ground, strict=True)
-        chosen = [(t.span, g) for t, g in tracks if t.span.is_reserve == parts]
+        chosen = [(t.span, g) for t, g in tracks if t.span.leg == leg]
         flown = sum(float(g[-1, 0]) for span, g in chosen if not span.takes_rest)
         cruise = [span for span, _ in chosen if span.takes_rest]
-        if total is not None and cruise and flown > total * (1.0 + 1e-9):
+        if cruise and flown > total * (1.0 + 1e-9):
             name = plan.rows[cruise[0].segment].name
             yield Failure(name, 0, "distance flown without it against the distance to cover",
                           flown, total, "m", "fly lower, or lengthen the distance")  # fmt: skip

@@ -15,19 +15,15 @@ from mission.march.nodes import integration_matrix
 from mission.march.sweep import Marched
 from mission.march.tracks import Track
 from mission.march.world import World
-from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
 from mission.results import SegmentLog, Steps, Totals
 
 Array = NDArray[np.float64]
 
 
-def segment_logs(
-    world: World, plan: FlightPlan, marched: Marched, written: MissionFile
-) -> tuple[SegmentLog, ...]:
+def segment_logs(world: World, plan: FlightPlan, marched: Marched) -> tuple[SegmentLog, ...]:
     """One log a row, in the order flown; reserves last, on the same clock."""
     rating_thrust = _rating_thrusts(world, marched)
-    empty = world.aircraft.operating_empty_mass + written.payload + world.aircraft.unusable_fuel
     logs: list[SegmentLog] = []
     clock = 0.0
     for number, row in enumerate(plan.rows):
@@ -52,9 +48,9 @@ def segment_logs(
                 air_distance=_sum(marched.integrals.air, chosen),
                 mass_start=float(steps.mass[0]),
                 mass_end=float(steps.mass[-1]),
-                mass_released=0.0,
-                mass_received=0.0,
-                fuel_left=float(steps.mass[-1]) - empty,
+                mass_released=-sum(min(marched.tracks[i].span.received, 0.0) for i in chosen),
+                mass_received=sum(max(marched.tracks[i].span.received, 0.0) for i in chosen),
+                fuel_left=float(steps.mass[-1]) - row.empty_mass,
                 steps=steps,
                 impulse=float(sum(_impulse(marched.tracks[i]) for i in chosen)),
             )
@@ -78,15 +74,17 @@ def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:
     """Thrust [N] of the aircraft at its rating along every level span, in one engine call."""
     requests: dict[int, Request] = {}
     for index, track in enumerate(marched.tracks):
-        if track.is_level and track.nodes is not None:
+        if (track.is_level or track.span.is_steered) and track.nodes is not None:
             flight = track.nodes.flight
             requests[index] = Request(
                 flight.with_mach(np.broadcast_to(flight.mach, track.mass.shape)),
                 track.span.rating,
             )
     answers = ask(world.engine, requests)
-    count = world.aircraft.engine_count
-    return {index: count * answer.net_thrust[:, 0] for index, answer in answers.items()}
+    return {
+        index: world.running(marched.tracks[index].span) * answer.net_thrust[:, 0]
+        for index, answer in answers.items()
+    }
 
 
 def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: float) -> Steps:
@@ -143,10 +141,8 @@ def _joined(pieces: list[Steps]) -> Steps:
 
 
 def totals(
-    world: World,
     plan: FlightPlan,
     marched: Marched,
-    written: MissionFile,
     sums: Sums,
     integration_error: float,
 ) -> Totals:
@@ -156,13 +152,13 @@ def totals(
     rows = set(trip_rows(plan))
     trip = [i for i in mission if spans[i].segment in rows]
     masses = [track.mass[:, 0] for track in marched.tracks]
-    empty = world.aircraft.operating_empty_mass + written.payload + world.aircraft.unusable_fuel
-    ramp, left = float(masses[0][0]), float(marched.stop_mass[0]) - empty
+    ramp = float(masses[0][0])
+    left = float(marched.stop_mass[0]) - plan.stop_empty_mass
     return Totals(
         block_fuel=sums.mission_fuel,
         trip_fuel=sums.trip_fuel,
         reserve_fuel=sums.reserves,
-        loaded_fuel=ramp - empty,
+        loaded_fuel=ramp - plan.first_empty_mass,
         fuel_left=left,
         fuel_margin=left - sums.reserves,
         block_time=_sum(marched.integrals.time, mission),

@@ -2,44 +2,64 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
 from engine.errors import InputRefused
 from mission.aircraft import Aircraft
-from mission.march.span import Span, SpeedRule
+from mission.legs import air_of
+from mission.march.span import RESERVE_LEG, Span, SpeedRule
 from mission.march.sweep import Parts
+from mission.march.world import World
 from mission.mission_file import AlternateTable, Mission, MissionFile
 from mission.segments import AnySegment
 from mission.segments.acceleration import speed_span
 from mission.segments.approach import approach_speed
+from mission.segments.choices import Choices
 from mission.segments.climb import Climb
 from mission.segments.cruise import Cruise
 from mission.segments.descent import APPROACH_HEIGHT, Descent
-from mission.segments.here import Here
+from mission.segments.here import Here, Leg, Load
 from mission.segments.loiter import Loiter
 from mission.segments.schedule import is_same_speed
 
 HOLD_HEIGHT = APPROACH_HEIGHT  # 1,500 ft: ICAO Annex 6 Part I, 4.3.6.3 (from memory)
-_AIRBORNE = ("climb", "acceleration", "cruise", "loiter", "descent", "approach")
+_ON_GROUND = ("taxi", "take-off", "allowance", "turnaround")
 
 
 @dataclass(frozen=True)
 class Row:
-    """One row of the log: a segment of the file, or a bridge between two."""
+    """One row of the log: a segment of the file, or a bridge between two.
+
+    ``empty_mass`` is the aircraft's without usable fuel at its end [kg], ``tank_capacity`` the fuel
+    that stores hold then [kg].
+    """
 
     name: str
     kind: str
     purpose: Literal["mission", "reserve"]
+    empty_mass: float
+    tank_capacity: float = 0.0
 
 
 @dataclass(frozen=True)
 class FlightPlan:
-    """Rows of the log and the spans that fly them."""
+    """Rows of the log and the spans that fly them.
+
+    ``first_empty_mass`` is without usable fuel before anything leaves or comes aboard [kg],
+    ``first_tank_capacity`` the fuel that stores hold then [kg].
+    """
 
     rows: tuple[Row, ...]
     parts: Parts
+    first_empty_mass: float
+    first_tank_capacity: float = 0.0
+
+    @property
+    def stop_empty_mass(self) -> float:
+        """Mass [kg] without usable fuel at the end of the mission."""
+        return [row for row in self.rows if row.purpose == "mission"][-1].empty_mass
 
 
 @dataclass
@@ -52,13 +72,19 @@ class _Laid:
 
     def lay(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:
         """One segment, with a bridge before it where the speed jumps."""
-        if self.here.on_ground and segment.kind in _AIRBORNE:
+        if self.here.on_ground and segment.kind not in _ON_GROUND:
             raise InputRefused("the aircraft stands on the ground; put a take-off before it")
         self.bridge(segment, purpose)
         self.here = replace(self.here, row=len(self.rows))
         spans, self.here = segment.lay(self.here)
         self.spans += spans
-        self.rows.append(Row(segment.name, segment.kind, purpose))
+        self._row(segment.name, segment.kind, purpose)
+
+    def _row(self, name: str, kind: str, purpose: Literal["mission", "reserve"]) -> None:
+        aircraft, load = self.here.aircraft, self.here.load
+        self.rows.append(
+            Row(name, kind, purpose, load.empty_mass(aircraft), load.tank_capacity(aircraft))
+        )
 
     def bridge(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:
         """A level change of speed of its own where two segments do not meet in speed."""
@@ -73,7 +99,7 @@ class _Laid:
         if isinstance(segment, Climb):
             rating = segment.rating
         self.spans.append(speed_span(self.here, altitude, before, after, rating))
-        self.rows.append(Row(f"bridge to {segment.name}", "acceleration", purpose))
+        self._row(f"bridge to {segment.name}", "acceleration", purpose)
         self.here = replace(self.here, speed=after)
 
 
@@ -85,66 +111,134 @@ def _same_speed(before: SpeedRule, after: SpeedRule, altitude: float) -> bool:
 
 
 def lay_out(
-    mission: Mission, aircraft: Aircraft, cruise_climb_ends: Mapping[int, float]
+    mission: Mission,
+    world: World,
+    masses: Mapping[int, tuple[float, float]],
+    cruise_climb_ends: Mapping[int, float],
+    choices: Choices,
 ) -> FlightPlan:
     """All rows and spans of a mission and its reserve flight.
 
-    ``cruise_climb_ends`` gives, by row, the pressure altitude [m] at which a cruise-climb was
-    found to end, so that what follows begins there. Raises :class:`InputRefused` naming the
-    segment.
+    ``masses`` [kg] at both ends of each row and ``cruise_climb_ends``, by row the pressure
+    altitude [m] at which a cruise-climb was found to end, are of an earlier plan as it was flown;
+    ``choices`` are what was chosen for its masses. Raises :class:`InputRefused` naming the segment.
     """
     written = mission.written
+    legs = legs_of(written)
+    load = Load(written.payload, written.stores)
+    _refuse_stores(mission, world.aircraft)
     laid = _Laid(
         Here(
-            aircraft=aircraft,
+            world=world,
             pressure_altitude=None,
             speed=None,
             on_ground=False,
             departure_elevation=written.departure.elevation,
-            destination_elevation=written.destination.elevation,
-            distance=written.distance,
+            leg=legs[0],
+            load=load,
+            masses=masses,
+            choices=choices,
         )
     )
+    laid.here = replace(
+        laid.here,
+        configuration=replace(laid.here.configuration, drag_area=load.drag_area(world.aircraft)),
+    )
     for number, segment in enumerate(written.segment, 1):
+        leg = next((leg for leg in legs if leg.name and leg.name == segment.starts_leg), None)
+        laid.here = replace(
+            laid.here, leg=leg or laid.here.leg, ahead=tuple(written.segment[number:])
+        )
         try:
             laid.lay(segment, "mission")
         except InputRefused as refusal:
             key = f'segment {number} "{segment.name}"'
-            raise InputRefused(refusal.what, where=mission.where, key=key) from None
+            raise type(refusal)(refusal.what, where=mission.where, key=key) from None
         if laid.here.pressure_altitude is None and segment.kind == "cruise":
             end = cruise_climb_ends.get(len(laid.rows) - 1)
             laid.here = replace(laid.here, pressure_altitude=end or laid.spans[-1].start_altitude)
     mission_spans = list(laid.spans)
-    _refuse_rest(mission, mission_spans)
+    for leg in legs:
+        _refuse_rest(mission, leg, [span for span in mission_spans if span.leg == leg.number])
     laid.spans = []
     try:
         alternate_distance = _lay_reserves(written, laid)
     except InputRefused as refusal:
         raise InputRefused(refusal.what, where=mission.where, key="reserves.alternate") from None
+    distances = {leg.number: leg.distance for leg in legs if leg.distance is not None}
+    if alternate_distance is not None:
+        distances[RESERVE_LEG] = alternate_distance
     return FlightPlan(
-        tuple(laid.rows),
-        Parts(
+        rows=tuple(laid.rows),
+        parts=Parts(
             tuple(mission_spans),
             tuple(replace(span, is_reserve=True) for span in laid.spans),
-            written.distance,
-            alternate_distance,
+            distances,
+            frozenset(leg.number for leg in legs if leg.is_free),
         ),
+        first_empty_mass=load.empty_mass(world.aircraft),
+        first_tank_capacity=load.tank_capacity(world.aircraft),
     )
 
 
-def _refuse_rest(mission: Mission, spans: list[Span]) -> None:
-    """The mission's distance and exactly one cruise for the rest of it go together."""
-    rests = [s for s in spans if s.march == "distance" and s.extent is None]
+def legs_of(written: MissionFile) -> list[Leg]:
+    """The legs of a mission; without any in the file one that is all of it."""
+    elevation = written.destination.elevation
+    whole = air_of(written.day, written.headwind, written.air)
+    if not written.leg:
+        is_free = written.distance == "free"
+        distance = None if is_free else written.distance
+        return [Leg(0, "", _metres(distance), is_free, whole, elevation)]
+    legs = []
+    for number, leg in enumerate(written.leg):
+        distance = written.radius if leg.distance == "radius" else leg.distance
+        day = written.day if leg.day is None else leg.day
+        headwind = written.headwind if leg.headwind is None else leg.headwind
+        is_own = (leg.day, leg.headwind, leg.air) != (None, None, None)
+        legs.append(
+            Leg(
+                number,
+                leg.name,
+                _metres(distance),
+                distance == "free",
+                air_of(day, headwind, leg.air) if is_own else whole,
+                elevation if leg.elevation is None else leg.elevation,
+            )
+        )
+    return legs
+
+
+def _metres(distance: float | str | None) -> float | None:
+    return distance if isinstance(distance, float) else None
+
+
+def _refuse_stores(mission: Mission, aircraft: Aircraft) -> None:
+    """Stores that the aircraft does not know, or more than it can carry."""
+    for name, count in mission.written.stores.items():
+        store = aircraft.stores.get(name)
+        if store is None:
+            known = ", ".join(aircraft.stores) or "none"
+            what = f"are not known to {aircraft.name}; its file has: {known}"
+            raise InputRefused(what, where=mission.where, key=f"stores.{name}")
+        if count > store.most:
+            what = f"= {count}; {aircraft.name} carries at most {store.most}"
+            raise InputRefused(what, where=mission.where, key=f"stores.{name}")
+
+
+def _refuse_rest(mission: Mission, leg: Leg, spans: Sequence[Span]) -> None:
+    """A leg's distance and exactly one cruise for the rest of it go together."""
+    rests = [s for s in spans if s.takes_rest]
+    place = f' of leg "{leg.name}"' if leg.name else ""
     if len(rests) > 1:
         raise InputRefused(
-            'two cruises have distance = "rest"; give all but one a distance',
+            f'two cruises{place} have distance = "rest"; give all but one a distance',
             where=mission.where,
             key="segment",
         )
-    if mission.written.distance is not None and not rests:
+    if (leg.distance is not None or leg.is_free) and not rests:
+        given = "" if leg.distance is None else f"= {leg.distance / 1852.0:,.0f} nmi "
         raise InputRefused(
-            f"= {mission.written.distance / 1852.0:,.0f} nmi is given, but no cruise has "
-            'distance = "rest" to meet it',
+            f'{given}is given{place}, but no cruise has distance = "rest" to meet it',
             where=mission.where,
             key="distance",
         )
@@ -153,7 +247,8 @@ def _refuse_rest(mission: Mission, spans: list[Span]) -> None:
 def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
     """The reserve flight: alternate from a go-around, then the final hold; its distance, if any."""
     reserves = written.reserves
-    elevation = written.destination.elevation
+    elevation = laid.here.leg.destination_elevation
+    leg = replace(laid.here.leg, number=RESERVE_LEG, distance=None, is_free=False)
     start = replace(
         laid.here,
         pressure_altitude=None,
@@ -161,6 +256,8 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
         on_ground=False,
         is_reserve=True,
         departure_elevation=elevation,
+        leg=leg,
+        ahead=(),
     )
     distance: float | None = None
     if reserves.alternate is not None:
@@ -171,8 +268,7 @@ def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
             start,
             pressure_altitude=start.departure_elevation,
             speed=approach_speed(start),
-            distance=distance,
-            destination_elevation=elevation,
+            leg=replace(leg, distance=distance, destination_elevation=elevation),
         )
         for segment in _alternate_segments(alternate, elevation):
             laid.lay(segment, "reserve")

@@ -106,7 +106,8 @@ def _look(world: World, ways: Mapping[int, Way], parts: _Parts) -> list[_Change]
     values = np.array([_inside(low + steps * (high - low)) for _, low, high in parts])
     along = [ways[i] for i, _, _ in parts]
     altitudes = [way.altitudes(row) for way, row in zip(along, values, strict=True)]
-    air = flight_condition(np.array(altitudes), 0.0, world.temperature_deviation)
+    days = [way.span.air.deviation_at(row) for way, row in zip(along, altitudes, strict=True)]
+    air = flight_condition(np.array(altitudes), 0.0, np.array(days))
     flights = [
         way.flights(world, row, air.at(place))
         for place, (way, row) in enumerate(zip(along, values, strict=True))

@@ -14,11 +14,14 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
+from mission.air import STILL_AIR, Air
 
 Array = NDArray[np.float64]
 SpeedKind = Literal[
-    "mach", "calibrated", "stall", "lift_coefficient", "least_fuel", "neighbour", "standstill"
-]
+    "mach", "calibrated", "stall", "lift_coefficient", "neighbour", "standstill",
+    "least_fuel", "maximum_range", "long_range", "least_cost", "maximum_level",
+]  # fmt: skip
+SOUGHT = ("least_fuel", "maximum_range", "long_range", "least_cost", "maximum_level")
 
 
 @dataclass(frozen=True)
@@ -27,8 +30,10 @@ class SpeedRule:
 
     ``value`` is a Mach number, a calibrated airspeed [m/s], a multiple of the stall speed at the
     lift coefficient ``lift_limit``, or a lift coefficient to hold (None: the one the aircraft
-    comes in with). "least_fuel" is the speed of least fuel flow; "neighbour" is the speed at the
-    near end of the span before or after; "standstill" is no speed.
+    comes in with). "neighbour" is the speed at the near end of the span before or after;
+    "standstill" is no speed. Those of :data:`SOUGHT` are found in flight: least fuel flow, best
+    specific air range, 99 % of it on the fast side, least cost (``value`` is the cost of time in
+    fuel [kg/s]), and the fastest at which a rating's thrust is drag.
     """
 
     kind: SpeedKind
@@ -38,11 +43,36 @@ class SpeedRule:
     @property
     def depends_on_mass(self) -> bool:
         """Whether the Mach number at an altitude changes with the mass of the aircraft."""
-        return self.kind in ("stall", "lift_coefficient", "least_fuel", "neighbour")
+        return self.kind in ("stall", "lift_coefficient", "neighbour", *SOUGHT)
+
+    @property
+    def is_sought(self) -> bool:
+        """Whether the Mach number is found in flight from what the engine burns."""
+        return self.kind in SOUGHT
 
 
 STANDSTILL = SpeedRule("standstill")
-March = Literal["altitude", "speed", "distance", "time", "roll", "stand", "book"]
+March = Literal["altitude", "speed", "distance", "time", "burn", "turn", "roll", "stand", "book"]
+SLOWEST_CLIMB = 100.0 * 0.3048 / 60.0  # m/s: 100 ft/min, an operational ceiling's rate of climb
+LEVEL = ("distance", "time", "burn")
+RESERVE_LEG = -1  # of the reserve flight
+
+
+@dataclass(frozen=True)
+class Configuration:
+    """What hangs on the aircraft and what has failed.
+
+    ``drag_factor`` and ``fuel_flow_factor`` multiply the aircraft's own; ``drag_area`` [m2] is
+    added for what stands in the wind; ``engines_out`` are dead and turned by the air.
+    """
+
+    drag_factor: float = 1.0
+    fuel_flow_factor: float = 1.0
+    drag_area: float = 0.0
+    engines_out: int = 0
+
+
+CLEAN = Configuration()
 
 
 @dataclass(frozen=True)
@@ -52,43 +82,68 @@ class Span:
     Attributes
     ----------
     segment : index of the row of the log it belongs to
-    march : altitude (climb, descent), speed (level acceleration), distance or time (thrust equals
-        drag), roll (take-off), stand (engine running on the ground), book (an allowance)
+    march : altitude (climb, descent), speed (level acceleration), distance, time, burn or turn
+        (thrust equals drag), roll (take-off), stand
+        (engine running on the ground), book (an allowance, a release)
     rating : the rating flown (altitude, speed, roll, stand) or the ceiling of thrust
+    air : temperature and wind by altitude
+    configuration : drag, fuel flow and dead engines
+    leg : index of the leg whose distance it counts towards
     start_altitude, end_altitude : pressure altitude [m]
     start_speed, end_speed : alike in a march by altitude; in a level march the speed the aircraft
         comes in with and the one it flies
-    extent : distance [m] or time [s]; None for the rest of the distance
+    extent : distance [m], time [s] or change of heading [rad]; None for the rest of the distance
+    is_free : its extent is what the flight is solved for
+    end_mass : mass [kg] at which a march by burn ends; ``burn`` [kg] what it burns instead
+    load_factor : of a march by turn; None for what thrust, lift and structure allow
+    is_by_heading : whether a turn's extent is a change of heading, not a time
+    path_angle, vertical_speed : given ones of a descent [rad, m/s, both negative]; else None
     holds_lift_coefficient : with Mach number held too, a cruise-climb
     lift_coefficient : the one a cruise-climb holds; None for the one at its start
-    drag_factor, fuel_flow_factor : multiply the aircraft's own
     gains_distance : whether ground distance counts
     booked_fuel, booked_fraction : of an allowance [kg], of the mass at its start
+    least_rate : slowest climb or descent [m/s]; slower it does not end
+    received : mass taken on along it, negative for what is released [kg]
     is_reserve : flown as part of the reserves
     """
 
     segment: int
     march: March
     rating: str = ""
+    air: Air = STILL_AIR
+    configuration: Configuration = CLEAN
+    leg: int = 0
     start_altitude: float = 0.0
     end_altitude: float = 0.0
     start_speed: SpeedRule = STANDSTILL
     end_speed: SpeedRule = STANDSTILL
     extent: float | None = None
+    is_free: bool = False
+    end_mass: float | None = None
+    burn: float | None = None
+    load_factor: float | None = None
+    is_by_heading: bool = False
+    path_angle: float | None = None
+    vertical_speed: float | None = None
     holds_lift_coefficient: bool = False
     lift_coefficient: float | None = None
-    drag_factor: float = 1.0
-    fuel_flow_factor: float = 1.0
     gains_distance: bool = True
     booked_fuel: float = 0.0
     booked_fraction: float = 0.0
+    least_rate: float = SLOWEST_CLIMB
+    received: float = 0.0
     is_reserve: bool = False
 
     @property
+    def is_steered(self) -> bool:
+        """Whether it descends on a given path, thrust following from it."""
+        return self.path_angle is not None or self.vertical_speed is not None
+
+    @property
     def is_static(self) -> bool:
-        """Whether the flight condition at every node is known before any mass is."""
+        """Whether the engine's answer at every node is known before any mass is."""
         if self.march == "altitude":
-            return True
+            return not self.is_steered
         if self.march == "speed":
             return not (self.start_speed.depends_on_mass or self.end_speed.depends_on_mass)
         return self.march == "stand"
@@ -96,7 +151,7 @@ class Span:
     @property
     def takes_rest(self) -> bool:
         """Whether it flies what is left of the distance."""
-        return self.march == "distance" and self.extent is None
+        return self.march == "distance" and self.extent is None and not self.is_free
 
     def cut(self, joints: tuple[float, ...]) -> list[Span]:
         """The span in pieces, at altitudes [m] or Mach numbers in the order flown."""

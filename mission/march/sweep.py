@@ -7,24 +7,18 @@ integrals, then new masses) brings several digits; a mass depends only on the fu
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from mission.march.asking import ask
 from mission.march.nodes import integration_matrix, positions
+from mission.march.outcomes import set_nodes, slopes_of
+from mission.march.requests import request_of
 from mission.march.span import Span
-from mission.march.tracks import (
-    Track,
-    first_track,
-    flown_last,
-    refined,
-    request_of,
-    set_nodes,
-    slopes_of,
-)
+from mission.march.tracks import Track, first_track, flown_last, refined
 from mission.march.world import World
 
 Array = NDArray[np.float64]
@@ -38,12 +32,16 @@ _HEAVIEST = 1e8  # kg: a mass on its way to nowhere
 
 @dataclass(frozen=True)
 class Parts:
-    """Spans of the mission and of the reserve flight, with the distance each has to cover [m]."""
+    """Spans of the mission and of the reserve flight.
+
+    ``distances`` [m] are what legs have to cover over the ground, by leg, scalars or (members,);
+    a leg of ``free_legs`` covers what the flight is solved for instead.
+    """
 
     mission: Sequence[Span]
     reserve: Sequence[Span] = ()
-    mission_distance: float | None = None
-    reserve_distance: float | None = None
+    distances: Mapping[int, float | Array] = field(default_factory=dict)
+    free_legs: frozenset[int] = frozenset()
 
 
 @dataclass(frozen=True)
@@ -104,22 +102,23 @@ def march(
     close: Closure,
     start: Marched | None = None,
     settled: float = SETTLED,
+    free: Array | None = None,
 ) -> Marched:
     """March all spans with ``count`` nodes each.
 
     ``stop_mass`` (members,) is a first guess of the mass at the end of the mission part;
     ``close(stop_mass, integrals)`` gives the next. ``start`` is an earlier solution of the same
     spans, of any node count, to begin from. The sweeps end when no mass moves by more than
-    ``settled`` of itself.
+    ``settled`` of itself. ``free`` (members,) is what free spans and legs are to cover [m, s].
     """
     tracks = _first_tracks(world, parts, count, stop_mass, start)
     slopes = slopes_of(tracks)
-    distances = {False: parts.mission_distance, True: parts.reserve_distance}
+    free = np.zeros_like(stop_mass) if free is None else free
     for sweep in range(1, MOST_SWEEPS + 1):
         _ask_engine(world, tracks)
         if slopes is not None:
             slopes.solve(world)
-        integrals = _integrate(world, tracks, distances)
+        integrals = _integrate(world, tracks, parts, free)
         stop_mass = close(stop_mass, integrals)
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))
         is_lost = bool(np.any(~(stop_mass < _HEAVIEST)))
@@ -150,26 +149,28 @@ def _ask_engine(world: World, tracks: list[Track]) -> None:
         tracks[index].answer = answer
 
 
-def _integrate(world: World, tracks: list[Track], distances: dict[bool, float | None]) -> Integrals:
+def _integrate(world: World, tracks: list[Track], parts: Parts, free: Array) -> Integrals:
     """Nodes of all spans and the integrals along them; what flies the rest of a distance last.
 
     The rest then answers to the other spans of this sweep, not of the one before, which would
     make the sweeps swing.
     """
     sums: dict[int, tuple[Array, Array, Array, Array]] = {}
-    left = {part: np.atleast_1d(total or 0.0) for part, total in distances.items()}
+    left: dict[int, Array] = {leg: np.atleast_1d(total) for leg, total in parts.distances.items()}
+    left |= dict.fromkeys(parts.free_legs, free)
+    nothing = np.zeros(1)
     for index in sorted(range(len(tracks)), key=lambda i: tracks[i].span.takes_rest):
         track = tracks[index]
-        part = track.span.is_reserve
-        set_nodes(world, track, left[part])
-        sums[index] = _integrals_along(world, track)
+        leg = track.span.leg
+        set_nodes(world, track, left.get(leg, nothing), free)
+        sums[index] = _integrals_along(track)
         if not track.span.takes_rest:
-            left[part] = left[part] - sums[index][2][-1]
+            left[leg] = left.get(leg, nothing) - sums[index][2][-1]
     fuel, time, ground, air = zip(*(sums[index] for index in range(len(tracks))), strict=True)
     return Integrals(list(fuel), list(time), list(ground), list(air))
 
 
-def _integrals_along(world: World, track: Track) -> tuple[Array, Array, Array, Array]:
+def _integrals_along(track: Track) -> tuple[Array, Array, Array, Array]:
     """Fuel [kg], time [s], ground and air distance [m] from the start of a span to its nodes."""
     nodes, span, count = track.nodes, track.span, len(track.mass)
     if nodes is None:
@@ -178,7 +179,8 @@ def _integrals_along(world: World, track: Track) -> tuple[Array, Array, Array, A
         return positions(count)[:, None] * booked, none, none, none
     in_air = span.march not in ("roll", "stand")
     forward = nodes.flight.true_airspeed * np.cos(nodes.path_angle) * in_air
-    covered = (forward + world.tailwind) * (in_air and span.gains_distance)
+    wind = span.air.tailwind_at(nodes.flight.pressure_altitude)
+    covered = (forward + wind) * (in_air and span.gains_distance)
     matrix = integration_matrix(count)
     return (
         matrix @ (nodes.propulsion.fuel_flow * nodes.time_rate),
@@ -195,15 +197,22 @@ def _update_masses(
     change = 0.0
     after = np.zeros_like(stop_mass)
     for index in range(mission_count - 1, -1, -1):
-        new = stop_mass + after + (fuel[index][-1] - fuel[index])
-        after = after + fuel[index][-1]
+        lost = fuel[index] - _received(tracks[index])
+        new = stop_mass + after + (lost[-1] - lost)
+        after = after + lost[-1]
         change = max(change, _replace_mass(tracks[index], new))
     before = np.zeros_like(stop_mass)
     for index in range(mission_count, len(tracks)):
-        new = stop_mass - before - fuel[index]
-        before = before + fuel[index][-1]
+        lost = fuel[index] - _received(tracks[index])
+        new = stop_mass - before - lost
+        before = before + lost[-1]
         change = max(change, _replace_mass(tracks[index], new))
     return change
+
+
+def _received(track: Track) -> Array:
+    """Mass [kg] taken on (released where negative) up to each node, evenly along the span."""
+    return track.span.received * positions(len(track.mass))[:, None]
 
 
 def _replace_mass(track: Track, new: Array) -> float:

@@ -11,10 +11,10 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from engine.atmosphere import FlightCondition, flight_condition
+from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
 from mission.airspeeds import calibrated_mach_slope
-from mission.forces import drag
+from mission.march.level import airframe_drag
 from mission.march.nodes import positions
 from mission.march.rules import mach_at
 from mission.march.span import Nodes, Propulsion, Span
@@ -22,7 +22,6 @@ from mission.march.world import World
 
 Array = NDArray[np.float64]
 ROLLING_FRICTION = 0.02  # dry hard runway; common practice, no source
-SLOWEST_CLIMB = 100.0 * 0.3048 / 60.0  # m/s: 100 ft/min, an operational ceiling's rate of climb
 SLOWEST_ACCELERATION = 0.01  # m/s2: below it a change of speed does not end
 _INSIDE = 1e-6  # m: nodes stand this far inside a joint, each piece seeing its own side of it
 
@@ -34,7 +33,7 @@ def altitude_flight(span: Span, world: World, count: int) -> FlightCondition:
     )
     low, high = sorted((span.start_altitude, span.end_altitude))
     inside = np.clip(altitude, low + _INSIDE, max(high - _INSIDE, low + _INSIDE))
-    return on_schedule(span, world, flight_condition(inside, 0.0, world.temperature_deviation))
+    return on_schedule(span, world, span.air.condition(inside))
 
 
 def on_schedule(span: Span, world: World, air: FlightCondition) -> FlightCondition:
@@ -57,6 +56,14 @@ def _pressure_to_geometric(flight: FlightCondition) -> Array:
     return standard / flight.static_temperature
 
 
+def steered_sine(span: Span, flight: FlightCondition) -> Array:
+    """Sine of the path angle of a descent whose angle [rad] or rate [m/s] is given."""
+    if span.path_angle is not None:
+        return np.full(flight.shape, np.sin(span.path_angle))
+    assert span.vertical_speed is not None
+    return span.vertical_speed / flight.true_airspeed
+
+
 def climb_nodes(
     span: Span,
     flight: FlightCondition,
@@ -72,7 +79,7 @@ def climb_nodes(
     return Nodes(
         flight=flight,
         mass=mass,
-        time_rate=height / np.maximum(rate, SLOWEST_CLIMB),
+        time_rate=height / np.maximum(rate, span.least_rate),
         propulsion=propulsion,
         drag=resistance,
         lift=mass * STANDARD_GRAVITY * np.sqrt(1.0 - sine**2),
@@ -82,21 +89,21 @@ def climb_nodes(
 
 
 def acceleration_nodes(
+    span: Span,
     world: World,
     flight: FlightCondition,
     mass: Array,
     propulsion: Propulsion,
-    *,
-    on_ground: bool,
+    dead_drag: Array,
 ) -> Nodes:
     """Nodes of a march by speed, level or along the runway."""
     weight = mass * STANDARD_GRAVITY
-    if on_ground:
+    if span.march == "roll":
         lift, resistance = np.zeros_like(mass), np.zeros_like(mass)
         net = propulsion.thrust - ROLLING_FRICTION * weight
     else:
         lift = weight
-        resistance = drag(world.aircraft, flight, weight)
+        resistance = dead_drag + airframe_drag(span, world, flight, weight)
         net = propulsion.thrust - resistance
     speed = flight.true_airspeed
     change = speed[-1] - speed[0]

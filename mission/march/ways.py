@@ -57,7 +57,7 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
     found = {}
     for i, span in enumerate(spans):
         way = None
-        if span.march == "altitude":
+        if span.march == "altitude" and not span.is_steered:
             ends = (span.start_altitude, span.end_altitude)
             way = Way(span, span.rating, *ends, ends, _LEAST_RISE)
         elif span.march in ("speed", "roll"):
@@ -116,10 +116,10 @@ def _machs(world: World, span: Span, rule: SpeedRule, neighbour: SpeedRule | Non
         return None
     aircraft = world.aircraft
     masses = np.array([[aircraft.operating_empty_mass, aircraft.maximum_ramp_mass]])
-    air = level_air(span.start_altitude, world.temperature_deviation, 1)
+    air = level_air(span.start_altitude, span.air, 1)
     machs = mach_at(known, aircraft, air, masses)
     lowest, highest = machs.min(), machs.max()
-    if known.kind == "least_fuel":
+    if known.is_sought:
         slow, fast = hold_bounds(aircraft, air, masses)
         lowest, highest = slow.min(), fast.max()
     return _Machs(float(lowest), float(machs.mean()), float(highest))

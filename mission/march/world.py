@@ -1,4 +1,4 @@
-"""What every span of a flight shares: aircraft, engine, day and wind."""
+"""What every span of a flight shares: aircraft and engine."""
 
 from __future__ import annotations
 
@@ -6,13 +6,16 @@ from dataclasses import dataclass
 
 from engine.interface import Engine
 from mission.aircraft import Aircraft
+from mission.march.span import Span
 
 
 @dataclass(frozen=True)
 class World:
-    """Aircraft, engine, temperature deviation [K] and tailwind [m/s] of one flight."""
+    """Aircraft and engine of one flight."""
 
     aircraft: Aircraft
     engine: Engine
-    temperature_deviation: float
-    tailwind: float
+
+    def running(self, span: Span) -> int:
+        """Engines that run on a span."""
+        return self.aircraft.engine_count - span.configuration.engines_out

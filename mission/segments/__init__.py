@@ -17,10 +17,27 @@ from mission.segments.approach import Approach
 from mission.segments.climb import Climb
 from mission.segments.cruise import Cruise
 from mission.segments.descent import Descent
+from mission.segments.failure import Driftdown, EngineFailure
 from mission.segments.ground import TakeOff, Taxi
+from mission.segments.loading import Refuelling, Release, Turnaround
 from mission.segments.loiter import Loiter
+from mission.segments.turn import Turn
 
 AnySegment = Annotated[
-    Allowance | Taxi | TakeOff | Climb | Accelerate | Cruise | Loiter | Descent | Approach,
+    Allowance
+    | Taxi
+    | TakeOff
+    | Climb
+    | Accelerate
+    | Cruise
+    | Loiter
+    | Turn
+    | Descent
+    | Approach
+    | Release
+    | Refuelling
+    | Turnaround
+    | EngineFailure
+    | Driftdown,
     Field(discriminator="kind"),
 ]

@@ -9,13 +9,13 @@ from pydantic import Field, model_validator
 
 from engine.errors import InputRefused
 from engine.quantities import Altitude, Speed
-from engine.reading import Table
 from mission.march.span import Span, SpeedRule
+from mission.segments.base import Segment
 from mission.segments.climb import RatingName
 from mission.segments.here import Here
 
 
-class Accelerate(Table):
+class Accelerate(Segment):
     """To a Mach number or a calibrated airspeed."""
 
     kind: Literal["acceleration"]
@@ -62,13 +62,11 @@ def speed_span(
         known = not rule.depends_on_mass or rule.kind == "stall"
         return rule if known else SpeedRule("neighbour")
 
-    return Span(
-        segment=here.row,
-        march="speed",
+    return here.span(
+        "speed",
         rating=rating,
         start_altitude=altitude,
         end_altitude=altitude,
         start_speed=end(begins),
         end_speed=end(ends),
-        is_reserve=here.is_reserve,
     )

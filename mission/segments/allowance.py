@@ -9,13 +9,13 @@ from pydantic import Field, model_validator
 
 from engine.errors import InputRefused
 from engine.quantities import Altitude, Mass, Time
-from engine.reading import Table
 from mission.march.span import STANDSTILL, Span, SpeedRule
+from mission.segments.base import Segment
 from mission.segments.climb import RatingName
 from mission.segments.here import Here
 
 
-class Allowance(Table):
+class Allowance(Segment):
     """One of a fuel mass, a fraction of the mass at its start, or a time at a rating.
 
     A time is at the speed the aircraft has, or at ``mach``. With ``to`` the allowance also stands
@@ -52,14 +52,12 @@ class Allowance(Table):
             span = self._running(here)
         else:
             altitude = here.pressure_altitude or 0.0
-            span = Span(
-                segment=here.row,
-                march="book",
+            span = here.span(
+                "book",
                 start_altitude=altitude,
                 end_altitude=altitude,
                 booked_fuel=self.fuel or 0.0,
                 booked_fraction=self.mass_fraction or 0.0,
-                is_reserve=here.is_reserve,
             )
         if self.to is None:
             return [span], here
@@ -76,13 +74,11 @@ class Allowance(Table):
         if speed.depends_on_mass:
             raise InputRefused("give mach: the segment before does not end at a given speed")
         assert self.rating is not None
-        return Span(
-            segment=here.row,
-            march="stand",
+        return here.span(
+            "stand",
             rating=self.rating,
             start_altitude=altitude,
             end_altitude=altitude,
             end_speed=speed,
             extent=self.time,
-            is_reserve=here.is_reserve,
         )

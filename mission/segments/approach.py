@@ -9,15 +9,15 @@ from pydantic import Field
 
 from engine.errors import InputRefused
 from engine.quantities import FOOT, Time
-from engine.reading import Table
 from mission.march.span import Span, SpeedRule
+from mission.segments.base import Segment
 from mission.segments.here import Here
 
 HIGHEST_START = 5000.0 * FOOT  # above the destination; the way down is inside the time
 STALL_MULTIPLE = 1.3  # approach over stall speed; common practice, no source
 
 
-class Approach(Table):
+class Approach(Segment):
     """``drag_factor`` stands for flaps and gear; no distance is credited."""
 
     kind: Literal["approach"]
@@ -39,9 +39,10 @@ class Approach(Table):
                 f"{HIGHEST_START / FOOT:,.0f} ft is allowed; put a descent before it"
             )
         speed = approach_speed(here)
-        span = Span(
-            segment=here.row,
-            march="time",
+        configured = replace(here.configuration, drag_factor=self.drag_factor)
+        span = here.span(
+            "time",
+            configuration=configured,
             rating="take_off",
             start_altitude=altitude,
             end_altitude=altitude,
@@ -49,8 +50,6 @@ class Approach(Table):
             end_speed=speed,
             extent=self.time,
             gains_distance=False,
-            drag_factor=self.drag_factor,
-            is_reserve=here.is_reserve,
         )
         landed = replace(
             here, pressure_altitude=here.destination_elevation, speed=None, on_ground=True

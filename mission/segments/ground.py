@@ -9,14 +9,14 @@ from pydantic import Field
 
 from engine.errors import InputRefused
 from engine.quantities import Time
-from engine.reading import Table
 from mission.march.span import STANDSTILL, Span, SpeedRule
+from mission.segments.base import Segment
 from mission.segments.here import Here
 
 LIFT_OFF_MULTIPLE = 1.2  # lift-off over stall speed; common practice, no source
 
 
-class Taxi(Table):
+class Taxi(Segment):
     """Ground idle for a time."""
 
     kind: Literal["taxi"]
@@ -30,9 +30,8 @@ class Taxi(Table):
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """The span of the taxi."""
         elevation = _elevation(here, "the aircraft is in the air; put an approach before this taxi")
-        span = Span(
-            segment=here.row,
-            march="stand",
+        span = here.span(
+            "stand",
             rating="ground_idle",
             start_altitude=elevation,
             end_altitude=elevation,
@@ -41,7 +40,7 @@ class Taxi(Table):
         return [span], replace(here, pressure_altitude=elevation, speed=None, on_ground=True)
 
 
-class TakeOff(Table):
+class TakeOff(Segment):
     """Roll at take-off rating to 1.2 times the stall speed."""
 
     kind: Literal["take-off"]
@@ -55,9 +54,8 @@ class TakeOff(Table):
         """The span of the roll."""
         elevation = _elevation(here, "the aircraft is in the air already")
         lift_off = SpeedRule("stall", LIFT_OFF_MULTIPLE, here.aircraft.take_off_lift_coefficient)
-        span = Span(
-            segment=here.row,
-            march="roll",
+        span = here.span(
+            "roll",
             rating="take_off",
             start_altitude=elevation,
             end_altitude=elevation,

@@ -10,9 +10,9 @@ from pydantic import Field, model_validator
 
 from engine.atmosphere import flight_condition
 from engine.quantities import FOOT, KNOT, Speed
-from engine.reading import Table
 from mission.airspeeds import crossover_altitude, mach_from_calibrated_airspeed
 from mission.march.span import Span, SpeedRule
+from mission.segments.base import Segment
 from mission.segments.here import Here
 
 TEN_THOUSAND_FEET = 10000.0 * FOOT
@@ -22,7 +22,7 @@ _SAME_MACH = 1e-6
 _TROPOPAUSE, _STRATOSPHERE = 11000.0, 20000.0  # ISO 2533:1975, kinks of temperature
 
 
-class Scheduled(Table):
+class Scheduled(Segment):
     """Speeds of a climb or a descent; with both given the lower one governs."""
 
     calibrated_airspeed: Annotated[Speed, Field(gt=0.0)] | None = None
@@ -31,9 +31,19 @@ class Scheduled(Table):
 
     @model_validator(mode="after")
     def _some_speed(self) -> Self:
-        if self.calibrated_airspeed is None and self.mach is None:
+        if self._needs_schedule and self.calibrated_airspeed is None and self.mach is None:
             raise ValueError("give calibrated_airspeed, mach, or both")
         return self
+
+    @property
+    def _needs_schedule(self) -> bool:
+        return True
+
+    @property
+    def has_schedule(self) -> bool:
+        """Whether any speed of a schedule is given."""
+        given = (self.calibrated_airspeed, self.mach)
+        return given != (None, None) or self.limited_below_10000_ft
 
     def rules(self) -> list[tuple[float, SpeedRule]]:
         """Speed rules upwards, each with the altitude [m] that it holds up to."""
@@ -89,13 +99,19 @@ def lay_schedule(
     end: float,
     rules: list[tuple[float, SpeedRule]],
     rating: str,
+    **given: float,
 ) -> tuple[list[Span], Here]:
-    """Spans from one pressure altitude [m] to another along the rules of :func:`zones`."""
+    """Spans from one pressure altitude [m] to another along the rules of :func:`zones`.
+
+    ``given`` are the path angle [rad] or vertical speed [m/s] of a descent that holds one, and the
+    least rate [m/s] of one that may be slow.
+    """
     low, high = min(start, end), max(start, end)
     pieces: list[tuple[float, float, SpeedRule]] = []
     floor = low
     for ceiling, rule in rules:
-        marks = [m for m in (_TROPOPAUSE, _STRATOSPHERE) if floor < m < min(ceiling, high)]
+        kinks = sorted({_TROPOPAUSE, _STRATOSPHERE, *here.air.kinks})
+        marks = [mark for mark in kinks if floor < mark < min(ceiling, high)]
         for mark in [*marks, min(ceiling, high)]:
             if mark > floor:
                 pieces.append((floor, mark, rule))
@@ -108,15 +124,14 @@ def lay_schedule(
         if last is not None and not is_same_speed(last, rule, begin):
             spans.append(_change_speed(here, begin, last, rule, rating))
         spans.append(
-            Span(
-                segment=here.row,
-                march="altitude",
+            here.span(
+                "altitude",
                 rating=rating,
                 start_altitude=begin,
                 end_altitude=stop,
                 start_speed=rule,
                 end_speed=rule,
-                is_reserve=here.is_reserve,
+                **given,
             )
         )
         last = rule
@@ -127,15 +142,13 @@ def _change_speed(
     here: Here, altitude: float, before: SpeedRule, after: SpeedRule, rating: str
 ) -> Span:
     """Level change between two calibrated airspeeds, part of the climb or descent."""
-    return Span(
-        segment=here.row,
-        march="speed",
+    return here.span(
+        "speed",
         rating=rating,
         start_altitude=altitude,
         end_altitude=altitude,
         start_speed=before,
         end_speed=after,
-        is_reserve=here.is_reserve,
     )
 
 

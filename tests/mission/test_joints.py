@@ -19,8 +19,9 @@ from mission_files import (
 
 import mission.flight
 from engine import load_engine
-from engine.atmosphere import FlightCondition, flight_condition
+from engine.atmosphere import FlightCondition
 from engine.quantities import FOOT, KNOT
+from mission.air import Air
 from mission.aircraft import load_aircraft
 from mission.airspeeds import mach_from_calibrated_airspeed
 from mission.march.joints import Joints, find_joints
@@ -35,14 +36,15 @@ KINK = (
 @pytest.fixture(scope="module")
 def world(tmp_path_factory: pytest.TempPathFactory) -> World:
     plane = load_aircraft(write(tmp_path_factory.mktemp("joints"), "plane", aircraft_content()))
-    return World(plane, load_engine(BYPASS_5), 10.0, 0.0)
+    return World(plane, load_engine(BYPASS_5))
 
 
-def span(start: float, end: float, rating: str = "climb") -> Span:
+def span(start: float, end: float, rating: str = "climb", day: float = 10.0) -> Span:
     rule = SpeedRule("calibrated", 280.0 * KNOT)
     return Span(
         segment=0,
         march="altitude",
+        air=Air((day,)),
         rating=rating,
         start_altitude=start * FOOT,
         end_altitude=end * FOOT,
@@ -51,14 +53,14 @@ def span(start: float, end: float, rating: str = "climb") -> Span:
     )
 
 
-def flight_at(world: World, altitude: float | np.ndarray) -> FlightCondition:
+def flight_at(whole: Span, altitude: float | np.ndarray) -> FlightCondition:
     """On the schedule of :func:`span`."""
-    still = flight_condition(altitude, 0.0, world.temperature_deviation)
+    still = whole.air.condition(altitude)
     return still.with_mach(mach_from_calibrated_airspeed(280.0 * KNOT, still.static_pressure))
 
 
-def limit_at(world: World, rating: str, altitude: float) -> str:
-    state = world.engine.at(flight_at(world, altitude), rating=rating)
+def limit_at(world: World, piece: Span, altitude: float) -> str:
+    state = world.engine.at(flight_at(piece, altitude), rating=piece.rating)
     return str(state.binding_limit_names)
 
 
@@ -77,7 +79,7 @@ def kinks(world: World, piece: Span) -> list[float]:
     """Altitudes where the binding limit changes, found by bisection on a fine scan."""
     found = []
     scan = np.linspace(piece.start_altitude, piece.end_altitude, 121)
-    state = world.engine.at(flight_at(world, scan), rating=piece.rating)
+    state = world.engine.at(flight_at(piece, scan), rating=piece.rating)
     names = state.binding_limit_names
     for low, high, before, after in zip(scan[:-1], scan[1:], names[:-1], names[1:], strict=True):
         if before == after:
@@ -85,7 +87,7 @@ def kinks(world: World, piece: Span) -> list[float]:
         left, right = float(low), float(high)
         while abs(right - left) > 0.02:
             middle = 0.5 * (left + right)
-            if limit_at(world, piece.rating, middle) == before:
+            if limit_at(world, piece, middle) == before:
                 left = middle
             else:
                 right = middle
@@ -106,9 +108,9 @@ def kinks(world: World, piece: Span) -> list[float]:
 def test_every_change_of_the_binding_limit_is_a_joint(
     world: World, engine: str, rating: str, deviation: float
 ) -> None:
-    there = World(world.aircraft, load_engine(PROFILES / f"{engine}.toml"), deviation, 0.0)
+    there = World(world.aircraft, load_engine(PROFILES / f"{engine}.toml"))
     ends = (29000.0, 0.0) if rating == "flight_idle" else (0.0, 29000.0)
-    whole = span(*ends, rating)
+    whole = span(*ends, rating, deviation)
     expected = kinks(there, whole)
     assert expected
     joints = [piece.end_altitude for piece in find_joints(there, [whole]).cut()[:-1]]
@@ -135,7 +137,7 @@ def test_an_engine_without_kinks_leaves_a_climb_whole(world: World, tmp_path: Pa
         )
     )
     whole = span(0.0, 29000.0)
-    assert find_joints(World(world.aircraft, engine, 0.0, 0.0), [whole]).cut() == (whole,)
+    assert find_joints(World(world.aircraft, engine), [whole]).cut() == (whole,)
 
 
 def test_joints_are_what_makes_block_fuel_converge(

@@ -17,11 +17,11 @@ from mission.march.world import World
 
 def test_a_change_of_the_dry_limit_below_reheat_is_a_joint(tmp_path: Path) -> None:
     plane = load_aircraft(write(tmp_path, "plane", aircraft_content()))
-    world = World(plane, engine_from_content(REHEATED, "test.toml"), 10.0, 0.0)
+    world = World(plane, engine_from_content(REHEATED, "test.toml"))
     whole = span(0.0, 29000.0, "maximum_afterburning")
     scan = np.linspace(whole.start_altitude, whole.end_altitude, 8001)
 
-    state = world.engine.at(flight_at(world, scan), rating=whole.rating)
+    state = world.engine.at(flight_at(whole, scan), rating=whole.rating)
 
     changes = np.flatnonzero(np.diff(state.dry_limit))
     assert set(state.binding_limit_names.tolist()) == {"afterburner_temperature"}

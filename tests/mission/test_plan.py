@@ -230,7 +230,7 @@ CRUISE: Content = {"kind": "cruise", "name": "out", "distance": "100 nmi"}
         ),
         ([UP, UP | {"name": "again", "to": "FL300"}], {}, r'segment 2 "again".*not above 35,000'),
         ([UP, DOWN | {"to": "FL370"}], {}, r'segment 2 "descent".*not below 35,000 ft'),
-        ([UP, CRUISE | {"distance": "rest"}], {}, r'segment 2 "out".*needs the mission.s distance'),
+        ([UP, CRUISE | {"distance": "rest"}], {}, r'segment 2 "out".*needs a distance at the top'),
         (
             [UP, CRUISE | {"distance": "rest"}, CRUISE | {"distance": "rest"}],
             {"distance": "800 nmi"},

@@ -62,7 +62,7 @@ def flown(folder: Path, *segments: Content, **changes: Any) -> Flight:
         ),
         ([UP, {"kind": "cruise", "distance": "0 nmi"}], "'0 nmi' is not a distance above zero"),
         ([UP, {"kind": "cruise", "distance": 100}], "100 has no unit"),
-        ([UP, {"kind": "cruise"}], r"segment 2.*distance.*is missing"),
+        ([UP, {"kind": "cruise"}], r"segment 2.*give one of distance \(\"rest\""),
         (
             [UP, {"kind": "cruise", "distance": "100 nmi", "holds": "speed"}],
             "'speed'; allowed: 'altitude and mach'",
