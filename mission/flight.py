@@ -11,6 +11,7 @@ from engine.interface import Engine
 from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
 from mission.coverage import refuse_missing_ratings, refuse_other_day
+from mission.free import solution_of, solve_free
 from mission.fuel_plan import Sums, add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
@@ -22,6 +23,7 @@ from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
 from mission.results import Failure, Flight, ReserveItem
 from mission.segments.choices import Choices
+from mission.solving import Root
 from mission.warnings import warnings_of
 
 Array = NDArray[np.float64]
@@ -41,6 +43,7 @@ class _Solved:
     plan: FlightPlan
     coarse: Marched
     fine: Marched
+    root: Root | None = None
 
 
 def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int = 1) -> Flight:
@@ -73,42 +76,61 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     masses: dict[int, tuple[float, float]] = {}
     choices = Choices()
     written, aircraft = mission.written, world.aircraft
-    guess: Array | None = None
     few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
     coarse: Marched | None = None
+    root: Root | None = None
     for _ in range(_MOST_PLANS):
         whole = lay_out(mission, world, masses, ends, choices)
-        if guess is None:
-            empty = whole.stop_empty_mass
-            guess = np.array([empty + 0.1 * (written.fuel.load or empty)])
         refuse_missing_ratings(mission, whole, world.engine)
         joints = find_joints(world, [*whole.parts.mission, *whole.parts.reserve])
         plan = _with_spans(whole, joints.cut())
-        close = closure(plan, written, aircraft)
         near = coarse if _has_same_spans(coarse, plan) else None
-        coarse = march(world, plan.parts, few, guess, close, near, _COARSE_SETTLED)
+        guess = _first_guess(whole, written) if coarse is None else coarse.stop_mass
+        coarse, root = _march_coarse(world, plan, written, few, guess, near, root)
         closer = joints.cut(_flown(joints, coarse))
         if coarse.is_settled and len(closer) != len(coarse.tracks):
             plan = _with_spans(whole, closer)
-            close = closure(plan, written, aircraft)
-            coarse = march(world, plan.parts, few, coarse.stop_mass, close, None, _COARSE_SETTLED)
+            coarse, root = _march_coarse(world, plan, written, few, coarse.stop_mass, None, root)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
-        ends, guess = found, coarse.stop_mass
-        masses = _masses(coarse)
+        ends, masses = found, _masses(coarse)
         choices.fit(masses)
         if not coarse.is_settled or (moved < _SAME_ALTITUDE and choices.is_at_rest):
             break
     assert coarse is not None
+    close = closure(plan, written, aircraft)
+    free = None if root is None else root.value
     fine = coarse
     if coarse.is_settled:
-        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
+        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse, free=free)
     for _ in range(_MOST_REFINEMENTS):
         if not fine.is_settled or _change_of_fuel(coarse, fine) < _PRECISE:
             break
         coarse, many = fine, 2 * many - 1
-        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse)
-    return _Solved(plan, coarse, fine)
+        fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse, free=free)
+    return _Solved(plan, coarse, fine, root)
+
+
+def _first_guess(plan: FlightPlan, written: MissionFile) -> Array:
+    """Mass [kg] at the stop before anything is known."""
+    empty = plan.stop_empty_mass
+    return np.array([empty + 0.1 * (written.fuel.load or empty)])
+
+
+def _march_coarse(
+    world: World,
+    plan: FlightPlan,
+    written: MissionFile,
+    count: int,
+    stop: Array,
+    near: Marched | None,
+    root: Root | None,
+) -> tuple[Marched, Root | None]:
+    """The plan with few nodes, solved for what is free in it, if anything is."""
+    close = closure(plan, written, world.aircraft)
+    if not written.free:
+        return march(world, plan.parts, count, stop, close, near, _COARSE_SETTLED), None
+    return solve_free(world, plan, written, count, stop, close, near, root)
 
 
 def _change_of_fuel(coarse: Marched, fine: Marched) -> float:
@@ -192,6 +214,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
         ),
         failure=failure,
         fuel=world.engine.fuel,
+        solution=solution_of(written, solved.root),
     )
 
 

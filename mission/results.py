@@ -118,6 +118,26 @@ class Failure:
 
 
 @dataclass(frozen=True)
+class Solution:
+    """What a flight was solved for.
+
+    Attributes
+    ----------
+    name : as the mission marks it
+    value : distance [m] or time [s], by ``unit``
+    unit : "m" or "s"
+    flights : whole flights marched to find it
+    has_answer : False where fuel is short however little is flown
+    """
+
+    name: str
+    value: float
+    unit: str
+    flights: int
+    has_answer: bool
+
+
+@dataclass(frozen=True)
 class Totals:
     """Fuels and masses [kg], times [s], distances [m]; ``integration_error`` [kg] of block fuel."""
 
@@ -154,6 +174,7 @@ class Flight:
     warnings: tuple[str, ...]
     failure: Failure | None
     fuel: Fuel = KEROSENE
+    solution: Solution | None = None
 
     @property
     def carbon_dioxide(self) -> float:

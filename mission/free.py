@@ -1,0 +1,128 @@
+"""A mission with something free in it: how far, or how long, its fuel lets it go."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from mission.fuel_plan import add_up
+from mission.march.span import Span
+from mission.march.sweep import Closure, Marched, march
+from mission.march.world import World
+from mission.mission_file import MissionFile
+from mission.plan import FlightPlan
+from mission.results import Solution
+from mission.solving import TOLERANCE, Root, largest_with_margin
+
+Array = NDArray[np.float64]
+_SETTLED = 1e-9  # of mass: the margin is a small difference of fuels
+
+
+@dataclass(frozen=True)
+class _Asked:
+    """A plan with something free, and how it is marched."""
+
+    world: World
+    plan: FlightPlan
+    written: MissionFile
+    count: int
+    close: Closure
+
+    def fly(self, free: Array, stop: Array, start: Marched | None) -> Marched:
+        """All members at their free values."""
+        return march(
+            self.world, self.plan.parts, self.count, stop, self.close, start, _SETTLED, free
+        )
+
+    def margins(self, flown: Marched) -> Array:
+        """Fuel left over the reserves [kg]; minus infinity where there is no flight."""
+        if not flown.is_settled:
+            return np.full(flown.stop_mass.shape, -np.inf)
+        return flown.stop_mass - np.array(
+            [
+                self.plan.stop_empty_mass
+                + add_up(self.plan, self.written, flown.integrals, m).reserves
+                for m in range(flown.stop_mass.size)
+            ]
+        )
+
+
+def solve_free(
+    world: World,
+    plan: FlightPlan,
+    written: MissionFile,
+    count: int,
+    stop: Array,
+    close: Closure,
+    near: Marched | None,
+    earlier: Root | None,
+) -> tuple[Marched, Root]:
+    """The free value at which the fuel margin is nothing, and the flight there.
+
+    ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike. Fuel margin is closed to 1e-7 of the fuel
+    burnt.
+    """
+    asked = _Asked(world, plan, written, count, close)
+    nothing = np.zeros_like(stop)
+    first = asked.fly(nothing, stop, near)
+    flown = [first]
+    margin = asked.margins(first)
+    least = _least(plan, first)
+    rate = max(sum(_rates(plan, first)), 1e-12)
+    burnt = sum(float(fuel[-1, 0]) for fuel in first.integrals.fuel)
+    guess = least + np.maximum(margin, 0.0) / rate if earlier is None else earlier.value
+
+    def again(free: Array) -> Array:
+        start = flown[-1] if flown[-1].is_settled else first
+        flown.append(asked.fly(free, start.stop_mass, start))
+        return asked.margins(flown[-1])
+
+    tolerance = TOLERANCE * np.maximum(margin + burnt, 1.0)
+    root = largest_with_margin(again, least, guess, tolerance, at_least=margin)
+    return flown[-1], root
+
+
+def _least(plan: FlightPlan, flown: Marched) -> Array:
+    """The least free value: a leg's ground distance without the cruise that takes the rest."""
+    least = np.zeros_like(flown.stop_mass)
+    for leg in plan.parts.free_legs:
+        chosen = [
+            ground[-1]
+            for track, ground in zip(flown.tracks, flown.integrals.ground, strict=True)
+            if track.span.leg == leg and not track.span.takes_rest
+        ]
+        least = np.maximum(least, sum(chosen, np.zeros_like(least)))
+    return least
+
+
+def _rates(plan: FlightPlan, flown: Marched) -> list[float]:
+    """Fuel per free metre or second of each span that stretches, as it begins."""
+    rates = []
+    for track in flown.tracks:
+        if track.nodes is None or not stretches(plan, track.span):
+            continue
+        flow = float(track.nodes.propulsion.fuel_flow[0, 0])
+        pace = float(track.nodes.rate[0, 0])
+        rates.append(flow / max(pace, 1.0) if np.isfinite(pace) else flow)
+    return rates
+
+
+def stretches(plan: FlightPlan, span: Span) -> bool:
+    """Whether a span grows with the free value."""
+    return span.is_free or (span.takes_rest and span.leg in plan.parts.free_legs)
+
+
+def solution_of(written: MissionFile, root: Root | None) -> Solution | None:
+    """What a flight was solved for; None where nothing is free."""
+    if root is None:
+        return None
+    name = written.free[0]
+    return Solution(
+        name=name,
+        value=float(root.value[0]),
+        unit="s" if name.startswith("time") else "m",
+        flights=root.flights,
+        has_answer=bool(root.has_answer[0]),
+    )
