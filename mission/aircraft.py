@@ -50,6 +50,8 @@ class Aircraft:
     assumed: tuple[str, ...] = ()
     stores: Mapping[str, Any] = field(default_factory=dict)
     maximum_load_factor: float = 2.5
+    maximum_pressure_altitude: float = inf
+    external_drag_area: float = 0.0
 
 
 def usable_fuel(aircraft: Aircraft, fuel: Fuel) -> float:

@@ -42,7 +42,9 @@ def drag(
         aircraft.polar, lift_coefficient(aircraft, flight, lift), flight.mach
     )
     area = aircraft.wing_area * aircraft.drag_factor * np.asarray(drag_factor)
-    return dynamic_pressure(flight) * (coefficient * area + np.asarray(drag_area))
+    outside = aircraft.external_drag_area + np.asarray(drag_area)
+    force: Array = dynamic_pressure(flight) * (coefficient * area + outside)
+    return force
 
 
 def stall_mach(

@@ -15,7 +15,14 @@ from mission.march.world import World
 from mission.questions.best_speeds import LONG_RANGE_SHARE, maximum_range_mach, range_about
 from mission.questions.climbing import rate_about, rate_of_climb
 from mission.questions.level_flight import LevelFlight, LevelSpeed, Limit
-from mission.questions.searching import Function, falling_root, first_fall, least_between, pick, vertex
+from mission.questions.searching import (
+    Function,
+    falling_root,
+    first_fall,
+    least_between,
+    pick,
+    vertex,
+)
 from mission.questions.speed_range import speed_range
 
 Array = NDArray[np.float64]

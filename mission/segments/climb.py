@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
@@ -86,5 +85,9 @@ class Climb(Scheduled):
         cruise = next((s for s in here.ahead if isinstance(s, Cruise)), None)
         if cruise is None:
             raise InputRefused('to = "best" is the best level of a cruise, and none follows')
-        at_rest = replace(here, pressure_altitude=None)
-        return best_level(cruise, at_rest, here.row, end=-1)
+        speed = cruise.given_speed()
+        if speed is None and self.mach is not None:
+            speed = SpeedRule("mach", self.mach)
+        if speed is None:
+            raise InputRefused(f'to = "best" needs the mach or speed of cruise "{cruise.name}"')
+        return best_level(cruise, here, speed, here.row, end=-1)

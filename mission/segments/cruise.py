@@ -78,8 +78,8 @@ class Cruise(Segment):
             raise ValueError("give step_levels or step_height, not both")
         if self.step_levels != sorted(set(self.step_levels)):
             raise ValueError("step_levels must rise from one to the next")
-        if self.has_steps and self.time is not None:
-            raise ValueError("steps go with a distance or until_fuel")
+        if self.has_steps and self.distance != "rest" and self.until_fuel is None:
+            raise ValueError('steps go with distance = "rest" or until_fuel')
         return self
 
     @property
@@ -167,7 +167,10 @@ class Cruise(Segment):
                 return here.pressure_altitude
             from mission.segments.levels import best_level  # noqa: PLC0415  needed by few missions
 
-            return best_level(self, here, here.row)
+            speed = self.given_speed()
+            if speed is None:
+                raise InputRefused('pressure_altitude = "best" needs mach or speed')
+            return best_level(self, here, speed, here.row)
         return here.altitude_or(self.pressure_altitude, "a cruise")
 
     def _speed(self, here: Here, altitude: float) -> SpeedRule:
