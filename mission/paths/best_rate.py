@@ -1,0 +1,122 @@
+"""The speed of the greatest steady rate of climb at each pressure altitude, and the path along it.
+
+A steady climb neither gains nor loses speed: specific excess power is its geometric rate of climb,
+at lift equal to weight. The path follows that speed from one altitude to another and speeds up
+level where the best speed jumps; where it would have to give energy away, it says so.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from engine.errors import InputRefused
+from mission.paths.altitude_legs import along, cut_where_short, from_start, to_end
+from mission.paths.climber import Climber
+from mission.paths.corridor import Corridor, corridor_of
+from mission.paths.ends import closed_stop, dead_stop, open_until
+from mission.paths.lines import altitude_lines
+from mission.paths.path import EnergyPath, State, Stop
+from mission.paths.runs import smooth_runs
+from mission.paths.search import Best, Search, best_points, excess_power
+from mission.paths.trace import trace
+
+Array = NDArray[np.float64]
+_BEYOND = 1e-6  # m of altitude, from the last line with a speed to one without
+
+
+@dataclass(frozen=True)
+class BestRate:
+    """The fastest steady climb at some pressure altitudes; arrays of their shape.
+
+    Attributes
+    ----------
+    pressure_altitude : [m]
+    mach : NaN where the bounds leave no speed or the engine has no state
+    rate_of_climb : geometric [m/s], NaN likewise
+    held_by : the name of the bound that the speed is at; empty where at none
+    """
+
+    pressure_altitude: Array
+    mach: Array
+    rate_of_climb: Array
+    held_by: NDArray[np.str_]
+
+
+def best_rate(climber: Climber, pressure_altitude: ArrayLike) -> BestRate:
+    """The fastest steady climb at pressure altitudes [m] of any shape, each looked at alone.
+
+    Raises
+    ------
+    InputRefused
+        for an altitude below the ground or above where the engine or the atmosphere is known.
+    """
+    altitude = np.asarray(pressure_altitude, dtype=np.float64)
+    corridor = corridor_of(climber)
+    for end in (altitude.min(), altitude.max()):
+        corridor.energy_of(float(end), 0.0)
+    lines, flat = altitude_lines(corridor), altitude.ravel()
+    is_open = lines.edges(flat).is_open
+    best = best_points(Search(climber, lines, excess_power), flat[is_open])
+    mach, rate = np.full((2, flat.size), np.nan)
+    mach[is_open] = corridor.flight(flat[is_open], best.speed).mach
+    rate[is_open] = best.excess_power
+    held_by = np.full(flat.size, "", dtype=best.held_by.dtype)
+    held_by[is_open] = best.held_by
+    shape = altitude.shape
+    return BestRate(altitude, mach.reshape(shape), rate.reshape(shape), held_by.reshape(shape))
+
+
+def best_rate_path(climber: Climber, start: State, end: State) -> EnergyPath:
+    """The path of best rate of climb from the altitude of one state to another's.
+
+    From a start slower than the best speed there it speeds up at that altitude; from a faster one
+    it zooms to where the path has that energy. At the end likewise. ``falls`` of the path are
+    where its energy height does not rise.
+
+    Raises
+    ------
+    InputRefused
+        where the end is not above the start in altitude and in energy, or a state is below the
+        ground or above where the engine or the atmosphere is known.
+    """
+    corridor = corridor_of(climber)
+    first, last = (
+        corridor.energy_of(state.pressure_altitude, state.mach) for state in (start, end)
+    )
+    low, high = start.pressure_altitude, end.pressure_altitude
+    if high <= low or last <= first:
+        raise InputRefused(
+            f"the climb from {low:g} m at Mach {start.mach:g} to {high:g} m at Mach {end.mach:g} "
+            "gains no height, or no energy; end it higher or faster"
+        )
+    edge = open_until(corridor.altitude_edges, low, high)
+    if edge is None:
+        return EnergyPath((), _closed(corridor, low), 0.0, 0)
+    search = Search(climber, altitude_lines(corridor), excess_power)
+    found = trace(search, low, edge)
+    stop = _stop(corridor, found.best) if found.best.is_dead else None
+    if stop is None and edge < high:
+        stop = _closed(corridor, edge)
+    legs = along(corridor, smooth_runs(search.lines, found))
+    if legs:
+        legs = from_start(corridor, legs, start)
+        legs = legs if stop else to_end(corridor, legs, end)
+    legs, short = cut_where_short(corridor, legs)
+    return EnergyPath(tuple(legs), short or stop, found.cost, found.best.unanswered)
+
+
+def _closed(corridor: Corridor, altitude: float) -> Stop:
+    """The stop where no speed is allowed from a pressure altitude [m] on."""
+    edges = corridor.altitude_edges(np.array([altitude + _BEYOND]))
+    energy = float(corridor.energy_at(altitude, edges.fast[0]))
+    return closed_stop(corridor, edges, energy, altitude)
+
+
+def _stop(corridor: Corridor, best: Best) -> Stop:
+    """The stop at the last of some points."""
+    altitude = float(best.row[-1])
+    energy = float(corridor.energy_at(altitude, best.speed[-1]))
+    return dead_stop(corridor, best, energy, altitude)

@@ -1,0 +1,238 @@
+"""Where a climb may fly: between its slowest and fastest speed, its lowest and highest altitude.
+
+Everything is tabulated once over pressure altitude, so closely that straight lines between (errors
+of 1e-4 m) are exact enough for any bound. Height is geometric: on a day that is not standard it
+grows with pressure altitude by the ratio of static temperature to the standard one, and is counted
+from pressure altitude 0. Energy height is that height plus ``V^2 / 2g``.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from engine.atmosphere import HIGHEST_PRESSURE_ALTITUDE, FlightCondition
+from engine.errors import InputRefused
+from engine.quantities import STANDARD_GRAVITY
+from mission.airspeeds import energy_height, mach_from_calibrated_airspeed
+from mission.forces import stall_mach
+from mission.paths.climber import Climber
+
+Array = NDArray[np.float64]
+Names = NDArray[np.str_]
+ATMOSPHERE_KINKS = (11000.0, 20000.0)  # m, ISO 2533:1975, where the lapse of temperature changes
+KINK_NAMES = ("tropopause", "where the stratosphere begins to warm")
+_STEP = 10.0  # m
+GROUND, CEILING = "ground elevation", "top of the atmosphere"
+TABLE_ALTITUDE = "pressure altitude in the engine's table"
+TABLE_MACH = "Mach number in the engine's table"
+
+
+@dataclass(frozen=True)
+class Edges:
+    """The two ends of lines of speed: true airspeeds [m/s] and what bounds them, in one shape.
+
+    A line is open where the greatest speed allowed is not below the least one needed.
+    """
+
+    slow: Array
+    fast: Array
+    slow_by: Names
+    fast_by: Names
+    is_open: NDArray[np.bool_]
+
+
+@dataclass(frozen=True)
+class Corridor:
+    """A climber's bounds over pressure altitude, n values from the lowest to the highest.
+
+    Attributes
+    ----------
+    pressure_altitude, height : [m]
+    slowest, fastest : true airspeeds [m/s]
+    slow_by, fast_by : names of what bounds them
+    low_by, high_by : names of what bounds altitude
+    """
+
+    climber: Climber
+    pressure_altitude: Array
+    height: Array
+    slowest: Array
+    fastest: Array
+    slow_by: Names
+    fast_by: Names
+    low_by: str
+    high_by: str
+
+    @cached_property
+    def _slow_energy(self) -> Array:
+        return np.maximum.accumulate(energy_height(self.height, self.slowest))
+
+    @cached_property
+    def _fast_energy(self) -> Array:
+        """Made to rise, by the lower one, where a fast aircraft's would fall with altitude."""
+        energy = energy_height(self.height, self.fastest)
+        return np.minimum.accumulate(energy[::-1])[::-1]
+
+    def height_at(self, pressure_altitude: ArrayLike) -> Array:
+        """Geometric height [m]."""
+        altitude = np.asarray(pressure_altitude, dtype=np.float64)
+        return np.interp(altitude, self.pressure_altitude, self.height)
+
+    def energy_at(self, pressure_altitude: ArrayLike, true_airspeed: ArrayLike) -> Array:
+        """Energy height [m] at a pressure altitude [m] and true airspeed [m/s]."""
+        return energy_height(self.height_at(pressure_altitude), true_airspeed)
+
+    def altitude_at(self, energy: ArrayLike, true_airspeed: ArrayLike) -> Array:
+        """Pressure altitude [m] at an energy height [m] and true airspeed [m/s]."""
+        height = np.asarray(energy, dtype=np.float64) - energy_height(0.0, true_airspeed)
+        return np.interp(height, self.height, self.pressure_altitude)
+
+    def airspeed_at(self, energy: ArrayLike, pressure_altitude: ArrayLike) -> Array:
+        """True airspeed [m/s] at an energy height [m] and pressure altitude [m]; 0 above it."""
+        kinetic = np.asarray(energy) - self.height_at(pressure_altitude)
+        return np.sqrt(2.0 * STANDARD_GRAVITY * np.maximum(kinetic, 0.0))
+
+    def flight(self, pressure_altitude: Array, true_airspeed: Array) -> FlightCondition:
+        """Flight condition at pressure altitudes [m] and true airspeeds [m/s]."""
+        air = self.climber.air(pressure_altitude, np.zeros(np.shape(pressure_altitude)))
+        return air.with_mach(true_airspeed / air.speed_of_sound)
+
+    def energy_of(self, pressure_altitude: float, mach: float) -> float:
+        """Energy height [m] of a state; InputRefused where the altitude is outside the corridor."""
+        low, high = self.pressure_altitude[[0, -1]]
+        if not low - 1e-6 <= pressure_altitude <= high + 1e-6:
+            is_low = pressure_altitude < low
+            raise InputRefused(
+                f"pressure altitude = {pressure_altitude:g} m is {'below' if is_low else 'above'} "
+                f"{low if is_low else high:g} m, the {self.low_by if is_low else self.high_by}"
+            )
+        air = self.climber.air(np.array(pressure_altitude), np.array(mach))
+        return float(self.energy_at(pressure_altitude, air.true_airspeed))
+
+    def lowest(self, energy: ArrayLike) -> Array:
+        """Lowest pressure altitude [m], at which an energy height [m] is flown fastest."""
+        altitude: Array = np.interp(energy, self._fast_energy, self.pressure_altitude)
+        return altitude
+
+    def highest(self, energy: ArrayLike) -> Array:
+        """Highest pressure altitude [m], at which an energy height [m] is flown slowest."""
+        altitude: Array = np.interp(energy, self._slow_energy, self.pressure_altitude)
+        return altitude
+
+    def energy_edges(self, energy: Array) -> Edges:
+        """The ends of lines of constant energy height [m]."""
+        low, high = self.lowest(energy), self.highest(energy)
+        slow, fast = self.airspeed_at(energy, high), self.airspeed_at(energy, low)
+        slow = np.where(energy < self._slow_energy[0], self.slowest[0], slow)
+        fast = np.where(energy > self._fast_energy[-1], self.fastest[-1], fast)
+        return Edges(
+            slow=slow,
+            fast=fast,
+            slow_by=np.where(
+                energy >= self._slow_energy[-1], self.high_by, self._named(self.slow_by, high)
+            ),
+            fast_by=np.where(
+                energy <= self._fast_energy[0], self.low_by, self._named(self.fast_by, low)
+            ),
+            is_open=fast >= slow,
+        )
+
+    def altitude_edges(self, pressure_altitude: Array) -> Edges:
+        """The ends of lines of constant pressure altitude [m]."""
+        slow, fast = (
+            np.interp(pressure_altitude, self.pressure_altitude, speeds)
+            for speeds in (self.slowest, self.fastest)
+        )
+        return Edges(
+            slow=slow,
+            fast=fast,
+            slow_by=self._named(self.slow_by, pressure_altitude),
+            fast_by=self._named(self.fast_by, pressure_altitude),
+            is_open=fast >= slow,
+        )
+
+    def _named(self, names: Names, pressure_altitude: Array) -> Names:
+        here = np.searchsorted(self.pressure_altitude, pressure_altitude)
+        return names[np.minimum(here, names.size - 1)]
+
+
+def corridor_of(climber: Climber) -> Corridor:
+    """The bounds of a climb: ground and atmosphere, the engine's table, stall and top speeds."""
+    low, high = climber.ground_elevation, HIGHEST_PRESSURE_ALTITUDE
+    low_by, high_by = GROUND, CEILING
+    table = climber.engine.coverage
+    if table is not None:
+        bottom, top = table.pressure_altitude
+        low, low_by = (bottom, TABLE_ALTITUDE) if bottom > low else (low, low_by)
+        high, high_by = (top, TABLE_ALTITUDE) if top < high else (high, high_by)
+    altitude, height = _column(climber, low, high)
+    air = climber.air(altitude, np.zeros(altitude.size))
+    slowest, slow_by = _least({k: -v for k, v in _slow_bounds(climber, air).items()})
+    fastest, fast_by = _least(_fast_bounds(climber, air))
+    return Corridor(
+        climber=climber,
+        pressure_altitude=altitude,
+        height=height,
+        slowest=-slowest * air.speed_of_sound,
+        fastest=fastest * air.speed_of_sound,
+        slow_by=slow_by,
+        fast_by=fast_by,
+        low_by=low_by,
+        high_by=high_by,
+    )
+
+
+def _column(climber: Climber, low: float, high: float) -> tuple[Array, Array]:
+    """Pressure altitudes [m] from one to another, and geometric height [m] there."""
+    bottom = min(low, 0.0)
+    count = int(np.ceil((high - bottom) / _STEP)) + 2
+    marks = [mark for mark in (0.0, low, *ATMOSPHERE_KINKS) if bottom <= mark <= high]
+    altitude = np.union1d(np.linspace(bottom, high, count), marks)
+    air = climber.air(altitude, np.zeros(altitude.size))
+    stretch = air.static_temperature / (air.static_temperature - air.temperature_deviation)
+    rise = 0.5 * (stretch[1:] + stretch[:-1]) * np.diff(altitude)
+    height = np.concatenate([[0.0], np.cumsum(rise)])
+    height -= np.interp(0.0, altitude, height)
+    is_inside = altitude >= low
+    return altitude[is_inside], height[is_inside]
+
+
+def _slow_bounds(climber: Climber, air: FlightCondition) -> dict[str, Array]:
+    """Least Mach numbers by name."""
+    aircraft, multiple = climber.aircraft, climber.least_over_stall
+    mass = np.full(air.shape, climber.mass)
+    stall = stall_mach(aircraft, air, mass, aircraft.maximum_lift_coefficient)
+    bounds = {f"{multiple:g} times stall speed": multiple * stall}
+    table = climber.engine.coverage
+    if table is not None:
+        bounds[TABLE_MACH] = np.full(air.shape, table.mach[0])
+    return bounds
+
+
+def _fast_bounds(climber: Climber, air: FlightCondition) -> dict[str, Array]:
+    """Greatest Mach numbers by name."""
+    aircraft = climber.aircraft
+    airspeed = aircraft.maximum_operating_calibrated_airspeed
+    bounds = {
+        "maximum operating Mach number": np.full(air.shape, aircraft.maximum_operating_mach),
+        "maximum operating calibrated airspeed": mach_from_calibrated_airspeed(
+            airspeed, air.static_pressure
+        ),
+    }
+    most = climber.greatest_dynamic_pressure
+    if most is not None:
+        bounds["greatest dynamic pressure"] = np.sqrt(most / (0.7 * air.static_pressure))
+    table = climber.engine.coverage
+    if table is not None:
+        bounds[TABLE_MACH] = np.full(air.shape, table.mach[1])
+    return bounds
+
+
+def _least(bounds: dict[str, Array]) -> tuple[Array, Names]:
+    """The least of some bounds everywhere, and its name."""
+    stacked = np.array(list(bounds.values()))
+    return stacked.min(axis=0), np.array(list(bounds))[stacked.argmin(axis=0)]
