@@ -19,6 +19,7 @@ from mission.march.span import SLOWEST_CLIMB
 from mission.march.sweep import Marched
 from mission.march.throttled import SLOWEST_ACCELERATION
 from mission.march.tracks import Track
+from mission.march.turning import SLOWEST_TURN
 from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
@@ -112,6 +113,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     outcome, rates = _along(tracks)
     slowest = max((track.span.least_rate for track in tracks), default=SLOWEST_CLIMB)
     vertical, acceleration, over_ground = rates["altitude"], rates["speed"], rates["distance"]
+    energy, turning = rates["energy"], rates["turn"]
     steepness = np.degrees(np.abs(steps.flight_path_angle))
     coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
     checks: list[_Check] = [
@@ -125,6 +127,10 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
          "fly lower or slower, carry less, or take a larger engine"),
         (vertical < slowest, f"rate of {log.kind}", vertical, slowest, "m/s",
          "end it lower, change its speeds, or carry less"),
+        (energy < slowest, "specific excess power along the path", energy, slowest, "m/s",
+         "end it lower or slower, or carry less"),
+        (turning < SLOWEST_TURN, "turn rate", turning, SLOWEST_TURN, "rad/s",
+         "turn at a higher rating, lower or faster, or carry less"),
         (steepness > STEEPEST, "path angle", steepness, STEEPEST, "deg",
          "the engine is too strong for these equations: climb at a lower rating"),
         (acceleration < SLOWEST_ACCELERATION, "acceleration", acceleration, SLOWEST_ACCELERATION,
@@ -161,13 +167,16 @@ def _first_steps(log: SegmentLog, checks: list[_Check]) -> Iterator[Failure]:
             yield Failure(log.name, step, name, float(value[step]), at, in_unit, hint)
 
 
+_RATES = ("altitude", "energy", "speed", "distance", "turn")
+
+
 def _along(tracks: list[Track]) -> tuple[NDArray[np.int64], dict[str, Array]]:
     """Outcome of the engine at the steps of a segment, and the rates of its marches by kind.
 
     A rate is positive the way its march goes, infinite where the march has none.
     """
     outcomes: list[NDArray[np.int64]] = []
-    rates: dict[str, list[Array]] = {march: [] for march in ("altitude", "speed", "distance")}
+    rates: dict[str, list[Array]] = {march: [] for march in _RATES}
     for track in tracks:
         if track.nodes is None:
             outcome, rate = np.full(2, Outcome.MET), np.full(2, np.inf)

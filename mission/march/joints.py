@@ -70,7 +70,7 @@ class Joints:
         """Ends of the marches by speed, from the Mach numbers at the ends of the first pieces."""
         ends: dict[int, Ends] = {}
         for row, (i, piece) in enumerate(self._pieces(None)):
-            if i in self.ways and piece.march != "altitude":
+            if i in self.ways and piece.march not in ("altitude", "energy"):
                 begins = ends[i][0] if i in ends else float(first[row])
                 ends[i] = (begins, float(last[row]))
         return ends

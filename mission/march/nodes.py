@@ -40,3 +40,14 @@ def interpolation_matrix(from_count: int, to_count: int) -> Array:
     to_series = np.linalg.inv(chebyshev.chebvander(from_x, from_count - 1))
     matrix: Array = chebyshev.chebvander(to_x, from_count - 1) @ to_series
     return matrix
+
+
+@lru_cache(maxsize=16)
+def differentiation_matrix(count: int) -> Array:
+    """Matrix (count, count) from values at the nodes to slopes there."""
+    x = 2.0 * positions(count) - 1.0
+    to_series = np.linalg.inv(chebyshev.chebvander(x, count - 1))
+    slopes = [chebyshev.chebder(series) for series in np.eye(count)]
+    at_nodes = np.array([chebyshev.chebval(x, series) for series in slopes]).T
+    matrix: Array = 2.0 * at_nodes @ to_series
+    return matrix

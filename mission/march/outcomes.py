@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
 from mission.forces import drag, path_angle_sine
-from mission.march import level, seeking, throttled, turning
+from mission.march import energy, level, seeking, throttled, turning
 from mission.march.asking import join
 from mission.march.span import Propulsion
 from mission.march.tracks import Track
@@ -113,6 +113,11 @@ def set_nodes(world: World, track: Track, rest: Array, free: Array) -> None:
         assert track.drag is not None
         track.nodes = throttled.climb_nodes(
             span, track.flight, mass, propulsion, track.sine, track.drag
+        )
+    elif span.march == "energy":
+        assert track.sine is not None
+        track.nodes, track.sine = energy.energy_nodes(
+            span, world, track.flight, mass, propulsion, dead, track.sine
         )
     elif span.march == "stand":
         track.nodes = throttled.standing_nodes(span, track.flight, mass, propulsion)

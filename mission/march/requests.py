@@ -28,7 +28,7 @@ def request_of(world: World, tracks: list[Track], index: int) -> Request | None:
         return _level_request(world, tracks, index)
     if span.is_static and track.answer is not None:
         return None
-    if span.march == "altitude":
+    if span.march in ("altitude", "energy"):
         return _slope_request(world, track)
     if span.march in ("stand", "turn"):
         return _speed_request(world, track)

@@ -8,13 +8,16 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from itertools import pairwise
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
 from mission.air import STILL_AIR, Air
+
+if TYPE_CHECKING:
+    from mission.paths.path import Piece
 
 Array = NDArray[np.float64]
 SpeedKind = Literal[
@@ -52,7 +55,9 @@ class SpeedRule:
 
 
 STANDSTILL = SpeedRule("standstill")
-March = Literal["altitude", "speed", "distance", "time", "burn", "turn", "roll", "stand", "book"]
+March = Literal[
+    "altitude", "energy", "speed", "distance", "time", "burn", "turn", "roll", "stand", "book"
+]
 SLOWEST_CLIMB = 100.0 * 0.3048 / 60.0  # m/s: 100 ft/min, an operational ceiling's rate of climb
 LEVEL = ("distance", "time", "burn")
 RESERVE_LEG = -1  # of the reserve flight
@@ -82,10 +87,10 @@ class Span:
     Attributes
     ----------
     segment : index of the row of the log it belongs to
-    march : altitude (climb, descent), speed (level acceleration), distance, time, burn or turn
-        (thrust equals drag), roll (take-off), stand
+    march : altitude (climb, descent), energy (climb along a path in energy height), speed (level
+        acceleration), distance, time, burn or turn (thrust equals drag), roll (take-off), stand
         (engine running on the ground), book (an allowance, a release)
-    rating : the rating flown (altitude, speed, roll, stand) or the ceiling of thrust
+    rating : the rating flown (altitude, energy, speed, roll, stand) or the ceiling of thrust
     air : temperature and wind by altitude
     configuration : drag, fuel flow and dead engines
     leg : index of the leg whose distance it counts towards
@@ -98,6 +103,7 @@ class Span:
     load_factor : of a march by turn; None for what thrust, lift and structure allow
     is_by_heading : whether a turn's extent is a change of heading, not a time
     path_angle, vertical_speed : given ones of a descent [rad, m/s, both negative]; else None
+    path : of a march by energy height, from ``start_energy`` to ``end_energy`` [m]
     holds_lift_coefficient : with Mach number held too, a cruise-climb
     lift_coefficient : the one a cruise-climb holds; None for the one at its start
     gains_distance : whether ground distance counts
@@ -125,6 +131,9 @@ class Span:
     is_by_heading: bool = False
     path_angle: float | None = None
     vertical_speed: float | None = None
+    path: Piece | None = None
+    start_energy: float = 0.0
+    end_energy: float = 0.0
     holds_lift_coefficient: bool = False
     lift_coefficient: float | None = None
     gains_distance: bool = True
@@ -142,7 +151,7 @@ class Span:
     @property
     def is_static(self) -> bool:
         """Whether the engine's answer at every node is known before any mass is."""
-        if self.march == "altitude":
+        if self.march in ("altitude", "energy"):
             return not self.is_steered
         if self.march == "speed":
             return not (self.start_speed.depends_on_mass or self.end_speed.depends_on_mass)
@@ -154,7 +163,12 @@ class Span:
         return self.march == "distance" and self.extent is None and not self.is_free
 
     def cut(self, joints: tuple[float, ...]) -> list[Span]:
-        """The span in pieces, at altitudes [m] or Mach numbers in the order flown."""
+        """The span in pieces, at altitudes, energy heights [m] or Mach numbers in their order."""
+        if self.march == "energy":
+            marks = (self.start_energy, *joints, self.end_energy)
+            return [
+                replace(self, start_energy=low, end_energy=high) for low, high in pairwise(marks)
+            ]
         if self.march == "altitude":
             marks = (self.start_altitude, *joints, self.end_altitude)
             return [

@@ -11,6 +11,7 @@ from engine.atmosphere import FlightCondition
 from engine.interface import is_unanswered
 from mission.march import throttled
 from mission.march.asking import Answer
+from mission.march.energy import energy_flight
 from mission.march.nodes import interpolation_matrix
 from mission.march.rules import level_air, mach_at
 from mission.march.span import LEVEL, Nodes, Span, SpeedRule
@@ -78,6 +79,10 @@ def first_track(
         track.flight = throttled.altitude_flight(span, world, count)
         track.mach = np.broadcast_to(track.flight.mach, mass.shape)
         track.sine = np.zeros(mass.shape)
+    elif span.march == "energy":
+        track.flight = energy_flight(span, count)
+        track.mach = np.broadcast_to(track.flight.mach, mass.shape)
+        track.sine = np.zeros(mass.shape)
     elif span.march != "book":
         track.air = level_air(span.start_altitude, span.air, count)
         track.mach = np.array(_guess_mach(span.end_speed, world, track.air, mass, before))
@@ -91,7 +96,7 @@ def refined(track: Track, old: Track, shift: Array) -> Track:
     """
     to_new = interpolation_matrix(len(old.mass), len(track.mass))
     track.mass = to_new @ old.mass + shift
-    if track.span.march != "altitude":
+    if track.span.march not in ("altitude", "energy"):
         track.mach = np.broadcast_to(to_new @ old.mach, track.mass.shape).copy()
         if old.best is not None:
             track.best = np.broadcast_to(to_new @ old.best, track.mass.shape).copy()

@@ -27,7 +27,7 @@ _LEAST_RISE, _LEAST_MACH = 1.0, 1e-3  # m, Mach number: no piece of a span is sh
 class Way:
     """A span, from one value of its march's variable to another, in the order flown.
 
-    ``low`` and ``high`` are altitudes [m] or Mach numbers, as far apart as any mass may have them;
+    ``low`` and ``high`` are altitudes, energy heights [m] or Mach numbers, as far apart as any mass may have them;
     ``surely`` are those between which it flies at every mass; ``least`` is the shortest piece
     worth a cut.
     """
@@ -43,12 +43,16 @@ class Way:
         """Pressure altitude [m] at values of the variable."""
         if self.span.march == "altitude":
             return variable
+        if self.span.path is not None:
+            return self.span.path.at(variable)[0]
         return np.full_like(variable, self.span.start_altitude)
 
     def flights(self, world: World, variable: Array, air: FlightCondition) -> FlightCondition:
         """Flight condition at values of the variable, in the still air of its altitudes."""
         if self.span.march == "altitude":
             return on_schedule(self.span, world, air)
+        if self.span.path is not None:
+            return air.with_mach(self.span.path.at(variable)[1])
         return air.with_mach(variable)
 
 
@@ -57,7 +61,10 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
     found = {}
     for i, span in enumerate(spans):
         way = None
-        if span.march == "altitude" and not span.is_steered:
+        if span.march == "energy":
+            ends = (span.start_energy, span.end_energy)
+            way = Way(span, span.rating, *ends, ends, _LEAST_RISE)
+        elif span.march == "altitude" and not span.is_steered:
             ends = (span.start_altitude, span.end_altitude)
             way = Way(span, span.rating, *ends, ends, _LEAST_RISE)
         elif span.march in ("speed", "roll"):
