@@ -23,6 +23,12 @@ _CAUSES = {
     "approach": "approach and landing",
     "allowance": "allowances",
     "taxi": "taxi",
+    "turn": "turns",
+    "driftdown": "descent",
+    "refuelling": "refuelling",
+    "release": "what leaves and comes aboard",
+    "turnaround": "what leaves and comes aboard",
+    "engine failure": "what leaves and comes aboard",
 }
 
 
@@ -77,6 +83,6 @@ def _whole_trip(
         fuel = mass * -np.expm1(-rate * log.air_distance)
         cause = _CAUSES[log.kind]
         causes[cause] = causes.get(cause, 0.0) + log.fuel - fuel
-        mass -= fuel
+        mass += log.mass_received - log.mass_released - fuel
         breguet += fuel
     return CrossCheck("whole trip", total.trip_fuel, float(breguet), causes)

@@ -40,13 +40,10 @@ class _Asked:
         """Fuel left over the reserves [kg]; minus infinity where there is no flight."""
         if not flown.is_settled:
             return np.full(flown.stop_mass.shape, -np.inf)
-        return flown.stop_mass - np.array(
-            [
-                self.plan.stop_empty_mass
-                + add_up(self.plan, self.written, flown.integrals, m).reserves
-                for m in range(flown.stop_mass.size)
-            ]
-        )
+        members = range(flown.stop_mass.size)
+        sums = [add_up(self.plan, self.written, flown.integrals, m) for m in members]
+        wanted: Array = self.plan.stop_empty_mass + np.array([each.reserves for each in sums])
+        return flown.stop_mass - wanted
 
 
 def solve_free(
@@ -61,8 +58,8 @@ def solve_free(
 ) -> tuple[Marched, Root]:
     """The free value at which the fuel margin is nothing, and the flight there.
 
-    ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike. Fuel margin is closed to 1e-7 of the fuel
-    burnt.
+    ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike. Fuel
+    margin is closed to 1e-7 of the fuel burnt.
     """
     asked = _Asked(world, plan, written, count, close)
     nothing = np.zeros_like(stop)

@@ -11,7 +11,9 @@ from numpy.typing import NDArray
 from engine.quantities import STANDARD_GRAVITY
 from mission.fuel_plan import Sums, trip_rows
 from mission.march.asking import Request, ask
+from mission.march.level import airframe_drag
 from mission.march.nodes import integration_matrix
+from mission.march.outcomes import dead_drag
 from mission.march.sweep import Marched
 from mission.march.tracks import Track
 from mission.march.world import World
@@ -33,7 +35,7 @@ def segment_logs(world: World, plan: FlightPlan, marched: Marched) -> tuple[Segm
         altitude = logs[-1].steps.pressure_altitude[-1] if logs else 0.0
         for index in chosen:
             track, time = marched.tracks[index], marched.integrals.time[index][:, 0]
-            pieces.append(_steps(track, time + clock, rating_thrust.get(index), altitude))
+            pieces.append(_steps(world, track, time + clock, rating_thrust.get(index), altitude))
             clock += float(time[-1])
         steps = _joined(pieces)
         logs.append(
@@ -52,6 +54,7 @@ def segment_logs(world: World, plan: FlightPlan, marched: Marched) -> tuple[Segm
                 mass_received=sum(max(marched.tracks[i].span.received, 0.0) for i in chosen),
                 fuel_left=float(steps.mass[-1]) - row.empty_mass,
                 steps=steps,
+                leg=row.leg,
                 impulse=float(sum(_impulse(marched.tracks[i]) for i in chosen)),
             )
         )
@@ -87,7 +90,9 @@ def _rating_thrusts(world: World, marched: Marched) -> dict[int, Array]:
     }
 
 
-def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: float) -> Steps:
+def _steps(
+    world: World, track: Track, elapsed: Array, rating_thrust: Array | None, altitude: float
+) -> Steps:
     nodes, mass = track.nodes, track.mass[:, 0]
     if nodes is None:
         return _booked_steps(track, elapsed, altitude)
@@ -96,6 +101,11 @@ def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: 
     def column(value: Any) -> Any:
         return np.broadcast_to(value, track.mass.shape)[:, 0]
 
+    resistance = nodes.drag
+    if track.span.march == "turn":
+        resistance = dead_drag(track) + airframe_drag(
+            track.span, world, flight, track.mass * STANDARD_GRAVITY
+        )
     thrust = column(propulsion.thrust)
     return Steps(
         elapsed_time=elapsed,
@@ -110,6 +120,7 @@ def _steps(track: Track, elapsed: Array, rating_thrust: Array | None, altitude: 
         fuel_flow=column(propulsion.fuel_flow),
         flight_path_angle=column(nodes.path_angle),
         rating_thrust=thrust if rating_thrust is None else rating_thrust,
+        level_drag=column(resistance),
         held_by=column(propulsion.held_by),
     )
 
@@ -130,6 +141,7 @@ def _booked_steps(track: Track, elapsed: Array, altitude: float) -> Steps:
         fuel_flow=none,
         flight_path_angle=none,
         rating_thrust=none,
+        level_drag=none,
         held_by=np.array(["", ""]),
     )
 

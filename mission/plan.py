@@ -41,6 +41,7 @@ class Row:
     purpose: Literal["mission", "reserve"]
     empty_mass: float
     tank_capacity: float = 0.0
+    leg: str = ""
 
 
 @dataclass(frozen=True)
@@ -83,7 +84,14 @@ class _Laid:
     def _row(self, name: str, kind: str, purpose: Literal["mission", "reserve"]) -> None:
         aircraft, load = self.here.aircraft, self.here.load
         self.rows.append(
-            Row(name, kind, purpose, load.empty_mass(aircraft), load.tank_capacity(aircraft))
+            Row(
+                name,
+                kind,
+                purpose,
+                load.empty_mass(aircraft),
+                load.tank_capacity(aircraft),
+                self.here.leg.name,
+            )
         )
 
     def bridge(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:

@@ -20,8 +20,9 @@ class Steps:
     """State at the nodes of a segment, both ends included; arrays of one length.
 
     Joints inside a segment stand twice, once for each side. Forces are of the whole aircraft;
-    on the ground lift and drag are zero. ``held_by`` names the limit of the engine that holds its
-    thrust, empty where thrust follows from drag.
+    on the ground lift and drag are zero. ``rating_thrust`` is what the segment's rating gives,
+    ``level_drag`` the drag at one g, which a turn's is above. ``held_by`` names the limit of the
+    engine that holds its thrust, empty where thrust follows from drag.
     """
 
     elapsed_time: Array
@@ -36,6 +37,7 @@ class Steps:
     fuel_flow: Array
     flight_path_angle: Array
     rating_thrust: Array
+    level_drag: Array
     held_by: NDArray[np.str_]
 
     @cached_property
@@ -46,7 +48,10 @@ class Steps:
 
 @dataclass(frozen=True)
 class SegmentLog:
-    """One row of the log: totals [kg, s, m], impulse of thrust [N s], and the steps behind them."""
+    """One row of the log: totals [kg, s, m], impulse of thrust [N s], and the steps behind them.
+
+    ``leg`` is the name of the leg it belongs to, empty where the mission has one alone.
+    """
 
     name: str
     kind: str
@@ -63,6 +68,7 @@ class SegmentLog:
     fuel_left: float
     steps: Steps
     impulse: float = 0.0
+    leg: str = ""
 
 
 @dataclass(frozen=True)

@@ -55,6 +55,7 @@ def steps(
         fuel_flow=fuel_flow * level,
         flight_path_angle=0.0 * level,
         rating_thrust=rating_thrust * level,
+        level_drag=lift / lift_to_drag if lift_to_drag else lift,
         held_by=np.full(len(mass), ""),
     )
 

@@ -38,7 +38,7 @@ class Slopes:
         aircraft = world.aircraft
         mass = np.concatenate([track.mass for track in self.tracks])
         near = np.concatenate([track.sine for track in self.tracks if track.sine is not None])
-        dead = np.concatenate([_dead(track) for track in self.tracks])
+        dead = np.concatenate([dead_drag(track) for track in self.tracks])
         thrust = np.concatenate([_thrust(world, track) for track in self.tracks])
         sine = path_angle_sine(
             aircraft, self.flight, mass, thrust - dead, self.factor, near,
@@ -58,8 +58,9 @@ class Slopes:
             track.sine, track.drag = own_sine, own_drag
 
 
-def _dead(track: Track) -> Array:
-    dead = np.zeros((1, 1)) if track.dead_drag is None else track.dead_drag
+def dead_drag(track: Track) -> Array:
+    """Drag [N] of the engines that do not run, at the nodes."""
+    dead: Array = np.zeros((1, 1)) if track.dead_drag is None else track.dead_drag
     return np.broadcast_to(dead, track.mass.shape)
 
 
@@ -100,7 +101,7 @@ def set_nodes(world: World, track: Track, rest: Array, free: Array) -> None:
         return
     assert track.flight is not None
     propulsion = _propulsion(world, track)
-    dead = _dead(track)
+    dead = dead_drag(track)
     if track.is_level and span.march != "turn":
         extent = _extent(track, rest, free)
         lift = mass * STANDARD_GRAVITY
@@ -136,7 +137,8 @@ def _extent(track: Track, rest: Array, free: Array) -> Array:
         if span.burn is not None:
             return np.atleast_1d(span.burn)
         assert span.end_mass is not None
-        return np.maximum(track.mass[0] - span.end_mass, 0.0)
+        to_burn: Array = np.maximum(track.mass[0] - span.end_mass, 0.0)
+        return to_burn
     left: Array = np.maximum(rest, 0.0)
     return left if span.extent is None else np.atleast_1d(span.extent)
 

@@ -27,9 +27,9 @@ _LEAST_RISE, _LEAST_MACH = 1.0, 1e-3  # m, Mach number: no piece of a span is sh
 class Way:
     """A span, from one value of its march's variable to another, in the order flown.
 
-    ``low`` and ``high`` are altitudes, energy heights [m] or Mach numbers, as far apart as any mass may have them;
-    ``surely`` are those between which it flies at every mass; ``least`` is the shortest piece
-    worth a cut.
+    ``low`` and ``high`` are altitudes, energy heights [m] or Mach numbers, as far apart as any
+    mass may have them; ``surely`` are those between which it flies at every mass; ``least`` is the
+    shortest piece worth a cut.
     """
 
     span: Span

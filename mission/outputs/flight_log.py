@@ -30,6 +30,7 @@ from mission.outputs.segment_rows import Scales, scales_of, segment_tables
 from mission.outputs.setting import Setting
 from mission.outputs.step_rows import step_sections
 from mission.outputs.units import METRIC, Scale, Units, number, signed
+from mission.outputs.way_sections import way_sections
 from mission.outputs.wording import TIMES, day_in_words, hours_and_minutes
 from mission.results import CrossCheck, Flight
 
@@ -64,6 +65,7 @@ def flight_log(
     ]
     if with_steps:
         parts += step_sections(shown, scales, width)
+    parts += way_sections(flight, shown, scales)
     if not on_the_way:
         parts += [_reserves(flight, scales), _totals(flight, scales, width)]
     if flight.cross_check:
@@ -120,7 +122,20 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
         ("block time", f"{minutes} min ({hours_and_minutes(total.block_time)})"),
         ("fuel", verdict),
     ]
+    rows = [*_solved(flight, scales), *rows]
     return Group(Text(), pairs(rows, strong=True), pairs([("doubt     ", _doubt(flight))]))
+
+
+def _solved(flight: Flight, scales: Scales) -> Iterable[tuple[str, str]]:
+    """What was free in the mission, and the most of it that the fuel is enough for."""
+    solution = flight.solution
+    if solution is None:
+        return
+    if solution.unit == "s":
+        found = f"{number(solution.value / 60.0, 1)} min ({hours_and_minutes(solution.value)})"
+    else:
+        found = scales.distance.full(solution.value)
+    yield "solved", f"{solution.name} {found}, as far as the fuel goes ({solution.flights} flights)"
 
 
 def _error(flight: Flight, scales: Scales) -> str:

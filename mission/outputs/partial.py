@@ -46,10 +46,11 @@ def _cut(log: SegmentLog, step: int) -> SegmentLog:
     pieces = {f.name: getattr(log.steps, f.name)[: step + 1] for f in fields(Steps)}
     steps = Steps(**pieces)
     flown = _share_of_distance(log.steps, step)
-    mass = float(steps.mass[-1])
+    mass, received = float(steps.mass[-1]), log.mass_received * _share_of_time(log.steps, step)
     return replace(
         log,
-        fuel=log.mass_start - mass,
+        fuel=log.mass_start - mass + received,
+        mass_received=received,
         time=float(steps.elapsed_time[-1] - steps.elapsed_time[0]),
         ground_distance=flown * log.ground_distance,
         air_distance=flown * log.air_distance,
@@ -57,6 +58,12 @@ def _cut(log: SegmentLog, step: int) -> SegmentLog:
         fuel_left=log.fuel_left + mass - log.mass_end,
         steps=steps,
     )
+
+
+def _share_of_time(steps: Steps, step: int) -> float:
+    """Share of a row's time behind one of its steps."""
+    elapsed = steps.elapsed_time - steps.elapsed_time[0]
+    return float(elapsed[step] / elapsed[-1]) if elapsed[-1] > 0.0 else 0.0
 
 
 def _share_of_distance(steps: Steps, step: int) -> float:

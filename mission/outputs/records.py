@@ -34,6 +34,7 @@ def flight_record(flight: Flight) -> Record:
         "day": day_in_words(flight.day),
         "flown": flight.flown,
         "totals": _totals(flight),
+        "solved": _solution(flight),
         "segments": [_segment(log) for log in flown_segments(flight)],
         "reserves": [
             {"item": r.item, "fuel_kg": r.fuel, "carriage_cost_kg": r.carriage_cost}
@@ -92,12 +93,26 @@ def _totals(flight: Flight) -> Record:
     }
 
 
+def _solution(flight: Flight) -> Record:
+    """What was free, and what was found for it; empty where nothing was."""
+    solution = flight.solution
+    if solution is None:
+        return {}
+    return {
+        "free": solution.name,
+        f"value_{solution.unit}": solution.value,
+        "flights": solution.flights,
+        "has_answer": solution.has_answer,
+    }
+
+
 def _segment(log: SegmentLog) -> Record:
     steps = log.steps
     return {
         "name": log.name,
         "kind": log.kind,
         "purpose": log.purpose,
+        "leg": log.leg,
         "fuel_kg": log.fuel,
         "time_s": log.time,
         "ground_distance_m": log.ground_distance,

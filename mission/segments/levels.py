@@ -98,12 +98,13 @@ def _speeds(flight: LevelFlight, speed: SpeedRule) -> LevelSpeed:
     """Level flight at the speed of a rule."""
     if speed.kind == "mach":
         shape = flight.mass.shape
-        nothing = np.zeros(shape, dtype=np.int64) + Limit.NONE
-        start = np.full((0, *shape), np.nan)
         return flight.speed_at(
-            np.full(shape, speed.value), np.ones(shape, dtype=bool), nothing, np.full(shape, np.nan),
-            start,
-        )  # fmt: skip
+            np.full(shape, speed.value),
+            np.ones(shape, dtype=bool),
+            np.full(shape, Limit.NONE, dtype=np.int64),
+            np.full(shape, np.nan),
+            np.full((0, *shape), np.nan),
+        )
     speeds = speed_range(flight)
     if speed.kind == "least_cost":
         assert speed.value is not None

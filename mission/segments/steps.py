@@ -95,7 +95,7 @@ def _step_masses(
 
 
 def _first_positive(masses: Array, excess: Array) -> float | None:
-    """The greatest mass from which on, getting lighter, an excess is positive for the first time."""
+    """The mass, coming from the heaviest, at which an excess is positive for the first time."""
     is_better = excess >= 0.0
     if not is_better.any():
         return None

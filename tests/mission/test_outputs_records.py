@@ -25,14 +25,14 @@ TOTALS = {
 }  # fmt: skip
 SEGMENT = {
     "name", "kind", "purpose", "fuel_kg", "time_s", "ground_distance_m", "mass_start_kg",
-    "mass_end_kg", "mass_released_kg", "mass_received_kg", "steps", "held_by",
+    "mass_end_kg", "mass_released_kg", "mass_received_kg", "steps", "held_by", "leg",
 }  # fmt: skip
 STEPS = {
     "elapsed_time_s", "pressure_altitude_m", "mach", "mass_kg", "lift_n", "weight_n", "drag_n",
     "thrust_n", "fuel_flow_kg_per_s", "flight_path_angle_rad",
 }  # fmt: skip
 FLIGHT = {
-    "format", "version", "mission", "aircraft", "engine", "fuel", "day", "flown", "totals",
+    "format", "version", "mission", "aircraft", "engine", "fuel", "day", "flown", "totals", "solved",
     "segments", "reserves", "cross_check", "margins", "assumed", "warnings", "failure",
 }  # fmt: skip
 # Cruise at flight level 350 and Mach 0.78 of the engine that all engine tests share.

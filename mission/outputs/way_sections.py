@@ -1,0 +1,117 @@
+"""Sections of the log for what not every mission has: legs, loads that change, turns."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+import numpy as np
+from rich.console import Group
+
+from engine.quantities import STANDARD_GRAVITY
+from mission.outputs.page import Column, ruled_table, section, words
+from mission.outputs.segment_rows import Scales
+from mission.outputs.units import Scale, number
+from mission.results import Flight, SegmentLog
+
+
+def way_sections(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Iterable[Group]:
+    """Those that the rows shown have something for."""
+    found = (_legs(shown, scales), _loads(flight, shown, scales), _turns(shown, scales))
+    return (group for group in found if group is not None)
+
+
+def _legs(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
+    """How far and how long each leg of the mission is, and what it burns."""
+    rows = [log for log in shown if log.purpose == "mission"]
+    names = list(dict.fromkeys(log.leg for log in rows if log.leg))
+    if not names:
+        return None
+    fuel, distance = scales.fuel, scales.distance
+    table = ruled_table(
+        [
+            words("leg"),
+            Column(f"fuel\n{fuel.unit.name}"),
+            Column(f"time\n{scales.units.time.name}"),
+            Column(f"ground\n{distance.unit.name}"),
+            Column(f"air\n{distance.unit.name}"),
+        ]
+    )
+    for name in names:
+        own = [log for log in rows if log.leg == name]
+        table.add_row(
+            name,
+            fuel.bare(sum(log.fuel for log in own)),
+            number(sum(log.time for log in own) / scales.units.time.size, 1),
+            distance.bare(sum(log.ground_distance for log in own)),
+            distance.bare(sum(log.air_distance for log in own)),
+        )
+    return section("Legs", table)
+
+
+def _loads(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
+    """Mass that leaves or comes aboard besides what the engines burn, and that all is counted."""
+    changed = [log for log in shown if log.mass_released or log.mass_received]
+    if not changed:
+        return None
+    mass = Scale.of(
+        scales.units.mass, [max(log.mass_released, log.mass_received) for log in changed]
+    )
+    gross = scales.mass
+    table = ruled_table(
+        [
+            words("segment"),
+            Column(f"released\n{mass.unit.name}"),
+            Column(f"received\n{mass.unit.name}"),
+            Column(f"mass before\n{gross.unit.name}"),
+            Column(f"mass after\n{gross.unit.name}"),
+        ]
+    )
+    for log in changed:
+        table.add_row(
+            log.name,
+            mass.bare(log.mass_released),
+            mass.bare(log.mass_received),
+            gross.bare(log.mass_start),
+            gross.bare(log.mass_end),
+        )
+    return section("What leaves and comes aboard", table)
+
+
+def _turns(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
+    """Load factor, turn rate and radius, and the specific excess power left at one g."""
+    turns = [log for log in shown if log.kind == "turn"]
+    if not turns:
+        return None
+    units = scales.units
+    table = ruled_table(
+        [
+            words("turn"),
+            Column("load factor\nfirst to last"),
+            Column("turn rate\ndeg/s"),
+            Column(f"radius\n{units.distance.name}"),
+            Column("turned\ndeg"),
+            Column(f"excess power\nturning, {units.vertical_speed.name}"),
+            Column(f"excess power\nat 1 g, {units.vertical_speed.name}"),
+        ]
+    )
+    for log in turns:
+        table.add_row(log.name, *_turn_cells(log, scales))
+    return section("Turns", table)
+
+
+def _turn_cells(log: SegmentLog, scales: Scales) -> Iterable[str]:
+    steps = log.steps
+    factor = steps.lift / steps.weight
+    speed = steps.true_airspeed
+    rate = STANDARD_GRAVITY * np.sqrt(np.maximum(factor**2 - 1.0, 0.0)) / speed
+    turned = float(np.degrees(np.trapezoid(rate, steps.elapsed_time)))
+    radius = float(speed[-1] / rate[-1]) if rate[-1] > 0.0 else float("nan")
+    excess = speed * (steps.rating_thrust - steps.drag) / steps.weight
+    yield f"{factor[0]:.2f} to {factor[-1]:.2f}"
+    yield number(float(np.degrees(rate[-1])), 2)
+    yield number(radius / scales.units.distance.size, 2)
+    yield number(turned, 0)
+    yield number(float(excess[-1]) / scales.units.vertical_speed.size, 1)
+    level = steps.level_drag
+    straight = speed * (steps.rating_thrust - level) / steps.weight
+    yield number(float(straight[-1]) / scales.units.vertical_speed.size, 1)
