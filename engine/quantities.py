@@ -15,13 +15,15 @@ from pydantic import BeforeValidator, Field
 if TYPE_CHECKING:
     import pint
 
-# Exact by definition: SI brochure, 9th edition, tables 4 and 8 (nautical mile, hour, tonne);
-# international foot and pound 1959 agreement; standard gravity 9.80665 m/s2 (3rd CGPM, 1901).
+# Exact by definition: SI brochure, 9th edition, tables 4 and 8 (nautical mile, hour, tonne, degree
+# as pi / 180); international foot and pound 1959 agreement; standard gravity 9.80665 m/s2 (3rd
+# CGPM, 1901).
 _DEFINITIONS = """
 meter = [length] = m
 kilogram = [mass] = kg
 second = [time] = s
 kelvin = [temperature] = K
+radian = [angle] = rad
 gram = 0.001 * kg = g
 tonne = 1000 * kg = t
 pound = 0.45359237 * kg = lb
@@ -51,7 +53,6 @@ megawatt = 1000000 * W = MW
 milligram = 0.000001 * kg = mg
 rankine_degree = K / 1.8 = R
 liter = 0.001 * m ** 3 = L
-radian = [] = rad
 degree = 0.017453292519943295 * rad = deg
 """
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from math import pi
+
 import pytest
 
 from engine.quantities import (
@@ -43,6 +45,8 @@ from engine.quantities import (
         ("16 mg/N/s", "specific fuel consumption", 16e-6),
         ("0.6 lb/h/lbf", "specific fuel consumption", 0.6 * 0.45359237 / 3600 / 4.4482216152605),
         ("0.6 1/h", "specific fuel consumption", 0.6 / 3600 / STANDARD_GRAVITY),
+        ("35 deg", "angle", 35.0 * pi / 180.0),
+        ("0.5 rad", "angle", 0.5),
         ("1e3 m", "length", 1000.0),
         (".5 km", "length", 500.0),
     ],
@@ -74,6 +78,7 @@ def test_every_kind_shows_an_example_that_it_reads(kind: str) -> None:
         ("FL3500", "altitude", "is not a number with a unit|is not a unit known here"),
         ("FL350", "length", "is not a number with a unit"),
         ("1500 C", "absolute temperature", "'C' is not a unit known here.*1500 K"),
+        ("25 m/m", "angle", "'m/m' is not a unit of angle.*25 deg"),
         ("35000", "altitude", "'35000' is not a number with a unit"),
         ("", "mass", "'' is not a number with a unit"),
         ("ft", "altitude", "'ft' is not a number with a unit"),
