@@ -1,22 +1,35 @@
-"""The aircraft: what an engineer writes about it, and the plain record the physics works on."""
+"""The aircraft: the plain record that the physics works on, and how it comes from a file."""
 
 from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
-from math import inf, pi
+from math import inf
 from pathlib import Path
-from typing import Annotated, Any, Literal
-
-from pydantic import Field, model_validator
+from typing import Any, Literal
 
 from engine.fuels import Fuel
-from engine.quantities import Area, Mass, Speed, Volume
-from engine.reading import Table, check, defaults_used, read_toml
-from mission.aerodynamics import DragRise, Polar
+from engine.reading import check, defaults_used, read_toml
+from mission.aerodynamics import LEFT_OUT, BuffetOnset
+from mission.aircraft_file import AircraftFile, StoreTable, file_model
+from mission.polars.interface import Polar
 
-PositiveMass = Annotated[Mass, Field(gt=0.0)]
-Factor = Annotated[float, Field(gt=0.0, le=10.0, allow_inf_nan=False)]
+# Manoeuvre to initial buffet in cruise: 14 CFR 25.251(e) and its guidance, from memory.
+_BUFFET_LOAD_FACTOR = 1.3
+
+
+@dataclass(frozen=True)
+class Store:
+    """One kind of external store: mass of one, empty [kg], what one adds in drag area [m2].
+
+    ``fuel_capacity`` [kg] is that of one, 0 where it is no tank; ``most`` is how many may hang.
+    """
+
+    name: str
+    mass: float
+    drag_area: float
+    fuel_capacity: float
+    most: int
 
 
 @dataclass(frozen=True)
@@ -25,6 +38,10 @@ class Aircraft:
 
     ``tank_capacity`` [kg] and ``tank_volume`` [m3] bound all that the tanks hold, infinite where
     the file does not say; ``unusable_fuel`` rides along on top of operating empty mass and payload.
+    Drag increments are zero-lift drag coefficients on wing area. Limits of dynamic pressure [Pa]
+    and pressure altitude [m], and the largest fan or nacelle that fits, ``fan_diameter_clearance``
+    [m], are infinite where the file does not say; buffet onset is None there.
+    ``external_drag_area`` [m2] is of what hangs outside on top of what a flight adds.
     """
 
     name: str
@@ -47,11 +64,18 @@ class Aircraft:
     maximum_operating_mach: float
     maximum_operating_calibrated_airspeed: float
     reference_engine: str
-    assumed: tuple[str, ...] = ()
-    stores: Mapping[str, Any] = field(default_factory=dict)
+    gear_drag_increment: float = 0.0
+    take_off_flaps_drag_increment: float = 0.0
+    approach_flaps_drag_increment: float = 0.0
+    stores: Mapping[str, Store] = field(default_factory=dict, hash=False)
     maximum_load_factor: float = 2.5
+    maximum_dynamic_pressure: float = inf
     maximum_pressure_altitude: float = inf
+    buffet_onset: BuffetOnset | None = None
+    buffet_load_factor: float = _BUFFET_LOAD_FACTOR
+    fan_diameter_clearance: float = inf
     external_drag_area: float = 0.0
+    assumed: tuple[str, ...] = ()
 
 
 def usable_fuel(aircraft: Aircraft, fuel: Fuel) -> float:
@@ -66,114 +90,21 @@ def governing_tank_limit(aircraft: Aircraft, fuel: Fuel) -> Literal["capacity", 
     return "volume" if is_by_volume else "capacity"
 
 
-class MassesTable(Table):
-    operating_empty: PositiveMass
-    maximum_zero_fuel: PositiveMass
-    maximum_ramp: PositiveMass | None = None
-    maximum_take_off: PositiveMass
-    maximum_landing: PositiveMass
-
-
-class FuelTanksTable(Table):
-    """What the tanks hold at most: a mass, a volume, or both, of which the lesser governs."""
-
-    capacity: PositiveMass | None = None
-    volume: Annotated[Volume, Field(gt=0.0)] | None = None
-    unusable: Annotated[Mass, Field(ge=0.0)] = 0.0
-
-    @model_validator(mode="after")
-    def _some_bound(self) -> FuelTanksTable:
-        if self.capacity is None and self.volume is None:
-            raise ValueError('give capacity = "9 t", or volume = "11000 L", or both')
-        if self.capacity is not None and self.unusable >= self.capacity:
-            raise ValueError("unusable is not below capacity")
-        return self
-
-
-class DragRiseTable(Table):
-    drag_divergence_mach: Annotated[float, Field(gt=0.3, lt=1.2)]
-    at_lift_coefficient: Annotated[float, Field(ge=0.0, le=1.5)] = 0.5
-    fall_with_lift_coefficient: Annotated[float, Field(ge=0.0, le=1.0)] = 0.1
-
-
-class DragPolarTable(Table):
-    zero_lift_drag_coefficient: Annotated[float, Field(gt=0.0, le=0.5)]
-    induced_drag_factor: Annotated[float, Field(gt=0.0, le=1.0)] | None = None
-    oswald_efficiency: Annotated[float, Field(gt=0.2, le=1.2)] | None = None
-    aspect_ratio: Annotated[float, Field(gt=0.3, le=60.0)] | None = None
-    least_drag_lift_coefficient: Annotated[float, Field(ge=-0.5, le=1.0)] = 0.0
-    drag_rise: DragRiseTable | None = None
-
-    @model_validator(mode="after")
-    def _one_induced_drag(self) -> DragPolarTable:
-        pair = (self.oswald_efficiency, self.aspect_ratio)
-        by_pair = None not in pair
-        if (self.induced_drag_factor is None) != by_pair or (not by_pair and pair != (None, None)):
-            raise ValueError(
-                "give either induced_drag_factor, or oswald_efficiency with aspect_ratio"
-            )
-        return self
-
-
-class LimitsTable(Table):
-    maximum_lift_coefficient: Annotated[float, Field(gt=0.2, le=5.0)]
-    take_off_lift_coefficient: Annotated[float, Field(gt=0.2, le=5.0)] | None = None
-    approach_lift_coefficient: Annotated[float, Field(gt=0.2, le=5.0)] | None = None
-    maximum_operating_mach: Annotated[float, Field(gt=0.1, le=3.0)]
-    maximum_operating_calibrated_airspeed: Annotated[Speed, Field(gt=10.0)]
-
-
-class AircraftFile(Table):
-    """An aircraft file."""
-
-    name: str
-    note: str = ""
-    engine_count: Annotated[int, Field(ge=1, le=12)]
-    reference_engine: str = ""
-    wing_area: Annotated[Area, Field(gt=0.0)]
-    masses: MassesTable
-    fuel_tanks: FuelTanksTable
-    drag_polar: DragPolarTable
-    limits: LimitsTable
-    drag_factor: Factor = 1.0
-    fuel_flow_factor: Factor = 1.0
-
-    @model_validator(mode="after")
-    def _masses_in_order(self) -> AircraftFile:
-        masses = self.masses
-        if masses.operating_empty > masses.maximum_zero_fuel:
-            raise ValueError("masses.operating_empty is above masses.maximum_zero_fuel")
-        if masses.maximum_zero_fuel > masses.maximum_take_off:
-            raise ValueError("masses.maximum_zero_fuel is above masses.maximum_take_off")
-        if masses.maximum_ramp is not None and masses.maximum_ramp < masses.maximum_take_off:
-            raise ValueError("masses.maximum_ramp is below masses.maximum_take_off")
-        if masses.maximum_landing > masses.maximum_take_off:
-            raise ValueError("masses.maximum_landing is above masses.maximum_take_off")
-        return self
-
-
 def load_aircraft(path: str | Path) -> Aircraft:
     """Read an aircraft file; :class:`engine.errors.InputRefused` names file, key and value."""
     where = Path(path)
-    written = check(read_toml(where), AircraftFile, str(where))
-    masses, polar, limits = written.masses, written.drag_polar, written.limits
-    tanks = written.fuel_tanks
-    factor = polar.induced_drag_factor
-    if factor is None:
-        assert polar.oswald_efficiency is not None
-        assert polar.aspect_ratio is not None
-        factor = 1.0 / (pi * polar.oswald_efficiency * polar.aspect_ratio)
-    rise = polar.drag_rise
+    return aircraft_from_content(read_toml(where), str(where))
+
+
+def aircraft_from_content(content: dict[str, Any], where: str) -> Aircraft:
+    """The same from the content of a file, ``where`` naming it in a refusal.
+
+    A CSV that the content names is looked for beside ``where``.
+    """
+    written = check(content, file_model(content), where)
+    masses, tanks, limits = written.masses, written.fuel_tanks, written.limits
+    increments, room = written.drag_increments, written.installation
     clean = limits.maximum_lift_coefficient
-    assumed = defaults_used(written)
-    for name, value in (
-        ("limits.take_off_lift_coefficient", limits.take_off_lift_coefficient),
-        ("limits.approach_lift_coefficient", limits.approach_lift_coefficient),
-    ):
-        if value is None:
-            assumed.append(f"{name} = {clean} (as clean)")
-    if masses.maximum_ramp is None:
-        assumed.append("masses.maximum_ramp = maximum_take_off")
     return Aircraft(
         name=written.name,
         operating_empty_mass=masses.operating_empty,
@@ -185,12 +116,7 @@ def load_aircraft(path: str | Path) -> Aircraft:
         tank_volume=tanks.volume or inf,
         unusable_fuel=tanks.unusable,
         wing_area=written.wing_area,
-        polar=Polar(
-            polar.zero_lift_drag_coefficient,
-            factor,
-            polar.least_drag_lift_coefficient,
-            None if rise is None else DragRise(**rise.model_dump()),
-        ),
+        polar=written.drag_polar.polar(Path(where).parent),
         drag_factor=written.drag_factor,
         fuel_flow_factor=written.fuel_flow_factor,
         maximum_lift_coefficient=clean,
@@ -200,5 +126,54 @@ def load_aircraft(path: str | Path) -> Aircraft:
         maximum_operating_mach=limits.maximum_operating_mach,
         maximum_operating_calibrated_airspeed=limits.maximum_operating_calibrated_airspeed,
         reference_engine=written.reference_engine,
-        assumed=tuple(assumed),
+        gear_drag_increment=increments.gear if increments else 0.0,
+        take_off_flaps_drag_increment=increments.take_off_flaps if increments else 0.0,
+        approach_flaps_drag_increment=increments.approach_flaps if increments else 0.0,
+        stores={name: _store(name, s, written.wing_area) for name, s in written.stores.items()},
+        maximum_load_factor=limits.maximum_load_factor,
+        maximum_dynamic_pressure=limits.maximum_dynamic_pressure or inf,
+        maximum_pressure_altitude=_or_none(limits.maximum_pressure_altitude),
+        buffet_onset=_buffet_onset(written),
+        buffet_load_factor=limits.buffet_load_factor or _BUFFET_LOAD_FACTOR,
+        fan_diameter_clearance=room.fan_diameter_clearance if room else inf,
+        assumed=tuple(_assumed(written)),
     )
+
+
+def _or_none(limit: float | None) -> float:
+    return inf if limit is None else limit
+
+
+def _store(name: str, written: StoreTable, wing_area: float) -> Store:
+    area = written.drag_area
+    if area is None:
+        assert written.drag_coefficient is not None
+        area = written.drag_coefficient * wing_area
+    return Store(name, written.mass, area, written.fuel_capacity, written.most)
+
+
+def _buffet_onset(written: AircraftFile) -> BuffetOnset | None:
+    buffet = written.limits.buffet
+    if buffet is None:
+        return None
+    return BuffetOnset(tuple(buffet.machs), tuple(buffet.lift_coefficients))
+
+
+def _assumed(written: AircraftFile) -> list[str]:
+    """Values that the file did not state, and what no file can state."""
+    limits, clean = written.limits, written.limits.maximum_lift_coefficient
+    lines = defaults_used(written)
+    lines += [
+        f"limits.{name} = {clean} (as clean)"
+        for name in ("take_off_lift_coefficient", "approach_lift_coefficient")
+        if getattr(limits, name) is None
+    ]
+    if limits.buffet is not None and limits.buffet_load_factor is None:
+        lines.append(f"limits.buffet_load_factor = {_BUFFET_LOAD_FACTOR}")
+    if written.drag_increments is None:
+        lines.append("drag_increments = 0.0")
+    if written.masses.maximum_ramp is None:
+        lines.append("masses.maximum_ramp = maximum_take_off")
+    for name, store in written.stores.items():
+        lines += defaults_used(store, f"stores.{name}.")
+    return [*lines, LEFT_OUT]

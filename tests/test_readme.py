@@ -9,7 +9,7 @@ from pathlib import Path
 import pytest
 
 from engine.options.loading import engine_from_content
-from mission.aircraft import AircraftFile
+from mission.aircraft import aircraft_from_content
 from mission.library import find
 from mission.mission_file import mission_from_content
 
@@ -52,7 +52,7 @@ def test_the_excerpt_is_real_output(
 
 def test_the_aircraft_and_the_mission_can_be_copied() -> None:
     aircraft, _, mission = toml_blocks()
-    AircraftFile.model_validate(tomllib.loads(aircraft))
+    aircraft_from_content(tomllib.loads(aircraft), "README.md")
     mission_from_content(tomllib.loads(mission), "README.md")
 
 

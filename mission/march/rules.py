@@ -47,7 +47,7 @@ def _first_guess(rule: SpeedRule, aircraft: Aircraft, air: FlightCondition, mass
     slow, fast = hold_bounds(aircraft, air, mass)
     if rule.kind == "maximum_level":
         return np.maximum(slow, _FIRST_SHARE * fast)
-    best = best_lift_coefficient(aircraft.polar)
+    best = float(best_lift_coefficient(aircraft.polar))
     share = 1.0 if rule.kind == "least_fuel" else _RANGE_SHARE
     return np.clip(stall_mach(aircraft, air, mass, share * best), slow, fast)
 

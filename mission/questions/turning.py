@@ -8,10 +8,11 @@ Aircraft and Airship Design, vol. I, table 3.2; D. P. Raymer, Aircraft Design, c
 from __future__ import annotations
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
+from mission.aerodynamics import least_drag_lift_coefficient
 from mission.aircraft import Aircraft
 from mission.forces import drag, dynamic_pressure
 from mission.questions.searching import falling_root
@@ -20,10 +21,10 @@ Array = NDArray[np.float64]
 
 
 def lift_load_factor(
-    aircraft: Aircraft, flight: FlightCondition, mass: Array, coefficient: float
+    aircraft: Aircraft, flight: FlightCondition, mass: Array, coefficient: ArrayLike
 ) -> Array:
     """Load factor at which a mass [kg] takes a lift coefficient."""
-    force = coefficient * dynamic_pressure(flight) * aircraft.wing_area
+    force = np.asarray(coefficient) * dynamic_pressure(flight) * aircraft.wing_area
     return force / (mass * STANDARD_GRAVITY)
 
 
@@ -41,10 +42,10 @@ def sustained_load_factor(
     def surplus(load_factor: Array) -> Array:
         return thrust / drag(aircraft, flight, load_factor * weight) - 1.0
 
-    least = aircraft.polar.least_drag_lift_coefficient
+    least = least_drag_lift_coefficient(aircraft.polar, flight.mach)
     low, high = (
         np.broadcast_to(lift_load_factor(aircraft, flight, mass, coefficient), shape)
-        for coefficient in (max(least, 0.0), aircraft.maximum_lift_coefficient)
+        for coefficient in (np.maximum(least, 0.0), aircraft.maximum_lift_coefficient)
     )
     found = falling_root(surplus, low, high)
     found = np.where(surplus(high[None])[0] >= 0.0, high, found)

@@ -2,17 +2,26 @@
 
 from __future__ import annotations
 
-from math import pi, sqrt
+import pickle
+from math import inf, pi, sqrt
 from pathlib import Path
 
+import numpy as np
 import pytest
 from mission_files import Content, aircraft_content, write
 
 from engine.errors import InputRefused
 from engine.fuels import FUELS, KEROSENE
 from engine.quantities import KNOT
-from mission.aerodynamics import best_lift_coefficient, drag_coefficient
-from mission.aircraft import Aircraft, governing_tank_limit, load_aircraft, usable_fuel
+from mission.aerodynamics import (
+    LEFT_OUT,
+    best_lift_coefficient,
+    buffet_lift_coefficient,
+    buffet_mach_bounds,
+    drag_coefficient,
+)
+from mission.aircraft import Aircraft, Store, governing_tank_limit, load_aircraft, usable_fuel
+from mission.polars.parabola import Parabola
 
 
 def loaded(folder: Path, content: Content) -> Aircraft:
@@ -51,6 +60,7 @@ def test_tanks_hold_the_lesser_of_a_mass_and_a_volume(
 def test_induced_drag_from_oswald_efficiency(tmp_path: Path) -> None:
     polar = {"induced_drag_factor": None, "oswald_efficiency": 0.8, "aspect_ratio": 9.5}
     plane = loaded(tmp_path, aircraft_content(drag_polar=polar))
+    assert isinstance(plane.polar, Parabola)
     assert plane.polar.induced_drag_factor == pytest.approx(1.0 / (pi * 0.8 * 9.5), rel=1e-12)
 
 
@@ -83,6 +93,93 @@ def test_what_is_not_said_is_listed(tmp_path: Path) -> None:
         "drag_polar.least_drag_lift_coefficient = 0.0",
     ):
         assert expected in said
+
+
+BUFFET = {"machs": [0.3, 0.7, 0.8], "lift_coefficients": [1.2, 0.9, 0.7]}
+TANK = {"mass": "120 kg", "drag_area": "0.02 m**2", "fuel_capacity": "450 kg", "most": 2}
+CAMERA = {"mass": "80 kg", "drag_coefficient": 0.001}
+
+
+def test_increments_stores_and_room_come_in_si(tmp_path: Path) -> None:
+    plane = loaded(
+        tmp_path,
+        aircraft_content(
+            drag_increments={"gear": 0.02, "take_off_flaps": 0.011, "approach_flaps": 0.04},
+            stores={"drop_tank": TANK, "camera_pod": CAMERA},
+            installation={"fan_diameter_clearance": "190 mm"},
+        ),
+    )
+    assert plane.gear_drag_increment == 0.02
+    assert plane.take_off_flaps_drag_increment == 0.011
+    assert plane.approach_flaps_drag_increment == 0.04
+    assert plane.fan_diameter_clearance == pytest.approx(0.19)
+    assert dict(plane.stores) == {
+        "drop_tank": Store("drop_tank", 120.0, 0.02, 450.0, 2),
+        "camera_pod": Store("camera_pod", 80.0, 0.001 * 62.0, 0.0, 1),
+    }
+    said = "\n".join(plane.assumed)
+    assert "stores.camera_pod.fuel_capacity = 0.0" in said
+    assert "stores.camera_pod.most = 1" in said
+    assert "stores.drop_tank" not in said
+    assert "drag_increments" not in said
+
+
+def test_limits_come_in_si(tmp_path: Path) -> None:
+    plane = loaded(
+        tmp_path,
+        aircraft_content(
+            limits={
+                "maximum_load_factor": 7.3,
+                "maximum_dynamic_pressure": "40 kPa",
+                "maximum_pressure_altitude": "FL410",
+                "buffet": BUFFET,
+            }
+        ),
+    )
+    assert plane.maximum_load_factor == 7.3
+    assert plane.maximum_dynamic_pressure == 40000.0
+    assert plane.maximum_pressure_altitude == pytest.approx(41000.0 * 0.3048)
+    assert plane.buffet_load_factor == 1.3
+    assert "limits.buffet_load_factor = 1.3" in plane.assumed
+    other = aircraft_content(limits={"buffet": BUFFET, "buffet_load_factor": 1.5})
+    assert loaded(tmp_path, other).buffet_load_factor == 1.5
+
+
+def test_without_limits_nothing_is_bounded(tmp_path: Path) -> None:
+    plane = loaded(tmp_path, aircraft_content())
+    assert plane.maximum_dynamic_pressure == plane.maximum_pressure_altitude == inf
+    assert plane.fan_diameter_clearance == inf
+    assert dict(plane.stores) == {}
+    assert plane.gear_drag_increment == 0.0
+    assert buffet_mach_bounds(plane) is None
+    assert buffet_lift_coefficient(plane, 0.7) == inf
+    assert buffet_lift_coefficient(plane, np.full((2, 3), 0.7)).tolist() == [[inf] * 3] * 2
+    said = "\n".join(plane.assumed)
+    assert "limits.maximum_load_factor = 2.5" in said
+    assert "drag_increments = 0.0" in said
+    assert "buffet" not in said
+
+
+def test_buffet_begins_on_straight_lines_held_at_the_ends(tmp_path: Path) -> None:
+    plane = loaded(tmp_path, aircraft_content(limits={"buffet": BUFFET}))
+    machs = [[0.0, 0.3, 0.5], [0.75, 0.8, 0.9]]
+    onset = buffet_lift_coefficient(plane, machs)
+    assert onset == pytest.approx(np.array([[1.2, 1.2, 1.05], [0.8, 0.7, 0.7]]), rel=1e-14)
+    assert buffet_mach_bounds(plane) == (0.0, 0.8)
+
+
+def test_what_no_file_can_say_is_said(tmp_path: Path) -> None:
+    assert loaded(tmp_path, aircraft_content()).assumed[-1] == LEFT_OUT
+    assert "Reynolds number" in LEFT_OUT
+    assert "trim" in LEFT_OUT
+
+
+def test_an_aircraft_reaches_a_worker_whole(tmp_path: Path) -> None:
+    content = aircraft_content(stores={"tank": TANK}, limits={"buffet": BUFFET})
+    plane = loaded(tmp_path, content)
+    again = pickle.loads(pickle.dumps(plane))
+    assert again == plane
+    assert hash(again) == hash(plane)
 
 
 def test_nothing_is_listed_that_is_said(tmp_path: Path) -> None:
@@ -126,6 +223,44 @@ def test_nothing_is_listed_that_is_said(tmp_path: Path) -> None:
         ({"engine_count": 0}, r"engine_count.*0"),
         ({"drag_factor": float("nan")}, r"drag_factor.*nan"),
         ({"limits": {"maximum_operating_mach": "0.8"}}, r"maximum_operating_mach.*'0\.8'"),
+        ({"drag_increments": {"gear": -0.01}}, r"drag_increments\.gear: = -0\.01; it should be"),
+        (
+            {"drag_increments": {"gears": 0.01}},
+            r"drag_increments\.gears: unknown key; did you mean",
+        ),
+        ({"stores": {"tank": {"mass": "9 kg"}}}, r"stores\.tank: give either drag_area = "),
+        (
+            {"stores": {"tank": TANK | {"drag_coefficient": 0.001}}},
+            r"stores\.tank: give either drag_area = .*, or drag_coefficient on wing area",
+        ),
+        ({"stores": {"tank": TANK | {"mass": 9}}}, r"stores\.tank\.mass: 9 has no unit"),
+        ({"stores": {"tank": TANK | {"most": 0}}}, r"stores\.tank\.most: = 0; it should be"),
+        (
+            {"stores": {"tank": TANK | {"drag_aera": "1 m**2"}}},
+            r"stores\.tank\.drag_aera: unknown key; did you mean drag_area\?",
+        ),
+        ({"stores": {"tank": 3}}, r"stores\.tank: = 3; a table belongs here"),
+        (
+            {"limits": {"maximum_dynamic_pressure": 40000}},
+            r"maximum_dynamic_pressure: 40000 has no",
+        ),
+        ({"limits": {"maximum_load_factor": 0.9}}, r"maximum_load_factor: = 0\.9; it should be"),
+        (
+            {"limits": {"buffet_load_factor": 1.3}},
+            "limits: buffet_load_factor has nothing to act on: give buffet too",
+        ),
+        (
+            {"limits": {"buffet": BUFFET | {"machs": [0.3, 0.8, 0.7]}}},
+            r"limits\.buffet: machs has to rise from entry to entry: 0\.7 follows 0\.8",
+        ),
+        (
+            {"limits": {"buffet": BUFFET | {"lift_coefficients": [1.2, 0.9]}}},
+            r"limits\.buffet: lift_coefficients has 2 entries where machs has 3",
+        ),
+        (
+            {"installation": {"fan_diameter_clearance": "1.9 kg"}},
+            r"installation\.fan_diameter_clearance: 'kg' is not a unit of length",
+        ),
     ],
 )
 def test_refusals_name_the_file_and_the_key(tmp_path: Path, changes: Content, match: str) -> None:
