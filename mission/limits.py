@@ -12,6 +12,7 @@ from engine.interface import Outcome, is_unanswered
 from engine.quantities import FOOT
 from mission.aircraft import Aircraft, governing_tank_limit, usable_fuel
 from mission.airspeeds import calibrated_airspeed
+from mission.boundaries import passed_boundaries
 from mission.coverage import outside
 from mission.forces import STEEPEST
 from mission.march.level import SLOWEST_GROUND_SPEED
@@ -39,9 +40,12 @@ def _lift_limits(aircraft: Aircraft, log: SegmentLog) -> Array:
         aircraft.take_off_lift_coefficient,
         aircraft.approach_lift_coefficient,
     )
+    return np.where(_has_flaps(log), with_flaps, aircraft.maximum_lift_coefficient)
+
+
+def _has_flaps(log: SegmentLog) -> NDArray[np.bool_]:
     is_low = log.steps.pressure_altitude < _FLAPS_BELOW
-    has_flaps = (is_low & (log.kind in ("take-off", "acceleration"))) | (log.kind == "approach")
-    return np.where(has_flaps, with_flaps, aircraft.maximum_lift_coefficient)
+    return (is_low & (log.kind in ("take-off", "acceleration"))) | (log.kind == "approach")
 
 
 def _lift_coefficients(aircraft: Aircraft, steps: Steps) -> Array:
@@ -137,6 +141,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
          "m/s2", "lower the speed to reach, or carry less"),
         (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
          "fly faster or lower, or carry less"),
+        *passed_boundaries(aircraft, steps, coefficient, ~_has_flaps(log)),
     ]  # fmt: skip
     return _first_steps(log, checks)
 
