@@ -12,7 +12,7 @@ from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
 from mission.coverage import refuse_missing_ratings, refuse_other_day
 from mission.free import solution_of, solve_free
-from mission.fuel_plan import Sums, add_up, closure, tank_warnings
+from mission.fuel_plan import add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
 from mission.logbook import segment_logs, totals
 from mission.march.joints import Ends, Joints, find_joints
@@ -21,7 +21,8 @@ from mission.march.sweep import Marched, march
 from mission.march.world import World
 from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
-from mission.results import Failure, Flight, ReserveItem
+from mission.reserves.carriage import reserve_items
+from mission.results import Failure, Flight, SegmentLog
 from mission.segments.choices import Choices
 from mission.solving import Root
 from mission.warnings import warnings_of
@@ -29,7 +30,6 @@ from mission.warnings import warnings_of
 Array = NDArray[np.float64]
 COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
 _COARSE_SETTLED = 1e-8  # the fine march goes on from there
-_COST_SETTLED = 1e-6
 _MOST_PLANS = 8
 # Steps are doubled, at most so often, until fuel moves by less than this share of itself.
 _PRECISE, _MOST_REFINEMENTS = 1e-4, 3
@@ -44,6 +44,11 @@ class _Solved:
     coarse: Marched
     fine: Marched
     root: Root | None = None
+
+    @property
+    def free(self) -> Array | None:
+        """What the flight was solved for, shape (1,)."""
+        return None if self.root is None else self.root.value
 
 
 def fly(mission: Mission, aircraft: Aircraft, engine: Engine, *, refinement: int = 1) -> Flight:
@@ -192,16 +197,19 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
     closes = mission.written.fuel == written.fuel
     failure = first_failure(world, plan, fine, written, total, logs, closes=closes)
     flown = failure is None
+    shown = _to_show(plan, logs, failure)
     return Flight(
         mission=written.name,
         aircraft=world.aircraft.name,
         engine=world.engine.name,
         day=written.day,
         totals=total,
-        segments=logs,
-        reserves=_reserves(world, plan, written, solved, sums, with_cost=flown),
+        segments=shown,
+        reserves=reserve_items(
+            world, plan, written, solved.coarse, sums, free=solved.free, with_cost=flown
+        ),
         cross_check=cross_checks(plan, logs, total) if flown else (),
-        margins=margins(world, logs, total),
+        margins=margins(world, shown, total),
         assumed=(
             *(f"mission: {line}" for line in mission.assumed),
             *(f"aircraft: {line}" for line in world.aircraft.assumed),
@@ -215,6 +223,19 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
         failure=failure,
         fuel=world.engine.fuel,
         solution=solution_of(written, solved.root),
+        reserve_rule=written.reserves.rule_in_force,
+        fuel_flow_margin=sums.fuel_flow_margin,
+    )
+
+
+def _to_show(
+    plan: FlightPlan, logs: tuple[SegmentLog, ...], failure: Failure | None
+) -> tuple[SegmentLog, ...]:
+    """The logs without those flown aside, unless it is there that the flight fails."""
+    return tuple(
+        log
+        for row, log in zip(plan.rows, logs, strict=True)
+        if row.purpose != "aside" or (failure is not None and failure.segment == log.name)
     )
 
 
@@ -223,56 +244,3 @@ def _of_an_attempt(failure: Failure | None, mission: Mission) -> tuple[str, ...]
     if failure is None or not mission.written.fuel.as_needed:
         return ()
     return ("fuel as needed: the masses are those of the attempt to close the fuel",)
-
-
-def _reserves(
-    world: World,
-    plan: FlightPlan,
-    written: MissionFile,
-    solved: _Solved,
-    sums: Sums,
-    *,
-    with_cost: bool,
-) -> tuple[ReserveItem, ...]:
-    """The reserves, and what carrying each costs: the trip flown again without it aboard."""
-    by_fraction = written.reserves.contingency_fraction * sums.trip_fuel
-    contingency_note = (
-        f"{written.reserves.contingency_fraction:.0%} of trip fuel, carried"
-        if by_fraction >= sums.contingency - 1e-9
-        else f"{written.reserves.contingency_least_time / 60:.0f} min at cruise fuel flow, carried"
-    )
-    items = [
-        ("contingency", sums.contingency, contingency_note),
-        ("alternate", sums.alternate_fuel, "climb, cruise and descent, flown"),
-        (
-            "final reserve",
-            sums.hold_fuel,
-            f"{written.reserves.final_reserve_time / 60:.0f} min hold at 1,500 ft, flown",
-        ),
-    ]
-    items = [item for item in items if item[1] > 0.0]
-    costs = np.zeros(len(items))
-    if items and with_cost:
-        coarse = solved.coarse
-        lighter = coarse.stop_mass - np.array([item[1] for item in items])
-        parts = replace(plan.parts, reserve=())
-        flown = march(
-            world,
-            parts,
-            len(coarse.tracks[0].mass),
-            lighter,
-            lambda stop, integrals: lighter,
-            coarse,
-            _COST_SETTLED,
-        )
-        trip_plan = replace(plan, parts=parts)
-        trip = [
-            add_up(trip_plan, written, flown.integrals, member).trip_fuel
-            for member in range(len(items))
-        ]
-        full = add_up(plan, written, coarse.integrals).trip_fuel
-        costs = full - np.array(trip)
-    return tuple(
-        ReserveItem(name, fuel, float(cost), note)
-        for (name, fuel, note), cost in zip(items, costs, strict=True)
-    )

@@ -1,9 +1,4 @@
-"""Fuel: the load that meets the reserves exactly or a given one; what each reserve is and costs.
-
-Contingency is a fraction of trip fuel, not less than a time at the mean fuel flow of the longest
-cruise (of the trip where there is none); it is carried unburnt. Alternate and final reserve are
-flown, in that order, from the mass at the end of the mission.
-"""
+"""Fuel: the load that meets the reserves exactly, or a given one; what the trip is."""
 
 from __future__ import annotations
 
@@ -18,6 +13,8 @@ from mission.aircraft import Aircraft
 from mission.march.sweep import Closure, Integrals
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
+from mission.reserves.items import Trip, fuel_flow_factor
+from mission.reserves.pricing import price
 
 Array = NDArray[np.float64]
 _LIKE_KEROSENE = 0.1  # share of its density within which a mass of fuel tells a volume
@@ -25,18 +22,31 @@ _LIKE_KEROSENE = 0.1  # share of its density within which a mass of fuel tells a
 
 @dataclass(frozen=True)
 class Sums:
-    """Fuel [kg] and time [s] of the parts of a flight that fuel planning asks for."""
+    """What fuel planning asks of a flight, fuels in [kg].
+
+    Attributes
+    ----------
+    mission_fuel : burnt from the first row to the last of the mission
+    trip : what reserves are priced from
+    reserves_flown, reserve_fuels : flown for, and kept aboard for, each item of the reserve rule
+    fuel_flow_margin : the part of mission fuel that a fuel-flow margin of the rule has added
+    """
 
     mission_fuel: float
-    trip_fuel: float
-    alternate_fuel: float
-    hold_fuel: float
-    contingency: float
+    trip: Trip
+    reserves_flown: tuple[float, ...]
+    reserve_fuels: tuple[float, ...]
+    fuel_flow_margin: float
+
+    @property
+    def trip_fuel(self) -> float:
+        """Burnt from take-off to landing [kg]."""
+        return self.trip.fuel
 
     @property
     def reserves(self) -> float:
         """All that must be aboard at the end of the mission [kg]."""
-        return self.contingency + self.alternate_fuel + self.hold_fuel
+        return sum(self.reserve_fuels)
 
 
 def trip_rows(plan: FlightPlan) -> range:
@@ -62,25 +72,37 @@ def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member:
     taken = np.array([t[-1, member] for t in integrals.time])
     rows = np.array([span.segment for span in spans])
     is_mission = np.arange(len(spans)) < len(plan.parts.mission)
-    trip = np.isin(rows, list(trip_rows(plan))) & is_mission
-    trip_fuel = float(burnt[trip].sum())
-    hold_row = len(plan.rows) - 1 if written.reserves.final_reserve_time > 0.0 else -1
-    is_hold = ~is_mission & (rows == hold_row)
-    rate = _consumption(plan, burnt, taken, rows, trip)
-    reserves = written.reserves
-    contingency = max(
-        reserves.contingency_fraction * trip_fuel, reserves.contingency_least_time * rate
+    is_trip = np.isin(rows, list(trip_rows(plan))) & is_mission
+    trip = Trip(
+        fuel=float(burnt[is_trip].sum()),
+        time=float(taken[is_trip].sum()),
+        cruise_fuel_flow=_cruise_fuel_flow(plan, burnt, taken, rows, is_trip),
+        initial_fuel=0.0,
     )
-    return Sums(
-        mission_fuel=float(burnt[is_mission].sum()),
-        trip_fuel=trip_fuel,
-        alternate_fuel=float(burnt[~is_mission & ~is_hold].sum()),
-        hold_fuel=float(burnt[is_hold].sum()),
-        contingency=contingency,
-    )
+    items = written.reserves.rule_in_force.items
+    flown_for = np.array([plan.rows[row].item for row in rows])
+    flown = tuple(float(burnt[flown_for == index].sum()) for index in range(len(items)))
+    mission_fuel = float(burnt[is_mission].sum())
+    received = sum(span.received for span in plan.parts.mission)
+    fuel_received = received - (plan.stop_empty_mass - plan.first_empty_mass)
+    load = _known_load(plan, written, burnt)
+    trip, fuels = price(items, flown, trip, mission_fuel - fuel_received, load)
+    by_flow = is_mission & np.array([span.march != "book" for span in spans])
+    margin = float(burnt[by_flow].sum()) * (1.0 - 1.0 / fuel_flow_factor(items))
+    return Sums(mission_fuel, trip, flown, fuels, margin)
 
 
-def _consumption(
+def _known_load(plan: FlightPlan, written: MissionFile, burnt: Array) -> float | None:
+    """Usable fuel at engine start [kg] where it does not depend on the reserves."""
+    if plan.take_off_mass is None:
+        return written.fuel.load
+    first = trip_rows(plan)[0]
+    before = [i for i, span in enumerate(plan.parts.mission) if span.segment < first]
+    lost = sum(burnt[i] - plan.parts.mission[i].received for i in before)
+    return plan.take_off_mass + float(lost) - plan.first_empty_mass
+
+
+def _cruise_fuel_flow(
     plan: FlightPlan, burnt: Array, taken: Array, rows: Array, trip: NDArray[np.bool_]
 ) -> float:
     """Mean fuel flow [kg/s] of the longest cruise, or of the trip where it has none."""

@@ -7,14 +7,12 @@ from typing import Annotated, Any, Literal
 
 from pydantic import Field, field_validator, model_validator
 
-from engine.quantities import Altitude, Day, Distance, Mass, Speed, Time, parse_quantity
+from engine.quantities import Altitude, Day, Mass, parse_quantity
 from engine.reading import Table, check, defaults_used, read_toml
 from mission.legs import AirTable, Headwind, LegTable, distance_or_word
+from mission.reserves.tables import ReservesTable
 from mission.segments import AnySegment
-from mission.segments.cruise import LONGEST
 from mission.segments.loading import Count
-
-Fraction = Annotated[float, Field(ge=0.0, lt=1.0)]
 
 
 class FuelTable(Table):
@@ -46,26 +44,6 @@ class FuelTable(Table):
                 'give load = "9.5 t", say, or to_take_off_mass = "limit", or as_needed = true'
             )
         return self
-
-
-class AlternateTable(Table):
-    """Flown from the destination as a climb, a cruise and a descent of its own."""
-
-    distance: Annotated[Distance, Field(gt=0.0, le=LONGEST)]
-    pressure_altitude: Altitude
-    mach: Annotated[float, Field(gt=0.0, lt=5.0)]
-    calibrated_airspeed: Annotated[Speed, Field(gt=0.0)]
-    limited_below_10000_ft: bool = False
-    elevation: Altitude | None = None
-
-
-class ReservesTable(Table):
-    """Contingency is priced from the flown trip and carried; the rest is flown."""
-
-    contingency_fraction: Fraction = 0.0
-    contingency_least_time: Annotated[Time, Field(ge=0.0)] = 0.0
-    alternate: AlternateTable | None = None
-    final_reserve_time: Annotated[Time, Field(ge=0.0)] = 0.0
 
 
 class PlaceTable(Table):

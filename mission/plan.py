@@ -12,19 +12,18 @@ from mission.legs import air_of
 from mission.march.span import RESERVE_LEG, Span, SpeedRule
 from mission.march.sweep import Parts
 from mission.march.world import World
-from mission.mission_file import AlternateTable, Mission, MissionFile
+from mission.mission_file import Mission, MissionFile
+from mission.reserves.items import alternate_of
+from mission.reserves.laying import as_flown, reserve_stages
+from mission.reserves.tables import ReservesTable
 from mission.segments import AnySegment
 from mission.segments.acceleration import speed_span
-from mission.segments.approach import approach_speed
 from mission.segments.choices import Choices
 from mission.segments.climb import Climb
-from mission.segments.cruise import Cruise
-from mission.segments.descent import APPROACH_HEIGHT, Descent
 from mission.segments.here import Here, Leg, Load
-from mission.segments.loiter import Loiter
 from mission.segments.schedule import is_same_speed
 
-HOLD_HEIGHT = APPROACH_HEIGHT  # 1,500 ft: ICAO Annex 6 Part I, 4.3.6.3 (from memory)
+Purpose = Literal["mission", "reserve", "aside"]
 _ON_GROUND = ("taxi", "take-off", "allowance", "turnaround")
 
 
@@ -33,15 +32,17 @@ class Row:
     """One row of the log: a segment of the file, or a bridge between two.
 
     ``empty_mass`` is the aircraft's without usable fuel at its end [kg], ``tank_capacity`` the fuel
-    that stores hold then [kg].
+    that stores hold then [kg]. What is flown aside, only to be priced, is no row to show. ``item``
+    is the index of the reserve rule's item that a reserve or an aside is flown for.
     """
 
     name: str
     kind: str
-    purpose: Literal["mission", "reserve"]
+    purpose: Purpose
     empty_mass: float
     tank_capacity: float = 0.0
     leg: str = ""
+    item: int = -1
 
 
 @dataclass(frozen=True)
@@ -49,13 +50,15 @@ class FlightPlan:
     """Rows of the log and the spans that fly them.
 
     ``first_empty_mass`` is without usable fuel before anything leaves or comes aboard [kg],
-    ``first_tank_capacity`` the fuel that stores hold then [kg].
+    ``first_tank_capacity`` the fuel that stores hold then [kg]; ``take_off_mass`` [kg] is what
+    fuel is loaded up to, if that is how it is given.
     """
 
     rows: tuple[Row, ...]
     parts: Parts
     first_empty_mass: float
     first_tank_capacity: float = 0.0
+    take_off_mass: float | None = None
 
     @property
     def stop_empty_mass(self) -> float:
@@ -71,7 +74,7 @@ class _Laid:
     rows: list[Row] = field(default_factory=list)
     spans: list[Span] = field(default_factory=list)
 
-    def lay(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:
+    def lay(self, segment: AnySegment, purpose: Purpose) -> None:
         """One segment, with a bridge before it where the speed jumps."""
         if self.here.on_ground and segment.kind not in _ON_GROUND:
             raise InputRefused("the aircraft stands on the ground; put a take-off before it")
@@ -81,7 +84,7 @@ class _Laid:
         self.spans += spans
         self._row(segment.name, segment.kind, purpose)
 
-    def _row(self, name: str, kind: str, purpose: Literal["mission", "reserve"]) -> None:
+    def _row(self, name: str, kind: str, purpose: Purpose) -> None:
         aircraft, load = self.here.aircraft, self.here.load
         self.rows.append(
             Row(
@@ -94,7 +97,7 @@ class _Laid:
             )
         )
 
-    def bridge(self, segment: AnySegment, purpose: Literal["mission", "reserve"]) -> None:
+    def bridge(self, segment: AnySegment, purpose: Purpose) -> None:
         """A level change of speed of its own where two segments do not meet in speed."""
         before, after = self.here.speed, segment.first_speed(self.here)
         altitude = self.here.pressure_altitude
@@ -131,7 +134,7 @@ def lay_out(
     altitude [m] at which a cruise-climb was found to end, are of an earlier plan as it was flown;
     ``choices`` are what was chosen for its masses. Raises :class:`InputRefused` naming the segment.
     """
-    written = mission.written
+    written, reserves = mission.written, mission.written.reserves
     legs = legs_of(written)
     load = Load(written.payload, written.stores)
     _refuse_stores(mission, world.aircraft)
@@ -169,24 +172,28 @@ def lay_out(
     for leg in legs:
         _refuse_rest(mission, leg, [span for span in mission_spans if span.leg == leg.number])
     laid.spans = []
-    try:
-        alternate_distance = _lay_reserves(written, laid)
-    except InputRefused as refusal:
-        raise InputRefused(refusal.what, where=mission.where, key="reserves.alternate") from None
+    _lay_reserves(mission, laid)
     distances = {leg.number: leg.distance for leg in legs if leg.distance is not None}
-    if alternate_distance is not None:
-        distances[RESERVE_LEG] = alternate_distance
+    _, alternate = alternate_of(reserves.rule_in_force.items)
+    if alternate is not None and alternate.distance is not None:
+        distances[RESERVE_LEG] = alternate.distance
     return FlightPlan(
         rows=tuple(laid.rows),
         parts=Parts(
-            tuple(mission_spans),
-            tuple(replace(span, is_reserve=True) for span in laid.spans),
+            tuple(_as_flown(span, laid, reserves) for span in mission_spans),
+            tuple(_as_flown(span, laid, reserves) for span in laid.spans),
             distances,
             frozenset(leg.number for leg in legs if leg.is_free),
         ),
         first_empty_mass=load.empty_mass(world.aircraft),
         first_tank_capacity=load.tank_capacity(world.aircraft),
+        take_off_mass=_take_off_mass(written, world.aircraft),
     )
+
+
+def _take_off_mass(written: MissionFile, aircraft: Aircraft) -> float | None:
+    mass = written.fuel.to_take_off_mass
+    return aircraft.maximum_take_off_mass if mass == "limit" else _metres(mass)
 
 
 def legs_of(written: MissionFile) -> list[Leg]:
@@ -252,67 +259,23 @@ def _refuse_rest(mission: Mission, leg: Leg, spans: Sequence[Span]) -> None:
         )
 
 
-def _lay_reserves(written: MissionFile, laid: _Laid) -> float | None:
-    """The reserve flight: alternate from a go-around, then the final hold; its distance, if any."""
-    reserves = written.reserves
-    elevation = laid.here.leg.destination_elevation
-    leg = replace(laid.here.leg, number=RESERVE_LEG, distance=None, is_free=False)
-    start = replace(
-        laid.here,
-        pressure_altitude=None,
-        speed=None,
-        on_ground=False,
-        is_reserve=True,
-        departure_elevation=elevation,
-        leg=leg,
-        ahead=(),
-    )
-    distance: float | None = None
-    if reserves.alternate is not None:
-        alternate = reserves.alternate
-        distance = alternate.distance
-        elevation = elevation if alternate.elevation is None else alternate.elevation
-        laid.here = replace(
-            start,
-            pressure_altitude=start.departure_elevation,
-            speed=approach_speed(start),
-            leg=replace(leg, distance=distance, destination_elevation=elevation),
-        )
-        for segment in _alternate_segments(alternate, elevation):
-            laid.lay(segment, "reserve")
-    if reserves.final_reserve_time > 0.0:
-        if reserves.alternate is None:
-            laid.here = start
-        hold = Loiter.model_construct(
-            kind="loiter",
-            name="final reserve hold",
-            time=reserves.final_reserve_time,
-            pressure_altitude=elevation + HOLD_HEIGHT,
-        )
-        laid.lay(hold, "reserve")
-    return distance
+def _lay_reserves(mission: Mission, laid: _Laid) -> None:
+    """The reserve flight, each of its rows with the item that it is flown for."""
+    reserves = mission.written.reserves
+    key = "reserves" if reserves.alternate is None else "reserves.alternate"
+    for stage in reserve_stages(reserves, laid.here):
+        first = len(laid.rows)
+        laid.here = stage.start or laid.here
+        try:
+            laid.lay(stage.segment, stage.purpose)
+        except InputRefused as refusal:
+            what = f'"{stage.segment.name}": {refusal.what}'
+            raise type(refusal)(what, where=mission.where, key=key) from None
+        *bridges, own = laid.rows[first:]
+        ways = [replace(row, item=stage.way) for row in bridges]
+        laid.rows[first:] = [*ways, replace(own, item=stage.item)]
 
 
-def _alternate_segments(alternate: AlternateTable, elevation: float) -> list[AnySegment]:
-    """Climb, cruise and descent to the alternate."""
-    return [
-        Climb.model_construct(
-            kind="climb",
-            name="alternate climb",
-            to=alternate.pressure_altitude,
-            calibrated_airspeed=alternate.calibrated_airspeed,
-            mach=alternate.mach,
-            limited_below_10000_ft=alternate.limited_below_10000_ft,
-        ),
-        Cruise.model_construct(
-            kind="cruise", name="alternate cruise", distance="rest", mach=alternate.mach
-        ),
-        Descent.model_construct(
-            kind="descent",
-            name="alternate descent",
-            to=elevation + HOLD_HEIGHT,
-            calibrated_airspeed=alternate.calibrated_airspeed,
-            mach=alternate.mach,
-            limited_below_10000_ft=alternate.limited_below_10000_ft,
-        ),
-    ]
+def _as_flown(span: Span, laid: _Laid, reserves: ReservesTable) -> Span:
+    row = laid.rows[span.segment]
+    return as_flown(span, row.kind, row.purpose, reserves.rule_in_force.items)

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import flight_condition
 from engine.fuels import KEROSENE, Fuel
+from mission.reserves.registry import RULES, Rule
 
 Array = NDArray[np.float64]
 
@@ -165,7 +166,10 @@ class Totals:
 
 @dataclass(frozen=True)
 class Flight:
-    """A mission flown, or flown as far as it could be (``failure`` says why not further)."""
+    """A mission flown, or flown as far as it could be (``failure`` says why not further).
+
+    ``fuel_flow_margin`` [kg] is the part of block fuel that the reserve rule's margin has added.
+    """
 
     mission: str
     aircraft: str
@@ -181,6 +185,8 @@ class Flight:
     failure: Failure | None
     fuel: Fuel = KEROSENE
     solution: Solution | None = None
+    reserve_rule: Rule = RULES["none"]
+    fuel_flow_margin: float = 0.0
 
     @property
     def carbon_dioxide(self) -> float:

@@ -66,6 +66,21 @@ OUT_AND_DOWN: list[Content] = [
     {"kind": "descent", "calibrated_airspeed": "280 kt", "mach": 0.74},
 ]
 
+# Items of reserve rules of a mission's own.
+CONTINGENCY: Content = {"kind": "share of trip fuel", "share": 0.05}
+TO_ALTERNATE: Content = {"kind": "alternate"}
+ALTERNATE: Content = {
+    "distance": "180 nmi",
+    "pressure_altitude": "FL200",
+    "mach": 0.6,
+    "calibrated_airspeed": "270 kt",
+}
+
+
+def final_reserve(time: str) -> Content:
+    """A hold 1,500 ft above the aerodrome."""
+    return {"kind": "hold", "time": time, "height": "1500 ft", "above": "aerodrome"}
+
 
 def merged(base: Content, changes: Content) -> Content:
     """A copy of ``base`` with changes, tables merged key by key; None takes a key away."""
@@ -104,6 +119,8 @@ def to_toml(content: Content) -> str:
 
 
 def _value(value: Any) -> str:
+    if isinstance(value, list):
+        return "[" + ", ".join(_value(v) for v in value) + "]"
     if isinstance(value, dict):
         return "{" + ", ".join(f"{key} = {_value(v)}" for key, v in value.items()) + "}"
     if isinstance(value, bool | str):

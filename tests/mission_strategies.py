@@ -8,7 +8,15 @@ from typing import Any
 
 from hypothesis import Phase, settings
 from hypothesis import strategies as st
-from mission_files import Content, fly_files, mission_content
+from mission_files import (
+    ALTERNATE,
+    CONTINGENCY,
+    TO_ALTERNATE,
+    Content,
+    final_reserve,
+    fly_files,
+    mission_content,
+)
 
 from mission.results import Flight, SegmentLog
 
@@ -20,19 +28,22 @@ LEVEL_KINDS = ("cruise", "loiter", "approach")
 
 @st.composite
 def reserves(draw: st.DrawFn) -> Content:
-    """Contingency, and sometimes an alternate and a final reserve."""
-    table: Content = {"contingency_fraction": draw(st.sampled_from([0.0, 0.03, 0.05]))}
+    """Contingency, and sometimes an alternate, a final reserve and shares of the whole flight."""
+    items: list[Content] = [CONTINGENCY | {"share": draw(st.sampled_from([0.001, 0.03, 0.05]))}]
+    table: Content = {"item": items}
     if draw(st.booleans()):
-        table["contingency_least_time"] = "5 min"
+        items[0]["least_hold_time"] = "5 min"
     if draw(st.booleans()):
-        table["final_reserve_time"] = "30 min"
+        items.append(TO_ALTERNATE)
+        table["alternate"] = ALTERNATE | {"distance": f"{draw(st.integers(150, 300))} nmi"}
     if draw(st.booleans()):
-        table["alternate"] = {
-            "distance": f"{draw(st.integers(150, 300))} nmi",
-            "pressure_altitude": "FL200",
-            "mach": 0.6,
-            "calibrated_airspeed": "270 kt",
-        }
+        items.append(final_reserve("30 min"))
+    if draw(st.booleans()):
+        items.append({"kind": "share of initial fuel", "share": 0.04})
+    if draw(st.booleans()):
+        items.append({"kind": "fuel-flow margin", "share": 0.03})
+    if draw(st.booleans()):
+        items.append({"kind": "no distance credit for descent"})
     return table
 
 

@@ -11,6 +11,8 @@ from dataclasses import replace
 import numpy as np
 
 from mission.outputs.setting import Setting
+from mission.reserves.items import Hold, ShareOfTripFuel
+from mission.reserves.registry import Rule
 from mission.results import (
     CrossCheck,
     Failure,
@@ -22,6 +24,7 @@ from mission.results import (
     Totals,
 )
 
+PAPER_RULE = Rule("paper rule", "", "", (ShareOfTripFuel(0.5), Hold(1800.0)))
 FOOT, GRAVITY = 0.3048, 9.80665
 SETTING = Setting(payload=1500.0, headwind=0.0, engine_count=2, is_fuel_as_needed=True)
 
@@ -131,6 +134,7 @@ def small_flight() -> Flight:
         assumed=("mission: headwind = 0.0", "engine: fuel.lower_heating_value = 43031900.0"),
         warnings=("long cruise: something to know",),
         failure=None,
+        reserve_rule=PAPER_RULE,
     )  # fmt: skip
 
 

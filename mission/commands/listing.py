@@ -6,7 +6,7 @@ from mission.commands.shared import print_screen
 
 
 def list_command() -> None:
-    """List the built-in missions, aircraft and engines."""
+    """List the built-in missions, aircraft and engines, and the reserve rules."""
     from mission.library import built_in
     from mission.outputs.list_screen import list_screen
 

@@ -111,6 +111,7 @@ class Span:
     least_rate : slowest climb or descent [m/s]; slower it does not end
     received : mass taken on along it, negative for what is released [kg]
     is_reserve : flown as part of the reserves
+    is_aside : a reserve flown from the mass at the stop beside the others, only to be priced
     """
 
     segment: int
@@ -142,6 +143,7 @@ class Span:
     least_rate: float = SLOWEST_CLIMB
     received: float = 0.0
     is_reserve: bool = False
+    is_aside: bool = False
 
     @property
     def is_steered(self) -> bool:

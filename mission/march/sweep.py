@@ -203,9 +203,10 @@ def _update_masses(
         change = max(change, _replace_mass(tracks[index], new))
     before = np.zeros_like(stop_mass)
     for index in range(mission_count, len(tracks)):
+        is_aside = tracks[index].span.is_aside
         lost = fuel[index] - _received(tracks[index])
-        new = stop_mass - before - lost
-        before = before + lost[-1]
+        new = stop_mass - lost - (0.0 if is_aside else before)
+        before = before + (0.0 if is_aside else lost[-1])
         change = max(change, _replace_mass(tracks[index], new))
     return change
 

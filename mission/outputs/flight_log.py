@@ -26,6 +26,7 @@ from mission.outputs.page import (
     words,
 )
 from mission.outputs.partial import fails_on_the_way, flown_segments
+from mission.outputs.reserve_section import reserve_section
 from mission.outputs.segment_rows import Scales, scales_of, segment_tables
 from mission.outputs.setting import Setting
 from mission.outputs.step_rows import step_sections
@@ -67,7 +68,7 @@ def flight_log(
         parts += step_sections(shown, scales, width)
     parts += way_sections(flight, shown, scales)
     if not on_the_way:
-        parts += [_reserves(flight, scales), _totals(flight, scales, width)]
+        parts += [reserve_section(flight, scales), _totals(flight, scales, width)]
     if flight.cross_check:
         parts.append(_cross_check(flight, scales, width))
     if not on_the_way:
@@ -175,26 +176,6 @@ def _rows_title(flight: Flight) -> str:
     if fails_on_the_way(flight):
         return "Segments, as far as it flies"
     return "Segments, as they would be without the limit that fails"
-
-
-def _reserves(flight: Flight, scales: Scales) -> Group:
-    if not flight.reserves:
-        return section("Reserves", note("none asked for"))
-    fuel = scales.fuel
-    table = ruled_table(
-        [
-            words("reserve"),
-            Column(f"fuel\n{fuel.unit.name}"),
-            Column(f"costs in trip fuel\n{fuel.unit.name}"),
-            words("how it is found"),
-        ]
-    )
-    for item in flight.reserves:
-        cost = fuel.bare(item.carriage_cost) if flight.flown else ""
-        table.add_row(item.item, fuel.bare(item.fuel), cost, item.note)
-    table.add_section()
-    table.add_row("all reserves", fuel.bare(flight.totals.reserve_fuel), "", "")
-    return section("Reserves", table)
 
 
 def _totals(flight: Flight, scales: Scales, width: int) -> Group:

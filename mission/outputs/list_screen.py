@@ -9,6 +9,7 @@ from rich.text import Text
 
 from mission.library import DEMO, Profile
 from mission.outputs.page import note, pairs, section
+from mission.reserves.registry import RULES
 
 _TITLES = {"mission": "Missions", "aircraft": "Aircraft", "engine": "Engines"}
 
@@ -20,8 +21,12 @@ def list_screen(profiles: Sequence[Profile]) -> Group:
         rows = [(p.name, p.note) for p in profiles if p.kind == kind]
         if rows:
             parts.append(section(title, pairs(rows)))
+    parts.append(section("Reserve rules", pairs((r.name, r.title) for r in RULES.values())))
     parts += [
         Text(),
-        note(f"All of it is invented. `longlegs fly` flies {DEMO}; a name stands for its file."),
+        note(
+            f"Missions, aircraft and engines are invented. `longlegs fly` flies {DEMO}; a name "
+            "stands for its file. A rule is what a mission's reserves.rule names, a summary."
+        ),
     ]
     return Group(*parts)

@@ -15,6 +15,7 @@ from mission.comparison import Comparison, mean_cruise_consumption
 from mission.outputs.margins import least_margin
 from mission.outputs.partial import flown_segments
 from mission.outputs.wording import day_in_words
+from mission.reserves.items import Item
 from mission.results import Failure, Flight, Margin, SegmentLog
 
 VERSION = 1
@@ -40,6 +41,7 @@ def flight_record(flight: Flight) -> Record:
             {"item": r.item, "fuel_kg": r.fuel, "carriage_cost_kg": r.carriage_cost}
             for r in flight.reserves
         ],
+        "reserve_rule": _reserve_rule(flight),
         "cross_check": [
             {
                 "segment": check.segment,
@@ -70,6 +72,31 @@ def _fuel(fuel: Fuel) -> Record:
         "carbon_dioxide_kg_per_kg": fuel.carbon_dioxide_index,
         "water_kg_per_kg": fuel.water_index,
     }
+
+
+_ITEM_UNITS = {"time": "s", "least_hold_time": "s", "height": "m", "distance": "m"}
+
+
+def _reserve_rule(flight: Flight) -> Record:
+    """The rule that the reserves are of, its items as they stand for this mission."""
+    rule = flight.reserve_rule
+    return {
+        "rule": rule.name,
+        "title": rule.title,
+        "citation": rule.citation,
+        "items": [_rule_item(item) for item in rule.items],
+        "fuel_flow_margin_kg": flight.fuel_flow_margin,
+    }
+
+
+def _rule_item(item: Item) -> Record:
+    """One item of a rule; what does not apply to it is left out."""
+    named = {
+        f"{name}_{_ITEM_UNITS[name]}" if name in _ITEM_UNITS else name: value
+        for name, value in vars(item).items()
+        if value is not None and value is not False
+    }
+    return {"kind": item.kind, **named}
 
 
 def _totals(flight: Flight) -> Record:

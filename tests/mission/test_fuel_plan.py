@@ -8,9 +8,13 @@ from typing import Any
 import numpy as np
 import pytest
 from mission_files import (
+    ALTERNATE,
+    CONTINGENCY,
     OUT_AND_DOWN,
+    TO_ALTERNATE,
     Content,
     aircraft_content,
+    final_reserve,
     fly_files,
     mission_content,
     segment,
@@ -19,12 +23,6 @@ from mission_files import (
 from engine.quantities import FOOT, NAUTICAL_MILE
 from mission.results import Flight
 
-ALTERNATE: Content = {
-    "distance": "180 nmi",
-    "pressure_altitude": "FL200",
-    "mach": 0.6,
-    "calibrated_airspeed": "270 kt",
-}
 WHOLE: list[Content] = [
     {"kind": "taxi", "name": "taxi out", "time": "9 min"},
     {"kind": "allowance", "name": "warm-up", "fuel": "25 kg"},
@@ -47,34 +45,17 @@ def item(flight: Flight, name: str) -> float:
     return {entry.item: entry.fuel for entry in flight.reserves}[name]
 
 
-def test_contingency_is_a_fraction_of_trip_fuel(tmp_path: Path) -> None:
-    flight = planned(tmp_path, reserves={"contingency_fraction": 0.05})
+def test_contingency_is_a_share_of_trip_fuel(tmp_path: Path) -> None:
+    flight = planned(tmp_path, reserves={"item": [CONTINGENCY]})
     assert item(flight, "contingency") == pytest.approx(0.05 * flight.totals.trip_fuel, rel=1e-12)
     assert flight.totals.fuel_left == pytest.approx(item(flight, "contingency"), rel=1e-9)
     assert [log.purpose for log in flight.segments] == ["mission"] * 3
 
 
-def test_contingency_is_not_less_than_a_time(tmp_path: Path) -> None:
-    reserves = {"contingency_fraction": 0.001, "contingency_least_time": "5 min"}
-    flight = planned(tmp_path, reserves=reserves)
-    cruise = segment(flight, "cruise")
-    expected = 300.0 * cruise.fuel / cruise.time
-    assert expected > 0.001 * flight.totals.trip_fuel
-    assert item(flight, "contingency") == pytest.approx(expected, rel=1e-9)
-    assert "5 min" in flight.reserves[0].note
-
-
-def test_the_larger_of_fraction_and_time_counts(tmp_path: Path) -> None:
-    reserves = {"contingency_fraction": 0.05, "contingency_least_time": "1 min"}
-    flight = planned(tmp_path, reserves=reserves)
-    assert item(flight, "contingency") == pytest.approx(0.05 * flight.totals.trip_fuel, rel=1e-12)
-    assert "5%" in flight.reserves[0].note
-
-
 def test_the_final_reserve_is_flown_at_1500_ft_for_its_time(tmp_path: Path) -> None:
     flight = planned(
         tmp_path,
-        reserves={"final_reserve_time": "30 min"},
+        reserves={"item": [final_reserve("30 min")]},
         destination={"elevation": "2000 ft"},
     )
     hold = flight.segments[-1]
@@ -90,7 +71,7 @@ def test_the_final_reserve_is_held_at_the_alternate(tmp_path: Path) -> None:
     flight = planned(
         tmp_path,
         reserves={
-            "final_reserve_time": "30 min",
+            "item": [TO_ALTERNATE, final_reserve("30 min")],
             "alternate": ALTERNATE | {"elevation": "4000 ft"},
         },
         destination={"elevation": "300 ft"},
@@ -99,7 +80,7 @@ def test_the_final_reserve_is_held_at_the_alternate(tmp_path: Path) -> None:
 
 
 def test_the_alternate_is_flown_over_its_distance(tmp_path: Path) -> None:
-    flight = planned(tmp_path, reserves={"alternate": ALTERNATE})
+    flight = planned(tmp_path, reserves={"item": [TO_ALTERNATE], "alternate": ALTERNATE})
     reserve = [log for log in flight.segments if log.purpose == "reserve"]
     kinds = [log.kind for log in reserve if log.kind != "acceleration"]
     assert kinds[-3:] == ["climb", "cruise", "descent"]
@@ -117,9 +98,8 @@ def test_reserves_add_up_and_are_left_at_the_stop(tmp_path: Path) -> None:
         tmp_path,
         WHOLE,
         reserves={
-            "contingency_fraction": 0.03,
+            "item": [CONTINGENCY | {"share": 0.03}, TO_ALTERNATE, final_reserve("30 min")],
             "alternate": ALTERNATE,
-            "final_reserve_time": "30 min",
         },
     )
     total = flight.totals
@@ -172,7 +152,7 @@ def test_a_given_load_leaves_what_is_not_burnt(tmp_path: Path) -> None:
 
 def test_what_carrying_a_reserve_costs(tmp_path: Path) -> None:
     """The cost is the trip fuel saved without it, here found by flying lighter."""
-    reserves = {"final_reserve_time": "45 min"}
+    reserves = {"item": [final_reserve("45 min")]}
     flight = planned(tmp_path, reserves=reserves)
     (hold,) = flight.reserves
     lighter = planned(tmp_path)
@@ -184,7 +164,7 @@ def test_what_carrying_a_reserve_costs(tmp_path: Path) -> None:
 
 
 def test_reserves_are_flown_on_the_same_clock(tmp_path: Path) -> None:
-    flight = planned(tmp_path, reserves={"final_reserve_time": "30 min"})
+    flight = planned(tmp_path, reserves={"item": [final_reserve("30 min")]})
     hold = flight.segments[-1].steps.elapsed_time
     assert hold[0] == pytest.approx(flight.totals.block_time, rel=1e-12)
     assert np.all(np.diff(hold) > 0.0)

@@ -9,9 +9,11 @@ import numpy as np
 import pytest
 from mission_files import (
     OUT_AND_DOWN,
+    TO_ALTERNATE,
     Content,
     aircraft_content,
     engine_content,
+    final_reserve,
     fly_files,
     mission_content,
     segment,
@@ -175,7 +177,10 @@ def test_an_alternate_nearer_than_climb_and_descent(tmp_path: Path) -> None:
         "calibrated_airspeed": "280 kt",
     }
     failure, _ = failure_of(
-        tmp_path, OUT_AND_DOWN, distance="800 nmi", reserves={"alternate": alternate}
+        tmp_path,
+        OUT_AND_DOWN,
+        distance="800 nmi",
+        reserves={"item": [TO_ALTERNATE], "alternate": alternate},
     )
     assert failure.segment == "alternate cruise"
     assert "distance" in failure.what
@@ -288,7 +293,7 @@ def test_reserves_not_covered(tmp_path: Path) -> None:
         OUT_AND_DOWN,
         distance="800 nmi",
         fuel={"as_needed": None, "load": "1.7 t"},
-        reserves={"final_reserve_time": "45 min"},
+        reserves={"item": [final_reserve("45 min")]},
     )
     assert "reserves" in failure.what
     assert failure.value == pytest.approx(flight.totals.fuel_left)

@@ -11,8 +11,10 @@ import pytest
 from mission_files import (
     AIRCRAFT,
     BYPASS_5,
+    CONTINGENCY,
     OUT_AND_DOWN,
     Content,
+    final_reserve,
     load_all,
     mission_content,
 )
@@ -50,12 +52,12 @@ def cost(folder: Path, segments: list[Content], **changes: Any) -> Counting:
 
 def test_a_mission_with_reserves_takes_a_few_dozen_calls(tmp_path: Path) -> None:
     """Joints, two marches of some sweeps, the thrust at the ratings, the cost of the reserves."""
-    hold = {"kind": "loiter", "time": "30 min"}
+    watch = {"kind": "loiter", "time": "30 min"}
     counting = cost(
         tmp_path,
-        [*OUT_AND_DOWN[:2], hold, OUT_AND_DOWN[2]],
+        [*OUT_AND_DOWN[:2], watch, OUT_AND_DOWN[2]],
         distance="800 nmi",
-        reserves={"contingency_fraction": 0.05, "final_reserve_time": "30 min"},
+        reserves={"item": [CONTINGENCY, final_reserve("30 min")]},
     )
     assert counting.calls < 50
 

@@ -33,7 +33,8 @@ STEPS = {
 }  # fmt: skip
 FLIGHT = {
     "format", "version", "mission", "aircraft", "engine", "fuel", "day", "flown", "totals",
-    "solved", "segments", "reserves", "cross_check", "margins", "assumed", "warnings", "failure",
+    "solved", "segments", "reserves", "reserve_rule", "cross_check", "margins", "assumed",
+    "warnings", "failure",
 }  # fmt: skip
 # Cruise at flight level 350 and Mach 0.78 of the engine that all engine tests share.
 CRUISE = flight_condition(35000.0 * 0.3048, 0.78)

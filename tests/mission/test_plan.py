@@ -10,6 +10,7 @@ import numpy as np
 import pytest
 from mission_files import (
     OUT_AND_DOWN,
+    TO_ALTERNATE,
     Content,
     aircraft_content,
     engine_content,
@@ -250,15 +251,16 @@ CRUISE: Content = {"kind": "cruise", "name": "out", "distance": "100 nmi"}
             {
                 "destination": {"elevation": "12000 ft"},
                 "reserves": {
+                    "item": [TO_ALTERNATE],
                     "alternate": {
                         "distance": "100 nmi",
                         "pressure_altitude": "FL100",
                         "mach": 0.5,
                         "calibrated_airspeed": "250 kt",
-                    }
+                    },
                 },
             },
-            r"mission\.toml: reserves\.alternate.*not above",
+            r"mission\.toml: reserves\.alternate.*alternate climb.*not above",
         ),
     ],
 )

@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 import pytest
 from hypothesis import given
-from mission_files import BYPASS_5, Content, mission_content
+from mission_files import BYPASS_5, CONTINGENCY, Content, final_reserve, mission_content
 from mission_strategies import FEW, LEVEL_KINDS, SOME, flown, missions, of_mission
 
 from engine.quantities import NAUTICAL_MILE, STANDARD_GRAVITY
@@ -32,7 +32,7 @@ WITH_CYCLE_ENGINE: dict[str, Content] = {
         distance="900 nmi",
         day="ISA+8",
         headwind="30 kt",
-        reserves={"contingency_fraction": 0.05, "final_reserve_time": "30 min"},
+        reserves={"item": [CONTINGENCY, final_reserve("30 min")]},
     ),
     "watch": mission_content(
         [

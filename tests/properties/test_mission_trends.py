@@ -11,6 +11,7 @@ from mission_files import (
     Content,
     aircraft_content,
     engine_content,
+    final_reserve,
     merged,
     mission_content,
 )
@@ -178,7 +179,9 @@ def test_more_needs_more_with_a_cycle_engine(change: str) -> None:
 
 
 def test_the_same_load_given_flies_the_same_flight_with_a_cycle_engine() -> None:
-    mission = mission_content(PLAIN, distance="700 nmi", reserves={"final_reserve_time": "30 min"})
+    mission = mission_content(
+        PLAIN, distance="700 nmi", reserves={"item": [final_reserve("30 min")]}
+    )
     needed = flown(mission, engine=BYPASS_5)
     load = needed.totals.loaded_fuel
     again = flown(mission | {"fuel": {"load": f"{load!r} kg"}}, engine=BYPASS_5)

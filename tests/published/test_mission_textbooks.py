@@ -16,7 +16,14 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from mission_files import aircraft_content, engine_content, fly_files, mission_content, segment
+from mission_files import (
+    CONTINGENCY,
+    aircraft_content,
+    engine_content,
+    fly_files,
+    mission_content,
+    segment,
+)
 
 from mission.results import Flight
 
@@ -153,7 +160,9 @@ def asw(tmp_path_factory: pytest.TempPathFactory) -> Flight:
     return fly_files(
         tmp_path_factory.mktemp("asw"),
         mission=mission_content(
-            segments, payload=f"{ASW_LOAD:.9f} kg", reserves={"contingency_fraction": 0.06}
+            segments,
+            payload=f"{ASW_LOAD:.9f} kg",
+            reserves={"item": [CONTINGENCY | {"share": 0.06}]},
         ),
         aircraft=ASW.files(13.9, ASW.mass * at_cruise, ASW_EMPTY),
         engine=ASW.engine("0.5 1/h"),
@@ -228,7 +237,7 @@ def transport(tmp_path_factory: pytest.TempPathFactory) -> Flight:
                 },
             ],
             payload=f"{load:.9f} kg",
-            reserves={"contingency_fraction": 0.06},
+            reserves={"item": [CONTINGENCY | {"share": 0.06}]},
         ),
         aircraft=TRANSPORT.files(17.0, TRANSPORT.mass * 0.97 * 0.978, TRANSPORT.mass - load - fuel),
         engine=TRANSPORT.engine("0.6 1/h"),
