@@ -12,6 +12,7 @@ from engine.options.loading import engine_from_content
 from mission.aircraft import aircraft_from_content
 from mission.library import find
 from mission.mission_file import mission_from_content
+from mission.reserves.registry import RULES
 
 ROOT = Path(__file__).parents[1]
 README = (ROOT / "README.md").read_text()
@@ -51,9 +52,15 @@ def test_the_excerpt_is_real_output(
 
 
 def test_the_aircraft_and_the_mission_can_be_copied() -> None:
-    aircraft, _, mission = toml_blocks()
+    aircraft, _, mission, own_rule = toml_blocks()
     aircraft_from_content(tomllib.loads(aircraft), "README.md")
-    mission_from_content(tomllib.loads(mission), "README.md")
+    content = tomllib.loads(mission)
+    mission_from_content(content, "README.md")
+    mission_from_content(content | tomllib.loads(own_rule), "README.md")
+
+
+def test_every_reserve_rule_is_named() -> None:
+    assert [name for name in RULES if f"`{name}`" not in README] == []
 
 
 def test_the_engine_lacks_only_what_its_comments_stand_for() -> None:
