@@ -1,4 +1,4 @@
-"""The speed of the greatest steady rate of climb at each pressure altitude, and the path along it.
+"""The path along the speed of the greatest steady rate of climb at each pressure altitude.
 
 A steady climb neither gains nor loses speed: specific excess power is its geometric rate of climb,
 at lift equal to weight. The path follows that speed from one altitude to another and speeds up
@@ -7,10 +7,7 @@ level where the best speed jumps; where it would have to give energy away, it sa
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
 
 from engine.errors import InputRefused
 from mission.paths.altitude_legs import along, cut_where_short, from_start, to_end
@@ -20,53 +17,10 @@ from mission.paths.ends import closed_stop, dead_stop, open_until
 from mission.paths.lines import altitude_lines
 from mission.paths.path import EnergyPath, State, Stop
 from mission.paths.runs import smooth_runs
-from mission.paths.search import Best, Search, best_points, excess_power
+from mission.paths.search import Best, Search, excess_power
 from mission.paths.trace import trace
 
-Array = NDArray[np.float64]
 _BEYOND = 1e-6  # m of altitude, from the last line with a speed to one without
-
-
-@dataclass(frozen=True)
-class BestRate:
-    """The fastest steady climb at some pressure altitudes; arrays of their shape.
-
-    Attributes
-    ----------
-    pressure_altitude : [m]
-    mach : NaN where the bounds leave no speed or the engine has no state
-    rate_of_climb : geometric [m/s], NaN likewise
-    held_by : the name of the bound that the speed is at; empty where at none
-    """
-
-    pressure_altitude: Array
-    mach: Array
-    rate_of_climb: Array
-    held_by: NDArray[np.str_]
-
-
-def best_rate(climber: Climber, pressure_altitude: ArrayLike) -> BestRate:
-    """The fastest steady climb at pressure altitudes [m] of any shape, each looked at alone.
-
-    Raises
-    ------
-    InputRefused
-        for an altitude below the ground or above where the engine or the atmosphere is known.
-    """
-    altitude = np.asarray(pressure_altitude, dtype=np.float64)
-    corridor = corridor_of(climber)
-    for end in (altitude.min(), altitude.max()):
-        corridor.energy_of(float(end), 0.0)
-    lines, flat = altitude_lines(corridor), altitude.ravel()
-    is_open = lines.edges(flat).is_open
-    best = best_points(Search(climber, lines, excess_power), flat[is_open])
-    mach, rate = np.full((2, flat.size), np.nan)
-    mach[is_open] = corridor.flight(flat[is_open], best.speed).mach
-    rate[is_open] = best.excess_power
-    held_by = np.full(flat.size, "", dtype=best.held_by.dtype)
-    held_by[is_open] = best.held_by
-    shape = altitude.shape
-    return BestRate(altitude, mach.reshape(shape), rate.reshape(shape), held_by.reshape(shape))
 
 
 def best_rate_path(climber: Climber, start: State, end: State) -> EnergyPath:
@@ -117,6 +71,5 @@ def _closed(corridor: Corridor, altitude: float) -> Stop:
 
 def _stop(corridor: Corridor, best: Best) -> Stop:
     """The stop at the last of some points."""
-    altitude = float(best.row[-1])
-    energy = float(corridor.energy_at(altitude, best.speed[-1]))
-    return dead_stop(corridor, best, energy, altitude)
+    altitude, airspeed = best.last
+    return dead_stop(corridor, best, float(corridor.energy_at(altitude, airspeed)), altitude)

@@ -12,7 +12,7 @@ from engine.atmosphere import FlightCondition
 from engine.interface import Engine, is_unanswered
 from engine.quantities import FOOT, STANDARD_GRAVITY
 from mission.aircraft import Aircraft
-from mission.forces import drag, dynamic_pressure
+from mission.forces import drag
 
 Array = NDArray[np.float64]
 
@@ -26,6 +26,8 @@ class Climber:
     aircraft, engine, rating : rating by name
     mass : [kg], held along the whole path
     air : flight condition at pressure altitudes [m] and Mach numbers, arrays of one shape
+    air_kinks : pressure altitudes [m] at which a slope of the air changes, the standard
+        atmosphere's own left out
     engine_count : how many are running
     extra_drag_area : of what hangs outside, times dynamic pressure [m2]
     ground_elevation : pressure altitude below which no path goes [m]
@@ -41,6 +43,7 @@ class Climber:
     mass: float
     air: Callable[[Array, Array], FlightCondition]
     engine_count: int
+    air_kinks: tuple[float, ...] = ()
     extra_drag_area: float = 0.0
     ground_elevation: float = 0.0
     greatest_dynamic_pressure: float | None = None
@@ -76,8 +79,8 @@ def rates(climber: Climber, flight: FlightCondition, start: Array | None = None)
     """
     state = climber.engine.at_rating(flight, climber.rating, start=start)
     weight = climber.mass * STANDARD_GRAVITY
-    resistance = drag(climber.aircraft, flight, np.full(flight.shape, weight))
-    resistance = resistance + climber.extra_drag_area * dynamic_pressure(flight)
+    lift, area = np.full(flight.shape, weight), climber.extra_drag_area
+    resistance = drag(climber.aircraft, flight, lift, drag_area=area)
     excess = climber.engine_count * state.net_thrust - resistance
     factor = climber.engine_count * climber.aircraft.fuel_flow_factor
     return Rates(

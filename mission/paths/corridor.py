@@ -23,8 +23,10 @@ from mission.paths.climber import Climber
 
 Array = NDArray[np.float64]
 Names = NDArray[np.str_]
-ATMOSPHERE_KINKS = (11000.0, 20000.0)  # m, ISO 2533:1975, where the lapse of temperature changes
-KINK_NAMES = ("tropopause", "where the stratosphere begins to warm")
+_KINKS = {  # m, ISO 2533:1975, where the lapse of standard temperature changes
+    11000.0: "tropopause",
+    20000.0: "where the stratosphere begins to warm",
+}
 _STEP = 10.0  # m
 GROUND, CEILING = "ground elevation", "top of the atmosphere"
 TABLE_ALTITUDE = "pressure altitude in the engine's table"
@@ -55,6 +57,7 @@ class Corridor:
     slowest, fastest : true airspeeds [m/s]
     slow_by, fast_by : names of what bounds them
     low_by, high_by : names of what bounds altitude
+    kinks : pressure altitudes [m] between the ends at which the air has a kink, rising, (k,)
     """
 
     climber: Climber
@@ -66,6 +69,7 @@ class Corridor:
     fast_by: Names
     low_by: str
     high_by: str
+    kinks: Array
 
     @cached_property
     def _slow_energy(self) -> Array:
@@ -79,8 +83,7 @@ class Corridor:
 
     def height_at(self, pressure_altitude: ArrayLike) -> Array:
         """Geometric height [m]."""
-        altitude = np.asarray(pressure_altitude, dtype=np.float64)
-        return np.interp(altitude, self.pressure_altitude, self.height)
+        return np.interp(_array(pressure_altitude), self.pressure_altitude, self.height)
 
     def energy_at(self, pressure_altitude: ArrayLike, true_airspeed: ArrayLike) -> Array:
         """Energy height [m] at a pressure altitude [m] and true airspeed [m/s]."""
@@ -88,12 +91,12 @@ class Corridor:
 
     def altitude_at(self, energy: ArrayLike, true_airspeed: ArrayLike) -> Array:
         """Pressure altitude [m] at an energy height [m] and true airspeed [m/s]."""
-        height = np.asarray(energy, dtype=np.float64) - energy_height(0.0, true_airspeed)
+        height = _array(energy) - energy_height(0.0, true_airspeed)
         return np.interp(height, self.height, self.pressure_altitude)
 
     def airspeed_at(self, energy: ArrayLike, pressure_altitude: ArrayLike) -> Array:
         """True airspeed [m/s] at an energy height [m] and pressure altitude [m]; 0 above it."""
-        kinetic = np.asarray(energy) - self.height_at(pressure_altitude)
+        kinetic = _array(energy) - self.height_at(pressure_altitude)
         return np.sqrt(2.0 * STANDARD_GRAVITY * np.maximum(kinetic, 0.0))
 
     def flight(self, pressure_altitude: Array, true_airspeed: Array) -> FlightCondition:
@@ -113,15 +116,17 @@ class Corridor:
         air = self.climber.air(np.array(pressure_altitude), np.array(mach))
         return float(self.energy_at(pressure_altitude, air.true_airspeed))
 
+    def layer(self, pressure_altitude: Array) -> NDArray[np.int64]:
+        """Which layer of the air, between its kinks, pressure altitudes [m] are in."""
+        return np.searchsorted(self.kinks, pressure_altitude)
+
     def lowest(self, energy: ArrayLike) -> Array:
         """Lowest pressure altitude [m], at which an energy height [m] is flown fastest."""
-        altitude: Array = np.interp(energy, self._fast_energy, self.pressure_altitude)
-        return altitude
+        return np.interp(_array(energy), self._fast_energy, self.pressure_altitude)
 
     def highest(self, energy: ArrayLike) -> Array:
         """Highest pressure altitude [m], at which an energy height [m] is flown slowest."""
-        altitude: Array = np.interp(energy, self._slow_energy, self.pressure_altitude)
-        return altitude
+        return np.interp(_array(energy), self._slow_energy, self.pressure_altitude)
 
     def energy_edges(self, energy: Array) -> Edges:
         """The ends of lines of constant energy height [m]."""
@@ -183,14 +188,28 @@ def corridor_of(climber: Climber) -> Corridor:
         fast_by=fast_by,
         low_by=low_by,
         high_by=high_by,
+        kinks=np.array([kink for kink in _kinks(climber) if low < kink < high]),
     )
+
+
+def _array(values: ArrayLike) -> Array:
+    return np.asarray(values, dtype=np.float64)
+
+
+def kink_name(pressure_altitude: float) -> str:
+    """What is special about a pressure altitude [m] at which the air has a kink."""
+    return _KINKS.get(pressure_altitude, "change of the air with altitude")
+
+
+def _kinks(climber: Climber) -> list[float]:
+    return sorted({*_KINKS, *climber.air_kinks})
 
 
 def _column(climber: Climber, low: float, high: float) -> tuple[Array, Array]:
     """Pressure altitudes [m] from one to another, and geometric height [m] there."""
     bottom = min(low, 0.0)
     count = int(np.ceil((high - bottom) / _STEP)) + 2
-    marks = [mark for mark in (0.0, low, *ATMOSPHERE_KINKS) if bottom <= mark <= high]
+    marks = [mark for mark in (0.0, low, *_kinks(climber)) if bottom <= mark <= high]
     altitude = np.union1d(np.linspace(bottom, high, count), marks)
     air = climber.air(altitude, np.zeros(altitude.size))
     stretch = air.static_temperature / (air.static_temperature - air.temperature_deviation)

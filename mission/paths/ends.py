@@ -43,7 +43,7 @@ def closed_stop(corridor: Corridor, edges: Edges, energy: float, altitude: float
 
 def dead_stop(corridor: Corridor, best: Best, energy: float, altitude: float) -> Stop:
     """Why a path ends at the last of some points."""
-    state = state_of(corridor, altitude, float(best.speed[-1]))
+    state = state_of(corridor, altitude, best.last[1])
     if best.state[-1] == LOST:
         return Stop("speeds at which the engine has an answer", energy, state, 0.0, 1.0, "")
     least, excess = corridor.climber.least_rate, float(best.excess_power[-1])

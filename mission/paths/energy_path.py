@@ -11,7 +11,7 @@ import numpy as np
 
 from engine.errors import InputRefused
 from mission.paths.climber import Climber
-from mission.paths.corridor import ATMOSPHERE_KINKS, KINK_NAMES, Corridor, corridor_of
+from mission.paths.corridor import Corridor, corridor_of
 from mission.paths.ends import closed_stop, dead_stop, open_until
 from mission.paths.lines import energy_lines
 from mission.paths.path import EnergyPath, Exchange, Piece, State, Stop, piece_of
@@ -75,14 +75,12 @@ def _closed(corridor: Corridor, energy: float) -> Stop:
 
 def _stop(corridor: Corridor, best: Best) -> Stop:
     """The stop at the last of some points."""
-    energy, airspeed = float(best.row[-1]), float(best.speed[-1])
-    altitude = float(corridor.altitude_at(energy, airspeed))
-    return dead_stop(corridor, best, energy, altitude)
+    energy, airspeed = best.last
+    return dead_stop(corridor, best, energy, float(corridor.altitude_at(energy, airspeed)))
 
 
 def _piece(corridor: Corridor, run: Run) -> Piece:
-    level = dict(zip(KINK_NAMES, ATMOSPHERE_KINKS, strict=True)).get(run.held_by, np.nan)
-    return piece_of(corridor, run.row, run.speed, run.held, run.held_by, level)
+    return piece_of(corridor, run.row, run.speed, run.held, run.held_by, run.level)
 
 
 def _with_exchanges(

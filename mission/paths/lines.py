@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
-from mission.paths.corridor import ATMOSPHERE_KINKS, Corridor, Edges
+from mission.paths.corridor import Corridor, Edges
 
 Array = NDArray[np.float64]
 
@@ -22,29 +22,40 @@ class Lines:
     ----------
     edges : ends of lines (N,)
     flight : flight condition on lines at true airspeeds, of one shape
-    kinks : true airspeeds at which the air has its kinks along lines, (N, k); NaN for one outside
+    kink : the kink of the air nearest to a point on each line, pressure altitude [m] and true
+        airspeed there; NaN where there is none
+    layer : of the air, between kinks, counted from the lowest
     """
 
     edges: Callable[[Array], Edges]
     flight: Callable[[Array, Array], FlightCondition]
-    kinks: Callable[[Array], Array]
+    kink: Callable[[Array, Array], tuple[Array, Array]]
+    layer: Callable[[Array], NDArray[np.int64]]
 
 
 def energy_lines(corridor: Corridor) -> Lines:
     """Lines of constant energy height [m]: the faster the lower."""
-    low, high = corridor.pressure_altitude[[0, -1]]
-    kinks = np.array([kink if low < kink < high else np.nan for kink in ATMOSPHERE_KINKS])
+
+    def kink(energy: Array, speed: Array) -> tuple[Array, Array]:
+        if corridor.kinks.size == 0:
+            return np.full(energy.size, np.nan), np.full(energy.size, np.nan)
+        away = np.abs(corridor.altitude_at(energy, speed)[:, None] - corridor.kinks)
+        altitude = corridor.kinks[np.argmin(away, axis=1)]
+        return altitude, corridor.airspeed_at(energy, altitude)
+
     return Lines(
         edges=corridor.energy_edges,
         flight=lambda energy, speed: corridor.flight(corridor.altitude_at(energy, speed), speed),
-        kinks=lambda energy: corridor.airspeed_at(energy[:, None], kinks),
+        kink=kink,
+        layer=corridor.layer,
     )
 
 
 def altitude_lines(corridor: Corridor) -> Lines:
-    """Lines of constant pressure altitude [m]."""
+    """Lines of constant pressure altitude [m]; the air has no kink along them."""
     return Lines(
         edges=corridor.altitude_edges,
         flight=corridor.flight,
-        kinks=lambda altitude: np.full((altitude.size, len(ATMOSPHERE_KINKS)), np.nan),
+        kink=lambda altitude, speed: (np.full_like(altitude, np.nan), np.full_like(speed, np.nan)),
+        layer=corridor.layer,
     )

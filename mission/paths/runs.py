@@ -8,7 +8,6 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
-from mission.paths.corridor import KINK_NAMES
 from mission.paths.lines import Lines
 from mission.paths.path import FAST, FREE, LEVEL
 from mission.paths.search import Best
@@ -24,13 +23,15 @@ _SAME = 3.0  # m/s: runs that meet no further apart are made to meet
 class Run:
     """A smooth run over the lines' variable, n points.
 
-    ``speed`` is true airspeed [m/s]; ``held`` and ``held_by`` are those of a path's piece.
+    ``speed`` is true airspeed [m/s]; ``held`` and ``held_by`` are those of a path's piece;
+    ``level`` is the pressure altitude [m] of one that keeps to one.
     """
 
     row: Array
     speed: Array
     held: str
     held_by: str
+    level: float
 
 
 def smooth_runs(lines: Lines, found: Trace) -> list[Run]:
@@ -79,20 +80,21 @@ def _run(
 ) -> Run:
     """One run between two rows, through its base points that are not too close to its ends."""
     row, speed = best.row[part], best.speed[part]
-    held, held_by = str(best.state[part.start]), str(best.held_by[part.start])
+    held = str(best.state[part.start])
     is_inner = is_base[part] & (row > ends[0] + apart) & (row < ends[1] - apart)
     edges = lines.edges(ends)
     if held == FREE:
         first, last = np.clip(speed[[0, -1]], edges.slow, edges.fast)
     elif held == LEVEL:
-        first, last = lines.kinks(ends)[:, KINK_NAMES.index(held_by)]
+        first, last = lines.kink(ends, speed[[0, -1]])[1]
     else:
         first, last = edges.fast if held == FAST else edges.slow
     return Run(
         row=np.array([ends[0], *row[is_inner], ends[1]]),
         speed=np.array([first, *speed[is_inner], last]),
         held=held,
-        held_by=held_by,
+        held_by=str(best.held_by[part.start]),
+        level=float(best.level[part.start]),
     )
 
 

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from mission.paths.climber import Climber, Rates, rates
-from mission.paths.corridor import ATMOSPHERE_KINKS, KINK_NAMES
+from mission.paths.corridor import kink_name
 from mission.paths.lines import Lines
 from mission.paths.path import FAST, FREE, LEVEL, SLOW
 
@@ -23,6 +23,7 @@ Array = NDArray[np.float64]
 Goal = Callable[[Climber, Rates], Array]
 SHORT, LOST = "short", "lost"
 ON_KINK = -9
+_KINK = 4  # column of the tops: vertex, left, middle, right, kink of the air
 _SAMPLES = 41
 _NEAR = 0.1  # of the greatest sample: a maximum no further below it may in truth be greater
 _ROUNDS = 3
@@ -60,6 +61,7 @@ class Best:
     state : FREE; FAST or SLOW at an end of the line; LEVEL on a kink of the air; SHORT where
         excess power is not above the climber's least rate; LOST where no state was found
     held_by : the name of that end or kink
+    level : pressure altitude of that kink [m]; NaN elsewhere
     regime : (N, k); whole numbers at whose change the rates have a kink, those of the engine and
         the layer of the atmosphere; ON_KINK where the best point stands on the kink
     sampled_speed, sampled_value : along each line, (N, samples)
@@ -73,6 +75,7 @@ class Best:
     excess_power: Array
     state: NDArray[np.str_]
     held_by: NDArray[np.str_]
+    level: Array
     regime: NDArray[np.int64]
     sampled_speed: Array
     sampled_value: Array
@@ -89,6 +92,12 @@ class Best:
     def is_dead(self) -> bool:
         """Whether any of them is."""
         return self.alive < self.row.size
+
+    @property
+    def last(self) -> tuple[float, float]:
+        """The last line and the true airspeed [m/s] on it, the greatest allowed where it is LOST."""
+        speed = self.sampled_speed[-1, -1] if np.isnan(self.speed[-1]) else self.speed[-1]
+        return float(self.row[-1]), float(speed)
 
 
 @dataclass(frozen=True)
@@ -132,19 +141,18 @@ def best_points(search: Search, row: Array, near: Array | None = None) -> Best:
     start = None if near is None else np.moveaxis(near, -1, 0)
     sampled = _look(search, row[:, None], speed, start)
     peaks = _peaks(speed, sampled)
-    kinks = search.lines.kinks(row)[peaks.line]
-    is_near = (kinks > peaks.speed[:, :1]) & (kinks < peaks.speed[:, 2:])
-    unanswered = sampled.unanswered
+    around, unanswered = peaks.speed, sampled.unanswered
     for _ in range(_ROUNDS):
         peaks, lost = _closed_in(search, row, peaks)
         unanswered += lost
-    tops = np.hstack(
-        [_vertex(peaks)[:, None], peaks.speed, np.where(is_near, kinks, peaks.speed[:, 1:2])]
-    )
+    middle = peaks.speed[:, 1]
+    level, kink = search.lines.kink(row[peaks.line], middle)
+    is_near = (kink > around[:, 0]) & (kink < around[:, 2])
+    tops = np.column_stack([_vertex(peaks), peaks.speed, np.where(is_near, kink, middle)])
     seen = _look(search, row[peaks.line, None], tops, peaks.unknowns)
     column = _chosen(seen.value, is_near)
     return Best(
-        **_winners(search, row, peaks.line, column, tops, seen),
+        **_winners(search, row, peaks.line, column, tops, level, seen),
         sampled_speed=speed,
         sampled_value=sampled.value,
         sampled_unknowns=np.moveaxis(sampled.unknowns, 0, -1),
@@ -166,9 +174,7 @@ def _look(search: Search, row: Array, speed: Array, near: Array | None = None) -
     return _Seen(
         value=search.goal(search.climber, found),
         excess_power=found.excess_power,
-        regime=np.concatenate(
-            [found.regime, np.searchsorted(ATMOSPHERE_KINKS, flight.pressure_altitude)[None]]
-        ),
+        regime=np.concatenate([found.regime, search.lines.layer(flight.pressure_altitude)[None]]),
         unknowns=found.unknowns,
         unanswered=int(np.count_nonzero(~found.is_answered)),
     )
@@ -223,8 +229,8 @@ def _vertex(peaks: _Peaks) -> Array:
 def _chosen(value: Array, is_near: NDArray[np.bool_]) -> NDArray[np.intp]:
     """Which column of the tops: the vertex unless a sample or a kink of the air is higher."""
     rank = value.copy()
-    rank[:, 1:4] -= _ROUND_OFF * np.abs(rank[:, 1:4])
-    rank[:, 4:][~is_near] = -np.inf
+    rank[:, 1:_KINK] -= _ROUND_OFF * np.abs(rank[:, 1:_KINK])
+    rank[~is_near, _KINK] = -np.inf
     column: NDArray[np.intp] = np.argmax(rank, axis=1)
     return column
 
@@ -235,6 +241,7 @@ def _winners(
     peak_line: NDArray[np.intp],
     column: NDArray[np.intp],
     tops: Array,
+    level: Array,
     seen: _Seen,
 ) -> dict[str, Any]:
     """The greatest of the peaks of each line, and what holds it there."""
@@ -249,29 +256,38 @@ def _winners(
         return values
 
     speed, excess = of_lines(tops), of_lines(seen.excess_power)
-    kink, regime = np.zeros(row.size, dtype=int), np.zeros((row.size, len(seen.regime)), dtype=int)
-    kink[line] = np.maximum(column[winner] - 3, 0)
-    left, right = seen.regime[:, winner, 1].T, seen.regime[:, winner, 3].T
-    here = seen.regime[:, winner, column[winner]].T
-    is_free = (tops[winner, 1] < tops[winner, 2]) & (tops[winner, 2] < tops[winner, 3])
-    regime[line] = np.where((left != right) & is_free[:, None], ON_KINK, here)
+    levels = np.full(row.size, np.nan)
+    levels[line] = np.where(column == _KINK, level, np.nan)[winner]
+    regime = np.zeros((row.size, len(seen.regime)), dtype=int)
+    regime[line] = _regimes(tops, column, seen)[winner]
     edges = search.lines.edges(row)
     states = {
         LOST: np.isnan(speed),
         SHORT: excess <= search.climber.least_rate,
         FAST: speed >= edges.fast,
         SLOW: speed <= edges.slow,
-        LEVEL: kink > 0,
+        LEVEL: np.isfinite(levels),
     }
-    names = [np.full(row.size, ""), np.full(row.size, ""), edges.fast_by, edges.slow_by]
+    state = np.select(list(states.values()), list(states), FREE)
+    kinks = np.array([kink_name(float(altitude)) for altitude in levels])
+    bounds = {FAST: edges.fast_by, SLOW: edges.slow_by, LEVEL: kinks}
     return {
         "row": row,
         "speed": speed,
         "value": of_lines(seen.value),
         "excess_power": excess,
-        "state": np.select(list(states.values()), list(states), FREE),
-        "held_by": np.select(
-            list(states.values()), [*names, np.array(["", *KINK_NAMES])[kink]], ""
-        ),
+        "state": state,
+        "held_by": np.select([state == name for name in bounds], list(bounds.values()), ""),
+        "level": np.where(state == LEVEL, levels, np.nan),
         "regime": regime,
     }
+
+
+def _regimes(tops: Array, column: NDArray[np.intp], seen: _Seen) -> NDArray[np.int64]:
+    """Regimes (K, k) at the chosen tops; ON_KINK where those to its left and right differ."""
+    here = seen.regime[:, np.arange(column.size), column].T
+    left, middle, right = tops[:, 1:_KINK].T
+    is_between = ((left < middle) & (middle < right))[:, None]
+    differs = seen.regime[:, :, 1].T != seen.regime[:, :, _KINK - 1].T
+    regime: NDArray[np.int64] = np.where(is_between & differs, ON_KINK, here)
+    return regime
