@@ -20,6 +20,7 @@ from mission.paths.runs import smooth_runs
 from mission.paths.search import Best, Search, excess_power
 from mission.paths.trace import trace
 
+_SHORTEST = 1e-3  # m of altitude: no shorter way is looked at
 _BEYOND = 1e-6  # m of altitude, from the last line with a speed to one without
 
 
@@ -47,8 +48,8 @@ def best_rate_path(climber: Climber, start: State, end: State) -> EnergyPath:
             "gains no height, or no energy; end it higher or faster"
         )
     edge = open_until(corridor.altitude_edges, low, high)
-    if edge is None:
-        return EnergyPath((), _closed(corridor, low), 0.0, 0)
+    if edge is None or edge - low < _SHORTEST:
+        return EnergyPath((), _closed(corridor, low if edge is None else edge), 0.0, 0)
     search = Search(climber, altitude_lines(corridor), excess_power)
     found = trace(search, low, edge)
     stop = _stop(corridor, found.best) if found.best.is_dead else None

@@ -20,6 +20,7 @@ from mission.paths.search import Best, Goal, Search, excess_power, excess_power_
 from mission.paths.trace import trace
 
 _BEYOND = 1e-6  # m of energy height, from the last line with a speed to one without
+_SHORTEST = 1e-3  # m of energy height: no shorter way is looked at
 _AWAY = 1e-3  # m of altitude: nothing is exchanged between states no further apart
 
 
@@ -54,8 +55,8 @@ def _path(climber: Climber, start: State, end: State, goal: Goal) -> EnergyPath:
             "where it begins; end it higher or faster"
         )
     edge = open_until(corridor.energy_edges, first, last)
-    if edge is None:
-        return EnergyPath((), _closed(corridor, first), 0.0, 0)
+    if edge is None or edge - first < _SHORTEST:
+        return EnergyPath((), _closed(corridor, first if edge is None else edge), 0.0, 0)
     search = Search(climber, energy_lines(corridor), goal)
     found = trace(search, first, edge)
     stop = _stop(corridor, found.best) if found.best.is_dead else None

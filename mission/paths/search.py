@@ -95,9 +95,8 @@ class Best:
 
     @property
     def last(self) -> tuple[float, float]:
-        """The last line and the true airspeed [m/s] on it, the greatest allowed where it is LOST."""
-        speed = self.sampled_speed[-1, -1] if np.isnan(self.speed[-1]) else self.speed[-1]
-        return float(self.row[-1]), float(speed)
+        """The last line and the true airspeed [m/s] on it."""
+        return float(self.row[-1]), float(self.speed[-1])
 
 
 @dataclass(frozen=True)
@@ -187,6 +186,7 @@ def _peaks(speed: Array, sampled: _Seen) -> _Peaks:
     before, after = np.hstack([wall, value[:, :-1]]), np.hstack([value[:, 1:], wall])
     most = value.max(axis=1, keepdims=True)
     is_peak = (value >= before) & (value > after) & (value >= most - _NEAR * np.abs(most))
+    is_peak[:, 0] |= most[:, 0] == -np.inf  # a line without any answer has to have a point too
     line, sample = np.nonzero(is_peak)
     near = np.clip(sample[:, None] + np.array([-1, 0, 1]), 0, speed.shape[1] - 1)
     unknowns = sampled.unknowns[:, line, sample, None]
@@ -217,8 +217,9 @@ def _vertex(peaks: _Peaks) -> Array:
         np.where(is_smooth, middle - left, 1.0),
         np.where(is_smooth, right - middle, 1.0),
     )
-    rise = np.where(is_smooth, top - low, 1.0) / before
-    fall = np.where(is_smooth, top - high, 1.0) / after
+    with np.errstate(invalid="ignore"):  # minus infinity where the engine has no state
+        rise = np.where(is_smooth, top - low, 1.0) / before
+        fall = np.where(is_smooth, top - high, 1.0) / after
     # Slopes rise and -fall half way to the neighbours, and zero in between.
     bend = np.where(rise + fall > 0.0, rise + fall, 1.0)
     shift = 0.5 * (rise * (before + after) / bend - before)
@@ -245,24 +246,16 @@ def _winners(
     seen: _Seen,
 ) -> dict[str, Any]:
     """The greatest of the peaks of each line, and what holds it there."""
-    picked = (np.arange(column.size), column)
-    falling = np.lexsort((seen.value[picked], peak_line))[::-1]
-    line, first = np.unique(peak_line[falling], return_index=True)
+    every = np.arange(column.size)
+    falling = np.lexsort((seen.value[every, column], peak_line))[::-1]
+    _, first = np.unique(peak_line[falling], return_index=True)
     winner = falling[first]
-
-    def of_lines(array: Array) -> Array:
-        values = np.full(row.size, np.nan)
-        values[line] = array[picked][winner]
-        return values
-
-    speed, excess = of_lines(tops), of_lines(seen.excess_power)
-    levels = np.full(row.size, np.nan)
-    levels[line] = np.where(column == _KINK, level, np.nan)[winner]
-    regime = np.zeros((row.size, len(seen.regime)), dtype=int)
-    regime[line] = _regimes(tops, column, seen)[winner]
+    at = (winner, column[winner])
+    speed, value, excess = tops[at], seen.value[at], seen.excess_power[at]
+    levels = np.where(column[winner] == _KINK, level[winner], np.nan)
     edges = search.lines.edges(row)
     states = {
-        LOST: np.isnan(speed),
+        LOST: ~np.isfinite(value),
         SHORT: excess <= search.climber.least_rate,
         FAST: speed >= edges.fast,
         SLOW: speed <= edges.slow,
@@ -274,12 +267,12 @@ def _winners(
     return {
         "row": row,
         "speed": speed,
-        "value": of_lines(seen.value),
+        "value": value,
         "excess_power": excess,
         "state": state,
         "held_by": np.select([state == name for name in bounds], list(bounds.values()), ""),
         "level": np.where(state == LEVEL, levels, np.nan),
-        "regime": regime,
+        "regime": _regimes(tops, column, seen)[winner],
     }
 
 

@@ -133,8 +133,7 @@ def breaks(best: Best) -> Mask:
 
 def _is_jump(best: Best) -> Mask:
     """Where a lower value parts the best speeds of neighbouring lines, on either of the two."""
-    known = np.where(np.isfinite(best.speed), best.speed, best.sampled_speed[:, 0])
-    here, there = known[:-1], known[1:]
+    here, there = best.speed[:-1], best.speed[1:]
     parted = np.zeros(here.size, dtype=bool)
     for line in (slice(None, -1), slice(1, None)):
         speed, value = best.sampled_speed[line], best.sampled_value[line]
