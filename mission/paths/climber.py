@@ -31,7 +31,6 @@ class Climber:
     engine_count : how many are running
     extra_drag_area : of what hangs outside, times dynamic pressure [m2]
     ground_elevation : pressure altitude below which no path goes [m]
-    greatest_dynamic_pressure : [Pa]; no bound where None
     least_rate : specific excess power at which a climb is over [m/s]; 100 ft/min, an operational
         ceiling's rate of climb
     least_over_stall : least speed as a multiple of stall speed; common practice, no source
@@ -46,7 +45,6 @@ class Climber:
     air_kinks: tuple[float, ...] = ()
     extra_drag_area: float = 0.0
     ground_elevation: float = 0.0
-    greatest_dynamic_pressure: float | None = None
     least_rate: float = 100.0 * FOOT / 60.0
     least_over_stall: float = 1.2
 

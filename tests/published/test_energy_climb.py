@@ -102,12 +102,12 @@ def on_straight_lines(grid: Grid) -> Grid:
 def fighter(folder: Path, grid: Grid, *, polar: str = "monotone cubic") -> Climber:
     """The fighter from its files."""
     rows = ["pressure_altitude_m,mach,rating,net_thrust_n,fuel_flow_kg_per_s"]
-    for i, altitude in enumerate(grid.altitude):
-        for j, mach in enumerate(grid.mach):
+    for i, altitude in enumerate((FOOT * grid.altitude).tolist()):
+        for j, mach in enumerate(grid.mach.tolist()):
             for level, share in LEVELS.items():
                 thrust = float(share * grid.thrust[i, j] * POUND_FORCE)
                 fuel = thrust / (GRAVITY * IMPULSE)
-                rows.append(f"{altitude * FOOT!r},{mach!r},{level},{thrust!r},{fuel!r}")
+                rows.append(f"{altitude!r},{mach!r},{level},{thrust!r},{fuel!r}")
     (folder / "thrust.csv").write_text("\n".join(rows) + "\n", encoding="utf-8")
     engine: Content = {
         "kind": "tabulated",
