@@ -11,6 +11,7 @@ from engine.interface import Engine
 from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
 from mission.coverage import refuse_missing_ratings, refuse_other_day
+from mission.field.of_flight import field_of, runway_margin
 from mission.free import solution_of, solve_free
 from mission.fuel_plan import add_up, closure, tank_warnings
 from mission.limits import first_failure, margins
@@ -198,6 +199,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
     failure = first_failure(world, plan, fine, written, total, logs, closes=closes)
     flown = failure is None
     shown = _to_show(plan, logs, failure)
+    field = field_of(world, plan, written, logs) if flown else None
     return Flight(
         mission=written.name,
         aircraft=world.aircraft.name,
@@ -209,7 +211,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
             world, plan, written, solved.coarse, sums, free=solved.free, with_cost=flown
         ),
         cross_check=cross_checks(plan, logs, total) if flown else (),
-        margins=margins(world, shown, total),
+        margins=(*margins(world, shown, total), *runway_margin(field)),
         assumed=(
             *(f"mission: {line}" for line in mission.assumed),
             *(f"aircraft: {line}" for line in world.aircraft.assumed),
@@ -225,6 +227,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
         solution=solution_of(written, solved.root),
         reserve_rule=written.reserves.rule_in_force,
         fuel_flow_margin=sums.fuel_flow_margin,
+        field=field,
     )
 
 

@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal
 
 from pydantic import Field, field_validator, model_validator
 
-from engine.quantities import Altitude, Day, Mass, parse_quantity
+from engine.quantities import Altitude, Day, Length, Mass, parse_quantity
 from engine.reading import Table, check, defaults_used, read_toml
 from mission.legs import AirTable, Headwind, LegTable, distance_or_word
 from mission.reserves.tables import ReservesTable
@@ -50,6 +50,12 @@ class PlaceTable(Table):
     elevation: Altitude = 0.0
 
 
+class DepartureTable(PlaceTable):
+    """``runway`` is the field length available; nothing is checked against it where unsaid."""
+
+    runway: Annotated[Length, Field(gt=0.0, le=20_000.0)] | None = None
+
+
 class MissionFile(Table):
     """A mission file."""
 
@@ -66,7 +72,7 @@ class MissionFile(Table):
     headwind: Headwind = 0.0
     air: AirTable | None = None
     leg: Annotated[list[LegTable], Field(default_factory=list, max_length=50)]
-    departure: PlaceTable = PlaceTable()
+    departure: DepartureTable = DepartureTable()
     destination: PlaceTable = PlaceTable()
     fuel: FuelTable
     reserves: ReservesTable = ReservesTable()

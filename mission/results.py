@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import flight_condition
 from engine.fuels import KEROSENE, Fuel
+from mission.field.result import FieldPerformance
 from mission.reserves.registry import RULES, Rule
 
 Array = NDArray[np.float64]
@@ -169,6 +170,7 @@ class Flight:
     """A mission flown, or flown as far as it could be (``failure`` says why not further).
 
     ``fuel_flow_margin`` [kg] is the part of block fuel that the reserve rule's margin has added.
+    ``field`` is of a mission that could be flown and has a take-off, else None.
     """
 
     mission: str
@@ -187,6 +189,7 @@ class Flight:
     solution: Solution | None = None
     reserve_rule: Rule = RULES["none"]
     fuel_flow_margin: float = 0.0
+    field: FieldPerformance | None = None
 
     @property
     def carbon_dioxide(self) -> float:

@@ -18,8 +18,8 @@ def limit_unit(name: str, unit: str, units: Units) -> Unit:
         return units.force
     if unit == "m/s":
         return units.vertical_speed if name.startswith("rate of") else units.speed
-    if unit == "m" and name.startswith("pressure altitude"):
-        return Unit("m", 1.0) if units is METRIC else units.altitude
+    if unit == "m" and name.startswith(("pressure altitude", "take-off field length")):
+        return units.length
     if unit == "m":
         return units.distance
     return Unit(unit, 1.0)

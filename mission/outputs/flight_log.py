@@ -12,6 +12,7 @@ from rich.text import Text
 from engine.fuels import KEROSENE
 from mission.outputs.assumptions import assumed_by_file
 from mission.outputs.failure import failure_headline, failure_statement, limit_scale
+from mission.outputs.field_section import field_sections
 from mission.outputs.held_by import holders
 from mission.outputs.margins import least_margin, room
 from mission.outputs.page import (
@@ -73,6 +74,7 @@ def flight_log(
         parts.append(_cross_check(flight, scales, width))
     if not on_the_way:
         parts.append(_margins(flight, units, width))
+    parts += field_sections(flight.field, units, width)
     if flight.failure is not None:
         parts.append(
             section("Why it cannot be flown", pairs(failure_statement(flight, units, scales)))

@@ -12,6 +12,7 @@ from engine.fuels import Fuel
 from engine.installation.pod import Pod
 from engine.interface import Engine, EngineState, Outcome
 from mission.comparison import Comparison, mean_cruise_consumption
+from mission.outputs.field_record import field_record
 from mission.outputs.margins import least_margin
 from mission.outputs.partial import flown_segments
 from mission.outputs.wording import day_in_words
@@ -53,6 +54,7 @@ def flight_record(flight: Flight) -> Record:
             for check in flight.cross_check
         ],
         "margins": [margin_record(margin) for margin in flight.margins],
+        "field": field_record(flight.field),
         "assumed": list(flight.assumed),
         "warnings": list(flight.warnings),
         "failure": failure_record(flight.failure),

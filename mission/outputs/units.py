@@ -47,6 +47,7 @@ class Units:
     specific_fuel_consumption: Unit
     specific_air_range: Unit
     time: Unit = Unit("min", 60.0)
+    length: Unit = Unit("m", 1.0)
 
     def gross_mass(self, greatest: float) -> Unit:
         """Unit for a column of aircraft masses up to ``greatest`` [kg]: large ones in tonnes."""
@@ -76,6 +77,7 @@ TRADE = Units(
     fuel_flow=Unit("lb/h", _POUND / 3600.0),
     specific_fuel_consumption=Unit("lb/(lbf h)", 1.0 / (3600.0 * _STANDARD_GRAVITY)),
     specific_air_range=Unit("nmi/lb", _NAUTICAL_MILE / _POUND),
+    length=Unit("ft", _FOOT),
 )
 SYSTEMS = {UnitSystem.METRIC: METRIC, UnitSystem.TRADE: TRADE}
 

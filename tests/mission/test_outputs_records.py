@@ -33,7 +33,7 @@ STEPS = {
 }  # fmt: skip
 FLIGHT = {
     "format", "version", "mission", "aircraft", "engine", "fuel", "day", "flown", "totals",
-    "solved", "segments", "reserves", "reserve_rule", "cross_check", "margins", "assumed",
+    "solved", "segments", "reserves", "reserve_rule", "cross_check", "margins", "field", "assumed",
     "warnings", "failure",
 }  # fmt: skip
 # Cruise at flight level 350 and Mach 0.78 of the engine that all engine tests share.
