@@ -114,4 +114,4 @@ def parts_without_drag(aircraft: Aircraft) -> tuple[str, ...]:
 
 
 def _given(aircraft: Aircraft, part: str) -> float:
-    return float(getattr(aircraft, f"{part}_drag_increment", 0.0))
+    return float(getattr(aircraft, f"{part}_drag_increment"))
