@@ -81,7 +81,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     ends: dict[int, float] = {}
     masses: dict[int, tuple[float, float]] = {}
     choices = Choices()
-    written, aircraft = mission.written, world.aircraft
+    written = mission.written
     few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
     coarse: Marched | None = None
     root: Root | None = None
@@ -104,7 +104,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
         if not coarse.is_settled or (moved < _SAME_ALTITUDE and choices.is_at_rest):
             break
     assert coarse is not None
-    close = closure(plan, written, aircraft)
+    close = closure(plan, written)
     free = None if root is None else root.value
     fine = coarse
     if coarse.is_settled:
@@ -133,7 +133,7 @@ def _march_coarse(
     root: Root | None,
 ) -> tuple[Marched, Root | None]:
     """The plan with few nodes, solved for what is free in it, if anything is."""
-    close = closure(plan, written, world.aircraft)
+    close = closure(plan, written)
     if not written.free:
         return march(world, plan.parts, count, stop, close, near, _COARSE_SETTLED), None
     return solve_free(world, plan, written, count, stop, close, near, root)

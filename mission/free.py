@@ -17,6 +17,7 @@ from mission.results import Solution
 from mission.solving import TOLERANCE, Root, largest_with_margin
 
 Array = NDArray[np.float64]
+_LEAST_RATE = 1e-12  # kg/m or kg/s: where nothing stretches the answer is the guess
 _SETTLED = 1e-9  # of mass: the margin is a small difference of fuels
 
 
@@ -42,8 +43,11 @@ class _Asked:
             return np.full(flown.stop_mass.shape, -np.inf)
         members = range(flown.stop_mass.size)
         sums = [add_up(self.plan, self.written, flown.integrals, m) for m in members]
-        wanted: Array = self.plan.stop_empty_mass + np.array([each.reserves for each in sums])
-        return flown.stop_mass - wanted
+        reserves = np.array([each.reserves for each in sums])
+        margin: Array = (
+            flown.stop_mass - self.plan.stop_empty_mass - self.plan.parts.added - reserves
+        )
+        return margin
 
 
 def solve_free(
@@ -67,8 +71,8 @@ def solve_free(
     flown = [first]
     margin = asked.margins(first)
     least = _least(plan, first)
-    rate = max(sum(_rates(plan, first)), 1e-12)
-    burnt = sum(float(fuel[-1, 0]) for fuel in first.integrals.fuel)
+    rate = np.maximum(np.sum(_rates(plan, first), axis=0), _LEAST_RATE)
+    burnt = np.sum([fuel[-1] for fuel in first.integrals.fuel], axis=0)
     guess = least + np.maximum(margin, 0.0) / rate if earlier is None else earlier.value
 
     def again(free: Array) -> Array:
@@ -94,15 +98,14 @@ def _least(plan: FlightPlan, flown: Marched) -> Array:
     return least
 
 
-def _rates(plan: FlightPlan, flown: Marched) -> list[float]:
-    """Fuel per free metre or second of each span that stretches, as it begins."""
-    rates = []
+def _rates(plan: FlightPlan, flown: Marched) -> list[Array]:
+    """Fuel per free metre or second [kg] of each span that stretches, as it begins (members,)."""
+    rates = [np.zeros_like(flown.stop_mass)]
     for track in flown.tracks:
         if track.nodes is None or not stretches(plan, track.span):
             continue
-        flow = float(track.nodes.propulsion.fuel_flow[0, 0])
-        pace = float(track.nodes.rate[0, 0])
-        rates.append(flow / max(pace, 1.0) if np.isfinite(pace) else flow)
+        flow, pace = track.nodes.propulsion.fuel_flow[0], track.nodes.rate[0]
+        rates.append(flow / np.where(np.isfinite(pace), np.maximum(pace, 1.0), 1.0))
     return rates
 
 

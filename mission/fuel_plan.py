@@ -85,21 +85,29 @@ def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member:
     mission_fuel = float(burnt[is_mission].sum())
     received = sum(span.received for span in plan.parts.mission)
     fuel_received = received - (plan.stop_empty_mass - plan.first_empty_mass)
-    load = _known_load(plan, written, burnt)
+    loads = loaded(plan, written, integrals)
+    load = None if loads is None else float(np.broadcast_to(loads, (member + 1,))[member])
     trip, fuels = price(items, flown, trip, mission_fuel - fuel_received, load)
     by_flow = is_mission & np.array([span.march != "book" for span in spans])
     margin = float(burnt[by_flow].sum()) * (1.0 - 1.0 / fuel_flow_factor(items))
     return Sums(mission_fuel, trip, flown, fuels, margin)
 
 
-def _known_load(plan: FlightPlan, written: MissionFile, burnt: Array) -> float | None:
-    """Usable fuel at engine start [kg] where it does not depend on the reserves."""
+def loaded(plan: FlightPlan, written: MissionFile, integrals: Integrals) -> Array | None:
+    """Usable fuel at engine start [kg], one or (members,); None where it is as needed."""
+    if written.fuel.as_needed:
+        return None
     if plan.take_off_mass is None:
-        return written.fuel.load
+        assert written.fuel.load is not None
+        return np.array([written.fuel.load])
     first = trip_rows(plan)[0]
-    before = [i for i, span in enumerate(plan.parts.mission) if span.segment < first]
-    lost = sum(burnt[i] - plan.parts.mission[i].received for i in before)
-    return plan.take_off_mass + float(lost) - plan.first_empty_mass
+    lost = np.zeros(1)
+    for span, fuel in zip(plan.parts.mission, integrals.fuel, strict=False):
+        if span.segment < first:
+            lost = lost + fuel[-1] - span.received
+    empty = plan.first_empty_mass + plan.parts.added
+    most = np.minimum(plan.most_fuel, plan.most_ramp_mass - empty)
+    return np.minimum(plan.take_off_mass + lost - empty, most)
 
 
 def _cruise_fuel_flow(
@@ -113,32 +121,23 @@ def _cruise_fuel_flow(
     return float(burnt[chosen].sum()) / total if total > 0.0 else 0.0
 
 
-def closure(plan: FlightPlan, written: MissionFile, aircraft: Aircraft) -> Closure:
+def closure(plan: FlightPlan, written: MissionFile) -> Closure:
     """The mass at the end of the mission that the fuel asked for leaves."""
-    spans = plan.parts.mission
+    spans, added = plan.parts.mission, plan.parts.added
     received = sum(span.received for span in spans)
-    first = trip_rows(plan)[0]
-    before = [i for i, span in enumerate(spans) if span.segment < first]
 
     def as_needed(stop: Array, integrals: Integrals) -> Array:
         reserves = [add_up(plan, written, integrals, m).reserves for m in range(stop.size)]
-        return plan.stop_empty_mass + np.array(reserves)
+        return plan.stop_empty_mass + added + np.array(reserves)
 
     def given(stop: Array, integrals: Integrals) -> Array:
-        assert written.fuel.load is not None
-        burnt = sum(fuel[-1] for fuel in integrals.fuel[: len(spans)])
-        return plan.first_empty_mass + written.fuel.load + received - burnt
+        load = loaded(plan, written, integrals)
+        assert load is not None
+        burnt = np.sum([fuel[-1] for fuel in integrals.fuel[: len(spans)]], axis=0)
+        mass: Array = plan.first_empty_mass + added + load + received - burnt
+        return mass
 
-    def to_take_off_mass(stop: Array, integrals: Integrals) -> Array:
-        mass = written.fuel.to_take_off_mass
-        wanted = mass if isinstance(mass, float) else aircraft.maximum_take_off_mass
-        burnt = sum(fuel[-1] for fuel in integrals.fuel[: len(spans)])
-        on_ground = sum(integrals.fuel[i][-1] - spans[i].received for i in before)
-        return np.broadcast_to(wanted + on_ground + received - burnt, stop.shape)
-
-    if written.fuel.as_needed:
-        return as_needed
-    return to_take_off_mass if written.fuel.load is None else given
+    return as_needed if written.fuel.as_needed else given
 
 
 def tank_warnings(aircraft: Aircraft, fuel: Fuel, loaded: float) -> tuple[str, ...]:

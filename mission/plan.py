@@ -6,8 +6,10 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Literal
 
+import numpy as np
+
 from engine.errors import InputRefused
-from mission.aircraft import Aircraft
+from mission.aircraft import Aircraft, usable_fuel
 from mission.legs import air_of
 from mission.march.span import RESERVE_LEG, Span, SpeedRule
 from mission.march.sweep import Parts
@@ -51,7 +53,8 @@ class FlightPlan:
 
     ``first_empty_mass`` is without usable fuel before anything leaves or comes aboard [kg],
     ``first_tank_capacity`` the fuel that stores hold then [kg]; ``take_off_mass`` [kg] is what
-    fuel is loaded up to, if that is how it is given.
+    fuel is loaded up to, if that is how it is given; ``most_fuel`` and ``most_ramp_mass`` [kg] then
+    bound it too, where it is loaded to the limit.
     """
 
     rows: tuple[Row, ...]
@@ -59,6 +62,8 @@ class FlightPlan:
     first_empty_mass: float
     first_tank_capacity: float = 0.0
     take_off_mass: float | None = None
+    most_fuel: float = np.inf
+    most_ramp_mass: float = np.inf
 
     @property
     def stop_empty_mass(self) -> float:
@@ -188,7 +193,14 @@ def lay_out(
         first_empty_mass=load.empty_mass(world.aircraft),
         first_tank_capacity=load.tank_capacity(world.aircraft),
         take_off_mass=_take_off_mass(written, world.aircraft),
+        **(_most(world, load) if written.fuel.to_take_off_mass == "limit" else {}),
     )
+
+
+def _most(world: World, load: Load) -> dict[str, float]:
+    """What tanks and ramp mass let the fuel be [kg]."""
+    tanks = usable_fuel(world.aircraft, world.engine.fuel) + load.tank_capacity(world.aircraft)
+    return {"most_fuel": tanks, "most_ramp_mass": world.aircraft.maximum_ramp_mass}
 
 
 def _take_off_mass(written: MissionFile, aircraft: Aircraft) -> float | None:

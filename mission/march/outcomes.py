@@ -91,10 +91,11 @@ def slopes_of(tracks: list[Track]) -> Slopes | None:
     )
 
 
-def set_nodes(world: World, track: Track, rest: Array, free: Array) -> None:
+def set_nodes(world: World, track: Track, rest: Array, free: Array, added: Array) -> None:
     """Nodes of a span from the engine's answer and the masses of the last sweep.
 
-    ``rest`` (members,) is the distance [m] left for it, ``free`` what the flight is solved for.
+    ``rest`` (members,) is the distance [m] left for it, ``free`` what the flight is solved for,
+    ``added`` what members carry on top of the mission's payload [kg].
     """
     span, mass = track.span, track.mass
     if span.march == "book":
@@ -103,7 +104,7 @@ def set_nodes(world: World, track: Track, rest: Array, free: Array) -> None:
     propulsion = _propulsion(world, track)
     dead = dead_drag(track)
     if track.is_level and span.march != "turn":
-        extent = _extent(track, rest, free)
+        extent = _extent(track, rest, free, added)
         lift = mass * STANDARD_GRAVITY
         resistance = level.airframe_drag(span, world, track.flight, lift) + dead
         track.nodes = level.level_nodes(span, track.flight, mass, extent, propulsion, resistance)
@@ -128,7 +129,7 @@ def set_nodes(world: World, track: Track, rest: Array, free: Array) -> None:
         )
 
 
-def _extent(track: Track, rest: Array, free: Array) -> Array:
+def _extent(track: Track, rest: Array, free: Array, added: Array) -> Array:
     """Distance [m], time [s] or burn [kg] of a level span, shape (members,)."""
     span = track.span
     if span.is_free:
@@ -137,7 +138,8 @@ def _extent(track: Track, rest: Array, free: Array) -> Array:
         if span.burn is not None:
             return np.atleast_1d(span.burn)
         assert span.end_mass is not None
-        to_burn: Array = np.maximum(track.mass[0] - span.end_mass, 0.0)
+        end = span.end_mass + (added if span.ends_by_fuel else 0.0)
+        to_burn: Array = np.maximum(track.mass[0] - end, 0.0)
         return to_burn
     left: Array = np.maximum(rest, 0.0)
     return left if span.extent is None else np.atleast_1d(span.extent)

@@ -100,6 +100,7 @@ class Span:
     extent : distance [m], time [s] or change of heading [rad]; None for the rest of the distance
     is_free : its extent is what the flight is solved for
     end_mass : mass [kg] at which a march by burn ends; ``burn`` [kg] what it burns instead
+    ends_by_fuel : whether that mass is one of fuel aboard, which a heavier payload lies under
     load_factor : of a march by turn; None for what thrust, lift and structure allow
     is_by_heading : whether a turn's extent is a change of heading, not a time
     path_angle, vertical_speed : given ones of a descent [rad, m/s, both negative]; else None
@@ -124,10 +125,11 @@ class Span:
     end_altitude: float = 0.0
     start_speed: SpeedRule = STANDSTILL
     end_speed: SpeedRule = STANDSTILL
-    extent: float | None = None
+    extent: float | Array | None = None
     is_free: bool = False
     end_mass: float | None = None
     burn: float | None = None
+    ends_by_fuel: bool = False
     load_factor: float | None = None
     is_by_heading: bool = False
     path_angle: float | None = None

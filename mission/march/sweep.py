@@ -34,14 +34,16 @@ _HEAVIEST = 1e8  # kg: a mass on its way to nowhere
 class Parts:
     """Spans of the mission and of the reserve flight.
 
-    ``distances`` [m] are what legs have to cover over the ground, by leg, scalars or (members,);
-    a leg of ``free_legs`` covers what the flight is solved for instead.
+    ``distances`` [m] are what legs have to cover over the ground, by leg; a leg of ``free_legs``
+    covers what the flight is solved for instead. ``added`` (members,) is what members carry on top
+    of the mission's payload [kg].
     """
 
     mission: Sequence[Span]
     reserve: Sequence[Span] = ()
-    distances: Mapping[int, float | Array] = field(default_factory=dict)
+    distances: Mapping[int, float] = field(default_factory=dict)
     free_legs: frozenset[int] = frozenset()
+    added: Array = field(default_factory=lambda: np.zeros(1), compare=False)
 
 
 @dataclass(frozen=True)
@@ -162,7 +164,7 @@ def _integrate(world: World, tracks: list[Track], parts: Parts, free: Array) -> 
     for index in sorted(range(len(tracks)), key=lambda i: tracks[i].span.takes_rest):
         track = tracks[index]
         leg = track.span.leg
-        set_nodes(world, track, left.get(leg, nothing), free)
+        set_nodes(world, track, left.get(leg, nothing), free, parts.added)
         sums[index] = _integrals_along(track)
         if not track.span.takes_rest:
             left[leg] = left.get(leg, nothing) - sums[index][2][-1]

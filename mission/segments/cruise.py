@@ -135,6 +135,7 @@ class Cruise(Segment):
             extent=self.distance if isinstance(self.distance, float) else self.time,
             is_free=self.is_free,
             end_mass=self._end_mass(here),
+            ends_by_fuel=self.until_fuel is not None,
             holds_lift_coefficient=climbs,
             lift_coefficient=self.lift_coefficient if climbs else None,
         )

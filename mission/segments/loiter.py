@@ -85,6 +85,7 @@ class Loiter(Segment):
             is_free=self.is_free,
             burn=self.fuel,
             end_mass=None if until is None else here.load.empty_mass(here.aircraft) + until,
+            ends_by_fuel=until is not None,
             gains_distance=False,
         )
         return [span], replace(here, pressure_altitude=altitude, speed=speed, on_ground=False)

@@ -41,7 +41,7 @@ def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here
     here = replace(here, pressure_altitude=span.start_altitude, speed=span.end_speed)
     for (mass, mach), level in zip(chosen[:count], levels[1:], strict=False):
         at = span if here.pressure_altitude is None else _at(span, here.pressure_altitude)
-        spans.append(replace(at, march="burn", extent=None, end_mass=mass))
+        spans.append(replace(at, march="burn", extent=None, end_mass=mass, ends_by_fuel=False))
         climb, here = _climb(here, span, level, mach)
         spans += climb
     assert here.pressure_altitude is not None
