@@ -157,18 +157,11 @@ def _approach(table: AlternateTable) -> Approach:
 
 def _least_holds(items: Sequence[Item], over: Here) -> list[Stage]:
     """Holds over the destination that priced items are not to be less than."""
+    elevation = over.destination_elevation
     return [
-        Stage(
-            i,
-            i,
-            _hold(
-                Hold(least_hold_time(item), name=f"{item.name} hold"), over.destination_elevation
-            ),
-            over,
-            "aside",
-        )
+        Stage(i, i, _hold(Hold(time, name=item.name), elevation), over, "aside")
         for i, item in enumerate(items)
-        if least_hold_time(item) > 0.0
+        if (time := least_hold_time(item)) > 0.0
     ]
 
 
