@@ -194,8 +194,17 @@ def test_times_are_priced_at_the_flow_of_the_longest_cruise(tmp_path: Path) -> N
     "fuel", [{"as_needed": True}, {"load": "4 t"}, {"to_take_off_mass": "22 t"}], ids=str
 )
 def test_initial_fuel_is_what_is_loaded(tmp_path: Path, fuel: Content) -> None:
-    """However it is given, and what is burnt before take-off included."""
-    segments = [{"kind": "allowance", "fuel": "60 kg"}, {"kind": "take-off"}, *OUT_AND_DOWN]
+    """However it is given, whatever is burnt before take-off, leaves or comes aboard."""
+    up, out, down = OUT_AND_DOWN
+    segments = [
+        {"kind": "allowance", "fuel": "60 kg"},
+        {"kind": "take-off"},
+        up,
+        {"kind": "release", "payload": "300 kg"},
+        {"kind": "refuelling", "transfer": "400 kg", "time": "6 min", "mach": 0.7},
+        out,
+        down,
+    ]
     items = [{"kind": "share of initial fuel", "share": 0.05}, final_reserve("20 min")]
     reserves = {"item": items}
     mission = mission_content(segments, distance="900 nmi", reserves=reserves) | {"fuel": fuel}
