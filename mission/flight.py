@@ -99,7 +99,7 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
             coarse, root = _march_coarse(world, plan, written, few, coarse.stop_mass, None, root)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
-        ends, masses = found, _masses(coarse)
+        ends, masses = found, coarse.row_masses
         choices.fit(masses)
         if not coarse.is_settled or (moved < _SAME_ALTITUDE and choices.is_at_rest):
             break
@@ -167,16 +167,6 @@ def _flown(joints: Joints, marched: Marched) -> dict[int, Ends]:
     first = np.array([float(track.mach[0, 0]) for track in marched.tracks])
     last = np.array([float(track.mach[-1, 0]) for track in marched.tracks])
     return joints.ends_of(first, last)
-
-
-def _masses(marched: Marched) -> dict[int, tuple[float, float]]:
-    """Mass [kg] at both ends of each row."""
-    masses: dict[int, tuple[float, float]] = {}
-    for track in marched.tracks:
-        row = track.span.segment
-        start = masses[row][0] if row in masses else float(track.mass[0, 0])
-        masses[row] = (start, float(track.mass[-1, 0]))
-    return masses
 
 
 def _cruise_climb_ends(marched: Marched) -> dict[int, float]:

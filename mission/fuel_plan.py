@@ -86,7 +86,7 @@ def add_up(plan: FlightPlan, written: MissionFile, integrals: Integrals, member:
     received = sum(span.received for span in plan.parts.mission)
     fuel_received = received - (plan.stop_empty_mass - plan.first_empty_mass)
     loads = loaded(plan, written, integrals)
-    load = None if loads is None else float(np.broadcast_to(loads, (member + 1,))[member])
+    load = None if loads is None else float(loads[member if loads.size > 1 else 0])
     trip, fuels = price(items, flown, trip, mission_fuel - fuel_received, load)
     by_flow = is_mission & np.array([span.march != "book" for span in spans])
     margin = float(burnt[by_flow].sum()) * (1.0 - 1.0 / fuel_flow_factor(items))

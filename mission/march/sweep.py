@@ -92,6 +92,16 @@ class Marched:
         """Whether the sweeps came to rest; if not, no mass closes the fuel."""
         return bool(np.all(np.isfinite(self.stop_mass))) and self.change < _UNSETTLED
 
+    @property
+    def row_masses(self) -> dict[int, tuple[float, float]]:
+        """Mass [kg] at both ends of each row of the log, of the first member."""
+        masses: dict[int, tuple[float, float]] = {}
+        for track in self.tracks:
+            row = track.span.segment
+            start = masses[row][0] if row in masses else float(track.mass[0, 0])
+            masses[row] = (start, float(track.mass[-1, 0]))
+        return masses
+
 
 Closure = Callable[[Array, Integrals], Array]
 
