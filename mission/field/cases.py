@@ -99,19 +99,19 @@ def lift_limit(aircraft: Aircraft, case: Case) -> float:
 
 def drag_increment(aircraft: Aircraft, case: Case) -> float:
     """Drag coefficient that gear and flaps add to the clean polar; 0 where none is given."""
-    down = ["gear"] if case.has_gear_down else []
-    down += [] if case.flaps == "none" else [f"{case.flaps}_flaps"]
-    return sum(_given(aircraft, part) for part in down)
+    flaps = {
+        "take_off": aircraft.take_off_flaps_drag_increment,
+        "approach": aircraft.approach_flaps_drag_increment,
+        "none": 0.0,
+    }[case.flaps]
+    return flaps + (aircraft.gear_drag_increment if case.has_gear_down else 0.0)
 
 
 def parts_without_drag(aircraft: Aircraft) -> tuple[str, ...]:
     """What the aircraft tells no drag of, in words."""
-    parts = ("gear", "take_off_flaps", "approach_flaps")
-    words = ("gear", "take-off flaps", "approach flaps")
-    return tuple(
-        word for part, word in zip(parts, words, strict=True) if not _given(aircraft, part)
-    )
-
-
-def _given(aircraft: Aircraft, part: str) -> float:
-    return float(getattr(aircraft, f"{part}_drag_increment"))
+    parts = {
+        "gear": aircraft.gear_drag_increment,
+        "take-off flaps": aircraft.take_off_flaps_drag_increment,
+        "approach flaps": aircraft.approach_flaps_drag_increment,
+    }
+    return tuple(name for name, increment in parts.items() if increment == 0.0)

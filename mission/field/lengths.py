@@ -20,7 +20,7 @@ from numpy.typing import ArrayLike, NDArray
 from engine.quantities import FOOT, STANDARD_GRAVITY
 from mission.aircraft import Aircraft
 from mission.field.cases import SECOND_SEGMENT, required_gradient
-from mission.field.states import State, gradient
+from mission.field.states import State, gradient, is_in_polar
 
 Array = NDArray[np.float64]
 SCREEN_HEIGHT = 35.0 * FOOT  # 14 CFR 25.113 (from memory)
@@ -38,11 +38,13 @@ class FieldLengths:
     balanced : with an engine failing where to go on takes as much as to stop; None of one engine
     all_engine : with all engines to 35 ft, 15 % added
     is_answered : whether the engine had an answer; lengths are NaN where it had none
+    is_in_polar : whether the drag polar is given there; its edge's drag counts where it is not
     """
 
     balanced: Array | None
     all_engine: Array
     is_answered: NDArray[np.bool_]
+    is_in_polar: NDArray[np.bool_]
 
     @property
     def needed(self) -> Array:
@@ -124,8 +126,9 @@ def field_lengths(
         lift_off.flight.true_airspeed, mean, gradient(aircraft, lift_off), limit
     )
     is_answered = run.is_answered & lift_off.is_answered
+    is_inside = is_in_polar(aircraft, lift_off)
     if second is None:
-        return FieldLengths(None, all_engine, is_answered)
+        return FieldLengths(None, all_engine, is_answered, is_inside)
     asked = required_gradient(SECOND_SEGMENT, aircraft.engine_count)
     balanced = balanced_field_length(
         second.flight.true_airspeed,
@@ -134,7 +137,8 @@ def field_lengths(
         limit,
         second.flight.density / _SEA_LEVEL_DENSITY,
     )
-    return FieldLengths(balanced, all_engine, is_answered & second.is_answered)
+    is_inside = is_inside & is_in_polar(aircraft, second)
+    return FieldLengths(balanced, all_engine, is_answered & second.is_answered, is_inside)
 
 
 def _over(numerator: float, denominator: Array) -> Array:

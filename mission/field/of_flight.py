@@ -24,7 +24,7 @@ from mission.field.cases import (
 )
 from mission.field.lengths import field_lengths
 from mission.field.result import ClimbCheck, FieldPerformance
-from mission.field.states import Place, State, gradient, states
+from mission.field.states import Place, State, gradient, is_in_polar, states
 from mission.march.span import Span
 from mission.march.world import World
 from mission.mission_file import MissionFile
@@ -61,7 +61,8 @@ def field_of(
     found = {s.case.name: s for s in states(world.aircraft, world.engine, there)}
     balanced, all_engine = _lengths(world, found)
     lift_off = found[LIFT_OFF.name].flight
-    is_at_departure = not any(np.any(log.steps.lift > 0.0) for log in logs[:take_off])
+    before = [logs[row] for row in ours if row < take_off]
+    is_at_departure = not any(np.any(log.steps.lift > 0.0) for log in before)
     return FieldPerformance(
         take_off=logs[take_off].name,
         take_off_mass=logs[take_off].mass_start,
@@ -152,6 +153,13 @@ def _left_out(
     parts = parts_without_drag(aircraft)
     if parts:
         yield f"the aircraft gives no drag of {', '.join(parts)}: climbs are flattered"
+    outside = [
+        state.case.name
+        for state in found.values()
+        if state.case != RUN and not np.all(is_in_polar(aircraft, state))
+    ]
+    if outside:
+        yield f"outside the drag polar's table, with the drag of its edge: {', '.join(outside)}"
     unlit = [state for state in found.values() if state.case.engines_out]
     if unlit and not any(np.any(state.unlit < 0.0) for state in unlit):
         yield "the engine's drag when out is not known: none is counted"

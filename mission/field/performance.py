@@ -13,18 +13,22 @@ from engine.interface import Engine
 from mission.aircraft import Aircraft
 from mission.field.cases import LIFT_OFF, RUN, SECOND_SEGMENT, Case, applies
 from mission.field.lengths import FieldLengths, field_lengths
-from mission.field.states import Place, gradient, states
+from mission.field.states import Place, gradient, is_in_polar, states
 
 Array = NDArray[np.float64]
 
 
 @dataclass(frozen=True)
 class Climb:
-    """Gradient of a case, an array; NaN where ``is_answered`` says the engine had no answer."""
+    """Gradient of a case, an array; NaN where ``is_answered`` says the engine had no answer.
+
+    Where ``is_in_polar`` is false the drag polar is not given and its edge's drag counts.
+    """
 
     case: Case
     gradient: Array
     is_answered: NDArray[np.bool_]
+    is_in_polar: NDArray[np.bool_]
 
 
 def take_off_lengths(aircraft: Aircraft, engine: Engine, place: Place) -> FieldLengths:
@@ -51,4 +55,6 @@ def climb_gradients(
                 f"{aircraft.name} has but {aircraft.engine_count}"
             )
     found = states(aircraft, engine, [(case, place) for case in cases])
-    return tuple(Climb(s.case, gradient(aircraft, s), s.is_answered) for s in found)
+    return tuple(
+        Climb(s.case, gradient(aircraft, s), s.is_answered, is_in_polar(aircraft, s)) for s in found
+    )

@@ -11,13 +11,15 @@ from numpy.typing import ArrayLike, NDArray
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.interface import Engine, is_unanswered
 from engine.quantities import STANDARD_GRAVITY
+from mission.aerodynamics import polar_coverage
 from mission.aircraft import Aircraft
 from mission.field.cases import Case, drag_increment, lift_limit
-from mission.forces import drag, stall_mach
+from mission.forces import drag, lift_coefficient, stall_mach
 from mission.march.asking import Request, ask, join
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
+_SLACK = 1e-6
 
 
 @dataclass(frozen=True)
@@ -131,3 +133,14 @@ def gradient(aircraft: Aircraft, state: State) -> Array:
     added = drag_increment(aircraft, state.case) * aircraft.wing_area * aircraft.drag_factor
     resistance = drag(aircraft, state.flight, weight, 1.0, added + state.drag_area)
     return np.asarray((thrust - resistance) / weight)
+
+
+def is_in_polar(aircraft: Aircraft, state: State) -> Flags:
+    """Where the drag polar is given; outside a table it holds its edge's drag."""
+    coverage = polar_coverage(aircraft.polar)
+    if coverage is None:
+        return np.ones(state.flight.shape, dtype=bool)
+    lift = lift_coefficient(aircraft, state.flight, state.mass * STANDARD_GRAVITY)
+    pairs = ((lift, coverage.lift_coefficient), (state.flight.mach, coverage.mach))
+    inside = [(x >= low - _SLACK) & (x <= high + _SLACK) for x, (low, high) in pairs]
+    return np.asarray(inside[0] & inside[1])

@@ -405,6 +405,29 @@ def test_a_runway_needs_a_unit(tmp_path: Path) -> None:
         flown(tmp_path, WHOLE, departure={"runway": 1500})
 
 
+def test_a_polar_that_ends_too_early_is_said(tmp_path: Path) -> None:
+    """A table from Mach 0.2 on: the twin climbs away at Mach 0.21, light it comes in below 0.2."""
+    table = {
+        "machs": [0.2, 0.9],
+        "zero_lift_drag_coefficient": [0.0175, 0.0175],
+        "induced_drag_factor": [0.042, 0.042],
+    }
+    mission, aircraft, engine = load_all(
+        tmp_path,
+        aircraft_content() | {"drag_polar": table},
+        engine_content(),
+        mission_content([TAKE_OFF]),
+    )
+    field = fly(mission, aircraft, engine).field
+    assert field is not None
+    said = "outside the drag polar's table, with the drag of its edge: lift-off, gear extended, sec"
+    assert any(remark.startswith(said) for remark in field.remarks)
+    place = Place(np.array([26e3, 17e3]))
+    (climb,) = climb_gradients(aircraft, engine, [SECOND_SEGMENT], place)
+    assert climb.is_in_polar.tolist() == [True, False]
+    assert take_off_lengths(aircraft, engine, place).is_in_polar.tolist() == [True, False]
+
+
 def test_a_single_engine_is_told_what_does_not_apply(tmp_path: Path) -> None:
     flight = fly_files(
         tmp_path,
