@@ -22,13 +22,11 @@ def passed_boundaries(
 ) -> list[Check]:
     """Checks at steps of given lift coefficients; buffet where no flap is out, the rest airborne.
 
-    Buffet begins beyond the lift coefficient flown, and beyond that of a manoeuvre from level
-    flight at the aircraft's ``buffet_load_factor``.
+    The margin that a manoeuvre is to have to buffet is a soft limit, in :mod:`mission.margins`.
     """
     airborne = steps.lift > 0.0
     lift = np.where(airborne, lift_coefficient, 0.0)
-    level = lift * np.where(airborne, steps.weight / np.where(airborne, steps.lift, 1.0), 0.0)
-    manoeuvre = np.where(is_clean, np.maximum(lift, aircraft.buffet_load_factor * level), 0.0)
+    clean = np.where(is_clean, lift, 0.0)
     onset = buffet_lift_coefficient(aircraft, steps.mach)
     load = np.where(airborne, steps.lift / steps.weight, 0.0)
     pressure = np.where(airborne, 0.7 * steps.static_pressure * steps.mach**2, 0.0)
@@ -37,9 +35,8 @@ def passed_boundaries(
     height = steps.pressure_altitude
     return [
         *_outside_tables(aircraft, steps, lift, airborne, is_clean),
-        (manoeuvre > onset * (1.0 + _SLACK),
-         f"lift coefficient of {aircraft.buffet_load_factor:g} g against buffet onset",
-         manoeuvre, onset, "", "fly lower or at another speed, or carry less"),
+        (clean > onset * (1.0 + _SLACK), "lift coefficient against buffet onset", clean, onset, "",
+         "fly lower or at another speed, or carry less"),
         (load > most_load * (1.0 + _SLACK), "load factor", load, most_load, "",
          "turn or pull up less tightly"),
         (pressure > most_pressure * (1.0 + _SLACK), "dynamic pressure", pressure, most_pressure,

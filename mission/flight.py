@@ -14,12 +14,13 @@ from mission.coverage import refuse_missing_ratings, refuse_other_day
 from mission.field.of_flight import field_of, runway_margin
 from mission.free import solution_of, solve_free
 from mission.fuel_plan import add_up, closure, tank_warnings
-from mission.limits import first_failure, margins
+from mission.limits import first_failure
 from mission.logbook import segment_logs, totals
 from mission.march.joints import Ends, Joints, find_joints
 from mission.march.span import Span
 from mission.march.sweep import Marched, march
 from mission.march.world import World
+from mission.margins import margins, unmet
 from mission.mission_file import Mission, MissionFile
 from mission.plan import FlightPlan, lay_out
 from mission.reserves.carriage import reserve_items
@@ -190,6 +191,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
     flown = failure is None
     shown = _to_show(plan, logs, failure)
     field = field_of(world, plan, written, logs) if flown else None
+    found = (*margins(world, plan, shown, total), *runway_margin(field))
     return Flight(
         mission=written.name,
         aircraft=world.aircraft.name,
@@ -201,7 +203,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
             world, plan, written, solved.coarse, sums, free=solved.free, with_cost=flown
         ),
         cross_check=cross_checks(plan, logs, total) if flown else (),
-        margins=(*margins(world, shown, total), *runway_margin(field)),
+        margins=found,
         assumed=(
             *(f"mission: {line}" for line in mission.assumed),
             *(f"aircraft: {line}" for line in world.aircraft.assumed),
@@ -209,6 +211,7 @@ def _flight(mission: Mission, written: MissionFile, world: World, solved: _Solve
         ),
         warnings=(
             *warnings_of(world, plan, fine),
+            *unmet(found if flown else ()),
             *tank_warnings(world.aircraft, world.engine.fuel, total.loaded_fuel),
             *_of_an_attempt(failure, mission),
         ),

@@ -1,8 +1,8 @@
-"""Limits watched at every step: the first hard one that is passed, and the least margins."""
+"""Limits watched at every step: the first hard one that is passed."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from itertools import chain
 
 import numpy as np
@@ -24,7 +24,7 @@ from mission.march.turning import SLOWEST_TURN
 from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
-from mission.results import Failure, Margin, SegmentLog, Steps, Totals
+from mission.results import Failure, SegmentLog, Steps, Totals
 
 Array = NDArray[np.float64]
 _SLACK = 1e-6
@@ -33,22 +33,22 @@ _FLAPS_BELOW = 10000.0 * FOOT  # common practice, no source
 _Check = tuple[NDArray[np.bool_], str, Array, float | Array, str, str]
 
 
-def _lift_limits(aircraft: Aircraft, log: SegmentLog) -> Array:
+def lift_limits(aircraft: Aircraft, log: SegmentLog) -> Array:
     """Greatest lift coefficient at every step: with flaps where they are moving or down."""
     with_flaps = max(
         aircraft.maximum_lift_coefficient,
         aircraft.take_off_lift_coefficient,
         aircraft.approach_lift_coefficient,
     )
-    return np.where(_has_flaps(log), with_flaps, aircraft.maximum_lift_coefficient)
+    return np.where(has_flaps(log), with_flaps, aircraft.maximum_lift_coefficient)
 
 
-def _has_flaps(log: SegmentLog) -> NDArray[np.bool_]:
+def has_flaps(log: SegmentLog) -> NDArray[np.bool_]:
     is_low = log.steps.pressure_altitude < _FLAPS_BELOW
     return (is_low & (log.kind in ("take-off", "acceleration"))) | (log.kind == "approach")
 
 
-def _lift_coefficients(aircraft: Aircraft, steps: Steps) -> Array:
+def lift_coefficients(aircraft: Aircraft, steps: Steps) -> Array:
     """Lift coefficient at every step of a log; zero on the ground."""
     force = 0.7 * steps.static_pressure * steps.mach**2 * aircraft.wing_area
     return np.where(force > 0.0, steps.lift / np.where(force > 0.0, force, 1.0), 0.0)
@@ -119,7 +119,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
     vertical, acceleration, over_ground = rates["altitude"], rates["speed"], rates["distance"]
     energy, turning = rates["energy"], rates["turn"]
     steepness = np.degrees(np.abs(steps.flight_path_angle))
-    coefficient, most_lift = _lift_coefficients(aircraft, steps), _lift_limits(aircraft, log)
+    coefficient, most_lift = lift_coefficients(aircraft, steps), lift_limits(aircraft, log)
     checks: list[_Check] = [
         *outside(world.engine.coverage, steps, outcome),
         (is_unanswered(outcome), "engine states found at this altitude, speed and thrust",
@@ -141,7 +141,7 @@ def _passed_on_the_way(world: World, tracks: list[Track], log: SegmentLog) -> It
          "m/s2", "lower the speed to reach, or carry less"),
         (coefficient > most_lift * (1.0 + _SLACK), "lift coefficient", coefficient, most_lift, "",
          "fly faster or lower, or carry less"),
-        *passed_boundaries(aircraft, steps, coefficient, ~_has_flaps(log)),
+        *passed_boundaries(aircraft, steps, coefficient, ~has_flaps(log)),
     ]  # fmt: skip
     return _first_steps(log, checks)
 
@@ -205,10 +205,10 @@ def _passed_masses(
     aircraft = world.aircraft
     first, last = logs[0].name, _last_of_mission(logs).name
     lighter = "carry less payload or fly less far"
-    tanks = "load less fuel" if written.fuel.load else "shorten the mission or the reserves"
+    less = "load less fuel" if written.fuel.load else "shorten the mission or the reserves"
     most = usable_fuel(aircraft, world.engine.fuel) + plan.first_tank_capacity
     for segment, what, value, bound, advice in (
-        (first, f"usable fuel to load, {_tanks(world)}", total.loaded_fuel, most, tanks),
+        (first, f"usable fuel to load, {tanks(world)}", total.loaded_fuel, most, less),
         (first, "ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass, lighter),
         (first, "take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass, lighter),
         (last, "landing mass", total.landing_mass, aircraft.maximum_landing_mass,
@@ -218,7 +218,7 @@ def _passed_masses(
             yield Failure(segment, 0, what, value, bound, "kg", advice)
 
 
-def _tanks(world: World) -> str:
+def tanks(world: World) -> str:
     """What bounds the fuel in the tanks."""
     return f"by tank {governing_tank_limit(world.aircraft, world.engine.fuel)}"
 
@@ -287,52 +287,3 @@ def _passed_distance(world: World, marched: Marched, plan: FlightPlan) -> Iterat
             name = plan.rows[cruise[0].segment].name
             yield Failure(name, 0, "distance flown without it against the distance to cover",
                           flown, total, "m", "fly lower, or lengthen the distance")  # fmt: skip
-
-
-def margins(world: World, logs: tuple[SegmentLog, ...], total: Totals) -> tuple[Margin, ...]:
-    """Least margins of thrust, climb, lift, fuel and mass, and where they occur."""
-    aircraft = world.aircraft
-    most_fuel = usable_fuel(aircraft, world.engine.fuel)
-    level = [log for log in logs if log.kind in ("cruise", "loiter")]
-    climbs = [log for log in logs if log.kind == "climb" and log.purpose == "mission"]
-    flown = [log for log in logs if np.any(log.steps.lift > 0.0)]
-
-    def load(log: SegmentLog) -> float:
-        coefficient = np.maximum(_lift_coefficients(aircraft, log.steps), 1e-9)
-        return float(np.min(_lift_limits(aircraft, log) / coefficient))
-
-    found = [
-        *_least("thrust over drag at rating, level", level, _thrust_ratio, 1.0, ""),
-        *_least("rate of climb at the top", climbs, _rate_at_top, SLOWEST_CLIMB, "m/s"),
-        *_least("load factor to greatest lift", flown, load, 1.0, ""),
-    ]
-    for name, value, bound in (
-        ("zero-fuel mass", total.ramp_mass - total.loaded_fuel, aircraft.maximum_zero_fuel_mass),
-        ("ramp mass", total.ramp_mass, aircraft.maximum_ramp_mass),
-        (f"fuel loaded, {_tanks(world)}", total.loaded_fuel, most_fuel),
-        ("take-off mass", total.takeoff_mass, aircraft.maximum_take_off_mass),
-        ("landing mass", total.landing_mass, aircraft.maximum_landing_mass),
-    ):
-        found.append(Margin(name, value, bound, "kg", "", value <= bound * (1.0 + 1e-9)))
-    return tuple(found)
-
-
-def _least(
-    name: str, logs: list[SegmentLog], value: Callable[[SegmentLog], float], bound: float, unit: str
-) -> Iterator[Margin]:
-    """The least of a value over segments, with the segment it is met in."""
-    if logs:
-        values = [value(log) for log in logs]
-        least = min(values)
-        where = logs[values.index(least)].name
-        yield Margin(name, least, bound, unit, where, least >= bound * (1.0 - _SLACK))
-
-
-def _thrust_ratio(log: SegmentLog) -> float:
-    return float(np.min(log.steps.rating_thrust / np.maximum(log.steps.drag, 1e-9)))
-
-
-def _rate_at_top(log: SegmentLog) -> float:
-    """Geometric rate of climb [m/s] at the end of a climb."""
-    steps = log.steps
-    return float(steps.true_airspeed[-1] * np.sin(steps.flight_path_angle[-1]))

@@ -60,6 +60,7 @@ March = Literal[
 ]
 SLOWEST_CLIMB = 100.0 * 0.3048 / 60.0  # m/s: 100 ft/min, an operational ceiling's rate of climb
 LEVEL = ("distance", "time", "burn")
+SPEEDING_UP = "level acceleration"  # what holds such a piece of a climb path
 RESERVE_LEG = -1  # of the reserve flight
 
 

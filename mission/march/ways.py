@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
 from mission.march.rules import hold_bounds, level_air, mach_at
-from mission.march.span import Span, SpeedRule
+from mission.march.span import SPEEDING_UP, Span, SpeedRule
 from mission.march.throttled import on_schedule
 from mission.march.world import World
 
@@ -62,6 +62,8 @@ def ways_of(world: World, spans: Sequence[Span]) -> dict[int, Way]:
     for i, span in enumerate(spans):
         way = None
         if span.march == "energy":
+            if span.path is None or span.path.held_by != SPEEDING_UP:
+                continue  # the search for the path has cut it at the engine's kinks already
             ends = (span.start_energy, span.end_energy)
             way = Way(span, span.rating, *ends, ends, _LEAST_RISE)
         elif span.march == "altitude" and not span.is_steered:

@@ -92,6 +92,7 @@ def _climber(climb: Climb, here: Here, mass: float) -> Climber:
         mass=mass,
         air=here.air.condition,
         engine_count=here.aircraft.engine_count - configured.engines_out,
+        air_kinks=here.air.kinks,
         extra_drag_area=configured.drag_area,
         ground_elevation=here.departure_elevation,
     )
