@@ -7,10 +7,9 @@ from numpy.typing import NDArray
 
 from mission.paths.climber import rates
 from mission.paths.corridor import Corridor
-from mission.paths.ends import EXCESS, state_of
+from mission.paths.ends import short_stop, state_of
 from mission.paths.path import LEVEL, Exchange, Fall, Piece, State, Stop, piece_of
 from mission.paths.runs import Run
-from mission.paths.search import excess_power
 from mission.paths.trace import runs_between
 
 Array = NDArray[np.float64]
@@ -115,12 +114,12 @@ def cut_where_short(corridor: Corridor, legs: Legs) -> tuple[Legs, Stop | None]:
         if not isinstance(leg, Piece) or leg.held != LEVEL:
             continue
         flight = corridor.flight(leg.pressure_altitude, leg.true_airspeed)
-        excess = excess_power(corridor.climber, rates(corridor.climber, flight))
-        short = np.flatnonzero(~(excess > least))
+        found = rates(corridor.climber, flight)
+        short = np.flatnonzero(~found.is_answered | (found.excess_power <= least))
         if short.size:
-            k = int(short[0])
-            energy, altitude = leg.energy_height, float(leg.pressure_altitude[k])
-            state = State(altitude, float(leg.mach[k]))
-            stop = Stop(EXCESS, float(energy[k]), state, float(excess[k]), least, "m/s")
+            k, energy = int(short[0]), leg.energy_height
+            state = State(float(leg.pressure_altitude[k]), float(leg.mach[k]))
+            excess = float(found.excess_power[k]) if found.is_answered[k] else None
+            stop = short_stop(corridor, excess, float(energy[k]), state)
             return [*legs[:number], *([leg.cut(energy[0], energy[k - 1])] if k > 1 else [])], stop
     return legs, None

@@ -12,7 +12,6 @@ from mission.paths.path import State, Stop
 from mission.paths.search import LOST, Best
 
 Array = NDArray[np.float64]
-EXCESS = "specific excess power"
 _LOOKS, _CLOSER = 4001, 3
 
 
@@ -44,10 +43,16 @@ def closed_stop(corridor: Corridor, edges: Edges, energy: float, altitude: float
 def dead_stop(corridor: Corridor, best: Best, energy: float, altitude: float) -> Stop:
     """Why a path ends at the last of some points."""
     state = state_of(corridor, altitude, best.last[1])
-    if best.state[-1] == LOST:
+    excess = None if best.state[-1] == LOST else float(best.excess_power[-1])
+    return short_stop(corridor, excess, energy, state)
+
+
+def short_stop(corridor: Corridor, excess: float | None, energy: float, state: State) -> Stop:
+    """What specific excess power [m/s] falls short of; None where the engine has no answer."""
+    if excess is None:
         return Stop("speeds at which the engine has an answer", energy, state, 0.0, 1.0, "")
-    least, excess = corridor.climber.least_rate, float(best.excess_power[-1])
-    return Stop(EXCESS, energy, state, excess, least, "m/s")
+    least = corridor.climber.least_rate
+    return Stop("specific excess power", energy, state, excess, least, "m/s")
 
 
 def state_of(corridor: Corridor, altitude: float, airspeed: float) -> State:

@@ -33,7 +33,8 @@ class Piece:
     ----------
     energy_height : [m], geometric
     pressure_altitude : [m]
-    mach, true_airspeed : [m/s]
+    mach
+    true_airspeed : [m/s]
     held : FREE between the bounds; FAST or SLOW along one; LEVEL at one altitude
     held_by : the name of the bound, or what is special at that altitude; empty where free
     """
@@ -113,7 +114,7 @@ class Exchange:
 
 @dataclass(frozen=True)
 class Fall:
-    """Speed lost without height gained: energy that a path by altitude gives away.
+    """Energy that a path by altitude gives away: more speed lost than height gained.
 
     ``energy_height`` [m] before and after it.
     """

@@ -24,8 +24,8 @@ _NARROW = 2.5e-4  # share of the way: no break need be known more closely
 _DEPTH, _DEPTH_OF_SMOOTHNESS = 7, 2  # times that a cell is cut in four
 _QUARTERS = np.array([0.25, 0.5, 0.75])
 _MISS = 3e-5  # share of a line's greatest value that interpolation between lines may miss
-_NOTHING = -1e30  # in place of the minus infinity where the engine has no state
 _VALLEY = 1e-4  # share of it: a lower value between two maxima parts them
+_NOTHING = -1e30  # in place of the minus infinity where the engine has no state
 
 
 @dataclass(frozen=True)

@@ -208,7 +208,7 @@ def test_way_of_least_time(on_lines: Climber) -> None:
     assert dive.end.mach == pytest.approx(1.1, abs=0.05)
     zoom, last = legs[-1], legs[-2]
     assert isinstance(last, Piece)
-    # Mach 1.31 at 26,000 ft and Mach 1.73 near 34,500 ft, to half of a last digit of 500 ft.
+    # Mach 1.31 at 26,000 ft and Mach 1.73 near 34,500 ft, as round as they are given.
     for mach, altitude in ((1.31, 26000.0), (1.73, 34500.0)):
         there = np.interp(mach, last.mach, last.pressure_altitude) / FOOT
         assert there == pytest.approx(altitude, abs=500.0), mach
