@@ -222,8 +222,18 @@ def test_blanks_of_the_table_hardly_matter(tmp_path: Path, as_published: Climber
     """What the header of the table says."""
     other = fighter(tmp_path, published(drawn_on))
     ours, theirs = (flown(who, least_time_path(who, START, END)) for who in (as_published, other))
+    assert ours == pytest.approx((272.3, 4275.0), abs=0.5)
     assert theirs[0] - ours[0] == pytest.approx(-0.04, abs=0.01)
     assert theirs[1] - ours[1] == pytest.approx(1.3, abs=0.3)
+
+
+@pytest.mark.source(AGAIN)
+@pytest.mark.parametrize("find", [least_time_path, least_fuel_path])
+def test_points_are_dense_enough_for_a_polar_given_at_nine_mach_numbers(
+    as_published: Climber, find: Callable[[Climber, State, State], EnergyPath]
+) -> None:
+    """A thousandth if the first points were all; of what is made least, a hundred thousandth."""
+    assert find(as_published, START, END).interpolation_cost < 1e-5
 
 
 @pytest.mark.source(AGAIN)
