@@ -19,9 +19,9 @@ from mission_files import (
 )
 from small_flight import steps as made_steps
 
-from mission.aircraft import load_aircraft
+from mission.aircraft import Aircraft, load_aircraft
 from mission.boundaries import passed_boundaries
-from mission.results import Failure, Flight
+from mission.results import Failure, Flight, Steps
 
 UP: Content = {"kind": "climb", "to": "FL350", "calibrated_airspeed": "280 kt", "mach": 0.74}
 OUT: Content = {"kind": "cruise", "name": "out", "distance": "rest"}
@@ -162,19 +162,33 @@ def test_dynamic_pressure_is_that_of_the_steps(
     assert (flight.failure is None) == is_flown
 
 
-def test_a_load_factor_of_lift_beyond_weight(tmp_path: Path) -> None:
-    plane = load_aircraft(write(tmp_path, "aircraft", aircraft_content()))
-    level = made_steps(
-        elapsed=[0.0, 1.0, 2.0], altitude=3000.0, mach=0.6, speed=200.0, mass=[9e3] * 3,
-        lift_to_drag=15.0, thrust=1e4, fuel_flow=0.2, rating_thrust=4e4,
-    )  # fmt: skip
-    pulled = replace(level, lift=level.weight * [1.0, 2.4, 2.6])
-    found = {
+def by_name(plane: Aircraft, flown: Steps, lift: list[float], is_clean: list[bool]) -> Content:
+    """Where each boundary is passed, and its value there, by the boundary's name."""
+    return {
         name: (passed.tolist(), value)
         for passed, name, value, *_ in passed_boundaries(
-            plane, pulled, np.array([0.2, 0.48, 0.52]), np.ones(3, dtype=bool)
+            plane, flown, np.array(lift), np.array(is_clean)
         )
     }
-    passed, value = found["load factor"]
+
+
+LEVEL = made_steps(
+    elapsed=[0.0, 1.0, 2.0], altitude=3000.0, mach=0.6, speed=200.0, mass=[9e3] * 3,
+    lift_to_drag=15.0, thrust=1e4, fuel_flow=0.2, rating_thrust=4e4,
+)  # fmt: skip
+
+
+def test_a_load_factor_of_lift_beyond_weight(tmp_path: Path) -> None:
+    plane = load_aircraft(write(tmp_path, "aircraft", aircraft_content()))
+    pulled = replace(LEVEL, lift=LEVEL.weight * [1.0, 2.4, 2.6])
+    passed, value = by_name(plane, pulled, [0.2, 0.48, 0.52], [True] * 3)["load factor"]
     assert passed == [False, False, True]
     assert value == pytest.approx([1.0, 2.4, 2.6], rel=1e-12)
+
+
+def test_the_end_of_the_buffet_table_is_not_asked_with_flaps(tmp_path: Path) -> None:
+    buffet = {"machs": [0.1, 0.5], "lift_coefficients": [1.4, 1.2]}
+    content = aircraft_content(limits={"buffet": buffet})
+    plane = load_aircraft(write(tmp_path, "aircraft", content))
+    found = by_name(plane, LEVEL, [0.2] * 3, [True, False, True])
+    assert found["Mach number in the table of buffet onset"][0] == [True, False, True]

@@ -149,6 +149,16 @@ def test_between_columns_lies_the_monotone_cubic_of_another_library() -> None:
         assert drag_coefficient(TABLE, at, mach) == pytest.approx(expected, rel=1e-13)
 
 
+@pytest.mark.parametrize("lifts", [(0.2, 0.3, 0.5, 0.6, 0.9), (0.2, 0.5, 0.9)])
+def test_the_end_cells_know_the_parabola_that_their_points_lie_on(lifts: tuple[float, ...]) -> None:
+    """As if the table went on for one more column at each end, as far as the next one is."""
+    longer = (2.0 * lifts[0] - lifts[1], *lifts, 2.0 * lifts[-1] - lifts[-2])
+    table = DragTable((0.0, 1.0), lifts, drags_of(PLAIN, lifts, [0.0, 1.0]))
+    at = np.linspace(lifts[0], lifts[-1], 141)
+    expected = PchipInterpolator(longer, drag_coefficient(PLAIN, longer, 0.5))(at)
+    assert drag_coefficient(table, at, 0.5) == pytest.approx(expected, rel=1e-13)
+
+
 def test_straight_lines_where_they_are_asked_for() -> None:
     at = np.linspace(MACHS[0], MACHS[-1], 301)
     expected = (
