@@ -18,7 +18,9 @@ def limit_unit(name: str, unit: str, units: Units) -> Unit:
         return units.force
     if unit == "m/s":
         return units.vertical_speed if name.startswith("rate of") else units.speed
-    if unit == "m" and name.startswith(("pressure altitude", "take-off field length")):
+    if unit == "m" and name.startswith(
+        ("pressure altitude", "take-off field length", "fan diameter")
+    ):
         return units.length
     if unit == "m":
         return units.distance
