@@ -23,7 +23,7 @@ from mission.march.tracks import Track
 from mission.march.turning import SLOWEST_TURN
 from mission.march.world import World
 from mission.mission_file import MissionFile
-from mission.plan import FlightPlan
+from mission.plan import FlightPlan, Row
 from mission.results import Failure, SegmentLog, Steps, Totals
 
 Array = NDArray[np.float64]
@@ -76,6 +76,7 @@ def first_failure(
         for failure in sorted(
             chain(
                 _dry(world, _least_empty(plan, number), total, log),
+                _overfull(world, plan.rows[number], log),
                 _passed_speeds(world, log),
                 _passed_on_the_way(
                     world, [t for t in marched.tracks if t.span.segment == number], log
@@ -249,6 +250,18 @@ def _dry(world: World, empty: float, total: Totals, log: SegmentLog) -> Iterator
             "kg",
             _more_fuel(world, total),
         )
+
+
+def _overfull(world: World, row: Row, log: SegmentLog) -> Iterator[Failure]:
+    """More fuel aboard than the tanks hold, once some came aboard or a tank was let go."""
+    if row.kind not in ("refuelling", "release", "turnaround"):
+        return
+    most = usable_fuel(world.aircraft, world.engine.fuel) + row.tank_capacity
+    if log.fuel_left > most * (1.0 + 1e-9):
+        yield Failure(
+            log.name, len(log.steps.mass) - 1, "fuel aboard against what the tanks hold then",
+            log.fuel_left, most, "kg", "take on less, or let tanks go when they are empty",
+        )  # fmt: skip
 
 
 def _more_fuel(world: World, total: Totals) -> str:

@@ -83,6 +83,8 @@ def setting(mission: Mission, aircraft: Aircraft) -> Setting:
         headwind=written.headwind,
         engine_count=aircraft.engine_count,
         is_fuel_as_needed=written.fuel.as_needed,
+        has_own_air=written.air is not None or bool(written.leg),
+        stores=written.stores,
     )
 
 

@@ -7,6 +7,7 @@ from mission.outputs.segment_rows import Scales, altitude_text
 from mission.outputs.units import METRIC, Scale, Unit, Units, number
 from mission.results import Failure, Flight, SegmentLog
 
+_SAME = 1e-9  # relative: values nearer than that are one
 _LARGEST_PERCENT = 1000.0  # beyond it a share of the bound says nothing
 
 
@@ -31,7 +32,8 @@ def limit_scale(name: str, unit: str, values: list[float], units: Units) -> Scal
     """The same with decimals: four digits, and enough of them to tell the values apart."""
     shown = limit_unit(name, unit, units)
     scale = Scale.of(shown, values)
-    while len({scale.bare(value) for value in values}) < len(set(values)) and scale.decimals < 6:
+    apart = max(values) - min(values) > _SAME * max(abs(value) for value in values)
+    while apart and len({scale.bare(value) for value in values}) < 2 and scale.decimals < 6:
         scale = Scale(shown, scale.decimals + 1)
     return scale
 

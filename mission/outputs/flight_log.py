@@ -100,10 +100,18 @@ def _heading(flight: Flight, setting: Setting, units: Units) -> Group:
     if setting.headwind:
         wind = Scale.of(units.speed, [setting.headwind], 2).full(abs(setting.headwind))
         air = f"{'headwind' if setting.headwind > 0.0 else 'tailwind'} {wind}"
+    if setting.has_own_air:
+        air = "air by altitude and leg"
+    carried = "".join(
+        f", {count} {name.replace('_', ' ')}" for name, count in setting.stores.items()
+    )
     engine = f"{setting.engine_count} {TIMES} {flight.engine}"
     return Group(
         Text(flight.mission, "bold"),
-        Text(f"{flight.aircraft}, {engine}, payload {payload}, {day_in_words(flight.day)}, {air}"),
+        Text(
+            f"{flight.aircraft}, {engine}, payload {payload}{carried}, {day_in_words(flight.day)}, "
+            f"{air}"
+        ),
     )
 
 

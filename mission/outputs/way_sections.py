@@ -8,10 +8,10 @@ import numpy as np
 from rich.console import Group
 
 from engine.quantities import STANDARD_GRAVITY
-from mission.outputs.page import Column, ruled_table, section, words
+from mission.outputs.page import Column, note, ruled_table, section, words
 from mission.outputs.segment_rows import Scales
 from mission.outputs.units import Scale, number
-from mission.results import Flight, SegmentLog
+from mission.results import Flight, SegmentLog, Steps
 
 
 def way_sections(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Iterable[Group]:
@@ -86,17 +86,18 @@ def _turns(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
     table = ruled_table(
         [
             words("turn"),
-            Column("load factor\nfirst to last"),
+            Column("load factor\nfirst, last"),
             Column("turn rate\ndeg/s"),
             Column(f"radius\n{units.distance.name}"),
             Column("turned\ndeg"),
-            Column(f"excess power\nturning, {units.vertical_speed.name}"),
-            Column(f"excess power\nat 1 g, {units.vertical_speed.name}"),
+            Column(f"excess\n{units.vertical_speed.name}"),
+            Column(f"at 1 g\n{units.vertical_speed.name}"),
+            words("what holds\nthe load factor"),
         ]
     )
     for log in turns:
         table.add_row(log.name, *_turn_cells(log, scales))
-    return section("Turns", table)
+    return section("Turns", table, note("Excess is specific excess power, turning and at 1 g."))
 
 
 def _turn_cells(log: SegmentLog, scales: Scales) -> Iterable[str]:
@@ -107,7 +108,7 @@ def _turn_cells(log: SegmentLog, scales: Scales) -> Iterable[str]:
     turned = float(np.degrees(np.trapezoid(rate, steps.elapsed_time)))
     radius = float(speed[-1] / rate[-1]) if rate[-1] > 0.0 else float("nan")
     excess = speed * (steps.rating_thrust - steps.drag) / steps.weight
-    yield f"{factor[0]:.2f} to {factor[-1]:.2f}"
+    yield f"{factor[0]:.2f}, {factor[-1]:.2f}"
     yield number(float(np.degrees(rate[-1])), 2)
     yield number(radius / scales.units.distance.size, 2)
     yield number(turned, 0)
@@ -115,3 +116,16 @@ def _turn_cells(log: SegmentLog, scales: Scales) -> Iterable[str]:
     level = steps.level_drag
     straight = speed * (steps.rating_thrust - level) / steps.weight
     yield number(float(straight[-1]) / scales.units.vertical_speed.size, 1)
+    yield _holder(steps)
+
+
+def _holder(steps: Steps) -> str:
+    """What holds the load factor at the end of a turn."""
+    thrust, resistance = float(steps.thrust[-1]), float(steps.drag[-1])
+    if thrust > resistance * (1.0 + _SAME_FORCE):
+        return "lift or structure"
+    is_at_rating = thrust > float(steps.rating_thrust[-1]) * (1.0 - _SAME_FORCE)
+    return "thrust" if is_at_rating else "as given"
+
+
+_SAME_FORCE = 1e-6  # relative

@@ -33,7 +33,8 @@ def plain_characters(text: str, encoding: str) -> str:
 
 def day_in_words(temperature_deviation: float) -> str:
     """A day such as ``ISA+10`` from its temperature deviation [K]."""
-    return f"ISA{temperature_deviation:+g}" if temperature_deviation else "ISA"
+    shown = round(temperature_deviation, 1)
+    return f"ISA{shown:+g}" if shown else "ISA"
 
 
 def hours_and_minutes(time: float) -> str:

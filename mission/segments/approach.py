@@ -18,7 +18,10 @@ STALL_MULTIPLE = 1.3  # approach over stall speed; common practice, no source
 
 
 class Approach(Segment):
-    """``drag_factor`` stands for flaps and gear; no distance is credited."""
+    """Gear and flaps add what the aircraft file says they do; no distance is credited.
+
+    ``drag_factor`` multiplies the clean aircraft's drag, where the file says nothing of them.
+    """
 
     kind: Literal["approach"]
     name: str = "approach and landing"
@@ -39,7 +42,13 @@ class Approach(Segment):
                 f"{HIGHEST_START / FOOT:,.0f} ft is allowed; put a descent before it"
             )
         speed = approach_speed(here)
-        configured = replace(here.configuration, drag_factor=self.drag_factor)
+        aircraft = here.aircraft
+        down = aircraft.gear_drag_increment + aircraft.approach_flaps_drag_increment
+        configured = replace(
+            here.configuration,
+            drag_factor=self.drag_factor,
+            drag_area=here.configuration.drag_area + down * aircraft.wing_area,
+        )
         span = here.span(
             "time",
             configuration=configured,

@@ -19,6 +19,8 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 _MASSES = 33  # looked at from the take-off mass down to the empty one
+_SAME_LEVEL = 0.01  # m
+_HIGHEST = 20000.0  # m, beyond which no cruise goes
 _MOST_STEPS = 20
 _AHEAD = 1e-3  # of mass, by which a step has to be short of the end of the cruise
 
@@ -26,12 +28,13 @@ _AHEAD = 1e-3  # of mass, by which a step has to be short of the end of the crui
 def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here]:
     """The cruise in pieces, each until the mass at which the next level is better."""
     levels = _levels(cruise, here, span.start_altitude)
+    place = f"steps from {span.start_altitude:.0f} m"
     chosen = here.choices.at(
-        here.row, "steps", 1.0, lambda _: _step_masses(cruise, here, span, levels), matters=np.inf
+        here.row, place, 1.0, lambda _: _step_masses(cruise, here, span, levels), matters=np.inf
     )
     count = here.choices.at(
         here.row,
-        "number of steps",
+        f"number of {place}",
         here.mass_at(here.row, -1),
         lambda mass: sum(m > mass * (1.0 + _AHEAD) for m, _ in chosen) if _flown(here) else 0,
         end=-1,
@@ -68,7 +71,8 @@ def _levels(cruise: Cruise, here: Here, start: float) -> list[float]:
         above = cruise.step_levels
     else:
         above = [start + (n + 1) * cruise.step_height for n in range(_MOST_STEPS)]
-    return [start, *(level for level in above if start < level <= min(ceiling, 20000.0))]
+    most = min(ceiling, _HIGHEST) + _SAME_LEVEL
+    return [start, *(level for level in above if start < level <= most)]
 
 
 def _step_masses(
