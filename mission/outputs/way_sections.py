@@ -3,20 +3,26 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from itertools import groupby
 
 import numpy as np
 from rich.console import Group
 
 from engine.quantities import STANDARD_GRAVITY
 from mission.outputs.page import Column, note, ruled_table, section, words
-from mission.outputs.segment_rows import Scales
+from mission.outputs.segment_rows import Scales, altitude_header, altitude_text
 from mission.outputs.units import Scale, number
 from mission.results import Flight, SegmentLog, Steps
 
 
 def way_sections(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Iterable[Group]:
     """Those that the rows shown have something for."""
-    found = (_legs(shown, scales), _loads(flight, shown, scales), _turns(shown, scales))
+    found = (
+        _legs(shown, scales),
+        _levels(shown, scales),
+        _loads(shown, scales),
+        _turns(shown, scales),
+    )
     return (group for group in found if group is not None)
 
 
@@ -48,7 +54,49 @@ def _legs(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
     return section("Legs", table)
 
 
-def _loads(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
+def _levels(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
+    """Levels of cruises that climb in steps, with the masses between which each is flown."""
+    rows = [(log, run) for log in shown if log.kind == "cruise" for run in _level_runs(log.steps)]
+    stepped = {log.name for log, _ in rows if sum(other is log for other, _ in rows) > 1}
+    if not stepped:
+        return None
+    mass = scales.mass
+    table = ruled_table(
+        [
+            words("cruise"),
+            Column(altitude_header(scales.units)),
+            Column("Mach\nfirst, last"),
+            Column(f"mass from\n{mass.unit.name}"),
+            Column(f"to\n{mass.unit.name}"),
+            Column(f"time\n{scales.units.time.name}"),
+        ]
+    )
+    for log, run in rows:
+        if log.name not in stepped:
+            continue
+        steps = log.steps
+        elapsed = float(steps.elapsed_time[run[-1]] - steps.elapsed_time[run[0]])
+        table.add_row(
+            log.name,
+            altitude_text(scales.units, float(steps.pressure_altitude[run[0]])),
+            f"{steps.mach[run[0]]:.3f}, {steps.mach[run[-1]]:.3f}",
+            mass.bare(float(steps.mass[run[0]])),
+            mass.bare(float(steps.mass[run[-1]])),
+            number(elapsed / scales.units.time.size, 1),
+        )
+    return section("Steps of cruises", table)
+
+
+def _level_runs(steps: Steps) -> list[list[int]]:
+    """Indices of the steps at each level, climbs between levels left out."""
+    is_level = np.abs(steps.flight_path_angle) < _LEVEL
+    level = np.round(steps.pressure_altitude, 1)
+    runs = groupby(range(len(level)), lambda i: (bool(is_level[i]), float(level[i])))
+    found = [list(run) for (level_there, _), run in runs if level_there]
+    return [run for run in found if len(run) > 1]
+
+
+def _loads(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
     """Mass that leaves or comes aboard besides what the engines burn, and that all is counted."""
     changed = [log for log in shown if log.mass_released or log.mass_received]
     if not changed:
@@ -129,3 +177,4 @@ def _holder(steps: Steps) -> str:
 
 
 _SAME_FORCE = 1e-6  # relative
+_LEVEL = 1e-9  # rad of path angle
