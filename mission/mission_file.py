@@ -9,6 +9,7 @@ from pydantic import Field, field_validator, model_validator
 
 from engine.quantities import Altitude, Day, Length, Mass, parse_quantity
 from engine.reading import Table, check, defaults_used, read_toml
+from mission.known import Known
 from mission.legs import AirTable, Headwind, LegTable, distance_or_word
 from mission.reserves.tables import ReservesTable
 from mission.segments import AnySegment
@@ -77,6 +78,7 @@ class MissionFile(Table):
     fuel: FuelTable
     reserves: ReservesTable = ReservesTable()
     segment: Annotated[list[AnySegment], Field(min_length=1, max_length=200)]
+    known: Known = None  # of the same mission flown: what `longlegs fit --flight` meets
 
     @field_validator("distance", "radius", mode="before")
     @classmethod

@@ -123,6 +123,8 @@ def _value(value: Any) -> str:
         return "[" + ", ".join(_value(v) for v in value) + "]"
     if isinstance(value, dict):
         return "{" + ", ".join(f"{key} = {_value(v)}" for key, v in value.items()) + "}"
+    if isinstance(value, list):
+        return "[" + ", ".join(map(_value, value)) + "]"
     if isinstance(value, bool | str):
         return json.dumps(value)
     return repr(float(value)) if isinstance(value, float) else str(value)

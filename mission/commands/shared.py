@@ -85,6 +85,7 @@ def setting(mission: Mission, aircraft: Aircraft) -> Setting:
         is_fuel_as_needed=written.fuel.as_needed,
         has_own_air=written.air is not None or bool(written.leg),
         stores=written.stores,
+        known=written.known,
     )
 
 

@@ -10,10 +10,12 @@ from rich.table import Table
 from rich.text import Text
 
 from engine.fuels import KEROSENE
+from mission.known import known_against_flown
 from mission.outputs.assumptions import assumed_by_file
 from mission.outputs.failure import failure_headline, failure_statement, limit_scale
 from mission.outputs.field_section import field_sections
 from mission.outputs.held_by import holders
+from mission.outputs.known_words import against_flown
 from mission.outputs.margins import least_margin, room
 from mission.outputs.page import (
     WIDEST,
@@ -134,7 +136,11 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
         ("fuel", verdict),
     ]
     rows = [*_solved(flight, scales), *rows]
-    return Group(Text(), pairs(rows, strong=True), pairs([("doubt     ", _doubt(flight))]))
+    beside = [("doubt     ", _doubt(flight))]
+    if setting.known is not None:
+        met = known_against_flown(setting.known, flight)
+        beside.append(("known     ", against_flown(met, scales.units)))
+    return Group(Text(), pairs(rows, strong=True), pairs(beside))
 
 
 def _solved(flight: Flight, scales: Scales) -> Iterable[tuple[str, str]]:
