@@ -10,7 +10,8 @@ import gc
 import typer
 
 from engine.errors import InputRefused, LonglegsError
-from mission.commands.engine_commands import envelope_command, fit_command, stations_command
+from mission.commands.engine_commands import envelope_command, stations_command
+from mission.commands.fit_commands import fit_command
 from mission.commands.listing import list_command
 from mission.commands.mission_commands import compare_command, fly_command
 from mission.commands.shared import NOT_FLYABLE

@@ -41,13 +41,13 @@ def built_in() -> tuple[Profile, ...]:
             content = tomllib.loads(entry.read_text(encoding="utf-8"))
             name = entry.name.removesuffix(_SUFFIX)
             found.append(
-                Profile(name, _kind(content), str(content.get("note", "")), Path(str(entry)))
+                Profile(name, kind_of(content), str(content.get("note", "")), Path(str(entry)))
             )
     order = list(_PLURAL)
     return tuple(sorted(found, key=lambda p: (order.index(p.kind), _by_numbers(p.name))))
 
 
-def _kind(content: dict[str, Any]) -> Kind:
+def kind_of(content: dict[str, Any]) -> Kind:
     """What a file is about, from the keys that only one kind has."""
     if "segment" in content:
         return "mission"

@@ -1,8 +1,8 @@
-"""Commands about one engine: its stations at a flight condition, its whole envelope, its fit."""
+"""Commands about one engine: its stations at a flight condition, and its whole envelope."""
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Annotated, Any
+from typing import TYPE_CHECKING, Annotated
 
 import typer
 
@@ -140,82 +140,6 @@ def envelope_command(
     show(
         lambda width: envelope_screen(found, written=written, width=width),
         lambda: envelope_record(found),
-        json,
-    )
-
-
-def fit_command(
-    engine: EngineName,
-    write: Annotated[str, typer.Option(metavar="FILE", help="New engine file, ending in .toml.")],
-    points: Annotated[
-        str | None,
-        typer.Option(
-            metavar="FILE",
-            help="CSV of points to meet: pressure_altitude_m, mach, rating, net_thrust_n, "
-            "fuel_flow_kg_per_s and, where it is needed, temperature_deviation_k; where the "
-            "rating is empty the thrust is asked for. Without it a brochure is written out as "
-            "the cycle that its four numbers make.",
-        ),
-    ] = None,
-    free: Annotated[
-        list[str] | None,
-        typer.Option(
-            metavar="KEY",
-            help="Key of the engine file that may change, efficiencies.fan say; may be given more "
-            "than once. Without it those that the points tell best.",
-        ),
-    ] = None,
-    json: JsonTarget = None,
-) -> None:
-    """Fit an engine to points of thrust and fuel flow, and write it as a new engine file."""
-    from pathlib import Path
-
-    from engine.options.fit_points import read_fit_points
-    from engine.options.fitting import fit
-    from engine.reading import read_toml
-    from mission.library import find
-    from mission.outputs.engine_text import check_engine_target, engine_text, fit_remarks
-    from mission.outputs.files import write_text
-    from mission.outputs.fit_record import fit_record
-    from mission.outputs.fit_screen import fit_screen
-
-    check_json(json)
-    check_engine_target(write, "--write")
-    path = find(engine, "engine")
-    content = read_toml(path)
-    if points is None:
-        _write_out(content, path, write, free, json)
-        return
-    found = fit(content, str(path), read_fit_points(Path(points)), free or ())
-    write_text(write, engine_text(found.content, fit_remarks(found, str(path))), "--write")
-    show(
-        lambda width: fit_screen(found, written=write, width=width),
-        lambda: fit_record(found, written=write),
-        json,
-    )
-
-
-def _write_out(
-    content: dict[str, Any], path: Path, write: str, free: list[str] | None, json: str | None
-) -> None:
-    """A brochure as the engine file that its four numbers make."""
-    from engine.options.fitting import cycle_content
-    from mission.outputs.engine_text import engine_text
-    from mission.outputs.files import write_text
-    from mission.outputs.fit_record import written_record
-    from mission.outputs.fit_screen import written_screen
-
-    if free or content.get("kind") != "brochure":
-        raise InputRefused(
-            "is missing; give a file of points to meet: only a brochure is written out without",
-            key="--points",
-        )
-    whole = cycle_content(content, str(path))
-    remark = f"from {path.name}: the cycle that its four numbers make"
-    write_text(write, engine_text(whole, [remark]), "--write")
-    show(
-        lambda _: written_screen(whole, written=write),
-        lambda: written_record(whole, written=write),
         json,
     )
 
