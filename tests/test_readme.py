@@ -63,6 +63,14 @@ def test_every_reserve_rule_is_named() -> None:
     assert [name for name in RULES if f"`{name}`" not in README] == []
 
 
+def test_what_is_known_goes_with_the_mission() -> None:
+    *_, mission = toml_blocks()
+    content = tomllib.loads(f"{mission}\n{block_after('known')}")
+    known = mission_from_content(content, "README.md").written.known
+    assert known is not None
+    assert (known.block_fuel, known.segment[0].time) == (4300.0, 1320.0)
+
+
 def test_the_engine_lacks_only_what_its_comments_stand_for() -> None:
     content = tomllib.loads(toml_blocks()[1])
     for name in ("maximum_continuous", "climb", "cruise"):
