@@ -16,6 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from engine.errors import InputRefused
+from mission.errors import CannotBeFlown
 from mission.known import KnownValue
 from mission.questions.told_factors import FACTORS, Keys, columns
 from mission.results import Flight
@@ -39,7 +40,8 @@ _MOST_BLOCKED = 4  # steps halved one after another before flights that cannot b
 class Trial:
     """A flight: logarithms of the factors (2,), and of flown over known (n,).
 
-    Only a usable one tells how far it is off.
+    Only a usable one tells how far it is off. Where there was no flight at all ``refusal`` says
+    why, and the rest is of the first trial.
     """
 
     place: Array
@@ -47,6 +49,7 @@ class Trial:
     values: tuple[KnownValue, ...]
     errors: Array
     is_usable: bool
+    refusal: CannotBeFlown | None = None
 
     @property
     def misfit(self) -> float:

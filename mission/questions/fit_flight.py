@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from engine.errors import InputRefused
 from engine.interface import Engine
 from mission.aircraft import Aircraft
+from mission.errors import CannotBeFlown
 from mission.flight import fly
 from mission.known import KnownTable, KnownValue, known_against_flown
 from mission.mission_file import Mission
@@ -27,7 +28,9 @@ from mission.questions.factor_search import (
     with_slopes,
 )
 from mission.questions.told_factors import (
+    DRAG,
     FACTORS,
+    FLOW,
     Keys,
     doubts,
     free_by_rule,
@@ -115,8 +118,9 @@ def fit_flight(
 
     ``free`` names the factors that may change; without it they are those that the knowns tell.
     Raises :class:`engine.errors.InputRefused` where the file has no knowns, where they do not tell
-    what is to be free, or where they ask for a factor outside 0.5 to 2; a mission that cannot be
-    flown comes back with ``blocked`` set.
+    what is to be free, or where they ask for a factor outside 0.5 to 2, and
+    :class:`mission.errors.CannotBeFlown` where there is no flight to show; a mission that cannot be
+    flown otherwise comes back with ``blocked`` set.
     """
     known, where, asked = _known_of(mission), mission.where, named_factors(free)
     trials: list[Trial] = []
@@ -124,8 +128,15 @@ def fit_flight(
     def attempt(place: Array) -> Trial:
         drag, flow = np.exp(place).tolist()
         plane = replace(aircraft, drag_factor=drag, fuel_flow_factor=flow)
-        trials.append(_trial(place, fly(mission, plane, engine), known, mission))
-        return trials[-1]
+        try:
+            trial = _trial(place, fly(mission, plane, engine), known, mission)
+        except CannotBeFlown as refusal:
+            refusal.add_note(f"with {DRAG} = {drag:.4g} and {FLOW} = {flow:.4g}")
+            if not trials:
+                raise
+            trial = replace(trials[0], place=place, is_usable=False, refusal=refusal)
+        trials.append(trial)
+        return trial
 
     here = attempt(np.log([aircraft.drag_factor, aircraft.fuel_flow_factor]))
     start = begun(here)
@@ -195,6 +206,8 @@ def _refuse_start(start: Trial, keys: Keys) -> None:
 def _fit(start: Search, found: Search, keys: Keys, held_because: str, flights: int) -> FlightFit:
     """What was found; nothing is free and nothing known where the fit could not begin."""
     here, blocked = found.here, found.blocked
+    if blocked is not None and blocked.refusal is not None:
+        raise blocked.refusal
     doubt = dict(zip(keys, doubts(found.measured, keys).tolist(), strict=True)) if keys else {}
     places = zip(FACTORS, _factors(start.here), _factors(here), strict=True)
     rows = zip(here.values, start.here.values, found.measured.tolist(), strict=True)

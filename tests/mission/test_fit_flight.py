@@ -25,6 +25,7 @@ from engine import load_engine
 from engine.errors import InputRefused
 from engine.interface import Engine
 from mission.aircraft import Aircraft, load_aircraft
+from mission.errors import CannotBeFlown
 from mission.flight import fly
 from mission.mission_file import Mission, mission_from_content
 from mission.questions import fit_flight as question
@@ -307,6 +308,30 @@ def test_knowns_that_lead_to_where_nothing_flies(case: Case, count: list[Flight]
     assert found.blocked.factors[0] > values(found)["drag_factor"] > 1.0
     assert found.flights == len(count) <= MOST_FLIGHTS
     assert found.knowns[0].value.flown > found.knowns[0].before
+
+
+@pytest.mark.parametrize(("most", "flights"), [(0.9, 1), (1.1, MOST_FLIGHTS)])
+def test_a_mission_without_a_flight_says_with_which_factors(
+    case: Case, monkeypatch: pytest.MonkeyPatch, most: float, flights: int
+) -> None:
+    """Where a flight is refused, at the start or on the way, the refusal is handed on."""
+    tried: list[float] = []
+
+    def refusing(mission: Mission, aircraft: Aircraft, engine: Engine) -> Flight:
+        tried.append(aircraft.drag_factor)
+        if aircraft.drag_factor > most:
+            raise CannotBeFlown("no level has a climb left")
+        return fly(mission, aircraft, engine)
+
+    flight = flown_with(case, 1.3, 1.0)
+    known = {"block_fuel": block(flight), "segment": [of_climb(flight, "time")]}
+    monkeypatch.setattr(question, "fly", refusing)
+    with pytest.raises(CannotBeFlown, match="no level has a climb left") as refused:
+        fit_flight(*with_known(case, known))
+    assert len(tried) <= flights
+    (note,) = refused.value.__notes__
+    assert float(note.split()[3]) == pytest.approx(tried[-1], rel=1e-3)
+    assert tried[-1] > most
 
 
 def test_a_load_too_small_before_the_fit_is_no_hindrance(tmp_path: Path) -> None:
