@@ -11,10 +11,10 @@ from engine.atmosphere import SEA_LEVEL_PRESSURE, flight_condition
 from engine.envelope import grid
 from engine.interface import Engine
 from engine.quantities import STANDARD_GRAVITY
-from mission.march.world import World
-from mission.questions.best_speeds import LONG_RANGE_SHARE, maximum_range_mach, range_about
+from mission.march.seeking import LONG_RANGE_SHARE
+from mission.questions.best_speeds import maximum_range_mach, range_about
 from mission.questions.climbing import rate_about, rate_of_climb
-from mission.questions.level_flight import LevelFlight, LevelSpeed, Limit
+from mission.questions.level_flight import LevelSpeed, Limit, Subject
 from mission.questions.searching import (
     Function,
     falling_root,
@@ -64,39 +64,26 @@ class ClimbLevel:
     limit: Limits
 
 
-def level_flight(world: World, altitude: Array, mass: Array, rating: str) -> LevelFlight:
-    """Level flight at pressure altitudes [m] and masses [kg], on the day and in the wind."""
-    return LevelFlight.of(
-        world.aircraft,
-        world.engine,
-        altitude,
-        mass,
-        world.temperature_deviation,
-        world.tailwind,
-        rating=rating,
-    )
-
-
-def best_altitude(world: World, mass: Array, *, rating: str = "cruise") -> BestLevel:
-    """Level and speed of the greatest specific range over the ground at masses [kg] (S).
+def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> BestLevel:
+    """Level and speed of the greatest specific air range at masses [kg] (S).
 
     Found with ranges read off a parabola, then once more from three levels close together whose
     best speeds are found in full.
     """
 
     def cost(altitude: Array) -> Array:
-        return -range_about(speed_range(level_flight(world, altitude, mass, rating)))
+        return -range_about(speed_range(subject.level_flight(altitude, mass, rating)))
 
-    levels = _levels(world.engine, mass)
+    levels = _levels(subject.engine, mass)
     costs = cost(levels)
     best = np.argmin(costs, axis=0)
     low, high = (pick(levels, np.clip(best + step, 0, len(levels) - 1)) for step in (-1, 1))
     middle = np.clip(least_between(cost, low, high), low + _CLOSE, high - _CLOSE)
     close = np.stack([middle - _CLOSE, middle, middle + _CLOSE])
-    ranges = _best_speed(world, close, mass, rating).specific_ground_range
+    ranges = _best_speed(subject, close, mass, rating).specific_air_range
     costs = np.where(np.isfinite(ranges), -ranges, np.inf)
     altitude = vertex(close, costs, np.argmin(costs, axis=0))
-    speed = _best_speed(world, altitude, mass, rating)
+    speed = _best_speed(subject, altitude, mass, rating)
     pressure = flight_condition(altitude).static_pressure
     is_found = speed.is_flyable
     return BestLevel(
@@ -108,27 +95,27 @@ def best_altitude(world: World, mass: Array, *, rating: str = "cruise") -> BestL
     )
 
 
-def _best_speed(world: World, altitude: Array, mass: Array, rating: str) -> LevelSpeed:
-    return maximum_range_mach(speed_range(level_flight(world, altitude, mass, rating)))
+def _best_speed(subject: Subject, altitude: Array, mass: Array, rating: str) -> LevelSpeed:
+    return maximum_range_mach(speed_range(subject.level_flight(altitude, mass, rating)))
 
 
-def range_shares(world: World, mass: Array, altitude: Array, rating: str) -> Array:
+def range_shares(subject: Subject, mass: Array, altitude: Array, rating: str) -> Array:
     """Specific range at levels (k, S) over that at the first of them; zero where none is flown."""
-    found = range_about(speed_range(level_flight(world, altitude, mass, rating)))
+    found = range_about(speed_range(subject.level_flight(altitude, mass, rating)))
     return found / np.where(found[0] > 0.0, found[0], 1.0)
 
 
 def level_band(
-    world: World, mass: Array, altitude: Array, *, rating: str = "cruise"
+    subject: Subject, mass: Array, altitude: Array, *, rating: str = "cruise"
 ) -> tuple[Array, Array]:
     """Lowest and highest level [m] at which specific range is 99 % of that at the best (S)."""
-    best = range_about(speed_range(level_flight(world, altitude, mass, rating)))
+    best = range_about(speed_range(subject.level_flight(altitude, mass, rating)))
 
     def surplus(levels: Array) -> Array:
-        found = range_about(speed_range(level_flight(world, levels, mass, rating)))
+        found = range_about(speed_range(subject.level_flight(levels, mass, rating)))
         return np.where(found > 0.0, found / best / LONG_RANGE_SHARE - 1.0, -np.inf)
 
-    levels = _levels(world.engine, mass)
+    levels = _levels(subject.engine, mass)
     values = surplus(levels)
     below, above = (
         first_fall(levels, values, altitude, levels[end], way)[:2]
@@ -140,7 +127,7 @@ def level_band(
 
 
 def climb_level(
-    world: World, mass: Array, rate: float, *, mach: Array | None = None, rating: str = "climb"
+    subject: Subject, mass: Array, rate: float, *, mach: Array | None = None, rating: str = "climb"
 ) -> ClimbLevel:
     """Highest level at which a rate of climb [m/s] is left at a rating.
 
@@ -148,14 +135,14 @@ def climb_level(
     """
 
     def surplus(altitude: Array) -> Array:
-        flight = level_flight(world, altitude, mass, rating)
+        flight = subject.level_flight(altitude, mass, rating)
         if mach is None:
             return rate_about(flight) / rate - 1.0
         asked = np.broadcast_to(mach, altitude.shape)[None]
-        found = flight.at_rating(asked, np.isfinite(asked))
-        return rate_of_climb(flight, found)[0] / rate - 1.0
+        rates: Array = rate_of_climb(flight, flight.at_rating(asked, np.isfinite(asked)))[0]
+        return rates / rate - 1.0
 
-    return _highest(surplus, _levels(world.engine, mass), world.engine)
+    return _highest(surplus, _levels(subject.engine, mass), subject.engine)
 
 
 def _highest(surplus: Function, levels: Array, engine: Engine) -> ClimbLevel:

@@ -13,6 +13,7 @@ from collections.abc import Callable
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from mission.march.seeking import LONG_RANGE_SHARE
 from mission.questions.level_flight import Answers, LevelFlight, LevelSpeed, Limit
 from mission.questions.searching import falling_root, first_fall, least_between, pick, vertex_value
 from mission.questions.speed_range import SpeedRange, near
@@ -21,24 +22,20 @@ Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 Limits = NDArray[np.int64]
 Cost = Callable[[LevelFlight, Answers], Array]
-LONG_RANGE_SHARE = 0.99  # of the best specific range: common practice, no source
 
 
 def maximum_range_mach(speeds: SpeedRange) -> LevelSpeed:
-    """Mach number of the greatest specific range over the ground."""
-    return least_cost_mach(speeds, 0.0)
+    """Mach number of the greatest specific air range."""
+    return _least(speeds, _per_air_distance)
 
 
 def range_about(speeds: SpeedRange) -> Array:
-    """The greatest specific range over the ground [m/kg] by a parabola through the curve.
+    """The greatest specific air range [m/kg] by a parabola through the curve.
 
     No engine is asked for more, and the error is below 1e-3; zero where there is no level flight.
     """
-    found = speeds.curve
-    over_ground = speeds.flight.ground_speed(found.mach)
-    cost = np.where(found.is_met, found.fuel_flow / over_ground, np.inf)
-    least = vertex_value(cost, np.argmin(cost, axis=0))
-    return np.asarray(1.0 / least)
+    cost = _cost_of(speeds, speeds.curve, _per_air_distance)
+    return np.asarray(1.0 / vertex_value(cost, np.argmin(cost, axis=0)))
 
 
 def best_endurance_mach(speeds: SpeedRange) -> LevelSpeed:
@@ -50,18 +47,19 @@ def least_cost_mach(speeds: SpeedRange, cost_index: ArrayLike) -> LevelSpeed:
     """Mach number of least cost of a distance, time costing as much as ``cost_index`` [kg/s].
 
     The cost index is the cost of time over the cost of fuel; what is least is fuel flow plus cost
-    index over ground speed (common practice, no source).
+    index over ground speed (from memory). At a cost index of zero it is the greatest specific
+    range over the ground, in whatever wind.
     """
 
-    def cost(flight: LevelFlight, found: Answers) -> Array:
+    def per_ground_distance(flight: LevelFlight, found: Answers) -> Array:
         per_time: Array = found.fuel_flow + np.asarray(cost_index)
         return per_time / flight.ground_speed(found.mach)
 
-    return _least(speeds, cost)
+    return _least(speeds, per_ground_distance)
 
 
 def long_range_mach(speeds: SpeedRange, best: LevelSpeed | None = None) -> LevelSpeed:
-    """Mach number above the best at which specific ground range is 99 % of the greatest.
+    """Mach number above the best at which specific air range is 99 % of the greatest.
 
     ``best`` is that of :func:`maximum_range_mach`, if it is known. Where a limit stands before, the
     Mach number is the limit's.
@@ -83,6 +81,15 @@ def maximum_level_mach(speeds: SpeedRange) -> LevelSpeed:
     return _speed(speeds, speeds.greatest, speeds.is_open, limit, start)
 
 
+def _per_air_distance(flight: LevelFlight, found: Answers) -> Array:
+    return found.fuel_flow / (found.mach * flight.air.speed_of_sound)
+
+
+def _cost_of(speeds: SpeedRange, found: Answers, cost: Cost) -> Array:
+    """A cost, infinite where the engine does not give thrust equal to drag."""
+    return np.where(found.is_met, cost(speeds.flight, found), np.inf)
+
+
 def _speed(
     speeds: SpeedRange, mach: Array, is_found: Flags, limit: Limits, start: Array
 ) -> LevelSpeed:
@@ -90,13 +97,9 @@ def _speed(
 
 
 def _least(speeds: SpeedRange, cost: Cost) -> LevelSpeed:
-    """The Mach number at which a cost is least; infinite where the engine does not give thrust."""
-    flight, curve = speeds.flight, speeds.curve
-
-    def cost_of(found: Answers) -> Array:
-        return np.where(found.is_met, cost(flight, found), np.inf)
-
-    values = cost_of(curve)
+    """The Mach number at which a cost is least."""
+    curve = speeds.curve
+    values = _cost_of(speeds, curve, cost)
     best = np.argmin(values, axis=0)
     is_found = np.isfinite(pick(values, best))
     low, high = (pick(curve.mach, np.clip(best + step, 0, len(curve.mach) - 1)) for step in (-1, 1))
@@ -104,7 +107,7 @@ def _least(speeds: SpeedRange, cost: Cost) -> LevelSpeed:
 
     def at(mach: Array) -> Array:
         begin = np.broadcast_to(start, (len(start), *mach.shape))
-        return cost_of(flight.level(mach, is_found, begin))
+        return _cost_of(speeds, speeds.flight.level(mach, is_found, begin), cost)
 
     mach = least_between(at, low, high)
     limit = np.where(is_found, speeds.limit_at(mach), _lack(speeds))
@@ -123,12 +126,13 @@ def _where_range_is(speeds: SpeedRange, best: LevelSpeed, end: Array, way: float
     """
     flight, curve = speeds.flight, speeds.curve
     is_found = best.is_flyable
-    enough = np.where(is_found, LONG_RANGE_SHARE * best.specific_ground_range, 1.0)
+    enough = np.where(is_found, LONG_RANGE_SHARE * best.specific_air_range, 1.0)
 
     def surplus(found: Answers) -> Array:
         burns = found.is_met & (found.fuel_flow > 0.0)
         flow = np.where(burns, found.fuel_flow, 1.0)
-        return np.where(burns, flight.ground_speed(found.mach) / flow / enough - 1.0, -np.inf)
+        speed = found.mach * flight.air.speed_of_sound
+        return np.where(burns, speed / flow / enough - 1.0, -np.inf)
 
     peak = np.where(is_found, best.mach, end)
     inside, outside, falls = first_fall(curve.mach, surplus(curve), peak, end, way)

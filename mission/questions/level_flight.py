@@ -15,6 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from engine.atmosphere import FlightCondition, flight_condition
 from engine.interface import Engine, Outcome
 from engine.quantities import STANDARD_GRAVITY
+from mission.air import Air
 from mission.aircraft import Aircraft
 from mission.forces import drag, lift_coefficient
 
@@ -238,6 +239,27 @@ class LevelFlight:
             specific_ground_range=self.ground_speed(flight.mach) / flow,
             thrust_margin=np.where(is_met, found.thrust[0] / resistance - 1.0, most),
             limit=np.where(is_flyable & ~is_met, found.lack[1], limit),
+        )
+
+
+@dataclass(frozen=True)
+class Subject:
+    """Aircraft, engine and the air by altitude that a question about many levels is about."""
+
+    aircraft: Aircraft
+    engine: Engine
+    air: Air
+
+    def level_flight(self, altitude: Array, mass: Array, rating: str) -> LevelFlight:
+        """Level flight at pressure altitudes [m] and masses [kg] that broadcast."""
+        return LevelFlight.of(
+            self.aircraft,
+            self.engine,
+            altitude,
+            mass,
+            self.air.deviation_at(altitude),
+            self.air.tailwind_at(altitude),
+            rating=rating,
         )
 
 
