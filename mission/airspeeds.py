@@ -111,6 +111,19 @@ def calibrated_mach_slope(flight: FlightCondition) -> Array:
     return rise / _impact_slope(mach)
 
 
+def climb_acceleration_factor(flight: FlightCondition, mach_slope: ArrayLike) -> Array:
+    """``1 + V/g dV/dh`` of a climb whose Mach number changes by ``mach_slope`` [1/m].
+
+    The slope is along pressure altitude, 0 at constant Mach number; h is geometric height, which on
+    a day that is not standard grows by temperature over standard temperature.
+    """
+    sound, temperature = flight.speed_of_sound, flight.static_temperature
+    sound_slope = sound / (2.0 * temperature) * flight.lapse_rate
+    geometric = (temperature - flight.temperature_deviation) / temperature
+    speed_slope = (sound * np.asarray(mach_slope) + flight.mach * sound_slope) * geometric
+    return 1.0 + flight.true_airspeed / STANDARD_GRAVITY * speed_slope
+
+
 def energy_height(height: ArrayLike, true_airspeed: ArrayLike) -> Array:
     """Height [m] at which the same energy would be all potential."""
     return np.asarray(height) + np.asarray(true_airspeed) ** 2 / (2.0 * STANDARD_GRAVITY)

@@ -14,6 +14,7 @@ from mission.commands.engine_commands import envelope_command, stations_command
 from mission.commands.fit_commands import fit_command
 from mission.commands.listing import list_command
 from mission.commands.mission_commands import compare_command, fly_command
+from mission.commands.question_commands import best_command, point_command
 from mission.commands.shared import NOT_FLYABLE
 from mission.errors import CannotBeFlown
 from mission.outputs.wording import CAUTION
@@ -31,6 +32,8 @@ app = typer.Typer(
 )
 app.command("fly")(fly_command)
 app.command("compare")(compare_command)
+app.command("best")(best_command)
+app.command("point")(point_command)
 app.command("stations")(stations_command)
 app.command("envelope")(envelope_command)
 app.command("fit")(fit_command)

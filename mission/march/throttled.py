@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
-from mission.airspeeds import calibrated_mach_slope
+from mission.airspeeds import calibrated_mach_slope, climb_acceleration_factor
 from mission.march.level import airframe_drag
 from mission.march.nodes import positions
 from mission.march.rules import mach_at
@@ -43,11 +43,8 @@ def on_schedule(span: Span, world: World, air: FlightCondition) -> FlightConditi
 
 def acceleration_factor(span: Span, flight: FlightCondition) -> Array:
     """``1 + V/g dV/dh`` along the schedule, height geometric."""
-    slope = 0.0 if span.start_speed.kind == "mach" else calibrated_mach_slope(flight)
-    sound = flight.speed_of_sound
-    sound_slope = sound / (2.0 * flight.static_temperature) * flight.lapse_rate
-    speed_slope = (sound * slope + flight.mach * sound_slope) * _pressure_to_geometric(flight)
-    return 1.0 + flight.true_airspeed / STANDARD_GRAVITY * speed_slope
+    is_mach = span.start_speed.kind == "mach"
+    return climb_acceleration_factor(flight, 0.0 if is_mach else calibrated_mach_slope(flight))
 
 
 def _pressure_to_geometric(flight: FlightCondition) -> Array:

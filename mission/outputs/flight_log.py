@@ -20,6 +20,7 @@ from mission.outputs.margins import least_margin, room
 from mission.outputs.page import (
     WIDEST,
     Column,
+    apart,
     bullets,
     caution,
     note,
@@ -65,7 +66,7 @@ def flight_log(
     parts: list[RenderableType] = [
         _heading(flight, setting, units),
         _answer(flight, setting, scales),
-        section(_rows_title(flight), *_apart(tables), note(_KEY)),
+        section(_rows_title(flight), *apart(tables), note(_KEY)),
     ]
     if with_steps:
         parts += step_sections(shown, scales, width)
@@ -88,12 +89,6 @@ def flight_log(
     if flight.warnings:
         parts.append(section("Warnings", bullets(flight.warnings)))
     return Group(*parts, caution())
-
-
-def _apart(tables: list[Table]) -> list[RenderableType]:
-    """Tables with an empty line between them."""
-    spaced: list[RenderableType] = [item for table in tables for item in (table, Text(" "))]
-    return spaced[:-1]
 
 
 def _heading(flight: Flight, setting: Setting, units: Units) -> Group:

@@ -77,6 +77,12 @@ def section(title: str, *body: RenderableType | None) -> Group:
     return Group(Text(), Text(title, "bold"), *inner)
 
 
+def apart(tables: Iterable[Table]) -> list[RenderableType]:
+    """Tables with an empty line between them."""
+    spaced: list[RenderableType] = [item for table in tables for item in (table, Text(" "))]
+    return spaced[:-1]
+
+
 def note(text: str) -> Text:
     """A wrapped remark in a quieter voice."""
     return Text(text, "dim")

@@ -11,19 +11,17 @@ from engine.atmosphere import SEA_LEVEL_PRESSURE, flight_condition
 from engine.envelope import grid
 from engine.interface import Engine
 from engine.quantities import STANDARD_GRAVITY
-from mission.march.seeking import LONG_RANGE_SHARE
 from mission.questions.best_speeds import maximum_range_mach, range_about
 from mission.questions.climbing import rate_about, rate_of_climb
-from mission.questions.level_flight import LevelSpeed, Limit, Subject
+from mission.questions.level_flight import LevelSpeed, Limit, Subject, picked
 from mission.questions.searching import (
     Function,
     falling_root,
-    first_fall,
     least_between,
     pick,
     vertex,
 )
-from mission.questions.speed_range import speed_range
+from mission.questions.speed_range import greatest_margin, speed_range
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -31,6 +29,22 @@ Limits = NDArray[np.int64]
 HIGHEST = 20000.0  # m: where the search for a level ends
 _STEP = 1000.0  # m: the tropopause, at which range has a kink, is a point of the grid
 _CLOSE = 60.0  # m: between the last three levels
+_BELOW_TOP = 0.01  # m, for round-off of the thrust there
+
+
+@dataclass(frozen=True)
+class ClimbLevel:
+    """Highest level at which a rate of climb, or level flight, is left, arrays over the masses S.
+
+    Attributes
+    ----------
+    pressure_altitude : [m]; NaN where there is no such level
+    limit : :data:`Limit.NONE`; :data:`Limit.THRUST` where there is no such level; or the end of the
+        search (:data:`Limit.ALTITUDE`, :data:`Limit.TABLE`), where more is left
+    """
+
+    pressure_altitude: Array
+    limit: Limits
 
 
 @dataclass(frozen=True)
@@ -42,57 +56,59 @@ class BestLevel:
     pressure_altitude : [m], NaN where no level can be flown
     speed : the speed of the greatest specific range at it
     weight_over_pressure_ratio : weight over ambient pressure in standard sea-level pressures [N]
+    highest : the highest level of level flight at all
     """
 
     pressure_altitude: Array
     speed: LevelSpeed
     weight_over_pressure_ratio: Array
-
-
-@dataclass(frozen=True)
-class ClimbLevel:
-    """Highest level at which a rate of climb is left, arrays over the masses S.
-
-    Attributes
-    ----------
-    pressure_altitude : [m]; NaN where the rate is met nowhere
-    limit : :data:`Limit.NONE`; or for want of what the rate is met nowhere; or the end of the
-        search (:data:`Limit.ALTITUDE`, :data:`Limit.TABLE`), where more than the rate is left
-    """
-
-    pressure_altitude: Array
-    limit: Limits
+    highest: ClimbLevel
 
 
 def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> BestLevel:
     """Level and speed of the greatest specific air range at masses [kg] (S).
 
-    Found with ranges read off a parabola, then once more from three levels close together whose
-    best speeds are found in full.
+    Looked for up to the level where thrust ends, with ranges read off a parabola; then, with best
+    speeds found in full, also at the vertex through three levels around what was found.
     """
 
     def cost(altitude: Array) -> Array:
         return -range_about(speed_range(subject.level_flight(altitude, mass, rating)))
 
+    highest = highest_level(subject, mass, rating=rating)
     levels = _levels(subject.engine, mass)
-    costs = cost(levels)
-    best = np.argmin(costs, axis=0)
+    is_open = np.isfinite(highest.pressure_altitude)
+    top = np.where(is_open, highest.pressure_altitude - _BELOW_TOP, levels[0])
+    levels = np.minimum(levels, np.maximum(top, levels[0]))
+    best = np.argmin(cost(levels), axis=0)
     low, high = (pick(levels, np.clip(best + step, 0, len(levels) - 1)) for step in (-1, 1))
-    middle = np.clip(least_between(cost, low, high), low + _CLOSE, high - _CLOSE)
-    close = np.stack([middle - _CLOSE, middle, middle + _CLOSE])
-    ranges = _best_speed(subject, close, mass, rating).specific_air_range
-    costs = np.where(np.isfinite(ranges), -ranges, np.inf)
-    altitude = vertex(close, costs, np.argmin(costs, axis=0))
-    speed = _best_speed(subject, altitude, mass, rating)
-    pressure = flight_condition(altitude).static_pressure
-    is_found = speed.is_flyable
-    return BestLevel(
-        pressure_altitude=np.where(is_found, altitude, np.nan),
-        speed=speed,
-        weight_over_pressure_ratio=np.where(
-            is_found, mass * STANDARD_GRAVITY / (pressure / SEA_LEVEL_PRESSURE), np.nan
-        ),
-    )
+    found = least_between(cost, low, high)
+    step = np.minimum(_CLOSE, 0.5 * (high - low))
+    middle = np.clip(found, low + step, high - step)
+    close = np.stack([middle - step, middle, middle + step])
+    costs = _full_cost(_best_speed(subject, close, mass, rating))
+    tried = np.stack([vertex(close, costs, np.argmin(costs, axis=0)), found])
+    speeds = _best_speed(subject, tried, mass, rating)
+    better = np.argmin(_full_cost(speeds), axis=0)
+    speed = picked(speeds, better)
+    altitude = np.where(speed.is_flyable, pick(tried, better), np.nan)
+    pressure = flight_condition(np.where(speed.is_flyable, altitude, 0.0)).static_pressure
+    ratio = mass * STANDARD_GRAVITY * SEA_LEVEL_PRESSURE / pressure
+    return BestLevel(altitude, speed, np.where(speed.is_flyable, ratio, np.nan), highest)
+
+
+def _full_cost(speed: LevelSpeed) -> Array:
+    """The negative of specific air range, infinite where there is no level flight."""
+    return np.where(speed.is_flyable, -speed.specific_air_range, np.inf)
+
+
+def highest_level(subject: Subject, mass: Array, *, rating: str = "cruise") -> ClimbLevel:
+    """Highest level of level flight at masses [kg] (S): thrust ends there, or allowed speeds do."""
+
+    def surplus(altitude: Array) -> Array:
+        return greatest_margin(subject.level_flight(altitude, mass, rating))
+
+    return _highest(surplus, _levels(subject.engine, mass), subject.engine)
 
 
 def _best_speed(subject: Subject, altitude: Array, mass: Array, rating: str) -> LevelSpeed:
@@ -103,27 +119,6 @@ def range_shares(subject: Subject, mass: Array, altitude: Array, rating: str) ->
     """Specific range at levels (k, S) over that at the first of them; zero where none is flown."""
     found = range_about(speed_range(subject.level_flight(altitude, mass, rating)))
     return found / np.where(found[0] > 0.0, found[0], 1.0)
-
-
-def level_band(
-    subject: Subject, mass: Array, altitude: Array, *, rating: str = "cruise"
-) -> tuple[Array, Array]:
-    """Lowest and highest level [m] at which specific range is 99 % of that at the best (S)."""
-    best = range_about(speed_range(subject.level_flight(altitude, mass, rating)))
-
-    def surplus(levels: Array) -> Array:
-        found = range_about(speed_range(subject.level_flight(levels, mass, rating)))
-        return np.where(found > 0.0, found / best / LONG_RANGE_SHARE - 1.0, -np.inf)
-
-    levels = _levels(subject.engine, mass)
-    values = surplus(levels)
-    below, above = (
-        first_fall(levels, values, altitude, levels[end], way)[:2]
-        for end, way in ((0, -1.0), (-1, 1.0))
-    )
-    inside, outside = np.stack([below[0], above[0]]), np.stack([below[1], above[1]])
-    low, high = falling_root(surplus, inside, outside)
-    return low, high
 
 
 def climb_level(
@@ -158,8 +153,13 @@ def _highest(surplus: Function, levels: Array, engine: Engine) -> ClimbLevel:
     return ClimbLevel(np.where(is_met, found, np.nan), np.where(is_met, limit, Limit.THRUST))
 
 
+def searched(engine: Engine) -> tuple[float, float]:
+    """Lowest and highest level [m] at which anything is asked."""
+    low, high = (0.0, HIGHEST) if engine.coverage is None else engine.coverage.pressure_altitude
+    return low, min(high, HIGHEST)
+
+
 def _levels(engine: Engine, mass: Array) -> Array:
     """Levels (k, S) [m] over all that is searched."""
-    low, high = (0.0, HIGHEST) if engine.coverage is None else engine.coverage.pressure_altitude
-    points = grid(low, min(high, HIGHEST), _STEP).reshape(-1, *(1,) * mass.ndim)
+    points = grid(*searched(engine), _STEP).reshape(-1, *(1,) * mass.ndim)
     return np.broadcast_to(points, (len(points), *mass.shape)).copy()

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import IntEnum
+from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -18,6 +19,7 @@ from engine.quantities import STANDARD_GRAVITY
 from mission.air import Air
 from mission.aircraft import Aircraft
 from mission.forces import drag, lift_coefficient
+from mission.questions.searching import pick
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -106,6 +108,15 @@ class LevelSpeed:
     specific_ground_range: Array
     thrust_margin: Array
     limit: Limits
+
+    def at(self, index: Any) -> LevelSpeed:
+        """The members picked by a NumPy index."""
+        return LevelSpeed(**{name: value[index] for name, value in vars(self).items()})
+
+
+def picked(speeds: LevelSpeed, place: NDArray[np.int64]) -> LevelSpeed:
+    """The speed (S) of several (k, S) that ``place`` (S) names."""
+    return LevelSpeed(**{name: pick(value, place) for name, value in vars(speeds).items()})
 
 
 @dataclass(frozen=True)

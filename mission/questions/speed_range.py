@@ -143,6 +143,14 @@ def margins(found: Answers) -> Array:
     return np.where(found.is_met, found.thrust / found.drag - 1.0, -np.inf)
 
 
+def greatest_margin(flight: LevelFlight) -> Array:
+    """Thrust over drag less one at the speed that leaves most; minus infinity where there is none.
+
+    Exact in sign: where it is above zero it is that of a grid.
+    """
+    return np.asarray(np.max(margins(rated_over(flight, allowed_ends(flight))), axis=0))
+
+
 def near(found: Answers, place: Places) -> Array:
     """Unknowns (n, S) at the points (S) of a grid, where a call near by may start."""
     return np.take_along_axis(found.unknowns, place[None, None], axis=1)[:, 0]
