@@ -120,7 +120,7 @@ def climb_acceleration_factor(flight: FlightCondition, mach_slope: ArrayLike) ->
     sound, temperature = flight.speed_of_sound, flight.static_temperature
     sound_slope = sound / (2.0 * temperature) * flight.lapse_rate
     geometric = (temperature - flight.temperature_deviation) / temperature
-    speed_slope = (sound * np.asarray(mach_slope) + flight.mach * sound_slope) * geometric
+    speed_slope: Array = (sound * np.asarray(mach_slope) + flight.mach * sound_slope) * geometric
     return 1.0 + flight.true_airspeed / STANDARD_GRAVITY * speed_slope
 
 

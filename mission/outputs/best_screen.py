@@ -14,8 +14,7 @@ from mission.outputs.page import WIDEST, apart, caution, note, pairs, section
 from mission.outputs.units import METRIC, Scale, Unit, Units
 from mission.outputs.wording import TIMES, day_in_words, in_plain_words
 from mission.questions.best import BestCruise
-from mission.questions.best_levels import ClimbLevel
-from mission.questions.level_flight import Limit
+from mission.questions.best_levels import SEARCH_ENDS, ClimbLevel
 
 _KEY = (
     "SAR specific air range; long range 99 % of the greatest, faster; W/delta weight over ambient "
@@ -107,7 +106,7 @@ def _doubt(shown: Shown) -> list[tuple[str, str]]:
     ]  # fmt: skip
     if found.initial_cruise is not None and found.ceiling is not None:
         first = _to(shown, found.initial_cruise)
-        text = f"300 ft/min are left {first}, 100 ft/min {_to(shown, found.ceiling)}"
+        text = f"300 ft/min is left {first}, 100 ft/min {_to(shown, found.ceiling)}"
         reached = float(found.initial_cruise.pressure_altitude[found.middle])
         rows.append(("climb", text if reached >= level else f"{text}: short of the best level"))
     return rows
@@ -119,5 +118,5 @@ def _to(shown: Shown, level: ClimbLevel) -> str:
     altitude, limit = float(level.pressure_altitude[i]), int(level.limit[i])
     if not isfinite(altitude):
         return "nowhere"
-    end = " and beyond" if limit in (Limit.ALTITUDE, Limit.TABLE) else ""
+    end = " and beyond" if limit in SEARCH_ENDS else ""
     return f"up to {shown.level(altitude)}{end}"

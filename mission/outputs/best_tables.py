@@ -15,8 +15,8 @@ from mission.outputs.page import INDENT, Column, ruled_table, words
 from mission.outputs.segment_rows import altitude_header, altitude_text
 from mission.outputs.units import ABSENT, METRIC, Scale, Units, number
 from mission.questions.best import LEVELS_OFF, BestCruise
-from mission.questions.best_levels import ClimbLevel
-from mission.questions.level_flight import LevelSpeed, Limit
+from mission.questions.best_levels import SEARCH_ENDS, ClimbLevel
+from mission.questions.level_flight import LevelSpeed
 
 Array = NDArray[np.float64]
 Cells = tuple[str, Callable[[int], str]]
@@ -135,7 +135,7 @@ def _climbs(shown: Shown, level: ClimbLevel | None) -> Callable[[int], str]:
         if level is None:
             return ABSENT
         text = shown.altitude(float(level.pressure_altitude[i]))
-        is_end = int(level.limit[i]) in (Limit.ALTITUDE, Limit.TABLE)
+        is_end = int(level.limit[i]) in SEARCH_ENDS
         return f"> {text}" if is_end else text
 
     return cell

@@ -17,6 +17,11 @@ _HELD = {
     Limit.TABLE: "end of the engine's table",
     Limit.GROUND_SPEED: "headwind",
     Limit.ALTITUDE: "end of the search",
+    Limit.CEILING: "greatest pressure altitude",
+    Limit.DYNAMIC_PRESSURE: "greatest dynamic pressure",
+    Limit.BUFFET: "buffet",
+    Limit.BUFFET_TABLE: "end of the table of buffet onset",
+    Limit.POLAR: "end of the drag polar's table",
 }
 _LACKING = {
     Limit.LIFT: "lift: 1.2 times stall speed is too fast",
@@ -25,6 +30,8 @@ _LACKING = {
     Limit.ENGINE: "the engine has no state",
     Limit.TABLE: "outside the engine's table",
     Limit.GROUND_SPEED: "the headwind is faster",
+    Limit.CEILING: "above the greatest pressure altitude",
+    Limit.POLAR: "outside the drag polar's table",
 }
 
 

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from engine.atmosphere import FlightCondition
 from engine.interface import EngineState, is_unanswered
 from engine.quantities import STANDARD_GRAVITY
+from mission.aerodynamics import buffet_lift_coefficient
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_mach_slope, climb_acceleration_factor
 from mission.forces import STEEPEST, drag, load_factor_of_drag, path_angle_sine, stall_mach
@@ -38,7 +39,7 @@ class AtRatings:
     climb_at_mach, climb_at_airspeed : the same at a Mach number and at a calibrated airspeed held
     path_angle : of ``climb``, relative to the air [rad]
     load_factor : greatest of a level turn that is sustained
-    load_limit : what bounds it: thrust, lift, structure
+    load_limit : what bounds it: thrust, lift, structure, buffet
     turn_rate, turn_radius : [rad/s], [m]
     """
 
@@ -61,11 +62,15 @@ class AtRatings:
 
 
 def load_factors(aircraft: Aircraft, flight: FlightCondition, stall: float) -> dict[str, float]:
-    """Load factors that lift and structure allow."""
-    return {
+    """Load factors that lift, structure and, where it is known, the onset of buffet allow."""
+    coefficient = (stall / float(flight.mach)) ** 2 * aircraft.maximum_lift_coefficient
+    factors = {
         "lift": (float(flight.mach) / stall) ** 2,
         "structure": aircraft.maximum_load_factor,
     }
+    if aircraft.buffet_onset is not None:
+        factors["buffet"] = float(buffet_lift_coefficient(aircraft, flight.mach)) / coefficient
+    return factors
 
 
 def at_ratings(

@@ -11,6 +11,7 @@ from engine.envelope import grid
 from engine.quantities import FOOT
 from mission.march.seeking import LONG_RANGE_SHARE
 from mission.questions.best_levels import (
+    BELOW_TOP,
     BestLevel,
     ClimbLevel,
     best_altitude,
@@ -28,6 +29,7 @@ from mission.questions.best_speeds import (
 )
 from mission.questions.climbing import rate_of_climb
 from mission.questions.level_flight import LevelSpeed, Subject
+from mission.questions.searching import pick
 from mission.questions.speed_range import SpeedRange, speed_range
 
 Array = NDArray[np.float64]
@@ -35,8 +37,10 @@ CLIMB = "climb"
 INITIAL_CRUISE = 300.0 * FOOT / 60.0  # m/s, left at climb rating: common practice, no source
 CEILING = 100.0 * FOOT / 60.0  # m/s: the same
 LEVELS_OFF = np.array([-4000.0, -2000.0, 2000.0, 4000.0]) * FOOT
-# Levels beside the best between which range is read along straight lines, to some 50 ft.
-_AROUND = np.array([0, -1, 1, -2, 2, -3, 3, -4, 4, -5, -6, 6, -8, 8, -12, -16, -20]) * 1000.0 * FOOT
+# Levels below the best, and shares of the way up to the last, between which range is read along
+# straight lines.
+_DOWN = np.array([0, -1, -2, -3, -4, -5, -6, -8, -12, -16, -20]) * 1000.0 * FOOT
+_UP, _FURTHEST_UP = np.linspace(0.0, 1.0, 9)[1:], 8000.0 * FOOT
 _LEVEL_STEP = 2000.0 * FOOT
 _BELOW, _ABOVE = 6000.0 * FOOT, 2000.0 * FOOT  # the best levels, of the levels shown
 _MOST_LEVELS = 12
@@ -106,11 +110,11 @@ def best_cruise(
     """Find the best levels and speeds at masses [kg], time costing ``cost_index`` [kg/s]."""
     mass = np.sort(mass)
     best = best_altitude(subject, mass, rating=rating)
-    there = np.where(best.speed.is_flyable, best.pressure_altitude, searched(subject.engine)[0])
+    there = np.where(best.speed.is_flyable, best.pressure_altitude, searched(subject)[0])
     ranges = speed_range(subject.level_flight(there, mass, rating))
     at_best = _speeds(subject, ranges, cost_index)
     slow = slow_range_mach(ranges, at_best.maximum_range)
-    shares = _shares_around(subject, there, mass, rating)
+    around = _around(subject, best, mass, rating)
     levels = _shown_levels(subject, best)
     climbs = CLIMB in subject.engine.ratings
     mach = best.speed.mach
@@ -121,9 +125,9 @@ def best_cruise(
         mass=mass,
         best=best,
         at_best=at_best,
-        level_band=_level_band(best, shares),
+        level_band=_level_band(best, around),
         mach_band=(slow.mach, at_best.long_range.mach),
-        off_levels=np.stack([shares[off == _AROUND][0] for off in LEVELS_OFF]),
+        off_levels=around.off_share,
         initial_cruise=climb_level(subject, mass, INITIAL_CRUISE, mach=mach) if climbs else None,
         ceiling=climb_level(subject, mass, CEILING) if climbs else None,
         pressure_altitude=levels,
@@ -158,44 +162,64 @@ def _rate_left(subject: Subject, ranges: SpeedRange, best: LevelSpeed) -> Array:
     return np.where(np.isfinite(rate), rate, np.nan)
 
 
-def _shares_around(subject: Subject, best: Array, mass: Array, rating: str) -> Array:
-    """Specific air range beside the best level over that at it; zero where none is flown."""
-    low, high = searched(subject.engine)
-    levels = best + _AROUND[:, None]
-    inside = np.clip(levels, low, high)
-    return np.where(levels == inside, range_shares(subject, mass, inside, rating), 0.0)
+@dataclass(frozen=True)
+class _Around:
+    """Ranges at levels beside the best over that at it, zero where none is flown; arrays (k, M)."""
+
+    down: Array
+    down_share: Array
+    up: Array
+    up_share: Array
+    off_share: Array
 
 
-def _level_band(best: BestLevel, shares: Array) -> tuple[Array, Array]:
-    """Levels [m] at which range has fallen to 99 %, or where level flight ends before."""
-    order = np.argsort(_AROUND)
-    off, share = _AROUND[order], shares[order]
-    centre = int(np.flatnonzero(off == 0.0)[0])
-    down = _fall(off[centre::-1], share[centre::-1])
-    up = _fall(off[centre:], share[centre:])
-    at = best.pressure_altitude
-    return at + down, np.minimum(at + up, best.highest.pressure_altitude)
+def _around(subject: Subject, best: BestLevel, mass: Array, rating: str) -> _Around:
+    """Ranges from 20,000 ft below the best up to where level flight ends, in one go."""
+    low, high, _ = searched(subject)
+    known = best.speed.is_flyable
+    centre = np.where(known, best.pressure_altitude, low)
+    top = np.where(known, best.highest.pressure_altitude - BELOW_TOP, high)
+    reach = np.clip(top - centre, 0.0, _FURTHEST_UP)
+    wanted = centre + LEVELS_OFF[:, None]
+    parts = [
+        np.maximum(centre + _DOWN[:, None], low),
+        centre + _UP[:, None] * reach,
+        np.clip(wanted, low, high),
+    ]
+    down, up, off = np.split(
+        range_shares(subject, mass, np.concatenate(parts), rating),
+        [len(parts[0]), len(parts[0]) + len(parts[1])],
+    )
+    return _Around(
+        down=parts[0],
+        down_share=down,
+        up=np.concatenate([parts[0][:1], parts[1]]),
+        up_share=np.concatenate([down[:1], up]),
+        off_share=np.where(parts[2] == wanted, off, 0.0),
+    )
 
 
-def _fall(off: Array, share: Array) -> Array:
-    """Where shares (k, M) first fall to 99 % along ``off`` (k,), on straight lines.
+def _level_band(best: BestLevel, around: _Around) -> tuple[Array, Array]:
+    """Lowest and highest levels [m] with 99 % of the best range."""
+    known = best.speed.is_flyable
+    down, up = _fall(around.down, around.down_share), _fall(around.up, around.up_share)
+    return np.where(known, down, np.nan), np.where(known, up, np.nan)
 
-    Where they end before they fall, the first place without one; where they never do, the last.
-    """
+
+def _fall(level: Array, share: Array) -> Array:
+    """Where shares (k, M) first fall to 99 % along levels (k, M); the last level if they do not."""
     is_below = share < LONG_RANGE_SHARE
-    after = np.where(is_below.any(axis=0), np.argmax(is_below, axis=0), len(off) - 1)
-    after = np.maximum(after, 1)
-    before = after - 1
-    member = np.arange(share.shape[1])
-    first, last = share[before, member], share[after, member]
-    ends = (last <= 0.0) | (first <= last)
-    way = np.where(ends, 1.0, (first - LONG_RANGE_SHARE) / np.where(ends, 1.0, first - last))
-    return np.asarray(off[before] + np.clip(way, 0.0, 1.0) * (off[after] - off[before]))
+    falls = is_below.any(axis=0)
+    after = np.where(falls, np.maximum(np.argmax(is_below, axis=0), 1), len(level) - 1)
+    (x0, y0), (x1, y1) = ((pick(level, at), pick(share, at)) for at in (after - 1, after))
+    drop = np.where(falls & (y0 > y1), y0 - y1, 1.0)
+    way = np.where(falls, (y0 - LONG_RANGE_SHARE) / drop, 1.0)
+    return np.asarray(x0 + np.clip(way, 0.0, 1.0) * (x1 - x0))
 
 
 def _shown_levels(subject: Subject, best: BestLevel) -> Array:
     """Levels in steps of 2,000 ft, or of more, around the best of all masses."""
-    low, high = searched(subject.engine)
+    low, high, _ = searched(subject)
     found = best.pressure_altitude[best.speed.is_flyable]
     if found.size:
         low = max(low, float(found.min()) - _BELOW)

@@ -9,7 +9,6 @@ from numpy.typing import NDArray
 
 from engine.atmosphere import SEA_LEVEL_PRESSURE, flight_condition
 from engine.envelope import grid
-from engine.interface import Engine
 from engine.quantities import STANDARD_GRAVITY
 from mission.questions.best_speeds import maximum_range_mach, range_about
 from mission.questions.climbing import rate_about, rate_of_climb
@@ -27,9 +26,10 @@ Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 Limits = NDArray[np.int64]
 HIGHEST = 20000.0  # m: where the search for a level ends
+SEARCH_ENDS = (Limit.ALTITUDE, Limit.TABLE, Limit.CEILING)
 _STEP = 1000.0  # m: the tropopause, at which range has a kink, is a point of the grid
 _CLOSE = 60.0  # m: between the last three levels
-_BELOW_TOP = 0.01  # m, for round-off of the thrust there
+BELOW_TOP = 0.01  # m, for round-off of the thrust there
 
 
 @dataclass(frozen=True)
@@ -40,7 +40,8 @@ class ClimbLevel:
     ----------
     pressure_altitude : [m]; NaN where there is no such level
     limit : :data:`Limit.NONE`; :data:`Limit.THRUST` where there is no such level; or the end of the
-        search (:data:`Limit.ALTITUDE`, :data:`Limit.TABLE`), where more is left
+        search (:data:`Limit.ALTITUDE`, :data:`Limit.TABLE`, :data:`Limit.CEILING`), where more is
+        left
     """
 
     pressure_altitude: Array
@@ -76,9 +77,9 @@ def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> B
         return -range_about(speed_range(subject.level_flight(altitude, mass, rating)))
 
     highest = highest_level(subject, mass, rating=rating)
-    levels = _levels(subject.engine, mass)
+    levels = _levels(subject, mass)
     is_open = np.isfinite(highest.pressure_altitude)
-    top = np.where(is_open, highest.pressure_altitude - _BELOW_TOP, levels[0])
+    top = np.where(is_open, highest.pressure_altitude - BELOW_TOP, levels[0])
     levels = np.minimum(levels, np.maximum(top, levels[0]))
     best = np.argmin(cost(levels), axis=0)
     low, high = (pick(levels, np.clip(best + step, 0, len(levels) - 1)) for step in (-1, 1))
@@ -108,7 +109,7 @@ def highest_level(subject: Subject, mass: Array, *, rating: str = "cruise") -> C
     def surplus(altitude: Array) -> Array:
         return greatest_margin(subject.level_flight(altitude, mass, rating))
 
-    return _highest(surplus, _levels(subject.engine, mass), subject.engine)
+    return _highest(surplus, _levels(subject, mass), subject)
 
 
 def _best_speed(subject: Subject, altitude: Array, mass: Array, rating: str) -> LevelSpeed:
@@ -137,10 +138,10 @@ def climb_level(
         rates: Array = rate_of_climb(flight, flight.at_rating(asked, np.isfinite(asked)))[0]
         return rates / rate - 1.0
 
-    return _highest(surplus, _levels(subject.engine, mass), subject.engine)
+    return _highest(surplus, _levels(subject, mass), subject)
 
 
-def _highest(surplus: Function, levels: Array, engine: Engine) -> ClimbLevel:
+def _highest(surplus: Function, levels: Array, subject: Subject) -> ClimbLevel:
     """The last level at which a surplus is not negative."""
     values = surplus(levels)
     is_enough = values >= 0.0
@@ -148,18 +149,22 @@ def _highest(surplus: Function, levels: Array, engine: Engine) -> ClimbLevel:
     is_met = is_enough.any(axis=0)
     low, high = (pick(levels, np.clip(last + step, 0, len(levels) - 1)) for step in (0, 1))
     found = np.where(low < high, falling_root(surplus, low, high), low)
-    end = Limit.ALTITUDE if engine.coverage is None else Limit.TABLE
-    limit = np.where(low < high, Limit.NONE, end)
+    limit = np.where(low < high, Limit.NONE, searched(subject)[2])
     return ClimbLevel(np.where(is_met, found, np.nan), np.where(is_met, limit, Limit.THRUST))
 
 
-def searched(engine: Engine) -> tuple[float, float]:
-    """Lowest and highest level [m] at which anything is asked."""
-    low, high = (0.0, HIGHEST) if engine.coverage is None else engine.coverage.pressure_altitude
-    return low, min(high, HIGHEST)
+def searched(subject: Subject) -> tuple[float, float, Limit]:
+    """Lowest and highest level [m] at which anything is asked, and why not higher."""
+    low, ends = 0.0, [(HIGHEST, Limit.ALTITUDE)]
+    ends.append((subject.aircraft.maximum_pressure_altitude, Limit.CEILING))
+    if subject.engine.coverage is not None:
+        low, high = subject.engine.coverage.pressure_altitude
+        ends.append((high, Limit.TABLE))
+    return low, *min(ends)
 
 
-def _levels(engine: Engine, mass: Array) -> Array:
+def _levels(subject: Subject, mass: Array) -> Array:
     """Levels (k, S) [m] over all that is searched."""
-    points = grid(*searched(engine), _STEP).reshape(-1, *(1,) * mass.ndim)
+    low, high, _ = searched(subject)
+    points = grid(low, high, _STEP).reshape(-1, *(1,) * mass.ndim)
     return np.broadcast_to(points, (len(points), *mass.shape)).copy()

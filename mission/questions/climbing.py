@@ -21,6 +21,7 @@ from mission.questions.speed_range import (
     POINTS,
     Ends,
     allowed_ends,
+    buffet_margin,
     near,
     operating_ends,
     rated_over,
@@ -61,9 +62,10 @@ class GlideSpeed:
 
 
 def rate_of_climb(flight: LevelFlight, found: Answers) -> Array:
-    """Specific excess power [m/s] of answers (k, S); minus infinity where there is no state."""
+    """Specific excess power [m/s] of answers (k, S); minus infinity in buffet, without a state."""
     speed = found.mach * flight.air.speed_of_sound
-    return np.where(found.is_met, speed * (found.thrust - found.drag) / flight.weight, -np.inf)
+    can = found.is_met & (buffet_margin(flight, found.mach) >= 0.0)
+    return np.where(can, speed * (found.thrust - found.drag) / flight.weight, -np.inf)
 
 
 def best_climb_mach(flight: LevelFlight) -> ClimbSpeed:

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from engine.interface import Outcome, is_unanswered
+from mission.aerodynamics import buffet_lift_coefficient, buffet_mach_bounds, polar_coverage
 from mission.questions.point import Point
 
 _SLACK = 1e-6  # of a limit, as in the log of a flight
@@ -26,23 +27,52 @@ class Fault:
 
 def faults(point: Point) -> tuple[Fault, ...]:
     """What stands against level flight, the aircraft's own limits first."""
-    return (*_passed_limits(point), *_engine_faults(point))
+    return (*_passed_limits(point), *_outside_polar(point), *_engine_faults(point))
 
 
 def _passed_limits(point: Point) -> Iterator[Fault]:
     """Limits of the aircraft that the point lies beyond."""
     aircraft = point.aircraft
-    slower = "fly slower"
+    slower, lighter = "fly slower or higher", "fly faster or lower, or carry less"
+    manoeuvre = aircraft.buffet_load_factor * point.lift_coefficient
     limits = (
         ("lift coefficient", point.lift_coefficient, aircraft.maximum_lift_coefficient, "",
-         "fly faster or lower, or carry less"),
-        ("Mach number", float(point.flight.mach), aircraft.maximum_operating_mach, "", slower),
+         lighter),
+        (f"lift coefficient of {aircraft.buffet_load_factor:g} g against buffet onset", manoeuvre,
+         float(buffet_lift_coefficient(aircraft, point.flight.mach)), "",
+         "fly lower or at another speed, or carry less"),
+        ("Mach number", float(point.flight.mach), aircraft.maximum_operating_mach, "",
+         "fly slower"),
         ("calibrated airspeed", point.calibrated_airspeed,
-         aircraft.maximum_operating_calibrated_airspeed, "m/s", f"{slower} or higher"),
+         aircraft.maximum_operating_calibrated_airspeed, "m/s", slower),
+        ("dynamic pressure", point.dynamic_pressure, aircraft.maximum_dynamic_pressure, "Pa",
+         slower),
+        ("pressure altitude", float(point.flight.pressure_altitude),
+         aircraft.maximum_pressure_altitude, "m", "fly lower"),
     )  # fmt: skip
     for what, value, bound, unit, advice in limits:
         if value > bound * (1.0 + _SLACK):
             yield Fault(what, value, bound, unit, advice)
+
+
+def _outside_polar(point: Point) -> Iterator[Fault]:
+    """Where the point lies beyond the table of the polar, or of buffet onset."""
+    aircraft, mach = point.aircraft, float(point.flight.mach)
+    table, buffet = polar_coverage(aircraft.polar), buffet_mach_bounds(aircraft)
+    places = []
+    if table is not None:
+        places += [
+            ("Mach number in the drag polar's table", mach, table.mach),
+            ("lift coefficient in the drag polar's table", point.lift_coefficient,
+             table.lift_coefficient),
+        ]  # fmt: skip
+    if buffet is not None:
+        places.append(("Mach number in the table of buffet onset", mach, buffet))
+    for what, value, (low, high) in places:
+        if not low - _SLACK <= value <= high + _SLACK:
+            bound = high if value > high else low
+            advice = f"stay within {low:g} to {high:g}, or give a table that goes further"
+            yield Fault(what, value, bound, "", advice)
 
 
 def _engine_faults(point: Point) -> Iterator[Fault]:

@@ -24,6 +24,7 @@ from mission.questions.searching import pick
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 Limits = NDArray[np.int64]
+_HAIR = 1e-6  # m
 _ROUND_OFF = 1e-6  # share of drag that thrust may lack where it ends to be enough
 
 
@@ -40,6 +41,11 @@ class Limit(IntEnum):
     TABLE = 7
     GROUND_SPEED = 8
     ALTITUDE = 9
+    CEILING = 10
+    DYNAMIC_PRESSURE = 11
+    BUFFET = 12
+    BUFFET_TABLE = 13
+    POLAR = 14
 
 
 _LACK = {
@@ -181,6 +187,12 @@ class LevelFlight:
         if table is None:
             return np.ones(self.mass.shape, dtype=bool)
         return table.holds(self.air.with_mach(np.full(self.mass.shape, table.mach[0])))
+
+    @property
+    def is_below_ceiling(self) -> Flags:
+        """Where the level is not above the aircraft's greatest pressure altitude."""
+        most = self.aircraft.maximum_pressure_altitude
+        return np.asarray(self.air.pressure_altitude <= most + _HAIR)
 
     def drag(self, mach: Array) -> Array:
         """Drag [N] at Mach numbers (..., S)."""

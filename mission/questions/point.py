@@ -14,7 +14,7 @@ import numpy as np
 from engine.atmosphere import FlightCondition
 from engine.interface import Engine, Outcome
 from engine.quantities import STANDARD_GRAVITY
-from mission.aerodynamics import drag_coefficient, wave_drag_coefficient
+from mission.aerodynamics import drag_breakdown
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed, energy_height, equivalent_airspeed
 from mission.forces import drag, dynamic_pressure, lift_coefficient, stall_mach
@@ -33,7 +33,7 @@ class Point:
     rating : the ceiling of level flight
     drag_parts : drag coefficient by cause; they add up to drag over dynamic pressure and area
     stall_mach, stall_airspeed : at one g with the greatest lift, the latter calibrated [m/s]
-    load_factors : by what bounds them (lift, structure)
+    load_factors : by what bounds them (lift, structure, buffet)
     outcome : of thrust equal to drag under the rating, a value of Outcome
     level_thrust : the thrust that there is for it [N]
     fuel_flow : of level flight [kg/s], NaN where it is not possible
@@ -134,12 +134,8 @@ def _drag_parts(
     aircraft: Aircraft, coefficient: float, flight: FlightCondition
 ) -> dict[str, float]:
     """Drag coefficient by cause, the aircraft's own factor included."""
-    polar, lift = aircraft.polar, np.asarray(coefficient)
-    wave = float(wave_drag_coefficient(polar, lift, flight.mach))
-    zero_lift = polar.zero_lift_drag_coefficient
-    parts = {
-        "zero_lift": zero_lift,
-        "induced": float(drag_coefficient(polar, lift, flight.mach)) - zero_lift - wave,
-        "wave": wave,
-    }
-    return {name: aircraft.drag_factor * part for name, part in parts.items()}
+    found = drag_breakdown(aircraft.polar, coefficient, flight.mach)
+    parts = {name: aircraft.drag_factor * float(part) for name, part in vars(found).items()}
+    if aircraft.external_drag_area > 0.0:
+        parts["hung outside"] = aircraft.external_drag_area / aircraft.wing_area
+    return parts

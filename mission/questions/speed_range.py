@@ -8,8 +8,13 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
+from mission.aerodynamics import (
+    buffet_lift_coefficient,
+    buffet_mach_bounds,
+    polar_coverage,
+)
 from mission.airspeeds import mach_from_calibrated_airspeed
-from mission.forces import stall_mach
+from mission.forces import lift_coefficient, stall_mach
 from mission.march.level import SLOWEST_GROUND_SPEED
 from mission.march.rules import SLOWEST_STALL_MULTIPLE
 from mission.questions.level_flight import Answers, LevelFlight, Limit
@@ -45,9 +50,10 @@ class SpeedRange:
     flight : what was asked about
     is_open : where there is a Mach number of level flight at all
     lack : for want of what there is none
-    thrust_margin : thrust at the rating over drag, less one, at the speed that leaves most; NaN
-        where the engine could not be asked
-    ends : of the range around that speed, within the aircraft's limits and with thrust enough
+    thrust_margin : thrust at the rating over drag, less one, at the speed that leaves most of it
+        (or of lift before buffet, if that is less); NaN where the engine could not be asked
+    ends : of the range around that speed, within the aircraft's limits, with thrust enough, off
+        buffet
     greatest, greatest_limit : the greatest Mach number of all, which may lie beyond a gap
     rated : what the rating gives over all speeds within the aircraft's limits (17, S)
     """
@@ -82,22 +88,25 @@ class SpeedRange:
 def speed_range(flight: LevelFlight) -> SpeedRange:
     """Find the Mach numbers of level flight.
 
-    It is looked for from 1.2 times the stall speed to the lesser of the greatest operating Mach
-    number and airspeed, inside an engine's table and faster than a headwind.
+    It is looked for from 1.2 times the stall speed to the aircraft's greatest Mach number, airspeed
+    and dynamic pressure, off buffet, below its ceiling, inside the tables of engine and polar, and
+    faster than a headwind.
     """
     allowed = allowed_ends(flight)
     rated = rated_over(flight, allowed)
-    margin = margins(rated)
+    margin = margins(flight, rated)
     best = np.argmax(margin, axis=0)
     is_open = pick(margin, best) >= 0.0
     ends, greatest, greatest_limit = _ends(flight, allowed, rated, best)
-    lack = np.where(allowed.slow < allowed.fast, _why(rated, best), allowed.slow_limit)
+    lack = np.where(allowed.slow < allowed.fast, _why(flight, rated, best), allowed.slow_limit)
+    lack = np.where(flight.is_below_ceiling, lack, Limit.CEILING)
     lack = np.where(flight.is_covered, lack, Limit.TABLE)
+    best_thrust = pick(rated.thrust / rated.drag, best) - 1.0
     return SpeedRange(
         flight=flight,
         is_open=is_open,
         lack=np.where(is_open, Limit.NONE, lack),
-        thrust_margin=np.where(pick(rated.is_met, best), pick(margin, best), np.nan),
+        thrust_margin=np.where(pick(rated.is_met, best), best_thrust, np.nan),
         ends=ends,
         greatest=greatest,
         greatest_limit=greatest_limit,
@@ -106,18 +115,29 @@ def speed_range(flight: LevelFlight) -> SpeedRange:
 
 
 def operating_ends(flight: LevelFlight) -> Ends:
-    """Slowest and fastest Mach number by the aircraft's limits of lift, Mach and airspeed."""
+    """Slowest and fastest Mach number by the aircraft's limits and as far as its polar goes."""
     air, aircraft = flight.air, flight.aircraft
     airspeed = aircraft.maximum_operating_calibrated_airspeed
-    by_airspeed = mach_from_calibrated_airspeed(airspeed, air.static_pressure)
-    most = np.full(air.shape, aircraft.maximum_operating_mach)
     stall = stall_mach(aircraft, air, flight.mass, aircraft.maximum_lift_coefficient)
-    return Ends(
+    pressure = aircraft.maximum_dynamic_pressure / (0.7 * air.static_pressure)
+    ends = Ends(
         slow=SLOWEST_STALL_MULTIPLE * stall,
-        fast=np.minimum(most, by_airspeed),
-        slow_limit=np.full(air.shape, Limit.LIFT),
-        fast_limit=np.where(by_airspeed < most, Limit.OPERATING_AIRSPEED, Limit.OPERATING_MACH),
+        fast=np.full(air.shape, aircraft.maximum_operating_mach),
+        slow_limit=np.full(air.shape, Limit.LIFT, dtype=np.int64),
+        fast_limit=np.full(air.shape, Limit.OPERATING_MACH, dtype=np.int64),
     )
+    by_airspeed = mach_from_calibrated_airspeed(airspeed, air.static_pressure)
+    ends = _narrowed(ends, 0.0, by_airspeed, Limit.OPERATING_AIRSPEED)
+    ends = _narrowed(ends, 0.0, np.sqrt(pressure), Limit.DYNAMIC_PRESSURE)
+    if (known := buffet_mach_bounds(aircraft)) is not None:
+        ends = _narrowed(ends, *known, Limit.BUFFET_TABLE)
+    table = polar_coverage(aircraft.polar)
+    if table is None:
+        return ends
+    least, most = table.lift_coefficient
+    slow = stall_mach(aircraft, air, flight.mass, most)
+    fast = stall_mach(aircraft, air, flight.mass, least) if least > 0.0 else np.inf
+    return _narrowed(_narrowed(ends, *table.mach, Limit.POLAR), slow, fast, Limit.POLAR)
 
 
 def allowed_ends(flight: LevelFlight) -> Ends:
@@ -138,17 +158,30 @@ def _narrowed(ends: Ends, slow: Array | float, fast: Array | float, limit: Limit
     )
 
 
-def margins(found: Answers) -> Array:
-    """Thrust over drag less one; minus infinity where the engine has no state."""
-    return np.where(found.is_met, found.thrust / found.drag - 1.0, -np.inf)
+def margins(flight: LevelFlight, found: Answers) -> Array:
+    """What is left of thrust over drag and of lift before buffet, the lesser, less one.
+
+    Minus infinity where the engine has no state. Buffet is kept off by the aircraft's load factor
+    for it.
+    """
+    thrust = np.where(found.is_met, found.thrust / found.drag - 1.0, -np.inf)
+    return np.minimum(thrust, buffet_margin(flight, found.mach))
+
+
+def buffet_margin(flight: LevelFlight, mach: Array) -> Array:
+    """Lift coefficient of buffet onset over that of the manoeuvre to keep off it, less one."""
+    aircraft = flight.aircraft
+    flown = lift_coefficient(aircraft, flight.air.with_mach(mach), flight.weight)
+    onset = buffet_lift_coefficient(aircraft, mach)
+    return np.asarray(onset / (aircraft.buffet_load_factor * flown) - 1.0)
 
 
 def greatest_margin(flight: LevelFlight) -> Array:
-    """Thrust over drag less one at the speed that leaves most; minus infinity where there is none.
+    """The greatest of :func:`margins` at any speed; minus infinity where there is none.
 
     Exact in sign: where it is above zero it is that of a grid.
     """
-    return np.asarray(np.max(margins(rated_over(flight, allowed_ends(flight))), axis=0))
+    return np.asarray(np.max(margins(flight, rated_over(flight, allowed_ends(flight))), axis=0))
 
 
 def near(found: Answers, place: Places) -> Array:
@@ -170,17 +203,17 @@ def rated_over(flight: LevelFlight, allowed: Ends) -> Answers:
     Where it is nowhere enough the best point is moved to where a parabola says that most is left:
     a range narrower than the grid is found so, and a shortage is the least there is.
     """
-    is_allowed = allowed.slow < allowed.fast
-    mach = spread(allowed.slow, np.where(is_allowed, allowed.fast, allowed.slow), POINTS)
+    is_allowed = (allowed.slow < allowed.fast) & flight.is_below_ceiling
+    mach = spread(allowed.slow, np.maximum(allowed.fast, allowed.slow), POINTS)
     found = flight.at_rating(mach, is_allowed)
-    margin = margins(found)
+    margin = margins(flight, found)
     best = np.argmax(margin, axis=0)
     is_short = pick(found.is_met, best) & (pick(margin, best) < 0.0)
     if not is_short.any():
         return found
     tried = np.where(is_short, vertex(mach, -margin, best), pick(mach, best))[None]
     there = flight.at_rating(tried, is_short, near(found, best)[:, None])
-    is_better = is_short & (margins(there)[0] > pick(margin, best))
+    is_better = is_short & (margins(flight, there)[0] > pick(margin, best))
     here = (_places(best) == best) & is_better
     merged = {
         name: np.where(here, getattr(there, name), getattr(found, name))
@@ -194,17 +227,19 @@ def _places(like: Places) -> Places:
     return np.arange(POINTS).reshape(-1, *(1,) * like.ndim)
 
 
-def _why(rated: Answers, place: Places) -> Limits:
+def _why(flight: LevelFlight, rated: Answers, place: Places) -> Limits:
     """Why level flight is not possible at points (S) of the grid."""
-    lack = pick(rated.lack, place)
-    return np.where(lack == Limit.NONE, Limit.THRUST, lack)
+    lack, mach = pick(rated.lack, place), pick(rated.mach, place)
+    thrust = pick(rated.thrust / rated.drag, place) - 1.0
+    short = np.where(buffet_margin(flight, mach) < thrust, Limit.BUFFET, Limit.THRUST)
+    return np.where(lack == Limit.NONE, short, lack)
 
 
 def _ends(
     flight: LevelFlight, allowed: Ends, rated: Answers, best: Places
 ) -> tuple[Ends, Array, Limits]:
     """Ends of the range around the best point; then the greatest Mach number and its limit."""
-    is_level, place = margins(rated) >= 0.0, _places(best)
+    is_level, place = margins(flight, rated) >= 0.0, _places(best)
     slower = np.max(np.where(~is_level & (place < best), place, -1), axis=0)
     faster = np.min(np.where(~is_level & (place > best), place, POINTS), axis=0)
     last = np.max(np.where(is_level, place, -1), axis=0)
@@ -219,7 +254,7 @@ def _ends(
     whole = np.stack([allowed.slow, allowed.fast, allowed.fast])
     mach = np.where(is_cut, found, whole)
     whole_limits = np.stack([allowed.slow_limit, allowed.fast_limit, allowed.fast_limit])
-    limit = np.where(is_cut, np.stack([_why(rated, at) for at in outside]), whole_limits)
+    limit = np.where(is_cut, np.stack([_why(flight, rated, at) for at in outside]), whole_limits)
     return Ends(mach[0], mach[1], limit[0], limit[1]), mach[2], limit[2]
 
 
@@ -237,6 +272,6 @@ def _edges(
 
     def margin(mach: Array) -> Array:
         begin = np.broadcast_to(start, (len(start), *mach.shape))
-        return margins(flight.at_rating(mach, np.broadcast_to(is_cut, mach.shape), begin))
+        return margins(flight, flight.at_rating(mach, np.broadcast_to(is_cut, mach.shape), begin))
 
     return falling_root(margin, within, without)
