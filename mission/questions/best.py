@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -39,8 +40,8 @@ CEILING = 100.0 * FOOT / 60.0  # m/s: the same
 LEVELS_OFF = np.array([-4000.0, -2000.0, 2000.0, 4000.0]) * FOOT
 # Levels below the best, and shares of the way up to the last, between which range is read along
 # straight lines.
-_DOWN = np.array([0, -1, -2, -3, -4, -5, -6, -8, -12, -16, -20]) * 1000.0 * FOOT
-_UP, _FURTHEST_UP = np.linspace(0.0, 1.0, 9)[1:], 8000.0 * FOOT
+_DOWN = np.array([0, -1, -2, -3, -4, -5, -6, -8, -12, -20]) * 1000.0 * FOOT
+_UP, _FURTHEST_UP = np.linspace(0.0, 1.0, 7)[1:], 8000.0 * FOOT
 _LEVEL_STEP = 2000.0 * FOOT
 _BELOW, _ABOVE = 6000.0 * FOOT, 2000.0 * FOOT  # the best levels, of the levels shown
 _MOST_LEVELS = 12
@@ -60,6 +61,18 @@ class Speeds:
     greatest: LevelSpeed
     least_cost: LevelSpeed | None
     rate_of_climb: Array
+
+    def at(self, index: Any) -> Speeds:
+        """The members picked by a NumPy index."""
+        least_cost = None if self.least_cost is None else self.least_cost.at(index)
+        return Speeds(
+            self.maximum_range.at(index),
+            self.long_range.at(index),
+            self.endurance.at(index),
+            self.greatest.at(index),
+            least_cost,
+            self.rate_of_climb[index],
+        )
 
 
 @dataclass(frozen=True)
@@ -110,12 +123,14 @@ def best_cruise(
     """Find the best levels and speeds at masses [kg], time costing ``cost_index`` [kg/s]."""
     mass = np.sort(mass)
     best = best_altitude(subject, mass, rating=rating)
-    there = np.where(best.speed.is_flyable, best.pressure_altitude, searched(subject)[0])
-    ranges = speed_range(subject.level_flight(there, mass, rating))
-    at_best = _speeds(subject, ranges, cost_index)
-    slow = slow_range_mach(ranges, at_best.maximum_range)
-    around = _around(subject, best, mass, rating)
     levels = _shown_levels(subject, best)
+    there = np.where(best.speed.is_flyable, best.pressure_altitude, searched(subject)[0])
+    everywhere = np.concatenate([np.broadcast_to(levels[:, None], (levels.size, mass.size)),
+                                 there[None]])  # fmt: skip
+    ranges = speed_range(subject.level_flight(everywhere, mass, rating))
+    speeds = _speeds(subject, ranges, cost_index)
+    slow = slow_range_mach(ranges, speeds.maximum_range).at(-1)
+    around = _around(subject, best, mass, rating)
     climbs = CLIMB in subject.engine.ratings
     mach = best.speed.mach
     return BestCruise(
@@ -124,16 +139,14 @@ def best_cruise(
         cost_index=cost_index,
         mass=mass,
         best=best,
-        at_best=at_best,
+        at_best=speeds.at(-1),
         level_band=_level_band(best, around),
-        mach_band=(slow.mach, at_best.long_range.mach),
+        mach_band=(slow.mach, speeds.long_range.at(-1).mach),
         off_levels=around.off_share,
         initial_cruise=climb_level(subject, mass, INITIAL_CRUISE, mach=mach) if climbs else None,
         ceiling=climb_level(subject, mass, CEILING) if climbs else None,
         pressure_altitude=levels,
-        at_levels=_speeds(
-            subject, speed_range(subject.level_flight(levels[:, None], mass, rating)), cost_index
-        ),
+        at_levels=speeds.at(slice(None, -1)),
     )
 
 

@@ -12,15 +12,9 @@ from engine.envelope import grid
 from engine.quantities import STANDARD_GRAVITY
 from mission.questions.best_speeds import maximum_range_mach, range_about
 from mission.questions.climbing import rate_about, rate_of_climb
-from mission.questions.level_flight import LevelSpeed, Limit, Subject, picked
-from mission.questions.searching import (
-    Function,
-    falling_root,
-    least_between,
-    pick,
-    vertex,
-)
-from mission.questions.speed_range import greatest_margin, speed_range
+from mission.questions.level_flight import LevelSpeed, Limit, Subject
+from mission.questions.searching import Function, falling_root, least_between, pick
+from mission.questions.speed_range import SpeedRange, greatest_margin, speed_range
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -28,7 +22,7 @@ Limits = NDArray[np.int64]
 HIGHEST = 20000.0  # m: where the search for a level ends
 SEARCH_ENDS = (Limit.ALTITUDE, Limit.TABLE, Limit.CEILING)
 _STEP = 1000.0  # m: the tropopause, at which range has a kink, is a point of the grid
-_CLOSE = 60.0  # m: between the last three levels
+_CLIMB_STEP = 2000.0  # m: rates of climb fall smoothly with altitude
 BELOW_TOP = 0.01  # m, for round-off of the thrust there
 
 
@@ -69,52 +63,47 @@ class BestLevel:
 def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> BestLevel:
     """Level and speed of the greatest specific air range at masses [kg] (S).
 
-    Looked for up to the level where thrust ends, with ranges read off a parabola; then, with best
-    speeds found in full, also at the vertex through three levels around what was found.
+    Looked for with ranges read off curves, up to the level where level flight ends.
     """
 
-    def cost(altitude: Array) -> Array:
-        return -range_about(speed_range(subject.level_flight(altitude, mass, rating)))
+    def ranges(altitude: Array) -> SpeedRange:
+        return speed_range(subject.level_flight(altitude, mass, rating))
 
-    highest = highest_level(subject, mass, rating=rating)
-    levels = _levels(subject, mass)
-    is_open = np.isfinite(highest.pressure_altitude)
-    top = np.where(is_open, highest.pressure_altitude - BELOW_TOP, levels[0])
-    levels = np.minimum(levels, np.maximum(top, levels[0]))
-    is_again = np.concatenate([np.zeros_like(levels[:1], dtype=bool), levels[1:] == levels[:-1]])
-    best = np.argmin(np.where(is_again, np.inf, cost(levels)), axis=0)
+    levels = _levels(subject, mass, _STEP)
+    known = ranges(levels)
+    highest = _highest_flown(subject, mass, rating, levels, np.where(known.is_open, 1.0, -1.0))
+    top = np.where(np.isfinite(highest.pressure_altitude), highest.pressure_altitude, levels[0])
+    top = np.maximum(top - BELOW_TOP, levels[0])
+    best = np.argmax(range_about(known), axis=0)
     low, high = (pick(levels, np.clip(best + step, 0, len(levels) - 1)) for step in (-1, 1))
-    found = least_between(cost, low, high)
-    step = np.minimum(_CLOSE, 0.5 * (high - low))
-    middle = np.clip(found, low + step, high - step)
-    close = np.stack([middle - step, middle, middle + step])
-    costs = _full_cost(_best_speed(subject, close, mass, rating))
-    tried = np.stack([vertex(close, costs, np.argmin(costs, axis=0)), found])
-    speeds = _best_speed(subject, tried, mass, rating)
-    better = np.argmin(_full_cost(speeds), axis=0)
-    speed = picked(speeds, better)
-    altitude = np.where(speed.is_flyable, pick(tried, better), np.nan)
-    pressure = flight_condition(np.where(speed.is_flyable, altitude, 0.0)).static_pressure
-    ratio = mass * STANDARD_GRAVITY * SEA_LEVEL_PRESSURE / pressure
-    return BestLevel(altitude, speed, np.where(speed.is_flyable, ratio, np.nan), highest)
-
-
-def _full_cost(speed: LevelSpeed) -> Array:
-    """The negative of specific air range, infinite where there is no level flight."""
-    return np.where(speed.is_flyable, -speed.specific_air_range, np.inf)
+    altitude = least_between(lambda h: -range_about(ranges(h)), low, np.clip(high, low, top))
+    speed = maximum_range_mach(ranges(altitude))
+    is_found = speed.is_flyable
+    share = flight_condition(altitude).static_pressure / SEA_LEVEL_PRESSURE
+    return BestLevel(
+        pressure_altitude=np.where(is_found, altitude, np.nan),
+        speed=speed,
+        weight_over_pressure_ratio=np.where(is_found, mass * STANDARD_GRAVITY / share, np.nan),
+        highest=highest,
+    )
 
 
 def highest_level(subject: Subject, mass: Array, *, rating: str = "cruise") -> ClimbLevel:
     """Highest level of level flight at masses [kg] (S): thrust ends there, or allowed speeds do."""
+    levels = _levels(subject, mass, _STEP)
+    margin = greatest_margin(subject.level_flight(levels, mass, rating))
+    return _highest_flown(subject, mass, rating, levels, margin)
+
+
+def _highest_flown(
+    subject: Subject, mass: Array, rating: str, levels: Array, margin: Array
+) -> ClimbLevel:
+    """The same from the signs of what is left at levels (k, S)."""
 
     def surplus(altitude: Array) -> Array:
         return greatest_margin(subject.level_flight(altitude, mass, rating))
 
-    return _highest(surplus, _levels(subject, mass), subject)
-
-
-def _best_speed(subject: Subject, altitude: Array, mass: Array, rating: str) -> LevelSpeed:
-    return maximum_range_mach(speed_range(subject.level_flight(altitude, mass, rating)))
+    return _highest(surplus, levels, margin, searched(subject)[2])
 
 
 def range_shares(subject: Subject, mass: Array, altitude: Array, rating: str) -> Array:
@@ -139,18 +128,19 @@ def climb_level(
         rates: Array = rate_of_climb(flight, flight.at_rating(asked, np.isfinite(asked)))[0]
         return rates / rate - 1.0
 
-    return _highest(surplus, _levels(subject, mass), subject)
+    levels = _levels(subject, mass, _CLIMB_STEP)
+    return _highest(surplus, levels, surplus(levels), searched(subject)[2])
 
 
-def _highest(surplus: Function, levels: Array, subject: Subject) -> ClimbLevel:
-    """The last level at which a surplus is not negative."""
-    values = surplus(levels)
+def _highest(surplus: Function, levels: Array, values: Array, end: Limit) -> ClimbLevel:
+    """The last level at which a surplus is not negative, from its values at levels (k, S)."""
     is_enough = values >= 0.0
     last = len(levels) - 1 - np.argmax(is_enough[::-1], axis=0)
     is_met = is_enough.any(axis=0)
     low, high = (pick(levels, np.clip(last + step, 0, len(levels) - 1)) for step in (0, 1))
-    found = np.where(low < high, falling_root(surplus, low, high), low)
-    limit = np.where(low < high, Limit.NONE, searched(subject)[2])
+    high = np.where(is_met, high, low)
+    found = falling_root(surplus, low, high)
+    limit = np.where(low < high, Limit.NONE, end)
     return ClimbLevel(np.where(is_met, found, np.nan), np.where(is_met, limit, Limit.THRUST))
 
 
@@ -164,8 +154,8 @@ def searched(subject: Subject) -> tuple[float, float, Limit]:
     return low, *min(ends)
 
 
-def _levels(subject: Subject, mass: Array) -> Array:
+def _levels(subject: Subject, mass: Array, step: float) -> Array:
     """Levels (k, S) [m] over all that is searched."""
     low, high, _ = searched(subject)
-    points = grid(low, high, _STEP).reshape(-1, *(1,) * mass.ndim)
+    points = grid(low, high, step).reshape(-1, *(1,) * mass.ndim)
     return np.broadcast_to(points, (len(points), *mass.shape)).copy()

@@ -15,7 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from mission.march.seeking import LONG_RANGE_SHARE
 from mission.questions.level_flight import Answers, LevelFlight, LevelSpeed, Limit
-from mission.questions.searching import falling_root, first_fall, least_between, pick, vertex_value
+from mission.questions.searching import falling_root, first_fall, least_between, least_value, pick
 from mission.questions.speed_range import SpeedRange, near
 
 Array = NDArray[np.float64]
@@ -30,12 +30,12 @@ def maximum_range_mach(speeds: SpeedRange) -> LevelSpeed:
 
 
 def range_about(speeds: SpeedRange) -> Array:
-    """The greatest specific air range [m/kg] by a parabola through the curve.
+    """The greatest specific air range [m/kg], read off the curve without asking the engine again.
 
-    No engine is asked for more, and the error is below 1e-3; zero where there is no level flight.
+    Zero where there is no level flight.
     """
     cost = _cost_of(speeds, speeds.curve, _per_air_distance)
-    return np.asarray(1.0 / vertex_value(cost, np.argmin(cost, axis=0)))
+    return np.asarray(1.0 / least_value(cost, np.argmin(cost, axis=0)))
 
 
 def best_endurance_mach(speeds: SpeedRange) -> LevelSpeed:

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from mission.forces import lift_coefficient
 from mission.questions.level_flight import Answers, LevelFlight, Limit
-from mission.questions.searching import Function, least_between, pick, spread, vertex_value
+from mission.questions.searching import Function, least_between, least_value, pick, spread
 from mission.questions.speed_range import (
     POINTS,
     Ends,
@@ -93,12 +93,12 @@ def best_climb_mach(flight: LevelFlight) -> ClimbSpeed:
 
 
 def rate_about(flight: LevelFlight) -> Array:
-    """The greatest rate of climb [m/s] by a parabola through one call of the engine.
+    """The greatest rate of climb [m/s], read off one call of the engine.
 
     Minus infinity where the engine has no state.
     """
     rates = -rate_of_climb(flight, rated_over(flight, allowed_ends(flight)))
-    return -vertex_value(rates, np.argmin(rates, axis=0))
+    return -least_value(rates, np.argmin(rates, axis=0))
 
 
 def best_glide_mach(flight: LevelFlight) -> GlideSpeed:

@@ -19,7 +19,6 @@ from engine.quantities import STANDARD_GRAVITY
 from mission.air import Air
 from mission.aircraft import Aircraft
 from mission.forces import drag, lift_coefficient
-from mission.questions.searching import pick
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -118,11 +117,6 @@ class LevelSpeed:
     def at(self, index: Any) -> LevelSpeed:
         """The members picked by a NumPy index."""
         return LevelSpeed(**{name: value[index] for name, value in vars(self).items()})
-
-
-def picked(speeds: LevelSpeed, place: NDArray[np.int64]) -> LevelSpeed:
-    """The speed (S) of several (k, S) that ``place`` (S) names."""
-    return LevelSpeed(**{name: pick(value, place) for name, value in vars(speeds).items()})
 
 
 @dataclass(frozen=True)

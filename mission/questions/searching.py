@@ -164,9 +164,41 @@ def vertex(points: Array, values: Array, best: Places) -> Array:
     return here + shift * (pick(points, middle + 1) - here)
 
 
-def vertex_value(values: Array, best: Places) -> Array:
-    """The least value that the same parabola has there."""
-    return _parabola(values, best)[2]
+def least_value(values: Array, best: Places) -> Array:
+    """The least value of a smooth function from equally spaced ones, without asking for more.
+
+    That of the quartic through five points around the best; of the parabola through three where
+    values end.
+    """
+    middle, shift, least = _parabola(values, best)
+    centre = np.clip(middle, 2, len(values) - 3)
+    a, b, c, d, e = (pick(values, centre + step) for step in (-2, -1, 0, 1, 2))
+    with np.errstate(invalid="ignore"):
+        powers = (
+            c,
+            (a - 8.0 * b + 8.0 * d - e) / 12.0,
+            (-a + 16.0 * b - 30.0 * c + 16.0 * d - e) / 24.0,
+            (-a + 2.0 * b - 2.0 * d + e) / 12.0,
+            (a - 4.0 * b + 6.0 * c - 4.0 * d + e) / 24.0,
+        )
+        start = shift + middle - centre
+        place = np.clip(_least_of_quartic(powers, start), -2.0, 2.0)
+        found = sum(power * place**n for n, power in enumerate(powers))
+    is_smooth = np.isfinite(found) & (np.abs(place - start) < 0.5)
+    return np.where(is_smooth, found, least)
+
+
+def _least_of_quartic(powers: tuple[Array, ...], start: Array) -> Array:
+    """Where the slope of ``c0 + c1 t + ... + c4 t^4`` is zero, by Newton's method."""
+    _, c1, c2, c3, c4 = powers
+    place = start
+    for _ in range(4):
+        slope = c1 + place * (2.0 * c2 + place * (3.0 * c3 + place * 4.0 * c4))
+        curvature = 2.0 * c2 + place * (6.0 * c3 + place * 12.0 * c4)
+        place = place - np.where(
+            curvature > 0.0, slope / np.where(curvature > 0.0, curvature, 1.0), 0.0
+        )
+    return place
 
 
 def _parabola(values: Array, best: Places) -> tuple[Places, Array, Array]:

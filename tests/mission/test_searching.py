@@ -10,9 +10,9 @@ from mission.questions.searching import (
     falling_root,
     first_fall,
     least_between,
+    least_value,
     spread,
     vertex,
-    vertex_value,
 )
 
 Array = NDArray[np.float64]
@@ -83,7 +83,7 @@ def test_a_parabola_is_read_beyond_its_best_point_and_beside_a_hole() -> None:
     best = np.argmin(holed, axis=0)
     assert vertex(points, holed, best) == pytest.approx([0.3, 0.5])
     assert vertex(points, values, np.argmin(values, axis=0)) == pytest.approx([0.3, 0.6])
-    assert vertex_value(values, np.argmin(values, axis=0)) == pytest.approx([7.0, 7.0])
+    assert least_value(values, np.argmin(values, axis=0)) == pytest.approx([7.0, 7.0])
 
 
 def test_nowhere_convex_leaves_the_best_point() -> None:
@@ -91,7 +91,7 @@ def test_nowhere_convex_leaves_the_best_point() -> None:
     values = -points
     best = np.argmin(values, axis=0)
     assert vertex(points, values, best) == pytest.approx([1.0])
-    assert vertex_value(values, best) == pytest.approx([-1.0])
+    assert least_value(values, best) == pytest.approx([-1.0])
 
 
 def test_the_first_fall_on_the_way_from_a_peak() -> None:
