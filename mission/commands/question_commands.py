@@ -73,7 +73,6 @@ def point_command(
     """Show an aircraft at one altitude, Mach number and mass: drag, thrust, climb, turn, limits."""
     from engine.quantities import parse_quantity
     from mission.commands.grids import condition_at
-    from mission.outputs.point_record import point_record
     from mission.outputs.point_screen import fault_sentences, point_screen
     from mission.questions.faults import faults
     from mission.questions.point import point
@@ -91,7 +90,13 @@ def point_command(
         _mass(mass, asked.aircraft),
         rating=_rating(rating, asked.engine),
     )
-    show(lambda _: point_screen(found, units=SYSTEMS[units]), lambda: point_record(found), json)
+
+    def record() -> dict[str, Any]:
+        from mission.outputs.point_record import point_record
+
+        return point_record(found)
+
+    show(lambda _: point_screen(found, units=SYSTEMS[units]), record, json)
     if faults(found):
         if json == "-":
             for sentence in fault_sentences(found, SYSTEMS[units]):
@@ -124,8 +129,6 @@ def best_command(
 ) -> None:
     """Find the best cruise levels and speeds of an aircraft against its mass."""
     from engine.quantities import parse_quantity
-    from mission.outputs.best_record import best_record
-    from mission.outputs.best_screen import best_screen
     from mission.questions.best import best_cruise
     from mission.questions.level_flight import Subject
 
@@ -142,9 +145,13 @@ def best_command(
     )
 
     def screen(width: int) -> RenderableType:
+        from mission.outputs.best_screen import best_screen
+
         return best_screen(found, units=SYSTEMS[units], width=width)
 
     def record() -> dict[str, Any]:
+        from mission.outputs.best_record import best_record
+
         return best_record(found)
 
     show(screen, record, json)
