@@ -128,7 +128,8 @@ def closure(plan: FlightPlan, written: MissionFile) -> Closure:
 
     def as_needed(stop: Array, integrals: Integrals) -> Array:
         reserves = [add_up(plan, written, integrals, m).reserves for m in range(stop.size)]
-        return plan.stop_empty_mass + added + np.array(reserves)
+        mass: Array = plan.stop_empty_mass + added + np.array(reserves)
+        return mass
 
     def given(stop: Array, integrals: Integrals) -> Array:
         load = loaded(plan, written, integrals)
