@@ -11,9 +11,10 @@ from rich.console import Group, RenderableType
 from rich.table import Table
 from rich.text import Text
 
+from mission.aerodynamics import LEFT_OUT
 from mission.outputs.failure import shortfall
 from mission.outputs.page import Column, caution, note, pairs, ruled_table, section, words
-from mission.outputs.segment_rows import altitude_text, consumption_text
+from mission.outputs.segment_rows import altitude_text, consumption_text, consumption_unit
 from mission.outputs.units import ABSENT, METRIC, Scale, Unit, Units, number, signed
 from mission.outputs.wording import TIMES, day_in_words, in_plain_words
 from mission.questions.faults import faults
@@ -40,7 +41,7 @@ def point_screen(point: Point, *, units: Units = METRIC) -> Group:
         section("Air and speed", pairs(_air(point, units))),
         section("Lift and drag", _drag(point, units), note(_lift(point))),
         section("Thrust and fuel by rating", _thrust(point, units)),
-        section("Climb by rating", _climb(point, units), note(_HELD)),
+        section(f"Climb by rating, {units.vertical_speed.name}", _climb(point, units), note(_HELD)),
         section("Level turn that thrust sustains", _turn(point, units)),
         section("Room to the limits", _limits(point, units)),
     ]
@@ -74,9 +75,8 @@ def _answer(point: Point, units: Units) -> Iterable[RenderableType]:
         title = "beyond a limit" if isfinite(point.fuel_flow) else "not possible"
         yield pairs([(f"{title}:", reason) for reason in reasons], strong=True)
         yield pairs([("what to try", "; ".join(dict.fromkeys(f.advice for f in faults(point))))])
-    doubts = [point.engine.doubts[name] for name in (point.rating,) if name in point.engine.doubts]
-    if doubts:
-        yield pairs([("doubt", doubt) for doubt in doubts])
+    doubts = [LEFT_OUT, *(text for text in [point.engine.doubts.get(point.rating)] if text)]
+    yield pairs([("doubt", "; ".join(doubts))])
 
 
 def _level(point: Point, units: Units) -> str:
@@ -151,12 +151,10 @@ def _thrust(point: Point, units: Units) -> Table:
         Scale.of(unit, values.tolist())
         for unit, values in ((units.force, at.thrust), (units.fuel_flow, at.fuel_flow))
     )
-    table = ruled_table(
-        [words("rating", is_wrapped=False), Column(f"thrust\n{force.unit.name}"),
-         Column(f"over drag\n{force.unit.name}"), Column("over drag\n%"),
-         Column(f"fuel flow\n{flow.unit.name}"),
-         Column(f"sfc\n{units.specific_fuel_consumption.name}"), words("held by")]
-    )  # fmt: skip
+    heads = (f"thrust\n{force.unit.name}", f"over\ndrag\n{force.unit.name}", "over\ndrag\n%",
+             f"fuel flow\n{flow.unit.name}", f"sfc\n{consumption_unit(units)}")  # fmt: skip
+    rating = words("rating", is_wrapped=False)
+    table = ruled_table([rating, *map(Column, heads), words("held by")])
     for i, name in enumerate(at.names):
         sfc = float(at.specific_fuel_consumption[i])
         margin = float(at.margin[i])
@@ -177,9 +175,8 @@ def _climb(point: Point, units: Units) -> Table:
     at, unit = point.at_ratings, units.vertical_speed
     rates = (at.excess_power, at.climb, at.climb_at_mach, at.climb_at_airspeed)
     scale = Scale.of(unit, [float(v) for values in rates for v in values], 3)
-    climb = f"climb {unit.name}"
-    held = (f"{climb}\ntrue speed\nheld", f"{climb}\nMach\nheld", f"{climb}\ncalibrated\nheld")
-    heads = (f"excess power\n{unit.name}", *held, "path\ndeg")
+    heads = ("excess\npower", "climb, true\nspeed held", "climb, Mach\nheld",
+             "climb, calibrated\nspeed held", "path\ndeg")  # fmt: skip
     table = ruled_table([words("rating", is_wrapped=False), *map(Column, heads)])
     for i, name in enumerate(at.names):
         cells = [scale.bare(float(values[i])) for values in rates]
@@ -220,17 +217,24 @@ def _limits(point: Point, units: Units) -> Table:
          words("unit", is_wrapped=False), Column("room\n%")]
     )  # fmt: skip
     one = Unit("", 1.0)
+    height = Unit("m", 1.0) if units is METRIC else units.altitude
     rows = [
         ("greatest operating Mach number", float(point.flight.mach),
          aircraft.maximum_operating_mach, one),
         ("greatest operating airspeed, calibrated", point.calibrated_airspeed,
          aircraft.maximum_operating_calibrated_airspeed, speed),
+        ("greatest dynamic pressure", point.dynamic_pressure, aircraft.maximum_dynamic_pressure,
+         _PASCAL),
+        ("greatest pressure altitude", float(point.flight.pressure_altitude),
+         aircraft.maximum_pressure_altitude, height),
         ("greatest lift coefficient", point.lift_coefficient,
          aircraft.maximum_lift_coefficient, one),
         ("stall speed at one g, calibrated", point.calibrated_airspeed, point.stall_airspeed,
          speed),
     ]  # fmt: skip
     for name, value, bound, unit in rows:
+        if not isfinite(bound):
+            continue
         scale = Scale.of(unit, [value, bound], 3 if unit is one else 4)
         over = value - bound if name.startswith("stall") else bound - value
         room = number(100.0 * over / bound, 1)

@@ -13,10 +13,10 @@ from engine.atmosphere import flight_condition
 from engine.errors import InputRefused
 from mission.aerodynamics import PolarCoverage, drag_coefficient, polar_coverage
 from mission.aircraft import Aircraft, load_aircraft
+from mission.forces import load_factor_of_drag
 from mission.polars.drag_table import DragTable
 from mission.polars.over_mach import ParabolaOverMach
 from mission.polars.parabola import Parabola, korn_drag_rise
-from mission.questions.turning import sustained_load_factor
 
 KORN = {"technology_factor": 0.95, "sweep": "25 deg", "thickness_ratio": 0.11}
 OVER_MACH: Content = {
@@ -106,8 +106,12 @@ def test_a_table_turns_as_tightly_as_the_parabola_it_is_made_of(tmp_path: Path) 
     table = {"machs": [0.0, 0.9], "lift_coefficients": lifts, "drag_coefficients": [row, row]}
     flight = flight_condition([3000.0, 6000.0], [0.4, 0.6])
     most = [
-        sustained_load_factor(
-            loaded(tmp_path, polar), flight, np.array([2e4, 2e4]), np.array([4e4, 5e4])
+        load_factor_of_drag(
+            loaded(tmp_path, polar),
+            flight,
+            np.array([2e4, 2e4]),
+            np.array([4e4, 5e4]),
+            np.array([9.0, 9.0]),
         )
         for polar in (law, table)
     ]

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import degrees
 from pathlib import Path
 
 import pytest
@@ -39,8 +40,14 @@ def test_a_point_fits_the_screen_answer_first(
     else:
         assert "at 37,000 ft, Mach 0.760, 50,706 lb, ISA+10" in said
         assert "true 445.9 kt" in said
+        record = read_json(longlegs(*POINT, "--day", "ISA+10", "--json", "-").out)
+        idle = degrees(record["ratings"][-1]["flight_path_angle_rad"])
+        # Nothing is cut off: the last column of the widest table.
+        assert any(line.startswith("  flight idle") and line.endswith(f" {idle:.2f}")
+                   for line in lines)  # fmt: skip
+    assert f"Climb by rating, {'m/s' if units == 'metric' else 'ft/min'}" in lines
     for title in (
-        "Air and speed", "Lift and drag", "Thrust and fuel by rating", "Climb by rating",
+        "Air and speed", "Lift and drag", "Thrust and fuel by rating",
         "Level turn that thrust sustains", "Room to the limits",
     ):  # fmt: skip
         assert title in lines
@@ -132,6 +139,24 @@ def test_the_best_fits_the_screen_answer_and_doubt_first(
         assert title in lines
     assert f"No level flight ({ABSENT}) for want of: a thrust." in said
     assert said.endswith(CAUTION)
+
+
+def test_no_number_is_cut_off_on_a_narrow_screen(
+    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Every number of the narrow tables stands in the wide ones."""
+    words = ("best", "coast_watch", "--mass", "23 t", "--mass", "26 t", "--units", "trade")
+    shown = {}
+    for columns in (80, 100):
+        monkeypatch.setenv("COLUMNS", str(columns))
+        tables = (
+            longlegs(*words).out.split("Best level and speed by mass")[1].split("Preliminary")[0]
+        )
+        shown[columns] = {
+            word for word in tables.split() if word[0].isdigit() and word[-1].isdigit()
+        }
+    assert len(shown[80]) > 30
+    assert shown[80] <= shown[100]
 
 
 def test_the_best_for_programs(longlegs: Longlegs) -> None:
