@@ -130,7 +130,7 @@ def best_command(
     """Find the best cruise levels and speeds of an aircraft against its mass."""
     from engine.quantities import parse_quantity
     from mission.questions.best import best_cruise
-    from mission.questions.level_flight import Subject
+    from mission.steady.level_flight import Subject
 
     check_json(json)
     asked = _asked(mission, aircraft, engine)

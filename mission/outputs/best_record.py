@@ -10,8 +10,8 @@ from numpy.typing import NDArray
 
 from mission.outputs.records import VERSION
 from mission.questions.best import LEVELS_OFF, BestCruise, Speeds
-from mission.questions.best_levels import ClimbLevel
-from mission.questions.level_flight import LevelSpeed, Limit
+from mission.steady.best_levels import ClimbLevel
+from mission.steady.level_flight import LevelSpeed, Limit
 
 Array = NDArray[np.float64]
 Record = dict[str, Any]

@@ -14,7 +14,7 @@ from mission.outputs.page import WIDEST, apart, caution, note, pairs, section
 from mission.outputs.units import METRIC, Scale, Unit, Units
 from mission.outputs.wording import TIMES, day_in_words, in_plain_words
 from mission.questions.best import BestCruise
-from mission.questions.best_levels import SEARCH_ENDS, ClimbLevel
+from mission.steady.best_levels import SEARCH_ENDS, ClimbLevel
 
 _KEY = (
     "SAR specific air range; long range 99 % of the greatest, faster; W/delta weight over ambient "

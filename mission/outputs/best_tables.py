@@ -15,8 +15,8 @@ from mission.outputs.page import INDENT, Column, ruled_table, words
 from mission.outputs.segment_rows import altitude_header, altitude_text
 from mission.outputs.units import ABSENT, METRIC, Scale, Units, number
 from mission.questions.best import LEVELS_OFF, BestCruise
-from mission.questions.best_levels import SEARCH_ENDS, ClimbLevel
-from mission.questions.level_flight import LevelSpeed
+from mission.steady.best_levels import SEARCH_ENDS, ClimbLevel
+from mission.steady.level_flight import LevelSpeed
 
 Array = NDArray[np.float64]
 Cells = tuple[str, Callable[[int], str]]

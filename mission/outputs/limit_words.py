@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from mission.outputs.units import number
-from mission.questions.level_flight import LevelSpeed, Limit
+from mission.steady.level_flight import LevelSpeed, Limit
 
 _FINE = 0.1  # per cent, below which a percentage has more decimals
 _HELD = {

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from engine.envelope import grid
 from engine.quantities import FOOT
 from mission.march.seeking import LONG_RANGE_SHARE
-from mission.questions.best_levels import (
+from mission.steady.best_levels import (
     BELOW_TOP,
     BestLevel,
     ClimbLevel,
@@ -20,7 +20,7 @@ from mission.questions.best_levels import (
     range_shares,
     searched,
 )
-from mission.questions.best_speeds import (
+from mission.steady.best_speeds import (
     best_endurance_mach,
     least_cost_mach,
     long_range_mach,
@@ -28,10 +28,10 @@ from mission.questions.best_speeds import (
     maximum_range_mach,
     slow_range_mach,
 )
-from mission.questions.climbing import rate_of_climb
-from mission.questions.level_flight import LevelSpeed, Subject
-from mission.questions.searching import pick
-from mission.questions.speed_range import SpeedRange, speed_range
+from mission.steady.climbing import rate_of_climb
+from mission.steady.level_flight import LevelSpeed, Subject
+from mission.steady.searching import pick
+from mission.steady.speed_range import SpeedRange, speed_range
 
 Array = NDArray[np.float64]
 CLIMB = "climb"

@@ -18,17 +18,17 @@ from engine.quantities import FOOT
 from mission.aircraft import Aircraft
 from mission.errors import CannotBeFlown
 from mission.march.span import Configuration, SpeedRule
-from mission.questions.best_speeds import (
+from mission.segments.here import Here
+from mission.steady.best_speeds import (
     best_endurance_mach,
     least_cost_mach,
     long_range_mach,
     maximum_level_mach,
     maximum_range_mach,
 )
-from mission.questions.climbing import rate_of_climb
-from mission.questions.level_flight import LevelFlight, LevelSpeed, Limit
-from mission.questions.speed_range import speed_range
-from mission.segments.here import Here
+from mission.steady.climbing import rate_of_climb
+from mission.steady.level_flight import LevelFlight, LevelSpeed, Limit
+from mission.steady.speed_range import speed_range
 
 if TYPE_CHECKING:
     from mission.segments.cruise import Cruise

@@ -34,8 +34,8 @@ from mission.paths.best_rate import best_rate_path
 from mission.paths.climber import Climber, rates
 from mission.paths.energy_path import least_fuel_path, least_time_path
 from mission.paths.path import EnergyPath, Exchange, Piece, State
-from mission.questions.climbing import best_climb_mach
-from mission.questions.level_flight import LevelFlight
+from mission.steady.climbing import best_climb_mach
+from mission.steady.level_flight import LevelFlight
 
 FOOT, KNOT = 0.3048, 1852.0 / 3600.0
 START, END = State(0.0, 0.35), State(10500.0, 0.75)

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from numpy.typing import NDArray
 
-from mission.questions.searching import (
+from mission.steady.searching import (
     falling_root,
     first_fall,
     least_between,

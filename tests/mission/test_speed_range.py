@@ -17,8 +17,8 @@ from mission.aerodynamics import BuffetOnset
 from mission.air import Air
 from mission.aircraft import Aircraft
 from mission.airspeeds import calibrated_airspeed
-from mission.questions.best_levels import best_altitude, climb_level, highest_level
-from mission.questions.best_speeds import (
+from mission.steady.best_levels import best_altitude, climb_level, highest_level
+from mission.steady.best_speeds import (
     best_endurance_mach,
     least_cost_mach,
     long_range_mach,
@@ -26,9 +26,9 @@ from mission.questions.best_speeds import (
     maximum_range_mach,
     range_about,
 )
-from mission.questions.climbing import best_climb_mach
-from mission.questions.level_flight import LevelFlight, Limit, Subject
-from mission.questions.speed_range import SpeedRange, speed_range
+from mission.steady.climbing import best_climb_mach
+from mission.steady.level_flight import LevelFlight, Limit, Subject
+from mission.steady.speed_range import SpeedRange, speed_range
 
 CRUISE = [{"kind": "cruise", "distance": "9 km", "mach": 0.5, "pressure_altitude": "5 km"}]
 

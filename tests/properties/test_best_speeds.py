@@ -16,8 +16,8 @@ from engine import load_engine
 from mission.air import Air
 from mission.aircraft import load_aircraft
 from mission.questions.best import best_cruise
-from mission.questions.best_levels import best_altitude
-from mission.questions.best_speeds import (
+from mission.steady.best_levels import best_altitude
+from mission.steady.best_speeds import (
     best_endurance_mach,
     least_cost_mach,
     long_range_mach,
@@ -25,9 +25,9 @@ from mission.questions.best_speeds import (
     maximum_range_mach,
     slow_range_mach,
 )
-from mission.questions.climbing import best_climb_mach, rate_of_climb
-from mission.questions.level_flight import LevelFlight, LevelSpeed, Limit, Subject
-from mission.questions.speed_range import SpeedRange, speed_range
+from mission.steady.climbing import best_climb_mach, rate_of_climb
+from mission.steady.level_flight import LevelFlight, LevelSpeed, Limit, Subject
+from mission.steady.speed_range import SpeedRange, speed_range
 
 Array = NDArray[np.float64]
 TWIN, ENGINE = load_aircraft(PROFILES / "coast_watch_twin.toml"), load_engine(BYPASS_5)

@@ -16,17 +16,17 @@ from mission_files import aircraft_content, engine_content, load_all, mission_co
 
 from engine.atmosphere import flight_condition
 from mission.air import Air
-from mission.questions.best_levels import best_altitude, climb_level, highest_level
-from mission.questions.best_speeds import (
+from mission.questions.point import Point, point
+from mission.steady.best_levels import best_altitude, climb_level, highest_level
+from mission.steady.best_speeds import (
     best_endurance_mach,
     long_range_mach,
     maximum_level_mach,
     maximum_range_mach,
 )
-from mission.questions.climbing import best_climb_mach, best_glide_mach, least_sink_mach
-from mission.questions.level_flight import LevelFlight, Subject
-from mission.questions.point import Point, point
-from mission.questions.speed_range import speed_range
+from mission.steady.climbing import best_climb_mach, best_glide_mach, least_sink_mach
+from mission.steady.level_flight import LevelFlight, Subject
+from mission.steady.speed_range import speed_range
 
 NICOLAI = (
     "L. M. Nicolai and G. E. Carichner, Fundamentals of Aircraft and Airship Design, vol. I "

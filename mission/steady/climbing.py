@@ -15,9 +15,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from mission.forces import lift_coefficient
-from mission.questions.level_flight import Answers, LevelFlight, Limit
-from mission.questions.searching import Function, least_between, least_value, pick, spread
-from mission.questions.speed_range import (
+from mission.steady.level_flight import Answers, LevelFlight, Limit
+from mission.steady.searching import Function, least_between, least_value, pick, spread
+from mission.steady.speed_range import (
     POINTS,
     Ends,
     allowed_ends,

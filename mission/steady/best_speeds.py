@@ -1,6 +1,6 @@
 """Speeds of level flight that are best for something, at many levels and masses at once.
 
-Each takes the :class:`mission.questions.speed_range.SpeedRange` that is shared by all of them and
+Each takes the :class:`mission.steady.speed_range.SpeedRange` that is shared by all of them and
 gives a Mach number that meets the closed forms of a parabolic polar at constant consumption (best
 range at a level at ``CL = sqrt(CD0 / 3K)``, endurance at ``sqrt(CD0 / K)``: L. M. Nicolai and G. E.
 Carichner, Fundamentals of Aircraft and Airship Design, vol. I, table 3.2) to 1e-6.
@@ -14,9 +14,9 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from mission.march.seeking import LONG_RANGE_SHARE
-from mission.questions.level_flight import Answers, LevelFlight, LevelSpeed, Limit
-from mission.questions.searching import falling_root, first_fall, least_between, least_value, pick
-from mission.questions.speed_range import SpeedRange, near
+from mission.steady.level_flight import Answers, LevelFlight, LevelSpeed, Limit
+from mission.steady.searching import falling_root, first_fall, least_between, least_value, pick
+from mission.steady.speed_range import SpeedRange, near
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]

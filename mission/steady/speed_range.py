@@ -17,8 +17,8 @@ from mission.airspeeds import mach_from_calibrated_airspeed
 from mission.forces import lift_coefficient, stall_mach
 from mission.march.level import SLOWEST_GROUND_SPEED
 from mission.march.rules import SLOWEST_STALL_MULTIPLE
-from mission.questions.level_flight import Answers, LevelFlight, Limit
-from mission.questions.searching import falling_root, pick, spread, vertex
+from mission.steady.level_flight import Answers, LevelFlight, Limit
+from mission.steady.searching import falling_root, pick, spread, vertex
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]

@@ -10,11 +10,11 @@ from numpy.typing import NDArray
 from engine.atmosphere import SEA_LEVEL_PRESSURE, flight_condition
 from engine.envelope import grid
 from engine.quantities import STANDARD_GRAVITY
-from mission.questions.best_speeds import maximum_range_mach, range_about
-from mission.questions.climbing import rate_about, rate_of_climb
-from mission.questions.level_flight import LevelSpeed, Limit, Subject
-from mission.questions.searching import Function, falling_root, least_between, pick
-from mission.questions.speed_range import SpeedRange, greatest_margin, speed_range
+from mission.steady.best_speeds import maximum_range_mach, range_about
+from mission.steady.climbing import rate_about, rate_of_climb
+from mission.steady.level_flight import LevelSpeed, Limit, Subject
+from mission.steady.searching import Function, falling_root, least_between, pick
+from mission.steady.speed_range import SpeedRange, greatest_margin, speed_range
 
 Array = NDArray[np.float64]
 Flags = NDArray[np.bool_]
