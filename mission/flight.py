@@ -32,7 +32,8 @@ from mission.warnings import warnings_of
 Array = NDArray[np.float64]
 COARSE, FINE = 5, 9  # nodes a span; the difference of the two is the integration error
 _COARSE_SETTLED = 1e-8  # the fine march goes on from there
-_MOST_PLANS = 8
+_ROUGHLY_SETTLED = 5e-7  # of mass, which is enough to choose a level, a path or a speed by
+_MOST_PLANS = 10
 # Steps are doubled, at most so often, until fuel moves by less than this share of itself.
 _PRECISE, _MOST_REFINEMENTS = 1e-4, 3
 _SAME_ALTITUDE = 0.01  # m, between the end of a cruise-climb and what follows
@@ -86,24 +87,30 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
     few, many = (refinement * (n - 1) + 1 for n in (COARSE, FINE))
     coarse: Marched | None = None
     root: Root | None = None
+    is_rough = True  # until what was chosen for masses holds
     for _ in range(_MOST_PLANS):
         whole = lay_out(mission, world, masses, ends, choices)
         refuse_missing_ratings(mission, whole, world.engine)
+        is_rough &= choices.has_any or whole.has_cruise_climb
         joints = find_joints(world, [*whole.parts.mission, *whole.parts.reserve])
         plan = _with_spans(whole, joints.cut())
         near = coarse if _has_same_spans(coarse, plan) else None
         guess = _first_guess(whole, written) if coarse is None else coarse.stop_mass
-        coarse, root = _march_coarse(world, plan, written, few, guess, near, root)
+        settled = _ROUGHLY_SETTLED if is_rough else _COARSE_SETTLED
+        coarse, root = _march_coarse(world, plan, written, few, guess, near, root, settled)
         closer = joints.cut(_flown(joints, coarse))
-        if coarse.is_settled and len(closer) != len(coarse.tracks):
+        if coarse.is_settled and not is_rough and len(closer) != len(coarse.tracks):
             plan = _with_spans(whole, closer)
-            coarse, root = _march_coarse(world, plan, written, few, coarse.stop_mass, None, root)
+            guess = coarse.stop_mass
+            coarse, root = _march_coarse(world, plan, written, few, guess, None, root, settled)
         found = _cruise_climb_ends(coarse)
         moved = max((abs(found[row] - ends.get(row, 0.0)) for row in found), default=0.0)
         ends, masses = found, coarse.row_masses
         choices.fit(masses)
-        if not coarse.is_settled or (moved < _SAME_ALTITUDE and choices.is_at_rest):
+        is_at_rest = moved < _SAME_ALTITUDE and choices.is_at_rest
+        if not coarse.is_settled or (is_at_rest and not is_rough):
             break
+        is_rough &= not is_at_rest
     assert coarse is not None
     close = closure(plan, written)
     free = None if root is None else root.value
@@ -132,11 +139,12 @@ def _march_coarse(
     stop: Array,
     near: Marched | None,
     root: Root | None,
+    settled: float,
 ) -> tuple[Marched, Root | None]:
     """The plan with few nodes, solved for what is free in it, if anything is."""
     close = closure(plan, written)
     if not written.free:
-        return march(world, plan.parts, count, stop, close, near, _COARSE_SETTLED), None
+        return march(world, plan.parts, count, stop, close, near, settled), None
     return solve_free(world, plan, written, count, stop, close, near, root)
 
 

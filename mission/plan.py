@@ -66,6 +66,11 @@ class FlightPlan:
     most_ramp_mass: float = np.inf
 
     @property
+    def has_cruise_climb(self) -> bool:
+        """Whether what follows a cruise begins where it happens to end."""
+        return any(span.holds_lift_coefficient for span in self.parts.mission)
+
+    @property
     def stop_empty_mass(self) -> float:
         """Mass [kg] without usable fuel at the end of the mission."""
         return [row for row in self.rows if row.purpose == "mission"][-1].empty_mass

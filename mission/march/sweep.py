@@ -26,6 +26,7 @@ MOST_SWEEPS = 40
 _PATIENCE = 6  # sweeps after which an engine without an answer ends the march
 SETTLED = 1e-11
 _SETTLED_MACH = 1e-6  # fuel flow is flat at its least: its error is the square of this
+_ROUGHER = 20.0  # how much rougher a sought Mach number may be than masses
 _UNSETTLED = 1e-6
 _HEAVIEST = 1e8  # kg: a mass on its way to nowhere
 
@@ -135,7 +136,8 @@ def march(
         change = _update_masses(tracks, integrals.fuel, stop_mass, len(parts.mission))
         is_lost = bool(np.any(~(stop_mass < _HEAVIEST)))
         is_lost |= any(t.is_lost for t in tracks if t.span.is_static or sweep >= _PATIENCE)
-        if is_lost or (change < settled and all(t.mach_change < _SETTLED_MACH for t in tracks)):
+        is_found = all(t.mach_change < max(_SETTLED_MACH, _ROUGHER * settled) for t in tracks)
+        if is_lost or (change < settled and is_found):
             break
     return Marched(tracks, integrals, stop_mass, sweep, change)
 

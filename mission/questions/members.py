@@ -31,7 +31,6 @@ _NODES = 5
 _BUCKET = 0.03  # of mass: one choice for members that differ by less
 _SAME_END = 75.0  # m: a cruise-climb's end, shared by members that differ by less
 _MOST_ROUNDS = 5
-_NEAR = 1e-6  # of mass: below it a choice is an exact root, above it one that hardly matters
 
 
 @dataclass
@@ -49,10 +48,10 @@ class SharedChoices(Choices):
         *,
         end: int = 0,
         matters: float = MASS_THAT_MATTERS,
+        is_exact: bool = False,
     ) -> Any:
         """The choice for the middle of the mass's bucket; for the mass itself where it decides."""
-        is_shared = matters == MASS_THAT_MATTERS or matters < _NEAR
-        middle = exp(_BUCKET * round(log(mass) / _BUCKET)) if is_shared else mass
+        middle = mass if is_exact else exp(_BUCKET * round(log(mass) / _BUCKET))
         key = (row, subject, middle)
         if key not in self.shared:
             self.shared[key] = choose(middle)

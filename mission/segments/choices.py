@@ -47,14 +47,23 @@ class Choices:
         *,
         end: int = 0,
         matters: float = MASS_THAT_MATTERS,
+        is_exact: bool = False,
     ) -> _Choice:
-        """The choice for the mass [kg] at one end (0, -1) of a row, the earlier one if it holds."""
+        """The choice for the mass [kg] at one end (0, -1) of a row, the earlier one if it holds.
+
+        ``is_exact`` tells that nothing near that mass will do.
+        """
         known = self.made.get((row, subject))
         if known is None:
             known = _Made(choose(mass), mass, row, end, matters)
             self.made[row, subject] = known
         chosen: _Choice = known.value
         return chosen
+
+    @property
+    def has_any(self) -> bool:
+        """Whether anything was chosen."""
+        return bool(self.made)
 
     def fit(self, masses: Mapping[int, tuple[float, float]]) -> None:
         """Forget what was chosen for masses that a flight has shown to be others."""

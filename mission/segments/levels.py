@@ -37,6 +37,8 @@ Array = NDArray[np.float64]
 LEAST_CLIMB = 300.0 * FOOT / 60.0  # m/s left at a level that is worth choosing
 SPACING = 1000.0 * FOOT
 _LOWEST, _HIGHEST = 10000.0 * FOOT, 60000.0 * FOOT
+_COARSE = 4  # levels at a stride, first
+_MASS_THAT_MATTERS = 5e-3  # relative: the best level moves by 100 ft with it
 _UNKNOWN = 25000.0 * FOOT  # before any mass is known
 _BEST = {
     "maximum_range": maximum_range_mach,
@@ -123,15 +125,27 @@ def best_level(cruise: Cruise, here: Here, speed: SpeedRule, row: int, end: int 
         levels = levels[(levels >= low) & (levels <= high)]
 
     def choose(mass: float) -> float | None:
-        found = merits(here, speed, cruise.rating, levels, np.array([mass]))
-        merit = np.where(found.climb >= LEAST_CLIMB, found.merit, -np.inf)[:, 0]
-        best = int(np.argmax(merit))
-        return float(levels[best]) if np.isfinite(merit[best]) else None
+        """The best of every fourth level, then of those around it."""
+        best = _best_of(here, speed, cruise.rating, levels[::_COARSE], mass)
+        if best is None:
+            return _best_of(here, speed, cruise.rating, levels, mass)
+        near = levels[np.abs(levels - best) < _COARSE * SPACING - 1.0]
+        return _best_of(here, speed, cruise.rating, near, mass)
 
-    level = here.choices.at(row, "best level", here.mass_at(row, end), choose, end=end)
+    level = here.choices.at(
+        row, "best level", here.mass_at(row, end), choose, end=end, matters=_MASS_THAT_MATTERS
+    )
     if level is None and row in here.masses:
         raise CannotBeFlown(
             "no level has 300 ft/min of climb left at the speed of this cruise; fly slower, carry "
             "less, or take a larger engine"
         )
     return max(_UNKNOWN, lowest) if level is None else level
+
+
+def _best_of(here: Here, speed: SpeedRule, rating: str, levels: Array, mass: float) -> float | None:
+    """The best of some levels [m] at a mass [kg]; None where none can be flown."""
+    found = merits(here, speed, rating, levels, np.array([mass]))
+    merit = np.where(found.climb >= LEAST_CLIMB, found.merit, -np.inf)[:, 0]
+    best = int(np.argmax(merit))
+    return float(levels[best]) if np.isfinite(merit[best]) else None

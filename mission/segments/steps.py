@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from mission.segments.cruise import Cruise
 
 Array = NDArray[np.float64]
-_MASSES = 33  # looked at from the take-off mass down to the empty one
+_MASSES = 17  # looked at from the take-off mass down to the empty one
 _SAME_LEVEL = 0.01  # m
 _HIGHEST = 20000.0  # m, beyond which no cruise goes
 _MOST_STEPS = 20
@@ -39,6 +39,7 @@ def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here
         lambda mass: sum(m > mass * (1.0 + _AHEAD) for m, _ in chosen) if _flown(here) else 0,
         end=-1,
         matters=2.0 * _AHEAD,
+        is_exact=True,
     )
     spans: list[Span] = []
     here = replace(here, pressure_altitude=span.start_altitude, speed=span.end_speed)
