@@ -1,9 +1,10 @@
-"""Joints that only the engine knows: where another limit takes over.
+"""Joints that only engine and polar know: where another limit takes over, or a table goes on.
 
 Thrust at a rating has a kink where the binding limit changes or total temperature passes a theta
 break, and a softer one where a nozzle chokes. Along a way (a climb on its schedule, a change of
 speed at one altitude) both depend on the way's variable alone, so that they are found once, by
-looking closer and closer, before any mass is known; the span is cut there.
+looking closer and closer, before any mass is known; the span is cut there. So it is where a polar
+over Mach number passes from one of its rows to the next.
 """
 
 from __future__ import annotations
@@ -112,16 +113,19 @@ def _look(world: World, ways: Mapping[int, Way], parts: _Parts) -> list[_Change]
         way.flights(world, row, air.at(place))
         for place, (way, row) in enumerate(zip(along, values, strict=True))
     ]
+    flown = join(flights)
     starts = [start for start in parts.values() if start is not None]
     state = world.engine.at(
-        join(flights),
+        flown,
         rating=np.repeat([ways[i].rating for i, _, _ in parts], steps.size),
         start=np.repeat(np.stack(starts, axis=1), steps.size, axis=1) if starts else None,
     )
+    knots = np.array(world.aircraft.polar.kink_machs)[:, None]
+    kinks = np.concatenate([state.kinks, flown.mach - knots])
     return [
         change
         for row, (i, _, _) in enumerate(parts)
-        for change in _changes(state, row * steps.size, i, values[row])
+        for change in _changes(state, kinks, row * steps.size, i, values[row])
     ]
 
 
@@ -133,12 +137,14 @@ def _inside(values: Array) -> Array:
     return values
 
 
-def _changes(state: EngineState, first: int, span: int, values: Array) -> list[_Change]:
-    """Changes between neighbouring values, whose states begin at ``first``."""
+def _changes(
+    state: EngineState, kinks: Array, first: int, span: int, values: Array
+) -> list[_Change]:
+    """Changes between neighbouring values, whose states and ``kinks`` begin at ``first``."""
     found: list[_Change] = []
     for piece in range(len(values) - 1):
         here, there = first + piece, first + piece + 1
-        signs = [(float(kink[here]), float(kink[there])) for kink in state.kinks]
+        signs = [(float(kink[here]), float(kink[there])) for kink in kinks]
         for governs in (state.binding_limit, state.dry_limit):
             before, after = int(governs[here]), int(governs[there])
             if before != after and min(before, after) >= 0:

@@ -39,6 +39,11 @@ class DragTable(Polar):
         lifts = self.lift_coefficients
         return PolarCoverage((self.machs[0], self.machs[-1]), (lifts[0], lifts[-1]))
 
+    @property
+    def kink_machs(self) -> tuple[float, ...]:
+        """The rows of the table, its ends left out."""
+        return self.machs[1:-1]
+
     @cached_property
     def _reader(self) -> _Reader:
         return _Reader.of(self)

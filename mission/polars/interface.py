@@ -27,6 +27,11 @@ class Polar(ABC):
         """Where the polar is given; None for a law that holds everywhere."""
         return None
 
+    @property
+    def kink_machs(self) -> tuple[float, ...]:
+        """Mach numbers at which drag has a kink in its slope or curvature; none for a law."""
+        return ()
+
     @abstractmethod
     def terms(self, lift_coefficient: Array, mach: Array) -> tuple[Array, Array, Array]:
         """Zero-lift, induced and wave drag coefficients, whose shapes broadcast to the answer's.

@@ -35,6 +35,11 @@ class ParabolaOverMach(Polar):
         """The table's Mach numbers, at any lift coefficient."""
         return PolarCoverage((self.machs[0], self.machs[-1]), (-inf, inf))
 
+    @property
+    def kink_machs(self) -> tuple[float, ...]:
+        """The rows of the table, its ends left out."""
+        return self.machs[1:-1]
+
     @cached_property
     def _curves(self) -> Curves:
         columns = (
