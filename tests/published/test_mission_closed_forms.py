@@ -7,7 +7,7 @@ leaves the sweeps (1e-11 of mass) and the closure of the fuel three digits.
 
 from __future__ import annotations
 
-from math import atan, exp, log, sqrt, tan
+from math import atan, exp, sqrt, tan
 from pathlib import Path
 
 import pytest
@@ -18,10 +18,6 @@ from mission.results import Flight
 HALE = (
     "F. J. Hale, Introduction to Aircraft Performance, Selection and Design, and A. Miele, Flight "
     "Mechanics vol. I: cruise of a jet at constant consumption; from memory"
-)
-RATIOS = (
-    "the same closed forms worked outside this program for a fuel fraction of 0.30, in units of "
-    "(L/D)max V0 / c, to four digits; own arithmetic"
 )
 pytestmark = pytest.mark.source(HALE)
 
@@ -165,50 +161,3 @@ def test_hold_at_a_given_speed(tmp_path: Path, hours: int) -> None:
     expected = log_.mass_start * (1.0 - tan(atan(x0) - turned) / x0)
     assert log_.fuel == pytest.approx(expected, rel=RELATIVE)
     assert log_.ground_distance == 0.0
-
-
-@pytest.mark.source(RATIOS)
-@pytest.mark.parametrize(
-    ("start", "cruise_climb", "same_coefficient", "same_speed"),
-    [
-        (1.0, 0.3567, 0.3267, 0.3493),
-        (0.7071, 0.3363, 0.3080, 0.3117),
-        (0.5774, 0.3089, 0.2829, 0.2790),
-    ],
-)
-def test_three_ways_to_burn_three_tenths(
-    tmp_path: Path, start: float, cruise_climb: float, same_coefficient: float, same_speed: float
-) -> None:
-    """Each distance burns 0.30 of the mass at the start."""
-    coefficient, mass, pressure = start * BEST_CL, 20000.0, 20000.0
-    mach = sqrt(mass * G / (0.7 * pressure * AREA * coefficient))
-    altitude = 11000.0 - 287.05287 * 216.65 / G * log(pressure / 22632.0)
-    fly = {
-        "mach and lift coefficient": (
-            cruise_climb,
-            {"mach": mach, "lift_coefficient": coefficient},
-        ),
-        "altitude and lift coefficient": (
-            same_coefficient,
-            {"pressure_altitude": f"{altitude:.6f} m", "lift_coefficient": coefficient},
-        ),
-        "altitude and mach": (
-            same_speed,
-            {"pressure_altitude": f"{altitude:.6f} m", "mach": mach},
-        ),
-    }
-    for holds, (ratio, given) in fly.items():
-        metres = ratio * BEST * mach * SOUND / CONSUMPTION
-        cruise = {"kind": "cruise", "holds": holds, "distance": f"{metres:.3f} m", **given}
-        flight = fly_files(
-            tmp_path,
-            mission=mission_content(
-                [cruise], payload="1 t", fuel={"as_needed": None, "load": "7 t"}
-            ),
-            aircraft=aircraft_content(masses={"operating_empty": "12 t"}),
-            engine=engine_content(static_thrust="200 kN"),
-        )
-        found = segment(flight, "cruise")
-        assert found.mass_start == pytest.approx(mass, rel=1e-12)
-        # The ratios have four digits: half the last, over 0.28 or more, is 0.02 %.
-        assert found.fuel / mass == pytest.approx(0.30, rel=2.5e-4), holds
