@@ -30,7 +30,7 @@ _PATHS = {
 
 
 def lay_path(climb: Climb, here: Here, start: float, end: float) -> tuple[list[Span], Here]:
-    """Spans along the path found for the mass at the middle of the climb, and where it ends."""
+    """Spans along the path found for the mass that the climb begins with, and where it ends."""
     assert climb.path is not None
     assert climb.to_mach is not None
 
