@@ -50,6 +50,7 @@ def best_record(found: BestCruise) -> Record:
         "best_level": {
             "pressure_altitude_m": _numbers(best.pressure_altitude),
             "weight_over_pressure_ratio_n": _numbers(best.weight_over_pressure_ratio),
+            "limit": _limits(best.limit),
             **_speeds(found.at_best),
         },
         "within_one_percent": {

@@ -8,8 +8,15 @@ from math import isfinite
 from rich.console import Group, RenderableType
 from rich.text import Text
 
-from mission.outputs.best_tables import Shown, by_level, by_mass, off_level, ranges_below
-from mission.outputs.limit_words import held_in_words, lack_in_words
+from mission.outputs.best_tables import (
+    Shown,
+    best_held_by,
+    by_level,
+    by_mass,
+    off_level,
+    ranges_below,
+)
+from mission.outputs.limit_words import lack_in_words
 from mission.outputs.page import WIDEST, apart, caution, note, pairs, section
 from mission.outputs.units import METRIC, Scale, Unit, Units
 from mission.outputs.wording import TIMES, day_in_words, in_plain_words
@@ -84,7 +91,7 @@ def _answer(shown: Shown) -> str:
     i, speed = found.middle, found.best.speed
     if not bool(speed.is_flyable[i]):
         return f"no level can be flown: {lack_in_words(int(speed.limit[i]))}"
-    held = held_in_words(int(speed.limit[i]))
+    held = best_held_by(best, i)
     return (
         f"{shown.level(float(best.pressure_altitude[i]))}, Mach {float(speed.mach[i]):.3f}: "
         f"{shown.reach.full(float(speed.specific_air_range[i]))} of specific air range, "

@@ -10,12 +10,12 @@ import numpy as np
 from numpy.typing import NDArray
 from rich.table import Table
 
-from mission.outputs.limit_words import lack_in_words, verdict
+from mission.outputs.limit_words import held_in_words, lack_in_words, verdict
 from mission.outputs.page import INDENT, Column, ruled_table, words
 from mission.outputs.segment_rows import altitude_header, altitude_text
 from mission.outputs.units import ABSENT, METRIC, Scale, Units, number
 from mission.questions.best import LEVELS_OFF, BestCruise
-from mission.steady.best_levels import SEARCH_ENDS, ClimbLevel
+from mission.steady.best_levels import SEARCH_ENDS, BestLevel, ClimbLevel
 from mission.steady.level_flight import LevelSpeed
 
 Array = NDArray[np.float64]
@@ -94,13 +94,16 @@ def by_mass(shown: Shown, *, is_wide: bool) -> Table:
         *([("\nL/D", lambda i: number(float(speed.lift_to_drag[i]), 1))] if is_wide else []),
         (f"W/delta\n{force.name}", lambda i: ratio.bare(float(best.weight_over_pressure_ratio[i]))),
     ]  # fmt: skip
-    return _table(columns, found.mass.size, lambda i: _holds(speed, i), _GAP if is_wide else 1)
+    return _table(columns, found.mass.size, lambda i: best_held_by(best, i), _GAP if is_wide else 1)
 
 
-def _holds(speed: LevelSpeed, index: int) -> str:
-    if bool(speed.is_flyable[index]):
-        return verdict(speed, index)
-    return f"no level: {lack_in_words(int(speed.limit[index]))}"
+def best_held_by(best: BestLevel, index: int) -> str:
+    """What holds the speed of a best level, then the level, or why there is none."""
+    speed = best.speed
+    if not bool(speed.is_flyable[index]):
+        return f"no level: {lack_in_words(int(speed.limit[index]))}"
+    limits = (int(speed.limit[index]), int(best.limit[index]))
+    return ", ".join(text for text in map(held_in_words, limits) if text)
 
 
 def _least_cost(speed: LevelSpeed | None) -> list[Cells]:

@@ -17,7 +17,7 @@ _HELD = {
     Limit.TABLE: "end of the engine's table",
     Limit.GROUND_SPEED: "headwind",
     Limit.ALTITUDE: "end of the search",
-    Limit.CEILING: "greatest pressure altitude",
+    Limit.CEILING: "greatest altitude",
     Limit.DYNAMIC_PRESSURE: "greatest dynamic pressure",
     Limit.BUFFET: "buffet",
     Limit.BUFFET_TABLE: "end of the table of buffet onset",
@@ -30,7 +30,7 @@ _LACKING = {
     Limit.ENGINE: "the engine has no state",
     Limit.TABLE: "outside the engine's table",
     Limit.GROUND_SPEED: "the headwind is faster",
-    Limit.CEILING: "above the greatest pressure altitude",
+    Limit.CEILING: "above the greatest altitude",
     Limit.POLAR: "outside the drag polar's table",
 }
 

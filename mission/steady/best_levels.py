@@ -24,6 +24,7 @@ SEARCH_ENDS = (Limit.ALTITUDE, Limit.TABLE, Limit.CEILING)
 _STEP = 1000.0  # m: the tropopause, at which range has a kink, is a point of the grid
 _CLIMB_STEP = 2000.0  # m: rates of climb fall smoothly with altitude
 BELOW_TOP = 0.01  # m, for round-off of the thrust there
+_AT_END = 1.0  # m
 
 
 @dataclass(frozen=True)
@@ -58,6 +59,12 @@ class BestLevel:
     speed: LevelSpeed
     weight_over_pressure_ratio: Array
     highest: ClimbLevel
+
+    @property
+    def limit(self) -> Limits:
+        """The end of the search that a level stands at, :data:`Limit.NONE` elsewhere."""
+        is_at_end = self.pressure_altitude > self.highest.pressure_altitude - _AT_END
+        return np.where(is_at_end, self.highest.limit, Limit.NONE)
 
 
 def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> BestLevel:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from math import inf
 from pathlib import Path
 from typing import Any
 
@@ -23,8 +24,15 @@ THERE = flight_condition(37000.0 * 0.3048, 0.76, 10.0)
 
 @pytest.fixture(scope="module")
 def twin() -> tuple[Aircraft, Engine]:
-    """The demo's aircraft with its engine."""
-    return load_aircraft(PROFILES / "coast_watch_twin.toml"), load_engine(BYPASS_5)
+    """The demo's aircraft without the limits that tests put in one by one, and its engine."""
+    bounded = load_aircraft(PROFILES / "coast_watch_twin.toml")
+    free = replace(
+        bounded,
+        buffet_onset=None,
+        maximum_pressure_altitude=inf,
+        maximum_dynamic_pressure=inf,
+    )
+    return free, load_engine(BYPASS_5)
 
 
 @pytest.fixture(scope="module")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from math import inf
 from pathlib import Path
 
 import numpy as np
@@ -30,7 +31,12 @@ from mission.steady.level_flight import LevelFlight, LevelSpeed, Limit, Subject
 from mission.steady.speed_range import SpeedRange, speed_range
 
 Array = NDArray[np.float64]
-TWIN, ENGINE = load_aircraft(PROFILES / "coast_watch_twin.toml"), load_engine(BYPASS_5)
+ENGINE = load_engine(BYPASS_5)
+TWIN = replace(
+    load_aircraft(PROFILES / "coast_watch_twin.toml"),
+    buffet_onset=None,
+    maximum_pressure_altitude=inf,
+)
 altitudes = st.floats(0.0, 13500.0)
 masses = st.floats(17000.0, 27000.0)
 days = st.floats(-20.0, 20.0)
