@@ -12,7 +12,7 @@ from mission.aircraft import Aircraft, usable_fuel
 from mission.breguet import cross_checks
 from mission.coverage import refuse_missing_ratings, refuse_other_day
 from mission.field.of_flight import field_of, runway_margin
-from mission.free import solution_of, solve_free
+from mission.free import closed_again, solution_of, solve_free
 from mission.fuel_plan import add_up, closure, tank_warnings
 from mission.limits import first_failure
 from mission.logbook import segment_logs, totals
@@ -122,6 +122,8 @@ def _solve(mission: Mission, world: World, refinement: int) -> _Solved:
             break
         coarse, many = fine, 2 * many - 1
         fine = march(world, plan.parts, many, coarse.stop_mass, close, coarse, free=free)
+    if root is not None and fine.is_settled:
+        fine, root = closed_again(world, plan, written, close, fine, root)
     return _Solved(plan, coarse, fine, root)
 
 

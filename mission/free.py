@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,6 +18,7 @@ from mission.solving import TOLERANCE, Root, largest_with_margin
 
 Array = NDArray[np.float64]
 _LEAST_RATE = 1e-12  # kg/m or kg/s: where nothing stretches the answer is the guess
+_MOST_STEPS = 6  # on the final nodes
 _SETTLED = 1e-9  # of mass: the margin is a small difference of fuels
 
 
@@ -83,6 +84,23 @@ def solve_free(
     tolerance = TOLERANCE * np.maximum(margin + burnt, 1.0)
     root = largest_with_margin(again, least, guess, tolerance, at_least=margin)
     return flown[-1], root
+
+
+def closed_again(
+    world: World, plan: FlightPlan, written: MissionFile, close: Closure, fine: Marched, root: Root
+) -> tuple[Marched, Root]:
+    """The flight with its final nodes closed as its root was with few: by a step or two more."""
+    asked = _Asked(world, plan, written, len(fine.tracks[0].mass), close)
+    burnt = np.sum([fuel[-1] for fuel in fine.integrals.fuel], axis=0)
+    for _ in range(_MOST_STEPS):
+        margin = asked.margins(fine)
+        if not np.all(root.has_answer) or np.all(np.abs(margin) <= TOLERANCE * burnt):
+            break
+        rate = np.maximum(np.sum(_rates(plan, fine), axis=0), _LEAST_RATE)
+        value = root.value + margin / rate
+        fine = asked.fly(value, fine.stop_mass, fine)
+        root = replace(root, value=value, margin=margin, flights=root.flights + 1)
+    return fine, root
 
 
 def _least(plan: FlightPlan, flown: Marched) -> Array:

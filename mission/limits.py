@@ -239,7 +239,7 @@ def _least_empty(plan: FlightPlan, number: int) -> float:
 
 def _dry(world: World, empty: float, total: Totals, log: SegmentLog) -> Iterator[Failure]:
     """The step of the mission at which the tanks run dry."""
-    is_dry = log.steps.mass < empty - 1e-6
+    is_dry = log.steps.mass < empty - 1e-6 * max(total.loaded_fuel, 1.0)
     if log.purpose == "mission" and np.any(is_dry):
         yield Failure(
             log.name,

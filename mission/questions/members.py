@@ -182,6 +182,7 @@ def _regrouped(
             alone = _alone(group.marched, place)
             masses = alone.row_masses
             known = _Known(np.array([member]), masses, _ends(alone))
+            choices.counts.clear()  # of the member before
             plan = lay_out(mission, world, masses, known.ends, choices)
             found.setdefault(_key(plan), []).append((int(member), known))
     return {

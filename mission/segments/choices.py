@@ -33,8 +33,9 @@ class _Made:
 
 @dataclass
 class Choices:
-    """What was chosen, by row and subject."""
+    """What was chosen, by row and subject; ``counts`` what may only become less."""
 
+    counts: dict[tuple[int, str], int] = field(default_factory=dict)
     made: dict[tuple[int, str], _Made] = field(default_factory=dict)
     is_at_rest: bool = True
 

@@ -70,25 +70,29 @@ def _dead_drag(world: World, span: Span, flight: FlightCondition) -> Array:
 
 
 def altitude_of_rate(
-    world: World, spans: Sequence[Span], low: float, high: float, mass: float, rate: float
+    world: World, spans: Sequence[Span], ends: tuple[float, float], mass: float, rate: float
 ) -> float | None:
-    """Pressure altitude [m] up to which the rate of climb is not below ``rate`` [m/s].
+    """Pressure altitude [m] where a flight along the spans has slowed to a rate of climb [m/s].
 
-    The first place, from ``low`` upwards, where it passes below; ``high`` where it never does;
-    None where it is below at ``low`` already.
+    From the first of ``ends`` [m] to the last: upwards the first place where the rate passes below
+    ``rate``; downwards, a negative one, the first where the sink has slowed to it. The last end
+    where it never does; None where it has at the first already on the way up, or never on the way
+    down.
     """
+    first, last = ends
+    is_climb = last > first
     for _ in range(_ROUNDS):
-        altitudes = np.linspace(low, high, _POINTS)
+        altitudes = np.linspace(first, last, _POINTS)
         excess = rates_of_climb(world, spans, altitudes, mass) - rate
-        is_below = excess < 0.0
-        if is_below[0]:
-            return None
-        if not np.any(is_below):
-            return high
-        after = int(np.argmax(is_below))
-        low, high = float(altitudes[after - 1]), float(altitudes[after])
+        is_there = excess < 0.0 if is_climb else excess >= 0.0
+        if is_there[0]:
+            return None if is_climb else first
+        if not np.any(is_there):
+            return last if is_climb else None
+        after = int(np.argmax(is_there))
+        first, last = float(altitudes[after - 1]), float(altitudes[after])
     share = float(excess[after - 1] / (excess[after - 1] - excess[after]))
-    return low + share * (high - low)
+    return first + share * (last - first)
 
 
 def rate_of_climb_ceiling(segment: Climb, here: Here, start: float, highest: float) -> float:
@@ -99,7 +103,7 @@ def rate_of_climb_ceiling(segment: Climb, here: Here, start: float, highest: flo
     whole = [span for span in spans if span.march == "altitude"]
 
     def choose(mass: float) -> float | None:
-        return altitude_of_rate(here.world, whole, start, highest, mass, floor)
+        return altitude_of_rate(here.world, whole, (start, highest), mass, floor)
 
     end = here.choices.at(
         here.row, "end of climb", here.mass_at(here.row, -1), choose, end=-1, matters=_SAME_MASS

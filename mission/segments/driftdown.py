@@ -78,7 +78,7 @@ def lay_driftdown(segment: Driftdown, here: Here) -> tuple[list[Span], Here]:
     slow = -segment.until_rate_of_descent
 
     def choose(mass: float) -> float | None:
-        return altitude_of_rate(here.world, whole, _LOWEST, start, mass, slow)
+        return altitude_of_rate(here.world, whole, (start, _LOWEST), mass, slow)
 
     end = here.choices.at(
         here.row, "driftdown level", here.mass_at(here.row, -1), choose, end=-1, matters=_SAME_MASS

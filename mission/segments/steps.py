@@ -22,7 +22,9 @@ _MASSES = 17  # looked at from the take-off mass down to the empty one
 _SAME_LEVEL = 0.01  # m
 _HIGHEST = 20000.0  # m, beyond which no cruise goes
 _MOST_STEPS = 20
-_AHEAD = 1e-3  # of mass, by which a step has to be short of the end of the cruise
+# Of mass for each metre of a step: what is burnt after it at least, the climb itself included.
+_AHEAD = 1e-5
+_MASS_THAT_MATTERS = 2e-3  # relative, of the mass at the end
 
 
 def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here]:
@@ -36,9 +38,9 @@ def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here
         here.row,
         f"number of {place}",
         here.mass_at(here.row, -1),
-        lambda mass: sum(m > mass * (1.0 + _AHEAD) for m, _ in chosen) if _flown(here) else 0,
+        lambda mass: _count(here, place, chosen, levels, mass),
         end=-1,
-        matters=2.0 * _AHEAD,
+        matters=_MASS_THAT_MATTERS,
         is_exact=True,
     )
     spans: list[Span] = []
@@ -53,9 +55,26 @@ def with_steps(cruise: Cruise, here: Here, span: Span) -> tuple[list[Span], Here
     return spans, replace(here, speed=span.end_speed, on_ground=False)
 
 
-def _flown(here: Here) -> bool:
-    """Whether an earlier plan says what the cruise burns."""
-    return here.row in here.masses
+def _count(
+    here: Here,
+    place: str,
+    chosen: list[tuple[float, float]],
+    levels: list[float],
+    mass: float,
+) -> int:
+    """How many steps are worth it with a mass [kg] at the end of the cruise.
+
+    None before an earlier plan has said what the cruise burns; never more than the plan before had,
+    or one that saves its own fuel would come and go.
+    """
+    if here.row not in here.masses:
+        return 0
+    rises = np.diff(levels)
+    ends = [m * (1.0 - _AHEAD * rise) for (m, _), rise in zip(chosen, rises, strict=False)]
+    most = here.choices.counts.get((here.row, place), len(ends))
+    count = min(int(sum(end > mass for end in ends)), most)
+    here.choices.counts[here.row, place] = count
+    return count
 
 
 def _at(span: Span, altitude: float) -> Span:
