@@ -1,7 +1,8 @@
 """Choices that depend on mass, kept from one plan of a flight to the next.
 
 A plan is laid out, flown, and laid out again with the masses found. A choice is made again only
-where the mass it was made for has moved enough to matter, so that planning comes to rest.
+where the mass it was made for has moved enough to matter, so that planning comes to rest. The mass
+found answers to the choice: from two of both a secant tells the mass that will be found again.
 """
 
 from __future__ import annotations
@@ -11,6 +12,7 @@ from dataclasses import dataclass, field
 from typing import Any, TypeVar
 
 MASS_THAT_MATTERS = 1e-3  # relative; a level, a path or a speed hardly moves with less
+_STEEPEST = 0.5  # of the mass found over the mass chosen for, that a secant is believed
 _Choice = TypeVar("_Choice")
 
 
@@ -24,19 +26,25 @@ class _Made:
     end: int
     matters: float
 
+    def found(self, masses: Mapping[int, tuple[float, float]]) -> float:
+        """The mass [kg] as it was flown."""
+        return masses[self.row][self.end] if self.row in masses else self.mass
+
     def is_stale(self, masses: Mapping[int, tuple[float, float]]) -> bool:
         """Whether the mass has moved since."""
-        if self.row not in masses:
-            return False
-        return abs(masses[self.row][self.end] - self.mass) > self.matters * self.mass
+        return abs(self.found(masses) - self.mass) > self.matters * self.mass
 
 
 @dataclass
 class Choices:
-    """What was chosen, by row and subject; ``counts`` what may only become less."""
+    """What was chosen, by row and subject.
+
+    ``tried`` are masses chosen for, and found then [kg]; ``counts`` what may only become less.
+    """
 
     counts: dict[tuple[int, str], int] = field(default_factory=dict)
     made: dict[tuple[int, str], _Made] = field(default_factory=dict)
+    tried: dict[tuple[int, str], list[tuple[float, float]]] = field(default_factory=dict)
     is_at_rest: bool = True
 
     def at(
@@ -56,6 +64,7 @@ class Choices:
         """
         known = self.made.get((row, subject))
         if known is None:
+            mass = _next_mass(self.tried.get((row, subject), [])) or mass
             known = _Made(choose(mass), mass, row, end, matters)
             self.made[row, subject] = known
         chosen: _Choice = known.value
@@ -70,5 +79,15 @@ class Choices:
         """Forget what was chosen for masses that a flight has shown to be others."""
         stale = [key for key, made in self.made.items() if made.is_stale(masses)]
         for key in stale:
-            del self.made[key]
+            made = self.made.pop(key)
+            self.tried.setdefault(key, []).append((made.mass, made.found(masses)))
         self.is_at_rest = not stale
+
+
+def _next_mass(tried: list[tuple[float, float]]) -> float | None:
+    """The mass [kg] that will be found again, on the line through the last two; None without."""
+    if len(tried) < 2 or tried[-1][0] == tried[-2][0]:
+        return None
+    (_, before), (mass, found) = tried[-2:]
+    slope = (found - before) / (mass - tried[-2][0])
+    return mass + (found - mass) / (1.0 - slope) if abs(slope) < _STEEPEST else None

@@ -8,13 +8,14 @@ from pydantic import Field, model_validator
 
 from engine.errors import InputRefused
 from engine.quantities import FOOT, Speed
-from mission.march.span import Span, SpeedRule
+from mission.march.span import SLOWEST_CLIMB, Span, SpeedRule
 from mission.segments.base import Level
 from mission.segments.here import Here
 from mission.segments.schedule import Scheduled, lay_schedule, schedule_start
 
 RatingName = Literal["take_off", "maximum_continuous", "climb", "cruise", "maximum_afterburning"]
 BestPath = Literal["best rate", "least fuel", "least time"]
+_SLOWER = 0.5  # times the rate of climb asked for: what pressure altitude may rise at
 
 
 class Climb(Scheduled):
@@ -66,10 +67,26 @@ class Climb(Scheduled):
 
             return lay_path(self, here, start, end)
         if self.until_rate_of_climb is not None:
-            from mission.segments.climbing import rate_of_climb_ceiling  # noqa: PLC0415  as above
-
-            end = rate_of_climb_ceiling(self, here, start, end)
+            return self._lay_slow(here, start, end)
         return lay_schedule(here, start, end, self.rules(), self.rating)
+
+    def _lay_slow(self, here: Here, start: float, highest: float) -> tuple[list[Span], Here]:
+        """Spans up to where no more than the rate asked for is left."""
+        from mission.segments.climbing import slow_climb  # noqa: PLC0415  needed by few missions
+
+        assert self.until_rate_of_climb is not None
+        found = slow_climb(self, here, start, highest)
+        # Pressure altitude passes slower than height on a warm day: below the rate is no end.
+        least = min(SLOWEST_CLIMB, _SLOWER * self.until_rate_of_climb)
+        return lay_schedule(
+            here,
+            start,
+            found.pressure_altitude,
+            self.rules(),
+            self.rating,
+            cuts=found.cuts,
+            least_rate=least,
+        )
 
     def _start(self, here: Here) -> float:
         at = here.pressure_altitude

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -25,6 +26,7 @@ if TYPE_CHECKING:
 Array = NDArray[np.float64]
 _POINTS, _ROUNDS = 17, 4  # 13 km then end at 0.2 m, and the rest on a straight line
 _SAME_MASS = 1e-7  # relative: nearer, the end is not looked for again
+_TIMES = (16.0, 8.0, 4.0, 2.0)  # the last rate: where another span begins
 
 
 def rates_of_climb(world: World, spans: Sequence[Span], altitudes: Array, mass: float) -> Array:
@@ -69,41 +71,70 @@ def _dead_drag(world: World, span: Span, flight: FlightCondition) -> Array:
     return -count * world.engine.windmilling(flight).net_thrust
 
 
-def altitude_of_rate(
-    world: World, spans: Sequence[Span], ends: tuple[float, float], mass: float, rate: float
-) -> float | None:
-    """Pressure altitude [m] where a flight along the spans has slowed to a rate of climb [m/s].
+@dataclass(frozen=True)
+class SlowEnd:
+    """Pressure altitude [m] where a climb or descent has slowed down, and where to cut before it.
 
-    From the first of ``ends`` [m] to the last: upwards the first place where the rate passes below
-    ``rate``; downwards, a negative one, the first where the sink has slowed to it. The last end
-    where it never does; None where it has at the first already on the way up, or never on the way
-    down.
+    Time is the integral of one over a rate that fades: over pieces in each of which it falls by a
+    few times few nodes are enough.
     """
-    first, last = ends
-    is_climb = last > first
+
+    pressure_altitude: float
+    cuts: tuple[float, ...] = ()
+
+
+def slow_end(
+    world: World, spans: Sequence[Span], start: float, last: float, mass: float, rate: float
+) -> SlowEnd | None:
+    """Where a climb, or a descent, from ``start`` to ``last`` [m] has slowed down to ``rate``.
+
+    The first place where the rate [m/s], positive the way it goes, passes below; ``last`` where it
+    never does; None where it is below at ``start`` already.
+    """
+    way = np.sign(last - start)
+    cuts: tuple[float, ...] | None = None
+    near, far = start, last
     for _ in range(_ROUNDS):
-        altitudes = np.linspace(first, last, _POINTS)
-        excess = rates_of_climb(world, spans, altitudes, mass) - rate
-        is_there = excess < 0.0 if is_climb else excess >= 0.0
-        if is_there[0]:
-            return None if is_climb else first
-        if not np.any(is_there):
-            return last if is_climb else None
-        after = int(np.argmax(is_there))
-        first, last = float(altitudes[after - 1]), float(altitudes[after])
+        altitudes = np.linspace(near, far, _POINTS)
+        excess = way * rates_of_climb(world, spans, altitudes, mass) - rate
+        is_below = excess < 0.0
+        if is_below[0]:
+            return None
+        after = int(np.argmax(is_below)) if np.any(is_below) else _POINTS - 1
+        if cuts is None:
+            cuts = _cuts(altitudes[: after + 1], excess[: after + 1] + rate, rate)
+        if not np.any(is_below):
+            return SlowEnd(last, cuts)
+        near, far = float(altitudes[after - 1]), float(altitudes[after])
     share = float(excess[after - 1] / (excess[after - 1] - excess[after]))
-    return first + share * (last - first)
+    return SlowEnd(near + share * (far - near), cuts or ())
 
 
-def rate_of_climb_ceiling(segment: Climb, here: Here, start: float, highest: float) -> float:
-    """Pressure altitude [m] where no more than the rate asked for is left, at most ``highest``."""
+def _cuts(altitudes: Array, rates: Array, least: float) -> tuple[float, ...]:
+    """Altitudes [m] from which a fading rate never again is so many times its last, or more.
+
+    Its last is that at the last altitude, or the ``least`` that it fades to before.
+    """
+    found = []
+    for times in _TIMES:
+        excess = rates - times * max(float(rates[-1]), least)
+        fast = np.flatnonzero(excess >= 0.0)
+        if fast.size:
+            at = int(fast[-1])
+            share = excess[at] / (excess[at] - excess[at + 1])
+            found.append(float(altitudes[at] + share * (altitudes[at + 1] - altitudes[at])))
+    return tuple(found)
+
+
+def slow_climb(segment: Climb, here: Here, start: float, highest: float) -> SlowEnd:
+    """Where no more than the rate of climb asked for is left, at most at ``highest`` [m]."""
     floor = segment.until_rate_of_climb
     assert floor is not None
     spans, _ = lay_schedule(here, start, highest, segment.rules(), segment.rating)
     whole = [span for span in spans if span.march == "altitude"]
 
-    def choose(mass: float) -> float | None:
-        return altitude_of_rate(here.world, whole, (start, highest), mass, floor)
+    def choose(mass: float) -> SlowEnd | None:
+        return slow_end(here.world, whole, start, highest, mass, floor)
 
     end = here.choices.at(
         here.row, "end of climb", here.mass_at(here.row, -1), choose, end=-1, matters=_SAME_MASS
@@ -113,4 +144,4 @@ def rate_of_climb_ceiling(segment: Climb, here: Here, start: float, highest: flo
             f"the rate of climb is below until_rate_of_climb = {floor:.2f} m/s at "
             f"{start / FOOT:,.0f} ft already, where the climb begins; carry less"
         )
-    return highest if end is None else end
+    return SlowEnd(highest) if end is None else end

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Annotated, Literal
+from typing import Annotated, Any, Literal
 
 from pydantic import Field, model_validator
 
@@ -48,6 +48,7 @@ class Descent(Scheduled):
                 f"to = {end / FOOT:,.0f} ft is not below {start / FOOT:,.0f} ft, where the "
                 "descent begins"
             )
+        given: dict[str, Any]
         if self.path_angle is not None:
             given = {"path_angle": -self.path_angle}
         elif self.rate_of_descent is not None:

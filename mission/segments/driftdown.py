@@ -6,7 +6,7 @@ level that they hold is approached ever more slowly, so that the driftdown ends 
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -17,7 +17,7 @@ from mission.errors import CannotBeFlown
 from mission.forces import drag
 from mission.march.rules import hold_bounds
 from mission.march.span import Span, SpeedRule
-from mission.segments.climbing import altitude_of_rate
+from mission.segments.climbing import SlowEnd, slow_end
 from mission.segments.here import Here
 from mission.segments.schedule import lay_schedule, zones
 
@@ -26,6 +26,7 @@ if TYPE_CHECKING:
 
 _LOWEST = -300.0  # m: where the search for the level ends
 _MACHS = 400  # looked at for the speed of least drag
+_FIRST_GUESS = 0.9  # of where it begins, before any mass is known
 _SAME_MASS = 1e-7  # relative: nearer, the level is not looked for again
 
 
@@ -73,26 +74,28 @@ def lay_driftdown(segment: Driftdown, here: Here) -> tuple[list[Span], Here]:
     is_mach = speed.kind == "mach"
     rules = zones(None if is_mach else speed.value, speed.value if is_mach else None, limited=False)
     whole, _ = lay_schedule(here, start, _LOWEST, rules, segment.rating)
-    # Pressure altitude passes slower than height on a cold day: a hair below the rate is no end.
-    floor = {"least_rate": 0.5 * segment.until_rate_of_descent}
-    slow = -segment.until_rate_of_descent
+    slow = segment.until_rate_of_descent
+    # Pressure altitude passes slower than height on a warm day: a hair below the rate is no end.
+    floor: dict[str, Any] = {"least_rate": 0.5 * slow}
 
-    def choose(mass: float) -> float | None:
-        return altitude_of_rate(here.world, whole, (start, _LOWEST), mass, slow)
+    def choose(mass: float) -> SlowEnd | None:
+        return slow_end(here.world, whole, start, _LOWEST, mass, slow)
 
     end = here.choices.at(
         here.row, "driftdown level", here.mass_at(here.row, -1), choose, end=-1, matters=_SAME_MASS
     )
-    if here.row not in here.masses:  # of a guessed mass nothing can be said yet
-        end = 0.5 * start if end is None else min(end, 0.9 * start)
-    if end is None:
-        raise CannotBeFlown(
-            f"the running engines hold no level: down to {_LOWEST / FOOT:,.0f} ft the aircraft "
-            f"sinks faster than {-slow:.2f} m/s; carry less, or take a larger engine"
-        )
-    if end >= start - 1.0:
+    if here.row not in here.masses:  # a guessed mass says nothing, and what follows has to be laid
+        return lay_schedule(here, start, _FIRST_GUESS * start, rules, segment.rating, **floor)
+    if end is None or end.pressure_altitude >= start - 1.0:
         raise InputRefused(
             f"the running engines hold {start / FOOT:,.0f} ft, or sink more slowly than "
-            f"{-slow:.2f} m/s there; leave the driftdown out"
+            f"{slow:.2f} m/s there; leave the driftdown out"
         )
-    return lay_schedule(here, start, end, rules, segment.rating, **floor)
+    if end.pressure_altitude == _LOWEST:
+        raise CannotBeFlown(
+            f"the running engines hold no level: down to {_LOWEST / FOOT:,.0f} ft the aircraft "
+            f"sinks faster than {slow:.2f} m/s; carry less, or take a larger engine"
+        )
+    return lay_schedule(
+        here, start, end.pressure_altitude, rules, segment.rating, cuts=end.cuts, **floor
+    )

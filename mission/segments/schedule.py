@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from itertools import pairwise
 from typing import Annotated, Self
@@ -99,10 +100,13 @@ def lay_schedule(
     end: float,
     rules: list[tuple[float, SpeedRule]],
     rating: str,
+    *,
+    cuts: Sequence[float] = (),
     **given: float,
 ) -> tuple[list[Span], Here]:
     """Spans from one pressure altitude [m] to another along the rules of :func:`zones`.
 
+    ``cuts`` are altitudes [m] at which to begin another span besides the kinks of the air.
     ``given`` are the path angle [rad] or vertical speed [m/s] of a descent that holds one, and the
     least rate [m/s] of one that may be slow.
     """
@@ -110,7 +114,7 @@ def lay_schedule(
     pieces: list[tuple[float, float, SpeedRule]] = []
     floor = low
     for ceiling, rule in rules:
-        kinks = sorted({_TROPOPAUSE, _STRATOSPHERE, *here.air.kinks})
+        kinks = sorted({_TROPOPAUSE, _STRATOSPHERE, *here.air.kinks, *cuts})
         marks = [mark for mark in kinks if floor < mark < min(ceiling, high)]
         for mark in [*marks, min(ceiling, high)]:
             if mark > floor:
