@@ -171,6 +171,7 @@ def lay_out(
             laid.here, leg=leg or laid.here.leg, ahead=tuple(written.segment[number:])
         )
         try:
+            _refuse_fuel_left_twice(written, segment)
             laid.lay(segment, "mission")
         except InputRefused as refusal:
             key = f'segment {number} "{segment.name}"'
@@ -244,13 +245,22 @@ def _metres(distance: float | str | None) -> float | None:
     return distance if isinstance(distance, float) else None
 
 
+def _refuse_fuel_left_twice(written: MissionFile, segment: AnySegment) -> None:
+    """Fuel as needed is what the segments after this one and the reserves leave it."""
+    if written.fuel.as_needed and getattr(segment, "until_fuel", None) is not None:
+        raise InputRefused(
+            "until_fuel contradicts fuel.as_needed, where what follows says how much is left: give "
+            "fuel.load or fuel.to_take_off_mass, or this segment a time, distance or fuel"
+        )
+
+
 def _refuse_stores(mission: Mission, aircraft: Aircraft) -> None:
     """Stores that the aircraft does not know, or more than it can carry."""
     for name, count in mission.written.stores.items():
         store = aircraft.stores.get(name)
         if store is None:
             known = ", ".join(aircraft.stores) or "none"
-            what = f"are not known to {aircraft.name}; its file has: {known}"
+            what = f"is not known to {aircraft.name}; its file has: {known}"
             raise InputRefused(what, where=mission.where, key=f"stores.{name}")
         if count > store.most:
             what = f"= {count}; {aircraft.name} carries at most {store.most}"

@@ -41,7 +41,7 @@ def failing_row(failure: Failure, names: list[str]) -> int:
 def _cut(log: SegmentLog, step: int) -> SegmentLog:
     """A row up to and including one of its steps."""
     last = len(log.steps.mass) - 1
-    if step >= last:
+    if step >= last or log.time == 0.0:  # what is booked has no way to be cut
         return log
     pieces = {f.name: getattr(log.steps, f.name)[: step + 1] for f in fields(Steps)}
     steps = Steps(**pieces)

@@ -58,6 +58,8 @@ class Turnaround(Segment):
 
     def lay(self, here: Here) -> tuple[list[Span], Here]:
         """Bookings of what leaves and of what comes aboard."""
+        if here.pressure_altitude is None:
+            raise InputRefused("nothing was flown yet: load the aircraft for its first flight")
         if not here.on_ground:
             raise InputRefused("the aircraft is in the air; put an approach before this turnaround")
         left = without(here.load, self.payload_off, {})
@@ -127,11 +129,14 @@ def without(load: Load, payload: float, stores: dict[str, int]) -> Load:
 
 
 def _changed(here: Here, load: Load, leaves: float, comes: float) -> tuple[list[Span], Here]:
-    """A booking [kg] of what leaves, one of what comes aboard, and the aircraft after both."""
+    """A booking [kg] of what comes aboard, one of what leaves, and the aircraft after both.
+
+    In this order the mass between them is not below that of a dry aircraft.
+    """
     altitude = here.pressure_altitude or 0.0
     spans = [
         here.span("book", start_altitude=altitude, end_altitude=altitude, received=amount)
-        for amount in (-leaves, comes)
+        for amount in (comes, -leaves)
     ]
     drag_area = load.drag_area(here.aircraft)
     return spans, replace(
