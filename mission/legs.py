@@ -49,6 +49,13 @@ def air_of(day: float, headwind: float, table: AirTable | None) -> Air:
     )
 
 
+def refuse_two_airs(day: object, headwind: object, table: AirTable | None) -> None:
+    """Refuse a day or headwind beside a table that gives the same by altitude."""
+    for name, given in (("day", day), ("headwind", headwind)):
+        if table is not None and given is not None and getattr(table, name) is not None:
+            raise ValueError(f"{name} and air.{name} contradict each other: give one of them")
+
+
 def distance_or_word(text: object, *allowed: str) -> object:
     """A distance [m] from text, or one of the words allowed."""
     if text in allowed:
@@ -73,3 +80,8 @@ class LegTable(Table):
     @classmethod
     def _distance(cls, text: object) -> object:
         return distance_or_word(text, "radius", "free")
+
+    @model_validator(mode="after")
+    def _one_air(self) -> LegTable:
+        refuse_two_airs(self.day, self.headwind, self.air)
+        return self
