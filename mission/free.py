@@ -39,7 +39,10 @@ class _Asked:
         )
 
     def margins(self, flown: Marched) -> Array:
-        """Fuel left over the reserves [kg]; minus infinity where there is no flight."""
+        """Fuel left over the reserves [kg]; minus infinity where there is no flight.
+
+        Less where the tanks run dry before fuel comes aboard.
+        """
         if not flown.is_settled:
             return np.full(flown.stop_mass.shape, -np.inf)
         members = range(flown.stop_mass.size)
@@ -48,7 +51,19 @@ class _Asked:
         margin: Array = (
             flown.stop_mass - self.plan.stop_empty_mass - self.plan.parts.added - reserves
         )
-        return margin
+        return np.minimum(margin, _least_aboard(self.plan, flown))
+
+
+def _least_aboard(plan: FlightPlan, flown: Marched) -> Array:
+    """The least usable fuel [kg] aboard anywhere in the mission, shape (members,)."""
+    empty = [plan.first_empty_mass, *(row.empty_mass for row in plan.rows)]
+    spans = plan.parts.mission
+    aboard = [
+        track.mass.min(axis=0) - min(empty[span.segment : span.segment + 2])
+        for span, track in zip(spans, flown.tracks, strict=False)
+    ]
+    least: Array = np.min(aboard, axis=0) - plan.parts.added
+    return least
 
 
 def solve_free(
@@ -64,7 +79,7 @@ def solve_free(
     """The free value at which the fuel margin is nothing, and the flight there.
 
     ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike. Fuel
-    margin is closed to 1e-7 of the fuel burnt.
+    margin is closed to 1e-7 of the fuel burnt. The root's flights are those of both plans.
     """
     asked = _Asked(world, plan, written, count, close)
     nothing = np.zeros_like(stop)
@@ -83,7 +98,8 @@ def solve_free(
 
     tolerance = TOLERANCE * np.maximum(margin + burnt, 1.0)
     root = largest_with_margin(again, least, guess, tolerance, at_least=margin)
-    return flown[-1], root
+    before = 0 if earlier is None else earlier.flights
+    return flown[-1], replace(root, flights=root.flights + before)
 
 
 def closed_again(
@@ -104,13 +120,17 @@ def closed_again(
 
 
 def _least(plan: FlightPlan, flown: Marched) -> Array:
-    """The least free value: a leg's ground distance without the cruise that takes the rest."""
+    """The least free value: a leg's ground distance without the cruise that takes the rest.
+
+    All of that cruise: how far it goes between two steps answers to the free value too.
+    """
     least = np.zeros_like(flown.stop_mass)
+    resting = {track.span.segment for track in flown.tracks if track.span.takes_rest}
     for leg in plan.parts.free_legs:
         chosen = [
             ground[-1]
             for track, ground in zip(flown.tracks, flown.integrals.ground, strict=True)
-            if track.span.leg == leg and not track.span.takes_rest
+            if track.span.leg == leg and track.span.segment not in resting
         ]
         least = np.maximum(least, sum(chosen, np.zeros_like(least)))
     return least

@@ -17,6 +17,7 @@ Array = NDArray[np.float64]
 Margin = Callable[[Array], Array]
 MOST_FLIGHTS = 12
 TOLERANCE = 1e-7  # of the fuel aboard, to which the margin is closed
+_CLOSED = 10.0  # times the tolerance: a margin that the last flight may be left with
 _LARGEST_GROWTH = 4.0  # of the distance from the least value, while nothing is too much yet
 
 
@@ -24,7 +25,8 @@ _LARGEST_GROWTH = 4.0  # of the distance from the least value, while nothing is 
 class Root:
     """Free values (members,), the margins there [kg], and how many flights they took.
 
-    ``has_answer`` is False where the margin is negative at the least value already.
+    ``has_answer`` is False where the margin is negative at the least value already, or where so
+    many flights did not close it.
     """
 
     value: Array
@@ -59,7 +61,7 @@ def largest_with_margin(
         following = _secant((last, value), (at_last, there), low, high, least)
         last, at_last = value, there
         value = np.where(is_open, following, value)
-    return Root(value, found, at_least >= -tolerance, flights)
+    return Root(value, found, np.abs(found) <= _CLOSED * tolerance, flights)
 
 
 def _secant(
