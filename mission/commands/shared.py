@@ -83,10 +83,20 @@ def setting(mission: Mission, aircraft: Aircraft) -> Setting:
         headwind=written.headwind,
         engine_count=aircraft.engine_count,
         is_fuel_as_needed=written.fuel.as_needed,
-        has_own_air=written.air is not None or bool(written.leg),
         stores=written.stores,
+        air_changes=_air_changes(mission),
         known=written.known,
     )
+
+
+def _air_changes(mission: Mission) -> str:
+    """By what day and wind change on the way, if they do."""
+    from mission.plan import legs_of
+
+    airs = {leg.air for leg in legs_of(mission.written)}
+    if len(airs) > 1:
+        return "leg"
+    return "altitude" if any(air.is_table for air in airs) else ""
 
 
 def read(option: str, parse: Callable[..., float], text: str, *kind: str) -> float:

@@ -93,22 +93,20 @@ def flight_log(
 
 def _heading(flight: Flight, setting: Setting, units: Units) -> Group:
     payload = Scale.of(units.mass, [setting.payload]).full(setting.payload)
-    air = "still air"
-    if setting.headwind:
+    air = f"{day_in_words(flight.day)}, still air"
+    if setting.air_changes:
+        air = f"day and wind by {setting.air_changes}"
+    elif setting.headwind:
         wind = Scale.of(units.speed, [setting.headwind], 2).full(abs(setting.headwind))
-        air = f"{'headwind' if setting.headwind > 0.0 else 'tailwind'} {wind}"
-    if setting.has_own_air:
-        air = "air by altitude and leg"
-    carried = "".join(
-        f", {count} {name.replace('_', ' ')}" for name, count in setting.stores.items()
-    )
+        kind = "headwind" if setting.headwind > 0.0 else "tailwind"
+        air = f"{day_in_words(flight.day)}, {kind} {wind}"
     engine = f"{setting.engine_count} {TIMES} {flight.engine}"
+    stores = "".join(
+        f", {count} {TIMES} {name.replace('_', ' ')}" for name, count in setting.stores.items()
+    )
     return Group(
         Text(flight.mission, "bold"),
-        Text(
-            f"{flight.aircraft}, {engine}, payload {payload}{carried}, {day_in_words(flight.day)}, "
-            f"{air}"
-        ),
+        Text(f"{flight.aircraft}, {engine}, payload {payload}{stores}, {air}"),
     )
 
 
@@ -116,7 +114,9 @@ def _answer(flight: Flight, setting: Setting, scales: Scales) -> Group:
     """Block fuel, time and whether the fuel is enough, with the doubt beside it."""
     if flight.failure is not None:
         reason = failure_headline(flight.failure, scales.units)
-        return Group(Text(), Text(f"Cannot be flown: {reason}", "bold"))
+        solved = list(_solved(flight, scales))
+        unsolved = solved if flight.solution and not flight.solution.has_answer else []
+        return Group(Text(), Text(f"Cannot be flown: {reason}", "bold"), pairs(unsolved))
     total, fuel = flight.totals, scales.fuel
     minutes = number(total.block_time / 60.0, 1)
     way = "as needed" if setting.is_fuel_as_needed else "as given"
@@ -142,6 +142,9 @@ def _solved(flight: Flight, scales: Scales) -> Iterable[tuple[str, str]]:
     """What was free in the mission, and the most of it that the fuel is enough for."""
     solution = flight.solution
     if solution is None:
+        return
+    if not solution.has_answer:
+        yield "no answer", f"{solution.name} is free, and fuel is short however little it is"
         return
     if solution.unit == "s":
         found = f"{number(solution.value / 60.0, 1)} min ({hours_and_minutes(solution.value)})"

@@ -146,6 +146,12 @@ def _burnt(flight: Flight, scales: Scales, bar_length: int, whole: float) -> lis
     ]  # fmt: skip
 
 
+def _mach_text(log: SegmentLog) -> str:
+    """Mach number at the end; none of what is booked, not flown: no time, no speed."""
+    mach = float(log.steps.mach[-1])
+    return number(mach, 3) if log.time > 0.0 or mach > 0.0 else ABSENT
+
+
 def _where(scales: Scales) -> list[_Filled]:
     altitude = partial(altitude_text, scales.units)
     return [
@@ -153,7 +159,7 @@ def _where(scales: Scales) -> list[_Filled]:
             altitude_header(scales.units),
             lambda log: altitude(float(log.steps.pressure_altitude[-1])),
         ),
-        _Filled("Mach", lambda log: number(float(log.steps.mach[-1]), 3)),
+        _Filled("Mach", _mach_text),
     ]
 
 

@@ -14,14 +14,15 @@ if TYPE_CHECKING:
 class Setting:
     """Payload [kg], headwind [m/s], number of engines, and the rule that loaded the fuel.
 
-    ``has_own_air`` tells that temperature or wind change with altitude or from leg to leg;
-    ``stores`` are what hangs on the aircraft at the start, ``known`` what is known of the flight.
+    ``stores`` are those it takes off with, by name; ``air_changes`` says by what day and wind
+    change, "altitude" or "leg", and is empty where one of each holds throughout; ``known`` is what
+    is known of the flight.
     """
 
     payload: float
     headwind: float
     engine_count: int
     is_fuel_as_needed: bool
-    has_own_air: bool = False
     stores: Mapping[str, int] = field(default_factory=dict)
+    air_changes: str = ""
     known: KnownTable | None = None

@@ -14,6 +14,11 @@ from mission.outputs.segment_rows import Scales, altitude_header, altitude_text
 from mission.outputs.units import Scale, number
 from mission.results import Flight, SegmentLog, Steps
 
+_EXCESS = (
+    "Excess: specific excess power at the rating, turning and at one g. Turn rate, radius and "
+    "excess are those at the end."
+)
+
 
 def way_sections(flight: Flight, shown: Sequence[SegmentLog], scales: Scales) -> Iterable[Group]:
     """Those that the rows shown have something for."""
@@ -145,7 +150,7 @@ def _turns(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
     )
     for log in turns:
         table.add_row(log.name, *_turn_cells(log, scales))
-    return section("Turns", table, note("Excess is specific excess power, turning and at 1 g."))
+    return section("Turns", table, note(_EXCESS))
 
 
 def _turn_cells(log: SegmentLog, scales: Scales) -> Iterable[str]:

@@ -24,15 +24,15 @@ from mission_files import (
 from engine.errors import InputRefused
 from engine.quantities import FOOT, KNOT, STANDARD_GRAVITY
 from mission.airspeeds import calibrated_airspeed
-from mission.questions.best_speeds import (
+from mission.results import Flight, Steps
+from mission.steady.best_speeds import (
     least_cost_mach,
     long_range_mach,
     maximum_level_mach,
     maximum_range_mach,
 )
-from mission.questions.level_flight import LevelFlight, LevelSpeed
-from mission.questions.speed_range import SpeedRange, speed_range
-from mission.results import Flight, Steps
+from mission.steady.level_flight import LevelFlight, LevelSpeed
+from mission.steady.speed_range import SpeedRange, speed_range
 
 ENGINES = {"constant": CONSTANT_ENGINE, "cycle": BYPASS_5}
 FIVE_TONNES: Content = {"as_needed": None, "load": "5 t"}
