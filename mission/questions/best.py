@@ -12,7 +12,6 @@ from engine.envelope import grid
 from engine.quantities import FOOT
 from mission.march.seeking import LONG_RANGE_SHARE
 from mission.steady.best_levels import (
-    BELOW_TOP,
     BestLevel,
     ClimbLevel,
     best_altitude,
@@ -191,7 +190,7 @@ def _around(subject: Subject, best: BestLevel, mass: Array, rating: str) -> _Aro
     low, high, _ = searched(subject)
     known = best.speed.is_flyable
     centre = np.where(known, best.pressure_altitude, low)
-    top = np.where(known, best.highest.pressure_altitude - BELOW_TOP, high)
+    top = np.where(known, best.highest.inside, high)
     reach = np.clip(top - centre, 0.0, _FURTHEST_UP)
     wanted = centre + LEVELS_OFF[:, None]
     parts = [

@@ -23,7 +23,7 @@ HIGHEST = 20000.0  # m: where the search for a level ends
 SEARCH_ENDS = (Limit.ALTITUDE, Limit.TABLE, Limit.CEILING)
 _STEP = 1000.0  # m: the tropopause, at which range has a kink, is a point of the grid
 _CLIMB_STEP = 2000.0  # m: rates of climb fall smoothly with altitude
-BELOW_TOP = 0.01  # m, for round-off of the thrust there
+_BELOW_TOP = 0.01  # m, for round-off of the thrust there
 _AT_END = 1.0  # m
 
 
@@ -41,6 +41,12 @@ class ClimbLevel:
 
     pressure_altitude: Array
     limit: Limits
+
+    @property
+    def inside(self) -> Array:
+        """The level [m] itself where the search ends at it, just below where thrust ends."""
+        is_end = np.isin(self.limit, SEARCH_ENDS)
+        return self.pressure_altitude - np.where(is_end, 0.0, _BELOW_TOP)
 
 
 @dataclass(frozen=True)
@@ -79,8 +85,8 @@ def best_altitude(subject: Subject, mass: Array, *, rating: str = "cruise") -> B
     levels = _levels(subject, mass, _STEP)
     known = ranges(levels)
     highest = _highest_flown(subject, mass, rating, levels, np.where(known.is_open, 1.0, -1.0))
-    top = np.where(np.isfinite(highest.pressure_altitude), highest.pressure_altitude, levels[0])
-    top = np.maximum(top - BELOW_TOP, levels[0])
+    top = np.where(np.isfinite(highest.pressure_altitude), highest.inside, levels[0])
+    top = np.maximum(top, levels[0])
     best = np.argmax(range_about(known), axis=0)
     low, high = (pick(levels, np.clip(best + step, 0, len(levels) - 1)) for step in (-1, 1))
     altitude = least_between(lambda h: -range_about(ranges(h)), low, np.clip(high, low, top))

@@ -8,6 +8,7 @@ import sys
 from pathlib import Path
 
 import pytest
+from mission_files import aircraft_content, write
 
 from mission import command_line
 from mission.library import built_in, find
@@ -117,8 +118,11 @@ def test_an_engine_given_takes_the_place_of_the_missions(longlegs: Longlegs) -> 
     assert read_json(run.out)["engine"] == "bypass-10 turbofan"
 
 
+MISSIONS = ", ".join(
+    sorted(path.stem for path in PROFILES.glob("*.toml") if "[[segment]]" in path.read_text())
+)
 REFUSED = [
-    (["fly", "coast_wach"], ['did you mean "coast_watch"?', "alert_climb, coast_watch, ferry"]),
+    (["fly", "coast_wach"], ['did you mean "coast_watch"?', MISSIONS]),
     (["fly", "bypass_5"], ['"bypass_5" is an engine, and a name of a mission is wanted']),
     (["fly", "--engine", "bypas_5"], ["--engine", 'did you mean "bypass_5"?', "straight_jet"]),
     (["fly", "--aircraft", "nothing"], ["--aircraft", "neither a file nor a built-in aircraft"]),
@@ -180,9 +184,14 @@ def test_wrong_usage_is_status_2(longlegs: Longlegs, words: list[str]) -> None:
 
 
 def test_a_mission_that_cannot_be_flown(longlegs: Longlegs) -> None:
-    """A climb to flight level 470 leaves less thrust at cruise rating than there is drag."""
+    """A climb to flight level 470 leaves less thrust at cruise rating than there is drag.
+
+    With an aircraft that has no other limit up there.
+    """
     written("m.toml", 'to = "FL390"', 'to = "FL470"')
-    run = longlegs("fly", "m.toml", "--json", "o.json")
+    write(Path(), "plane", aircraft_content())
+    words = ("fly", "m.toml", "--aircraft", "plane", "--json")
+    run = longlegs(*words, "o.json")
     assert run.status == 3
     assert run.err == ""
     assert "Traceback" not in run.out
@@ -201,7 +210,7 @@ def test_a_mission_that_cannot_be_flown(longlegs: Longlegs) -> None:
     last = record["segments"][-1]
     assert last["name"] == record["failure"]["segment"]
     assert len(last["steps"]["mach"]) == record["failure"]["step"] + 1
-    alone = longlegs("fly", "m.toml", "--json", "-")
+    alone = longlegs(*words, "-")
     assert alone.status == 3
     assert read_json(alone.out) == record
     assert alone.err.startswith("Cannot be flown: thrust at cruise rating against drag: ")

@@ -150,6 +150,7 @@ def test_the_engine_that_is_out_drags() -> None:
         polar.zero_lift_drag_coefficient
         + polar.induced_drag_factor * (lift - polar.least_drag_lift_coefficient) ** 2
     )
+    drag += aircraft.take_off_flaps_drag_increment
     by_hand = (float(running) + float(unlit)) / (22e3 * G) - drag / lift
     assert float(climb.gradient) == pytest.approx(by_hand, abs=1e-9)
 
