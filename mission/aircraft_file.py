@@ -9,8 +9,9 @@ from pydantic import Field, create_model, model_validator
 
 from engine.quantities import Altitude, Area, Length, Mass, Pressure, Speed, Volume
 from engine.reading import Table
+from mission.polars.kinds import polar_kind
 from mission.polars.lists import IsList, Mach, refuse_not_rising, refuse_other_count
-from mission.polars.tables import PolarTable, polar_kind
+from mission.polars.tables import PolarTable
 
 PositiveMass = Annotated[Mass, Field(gt=0.0)]
 Factor = Annotated[float, Field(gt=0.0, le=10.0, allow_inf_nan=False)]

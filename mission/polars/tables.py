@@ -1,10 +1,10 @@
-"""What a user writes about a parabolic drag polar, and which kind of polar the keys ask for."""
+"""What a user writes about a parabolic drag polar."""
 
 from __future__ import annotations
 
 from math import pi, radians
 from pathlib import Path
-from typing import Annotated, Any
+from typing import Annotated
 
 from pydantic import Field, model_validator
 
@@ -112,17 +112,3 @@ class SweptParabolaTable(_AnyParabolaTable):
     """A parabola whose drag rise follows from the wing."""
 
     drag_rise: KornRiseTable
-
-
-def polar_kind(written: Any) -> type[PolarTable]:
-    """The kind of polar that the keys of a table ask for; without any, the plain parabola."""
-    if not isinstance(written, dict):
-        return ParabolaTable
-    is_list = isinstance(written.get("zero_lift_drag_coefficient"), list)
-    if is_list or written.keys() & {"machs", "lift_coefficients", "drag_coefficients", "points"}:
-        from mission.polars import given_tables  # noqa: PLC0415  few files need them
-
-        return given_tables.polar_kind(written)
-    rise = written.get("drag_rise")
-    is_korn = isinstance(rise, dict) and rise.keys() & KornRiseTable.model_fields.keys()
-    return SweptParabolaTable if is_korn else ParabolaTable

@@ -10,6 +10,8 @@ from engine.atmosphere import HIGHEST_PRESSURE_ALTITUDE, LOWEST_PRESSURE_ALTITUD
 from engine.quantities import parse_quantity
 from engine.reading import Table
 
+RatingName = Literal["take_off", "maximum_continuous", "climb", "cruise", "maximum_afterburning"]
+
 
 class Segment(Table):
     """A segment by name; ``starts_leg`` names the leg that begins with it."""

@@ -9,11 +9,11 @@ from pydantic import Field, model_validator
 from engine.errors import InputRefused
 from engine.quantities import FOOT, Speed
 from mission.march.span import SLOWEST_CLIMB, Span, SpeedRule
-from mission.segments.base import Level
+from mission.segments.base import Level, RatingName
+from mission.segments.cruise import Cruise
 from mission.segments.here import Here
 from mission.segments.schedule import Scheduled, lay_schedule, schedule_start
 
-RatingName = Literal["take_off", "maximum_continuous", "climb", "cruise", "maximum_afterburning"]
 BestPath = Literal["best rate", "least fuel", "least time"]
 _SLOWER = 0.5  # times the rate of climb asked for: what pressure altitude may rise at
 
@@ -96,7 +96,6 @@ class Climb(Scheduled):
         """Where it ends; the best level is that of the next cruise."""
         if self.to != "best":
             return float(self.to)
-        from mission.segments.cruise import Cruise  # noqa: PLC0415  which asks for a climb too
         from mission.segments.levels import best_level  # noqa: PLC0415  needed by few missions
 
         cruise = next((s for s in here.ahead if isinstance(s, Cruise)), None)

@@ -10,8 +10,7 @@ from pydantic import Field, field_validator, model_validator
 from engine.errors import InputRefused
 from engine.quantities import Altitude, Length, Mass, MassFlow, Time, parse_quantity
 from mission.march.span import Span, SpeedKind, SpeedRule
-from mission.segments.base import Level, Segment
-from mission.segments.climb import RatingName
+from mission.segments.base import Level, RatingName, Segment
 from mission.segments.here import Here
 from mission.segments.schedule import mach_of
 

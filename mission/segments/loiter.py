@@ -9,8 +9,7 @@ from pydantic import Field, field_validator, model_validator
 
 from engine.quantities import Altitude, Mass, Speed, parse_quantity
 from mission.march.span import Span, SpeedRule
-from mission.segments.base import Segment
-from mission.segments.climb import RatingName
+from mission.segments.base import RatingName, Segment
 from mission.segments.here import Here
 
 

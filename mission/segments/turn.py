@@ -11,8 +11,7 @@ from pydantic import Field, model_validator
 from engine.errors import InputRefused
 from engine.quantities import Altitude, Speed, Time
 from mission.march.span import Span, SpeedRule
-from mission.segments.base import Segment
-from mission.segments.climb import RatingName
+from mission.segments.base import RatingName, Segment
 from mission.segments.here import Here
 
 
