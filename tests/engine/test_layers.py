@@ -1,4 +1,4 @@
-"""The layers of the house, by walking its imports."""
+"""The layers of `engine`, by walking its imports; what prints, in the whole house."""
 
 from __future__ import annotations
 
@@ -7,10 +7,10 @@ import importlib
 from pathlib import Path
 
 import pytest
+from source_walk import ROOT, imported, parsed, prints, sources
 
 import engine
 
-ROOT = Path(__file__).parents[2]
 # A room may import from rooms named before it and from itself.
 FLOORS = [
     {"errors", "fuels", "quantities"},
@@ -31,41 +31,8 @@ FLOORS = [
 ROOF = {"mission/outputs", "mission/commands", "mission/command_line.py"}
 
 
-def sources(package: str) -> list[Path]:
-    return sorted((ROOT / package).rglob("*.py"))
-
-
-def imported(tree: ast.AST) -> set[str]:
-    """Dotted names of all modules that a tree imports, wherever the import stands."""
-    names = set()
-    for node in ast.walk(tree):
-        if isinstance(node, ast.Import):
-            names |= {alias.name for alias in node.names}
-        elif isinstance(node, ast.ImportFrom):
-            assert node.level == 0, "imports are absolute here"
-            names |= {f"{node.module}.{alias.name}" for alias in node.names} | {str(node.module)}
-    return names
-
-
-def prints(tree: ast.AST) -> list[int]:
-    """Lines that write to a terminal or a log."""
-    lines = []
-    for node in ast.walk(tree):
-        if isinstance(node, ast.Call) and isinstance(node.func, ast.Name):
-            lines += [node.lineno] if node.func.id in ("print", "input", "breakpoint") else []
-        if isinstance(node, ast.Attribute) and node.attr in ("stdout", "stderr"):
-            lines.append(node.lineno)
-    loud = {"rich", "logging", "warnings", "typer", "click"}
-    names = {name.split(".")[0] for name in imported(tree)}
-    return lines + ([0] if names & loud else [])
-
-
 def floor_of(room: str) -> int:
     return next(level for level, rooms in enumerate(FLOORS) if room in rooms)
-
-
-def parsed(path: Path) -> ast.Module:
-    return ast.parse(path.read_text(encoding="utf-8"))
 
 
 @pytest.mark.parametrize("path", sources("engine"), ids=lambda p: str(p.relative_to(ROOT)))
