@@ -5,14 +5,16 @@ from __future__ import annotations
 import re
 import tomllib
 from pathlib import Path
+from typing import get_args
 
 import pytest
 
 from engine.options.loading import engine_from_content
 from mission.aircraft import aircraft_from_content
 from mission.library import find
-from mission.mission_file import mission_from_content
+from mission.mission_file import MissionFile, mission_from_content
 from mission.reserves.registry import RULES
+from mission.segments import AnySegment
 
 ROOT = Path(__file__).parents[1]
 README = (ROOT / "README.md").read_text()
@@ -61,6 +63,31 @@ def test_the_aircraft_and_the_mission_can_be_copied() -> None:
 
 def test_every_reserve_rule_is_named() -> None:
     assert [name for name in RULES if f"`{name}`" not in README] == []
+
+
+def test_every_segment_kind_is_told() -> None:
+    """In the first column of the table of segments."""
+    table = README.partition("The segments, by `kind`")[2].split("\n\n")[1]
+    told = {
+        name
+        for row in re.findall(r"^\| (`.*?) \|", table, re.MULTILINE)
+        for name in re.findall(r"`([^`]+)`", row)
+    }
+    kinds, _ = get_args(AnySegment)
+    known = {get_args(table.model_fields["kind"].annotation)[0] for table in get_args(kinds)}
+    assert len(known) == len(get_args(kinds))
+    assert known - told == set()
+
+
+def test_every_key_of_a_mission_is_told() -> None:
+    """In the part about missions, as a key of an example or in its words."""
+    part = README.partition("\n**Mission**")[2].partition("\n## ")[0]
+    keys = [
+        name
+        for name in MissionFile.model_fields
+        if not re.search(rf"^{name} = |^\[\[?{name}[\].]|`{name}[` ]", part, re.MULTILINE)
+    ]
+    assert keys == []
 
 
 def test_what_is_known_goes_with_the_mission() -> None:
