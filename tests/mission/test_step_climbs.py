@@ -23,11 +23,11 @@ from mission_files import (
 from engine.errors import InputRefused
 from engine.quantities import FOOT
 from mission.errors import CannotBeFlown
-from mission.questions.best_speeds import long_range_mach, maximum_range_mach
-from mission.questions.climbing import rate_of_climb
-from mission.questions.level_flight import LevelFlight
-from mission.questions.speed_range import speed_range
 from mission.results import Flight, Steps
+from mission.steady.best_speeds import long_range_mach, maximum_range_mach
+from mission.steady.climbing import rate_of_climb
+from mission.steady.level_flight import LevelFlight
+from mission.steady.speed_range import speed_range
 
 # A wing whose best levels are about FL300 and pass by as it gets lighter.
 SMALL_WING: Content = aircraft_content(wing_area="30 m**2")
