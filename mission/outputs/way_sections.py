@@ -15,7 +15,7 @@ from mission.outputs.units import Scale, number
 from mission.results import Flight, SegmentLog, Steps
 
 _EXCESS = (
-    "Excess: specific excess power at the rating, turning and at one g. Turn rate, radius and "
+    "Excess: specific excess power at the rating, turning and at one g. Rate of turn, radius and "
     "excess are those at the end."
 )
 
@@ -140,13 +140,14 @@ def _turns(shown: Sequence[SegmentLog], scales: Scales) -> Group | None:
         [
             words("turn"),
             Column("load factor\nfirst, last"),
-            Column("turn rate\ndeg/s"),
+            Column("rate\ndeg/s"),
             Column(f"radius\n{units.distance.name}"),
             Column("turned\ndeg"),
             Column(f"excess\n{units.vertical_speed.name}"),
             Column(f"at 1 g\n{units.vertical_speed.name}"),
-            words("what holds\nthe load factor"),
-        ]
+            words("held by", is_wrapped=False),
+        ],
+        gap=1,
     )
     for log in turns:
         table.add_row(log.name, *_turn_cells(log, scales))
