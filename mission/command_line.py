@@ -15,6 +15,7 @@ from mission.commands.fit_commands import fit_command
 from mission.commands.listing import list_command
 from mission.commands.mission_commands import compare_command, fly_command
 from mission.commands.question_commands import best_command, point_command
+from mission.commands.reach_command import reach_command
 from mission.commands.shared import NOT_FLYABLE
 from mission.errors import CannotBeFlown
 from mission.outputs.wording import CAUTION
@@ -32,6 +33,7 @@ app = typer.Typer(
 )
 app.command("fly")(fly_command)
 app.command("compare")(compare_command)
+app.command("reach")(reach_command)
 app.command("best")(best_command)
 app.command("point")(point_command)
 app.command("stations")(stations_command)

@@ -14,11 +14,12 @@ from mission.march.world import World
 from mission.mission_file import MissionFile
 from mission.plan import FlightPlan
 from mission.results import Solution
-from mission.solving import TOLERANCE, Root, largest_with_margin
+from mission.solving import TOLERANCE, Root, Search, largest_with_margin
 
 Array = NDArray[np.float64]
 _LEAST_RATE = 1e-12  # kg/m or kg/s: where nothing stretches the answer is the guess
 _MOST_STEPS = 6  # on the final nodes
+_CLOSED = 1e-6  # of the fuel aboard, to which a margin counts as nothing
 _SETTLED = 1e-9  # of mass: the margin is a small difference of fuels
 
 
@@ -28,7 +29,6 @@ class _Asked:
 
     world: World
     plan: FlightPlan
-    written: MissionFile
     count: int
     close: Closure
 
@@ -38,20 +38,18 @@ class _Asked:
             self.world, self.plan.parts, self.count, stop, self.close, start, _SETTLED, free
         )
 
-    def margins(self, flown: Marched) -> Array:
-        """Fuel left over the reserves [kg]; minus infinity where there is no flight.
 
-        Less where the tanks run dry before fuel comes aboard.
-        """
-        if not flown.is_settled:
-            return np.full(flown.stop_mass.shape, -np.inf)
-        members = range(flown.stop_mass.size)
-        sums = [add_up(self.plan, self.written, flown.integrals, m) for m in members]
-        reserves = np.array([each.reserves for each in sums])
-        margin: Array = (
-            flown.stop_mass - self.plan.stop_empty_mass - self.plan.parts.added - reserves
-        )
-        return np.minimum(margin, _least_aboard(self.plan, flown))
+def fuel_margins(plan: FlightPlan, written: MissionFile, flown: Marched) -> Array:
+    """Fuel left over the reserves [kg] (members,); minus infinity where there is no flight.
+
+    Less where the tanks run dry before fuel comes aboard.
+    """
+    if not flown.is_settled:
+        return np.full(flown.stop_mass.shape, -np.inf)
+    sums = [add_up(plan, written, flown.integrals, m) for m in range(flown.stop_mass.size)]
+    reserves = np.array([each.reserves for each in sums])
+    margin: Array = flown.stop_mass - plan.stop_empty_mass - plan.parts.added - reserves
+    return np.minimum(margin, _least_aboard(plan, flown))
 
 
 def _least_aboard(plan: FlightPlan, flown: Marched) -> Array:
@@ -75,48 +73,67 @@ def solve_free(
     close: Closure,
     near: Marched | None,
     earlier: Root | None,
+    tolerance: float = TOLERANCE,
 ) -> tuple[Marched, Root]:
     """The free value at which the fuel margin is nothing, and the flight there.
 
-    ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike. Fuel
-    margin is closed to 1e-7 of the fuel burnt. The root's flights are those of both plans.
+    ``near`` is an earlier flight of the same spans, ``earlier`` the root of a plan alike, about
+    which the search begins. Fuel margin is closed to ``tolerance`` of the fuel aboard. The root's
+    flights are those of both.
     """
-    asked = _Asked(world, plan, written, count, close)
-    nothing = np.zeros_like(stop)
-    first = asked.fly(nothing, stop, near)
-    flown = [first]
-    margin = asked.margins(first)
-    least = _least(plan, first)
-    rate = np.maximum(np.sum(_rates(plan, first), axis=0), _LEAST_RATE)
-    burnt = np.sum([fuel[-1] for fuel in first.integrals.fuel], axis=0)
-    guess = least + np.maximum(margin, 0.0) / rate if earlier is None else earlier.value
+    asked = _Asked(world, plan, count, close)
+    flown: list[Marched] = []
 
-    def again(free: Array) -> Array:
-        start = flown[-1] if flown[-1].is_settled else first
-        flown.append(asked.fly(free, start.stop_mass, start))
-        return asked.margins(flown[-1])
+    def margin(free: Array) -> Array:
+        start = next((each for each in reversed(flown) if each.is_settled), None)
+        begin = stop if start is None else start.stop_mass
+        flown.append(asked.fly(free, begin, start or near))
+        return fuel_margins(plan, written, flown[-1])
 
-    tolerance = TOLERANCE * np.maximum(margin + burnt, 1.0)
-    root = largest_with_margin(again, least, guess, tolerance, at_least=margin)
+    search = None if earlier is None else replace(earlier.search, guess=earlier.value)
+    if search is None or earlier is None or not np.all(earlier.has_answer):
+        nothing = np.zeros_like(stop)
+        at_least = margin(nothing)
+        least, first = _least(plan, flown[0]), flown[0]
+        if len(plan.parts.free_legs) > 1:  # the shortest of all of them, which some lengthen
+            at_least = margin(least)
+        search = _search(plan, first, least, at_least, search)
+    root = largest_with_margin(margin, search, tolerance)
+    if not flown:
+        margin(root.value)
     before = 0 if earlier is None else earlier.flights
-    return flown[-1], replace(root, flights=root.flights + before)
+    return flown[-1], replace(root, flights=len(flown) + before)
 
 
 def closed_again(
     world: World, plan: FlightPlan, written: MissionFile, close: Closure, fine: Marched, root: Root
 ) -> tuple[Marched, Root]:
     """The flight with its final nodes closed as its root was with few: by a step or two more."""
-    asked = _Asked(world, plan, written, len(fine.tracks[0].mass), close)
-    burnt = np.sum([fuel[-1] for fuel in fine.integrals.fuel], axis=0)
+    asked = _Asked(world, plan, len(fine.tracks[0].mass), close)
+    rate = fuel_per_free(plan, fine, -1)
     for _ in range(_MOST_STEPS):
-        margin = asked.margins(fine)
-        if not np.all(root.has_answer) or np.all(np.abs(margin) <= TOLERANCE * burnt):
+        margin = fuel_margins(plan, written, fine)
+        is_closed = np.abs(margin) <= TOLERANCE * root.search.aboard
+        if not np.all(root.has_answer) or np.all(is_closed):
             break
-        rate = np.maximum(np.sum(_rates(plan, fine), axis=0), _LEAST_RATE)
         value = root.value + margin / rate
         fine = asked.fly(value, fine.stop_mass, fine)
         root = replace(root, value=value, margin=margin, flights=root.flights + 1)
     return fine, root
+
+
+def _search(
+    plan: FlightPlan, first: Marched, least: Array, at_least: Array, earlier: Search | None
+) -> Search:
+    """Where to look for the root, from a flight of the least there is and the margin [kg] there."""
+    guess = least + np.maximum(at_least, 0.0) / fuel_per_free(plan, first, 0)
+    burnt = np.sum([fuel[-1] for fuel in first.integrals.fuel], axis=0)
+    return Search(
+        least=least,
+        at_least=at_least,
+        guess=guess if earlier is None else earlier.guess,
+        aboard=np.maximum(at_least + burnt, 1.0),
+    )
 
 
 def _least(plan: FlightPlan, flown: Marched) -> Array:
@@ -136,15 +153,15 @@ def _least(plan: FlightPlan, flown: Marched) -> Array:
     return least
 
 
-def _rates(plan: FlightPlan, flown: Marched) -> list[Array]:
-    """Fuel per free metre or second [kg] of each span that stretches, as it begins (members,)."""
-    rates = [np.zeros_like(flown.stop_mass)]
+def fuel_per_free(plan: FlightPlan, flown: Marched, node: int) -> Array:
+    """Fuel per free metre or second [kg] of all that stretches, at a node of it (members,)."""
+    total = np.full_like(flown.stop_mass, _LEAST_RATE)
     for track in flown.tracks:
         if track.nodes is None or not stretches(plan, track.span):
             continue
-        flow, pace = track.nodes.propulsion.fuel_flow[0], track.nodes.rate[0]
-        rates.append(flow / np.where(np.isfinite(pace), np.maximum(pace, 1.0), 1.0))
-    return rates
+        flow, pace = track.nodes.propulsion.fuel_flow[node], track.nodes.rate[node]
+        total += flow / np.where(np.isfinite(pace), np.maximum(pace, 1.0), 1.0)
+    return total
 
 
 def stretches(plan: FlightPlan, span: Span) -> bool:
@@ -162,5 +179,6 @@ def solution_of(written: MissionFile, root: Root | None) -> Solution | None:
         value=float(root.value[0]),
         unit="s" if name.startswith("time") else "m",
         flights=root.flights,
-        has_answer=bool(root.has_answer[0]),
+        has_answer=bool(root.has_answer[0])
+        and abs(root.margin[0]) <= _CLOSED * root.search.aboard[0],
     )

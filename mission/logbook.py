@@ -23,9 +23,14 @@ from mission.results import SegmentLog, Steps, Totals
 Array = NDArray[np.float64]
 
 
-def segment_logs(world: World, plan: FlightPlan, marched: Marched) -> tuple[SegmentLog, ...]:
-    """One log a row, in the order flown; reserves last, on the same clock."""
-    rating_thrust = _rating_thrusts(world, marched)
+def segment_logs(
+    world: World, plan: FlightPlan, marched: Marched, *, in_full: bool = True
+) -> tuple[SegmentLog, ...]:
+    """One log a row, in the order flown; reserves last, on the same clock.
+
+    Without thrust at ratings, which takes an engine call, and impulse where it is not ``in_full``.
+    """
+    rating_thrust = _rating_thrusts(world, marched) if in_full else {}
     logs: list[SegmentLog] = []
     clock = 0.0
     for number, row in enumerate(plan.rows):
@@ -55,14 +60,14 @@ def segment_logs(world: World, plan: FlightPlan, marched: Marched) -> tuple[Segm
                 fuel_left=float(steps.mass[-1]) - row.empty_mass,
                 steps=steps,
                 leg=row.leg,
-                impulse=float(sum(_impulse(marched.tracks[i]) for i in chosen)),
+                impulse=float(sum(_impulse(marched.tracks[i]) for i in chosen if in_full)),
             )
         )
     return tuple(logs)
 
 
-def _sum(sums: list[Array], chosen: list[int]) -> float:
-    return float(sum(sums[i][-1, 0] for i in chosen))
+def _sum(sums: list[Array], chosen: list[int], member: int = 0) -> float:
+    return float(sum(sums[i][-1, member] for i in chosen))
 
 
 def _impulse(track: Track) -> float:
@@ -157,26 +162,27 @@ def totals(
     marched: Marched,
     sums: Sums,
     integration_error: float,
+    member: int = 0,
 ) -> Totals:
-    """Totals of the mission part, after the definitions in DEVELOPERS.md."""
-    spans = plan.parts.mission
+    """Totals of the mission part, after the definitions in DEVELOPERS.md, of one member."""
+    spans, added = plan.parts.mission, float(plan.parts.added[member])
     mission = list(range(len(spans)))
     rows = set(trip_rows(plan))
     trip = [i for i in mission if spans[i].segment in rows]
-    masses = [track.mass[:, 0] for track in marched.tracks]
+    masses = [track.mass[:, member] for track in marched.tracks]
     ramp = float(masses[0][0])
-    left = float(marched.stop_mass[0]) - plan.stop_empty_mass
+    left = float(marched.stop_mass[member]) - plan.stop_empty_mass - added
     return Totals(
         block_fuel=sums.mission_fuel,
         trip_fuel=sums.trip_fuel,
         reserve_fuel=sums.reserves,
-        loaded_fuel=ramp - plan.first_empty_mass,
+        loaded_fuel=ramp - plan.first_empty_mass - added,
         fuel_left=left,
         fuel_margin=left - sums.reserves,
-        block_time=_sum(marched.integrals.time, mission),
-        trip_time=_sum(marched.integrals.time, trip),
-        ground_distance=_sum(marched.integrals.ground, mission),
-        air_distance=_sum(marched.integrals.air, mission),
+        block_time=_sum(marched.integrals.time, mission, member),
+        trip_time=_sum(marched.integrals.time, trip, member),
+        ground_distance=_sum(marched.integrals.ground, mission, member),
+        air_distance=_sum(marched.integrals.air, mission, member),
         ramp_mass=ramp,
         takeoff_mass=float(masses[trip[0]][0]),
         landing_mass=float(masses[trip[-1]][-1]),

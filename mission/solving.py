@@ -17,39 +17,55 @@ Array = NDArray[np.float64]
 Margin = Callable[[Array], Array]
 MOST_FLIGHTS = 12
 TOLERANCE = 1e-7  # of the fuel aboard, to which the margin is closed
-_CLOSED = 10.0  # times the tolerance: a margin that the last flight may be left with
 _LARGEST_GROWTH = 4.0  # of the distance from the least value, while nothing is too much yet
+
+
+@dataclass(frozen=True)
+class Search:
+    """Where to look for roots, arrays (members,).
+
+    Attributes
+    ----------
+    least : value below which there is none
+    at_least : margin there [kg]
+    guess : value to look at first
+    aboard : fuel aboard [kg], of which the margin is to become a small share
+    """
+
+    least: Array
+    at_least: Array
+    guess: Array
+    aboard: Array
 
 
 @dataclass(frozen=True)
 class Root:
     """Free values (members,), the margins there [kg], and how many flights they took.
 
-    ``has_answer`` is False where the margin is negative at the least value already, or where so
-    many flights did not close it.
+    ``has_answer`` is False where the margin is negative at the least value already; ``search`` is
+    what it was looked for with.
     """
 
     value: Array
     margin: Array
     has_answer: NDArray[np.bool_]
     flights: int
+    search: Search
 
 
-def largest_with_margin(
-    margin: Margin, least: Array, guess: Array, tolerance: Array, *, at_least: Array | None = None
-) -> Root:
-    """The value at which a falling margin [kg] is zero, to ``tolerance`` [kg], above ``least``.
+def largest_with_margin(margin: Margin, search: Search, share: float = TOLERANCE) -> Root:
+    """The value at which a falling margin [kg] is zero, to a share of the fuel aboard.
 
     ``margin`` flies all members at once, at values (members,); minus infinity where a flight is
-    impossible. ``at_least`` is the margin at ``least`` where it is known. Guesses are only where to
-    look first.
+    impossible.
     """
-    at_least = margin(least) if at_least is None else at_least
+    least, at_least, tolerance = search.least, search.at_least, share * search.aboard
     low, at_low, high = least.copy(), at_least, np.full_like(least, np.inf)
     last, at_last = low, at_low
-    value = np.where(at_low > 0.0, np.maximum(guess, low), low)
-    found, is_open, flights = at_low, at_low > tolerance, 1
+    following = np.where(at_low > 0.0, np.maximum(search.guess, low), low)
+    value, found, is_open, flights = following, at_low, at_low > tolerance, 0
     while np.any(is_open) and flights < MOST_FLIGHTS:
+        value = following
         there = margin(value)
         flights += 1
         found = np.where(is_open, there, found)
@@ -58,10 +74,10 @@ def largest_with_margin(
         )
         high = np.where(there >= 0.0, high, value)
         is_open &= np.abs(there) > tolerance
-        following = _secant((last, value), (at_last, there), low, high, least)
+        secant = _secant((last, value), (at_last, there), low, high, least)
         last, at_last = value, there
-        value = np.where(is_open, following, value)
-    return Root(value, found, np.abs(found) <= _CLOSED * tolerance, flights)
+        following = np.where(is_open, secant, value)
+    return Root(value, found, at_least >= -tolerance, flights, search)
 
 
 def _secant(

@@ -35,14 +35,14 @@ _HEAVIEST = 1e8  # kg: a mass on its way to nowhere
 class Parts:
     """Spans of the mission and of the reserve flight.
 
-    ``distances`` [m] are what legs have to cover over the ground, by leg; a leg of ``free_legs``
-    covers what the flight is solved for instead. ``added`` (members,) is what members carry on top
-    of the mission's payload [kg].
+    ``distances`` [m] are what legs have to cover over the ground, by leg, one or (members,); a leg
+    of ``free_legs`` covers what the flight is solved for instead. ``added`` (members,) is what
+    members carry on top of the mission's payload [kg].
     """
 
     mission: Sequence[Span]
     reserve: Sequence[Span] = ()
-    distances: Mapping[int, float] = field(default_factory=dict)
+    distances: Mapping[int, float | Array] = field(default_factory=dict)
     free_legs: frozenset[int] = frozenset()
     added: Array = field(default_factory=lambda: np.zeros(1), compare=False)
 

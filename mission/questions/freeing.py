@@ -2,80 +2,114 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from typing import Literal
+
 from engine.errors import InputRefused
 from mission.mission_file import FuelTable, Mission, MissionFile
+from mission.segments import AnySegment
 from mission.segments.cruise import Cruise
+from mission.segments.loading import Release, Turnaround
 from mission.segments.loiter import Loiter
 
 
 def freed(mission: Mission) -> Mission:
-    """The mission to be flown as far as it goes.
+    """The mission to be flown as far as it goes, fuel up to what limits there are.
 
-    Free becomes the radius, or the mission's distance, or that of the leg that is longest, or the
-    longest cruise. Raises :class:`InputRefused` where nothing of that is in the mission.
+    What is free in it stays so. Otherwise free becomes the radius, or the mission's distance, or
+    that of its longest leg, or of its longest cruise over a distance. Raises :class:`InputRefused`
+    where nothing of that is in the mission, or a time is free.
     """
     written = mission.written
-    closed = written.model_copy(
-        update={"fuel": FuelTable(to_take_off_mass="limit"), "segment": _without_free(written)}
-    )
-    if written.radius is not None:
-        opened = closed.model_copy(update={"radius": "free"})
-    elif written.distance is not None:
-        opened = closed.model_copy(update={"distance": "free"})
-    elif any(leg.distance is not None for leg in written.leg):
-        opened = _leg_freed(closed)
-    else:
-        opened = _cruise_freed(mission, closed)
-    return mission.model_copy(update={"written": opened})
+    _refuse_free_time(mission)
+    closed = written.model_copy(update={"fuel": FuelTable(to_take_off_mass="limit")})
+    if written.free:
+        return _with(mission, closed)
+    for name in ("radius", "distance"):
+        if getattr(written, name) is not None:
+            return _with(mission, closed.model_copy(update={name: "free"}))
+    return _with(mission, _longest_freed(mission, closed))
 
 
-def _without_free(written: MissionFile) -> list[object]:
-    """Segments as they are; a loiter that is free has no time of its own to hold."""
-    for segment in written.segment:
+def at_payload(mission: Mission, payload: float) -> Mission:
+    """The mission with another payload [kg]."""
+    return _with(mission, mission.written.model_copy(update={"payload": payload}))
+
+
+def on_station(mission: Mission, station: Loiter, time: float | Literal["free"]) -> Mission:
+    """The mission with another time [s] of a loiter."""
+    segments = [
+        segment.model_copy(update={"time": time}) if segment is station else segment
+        for segment in mission.written.segment
+    ]
+    return _with(mission, mission.written.model_copy(update={"segment": segments}))
+
+
+def at_radius(mission: Mission, radius: float) -> Mission:
+    """The mission with another radius [m]."""
+    return _with(mission, mission.written.model_copy(update={"radius": radius}))
+
+
+def station_of(mission: Mission) -> Loiter | None:
+    """The longest loiter by time, which is the station of a radius mission."""
+    found = [
+        (segment.time, -number, segment)
+        for number, segment in enumerate(mission.written.segment)
+        if isinstance(segment, Loiter) and isinstance(segment.time, float)
+    ]
+    return max(found)[2] if found else None
+
+
+def payload_that_leaves(segments: Sequence[AnySegment]) -> float:
+    """Payload [kg] without which a mission cannot do what it says: released, or taken off."""
+    aboard, least = 0.0, 0.0
+    for segment in segments:
+        if isinstance(segment, Release):
+            aboard -= segment.payload or 0.0
+        elif isinstance(segment, Turnaround):
+            aboard -= segment.payload_off
+        least = min(least, aboard)
+        if isinstance(segment, Turnaround):
+            aboard += segment.payload_on
+    return -least
+
+
+def _with(mission: Mission, written: MissionFile) -> Mission:
+    return mission.model_copy(update={"written": written})
+
+
+def _refuse_free_time(mission: Mission) -> None:
+    for segment in mission.written.segment:
         if isinstance(segment, Loiter) and segment.is_free:
             raise InputRefused(
-                f'time of "{segment.name}" is free, and reach varies the distance; give it a time'
+                "its time is free, and reach varies the distance; give it a time",
+                where=mission.where,
+                key=f'segment "{segment.name}"',
             )
-    return list(written.segment)
 
 
-def _leg_freed(written: MissionFile) -> MissionFile:
-    lengths = [leg.distance if isinstance(leg.distance, float) else 0.0 for leg in written.leg]
-    free = [leg.distance == "free" for leg in written.leg]
-    chosen = free.index(True) if any(free) else lengths.index(max(lengths))
-    legs = [
-        leg.model_copy(update={"distance": "free"}) if i == chosen else leg
-        for i, leg in enumerate(written.leg)
-    ]
-    return written.model_copy(update={"leg": legs})
-
-
-def _cruise_freed(mission: Mission, written: MissionFile) -> MissionFile:
-    """The longest cruise by distance is free."""
-    found = [
-        (segment.distance if isinstance(segment.distance, float) else float("inf"), i)
+def _longest_freed(mission: Mission, written: MissionFile) -> MissionFile:
+    """The longest leg is free, or the longest cruise over a distance."""
+    legs = [(leg.distance, -i) for i, leg in enumerate(written.leg) if _is_length(leg.distance)]
+    cruises = [
+        (segment.distance, -i)
         for i, segment in enumerate(written.segment)
-        if isinstance(segment, Cruise) and segment.distance is not None and not segment.has_steps
+        if isinstance(segment, Cruise) and _is_length(segment.distance)
     ]
-    if not found:
+    if not legs and not cruises:
         raise InputRefused(
             "has no distance, radius or cruise over a distance that could be stretched",
             where=mission.where,
             key="segment",
         )
-    _, chosen = max(found)
-    segments = [
-        segment.model_copy(update={"distance": "free"}) if i == chosen else segment
-        for i, segment in enumerate(written.segment)
+    name, parts = ("leg", written.leg) if legs else ("segment", written.segment)
+    chosen = -max(legs or cruises)[1]
+    changed = [
+        part.model_copy(update={"distance": "free"}) if i == chosen else part
+        for i, part in enumerate(parts)
     ]
-    return written.model_copy(update={"segment": segments})
+    return written.model_copy(update={name: changed})
 
 
-def station_of(mission: Mission) -> str | None:
-    """Name of the longest loiter by time, which is the station of a radius mission."""
-    found = [
-        (segment.time, segment.name)
-        for segment in mission.written.segment
-        if isinstance(segment, Loiter) and isinstance(segment.time, float)
-    ]
-    return max(found)[1] if found else None
+def _is_length(distance: object) -> bool:
+    return isinstance(distance, float)

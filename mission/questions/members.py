@@ -1,226 +1,289 @@
-"""Many flights of one mission at once: each with a payload and a time on station of its own.
+"""Many flights of one mission at once: each with a payload or a radius of its own.
 
-All members march as one batch where their plans are alike. Where levels, paths or steps follow
-mass, members are grouped by the plan that suits them: a choice is made for masses 3 % apart and
-shared by those in between.
+All members march as one batch where no choice of the plan depends on mass. Where levels, steps,
+paths or the end of a cruise-climb follow mass, members are grouped by the plan that suits theirs: a
+few of them tell the masses of the others, and plans are laid again with the masses found.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass, field, fields, is_dataclass, replace
-from math import exp, log
-from typing import Any
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field, replace
+from math import floor
 
 import numpy as np
 from numpy.typing import NDArray
 
+from mission.coverage import refuse_missing_ratings
+from mission.errors import CannotBeFlown
 from mission.free import solve_free
 from mission.fuel_plan import closure
 from mission.march.joints import find_joints
-from mission.march.span import Span
-from mission.march.sweep import Integrals, Marched
+from mission.march.sweep import Marched
 from mission.march.world import World
 from mission.mission_file import Mission
 from mission.plan import FlightPlan, lay_out
-from mission.segments.choices import MASS_THAT_MATTERS, Choices
-from mission.solving import Root
+from mission.questions.one_of_many import unlike
+from mission.questions.shared_choices import Asked, SharedChoices, Token
+from mission.solving import TOLERANCE, Root, Search
 
 Array = NDArray[np.float64]
-_NODES = 5
-_BUCKET = 0.03  # of mass: one choice for members that differ by less
-_SAME_END = 75.0  # m: a cruise-climb's end, shared by members that differ by less
-_MOST_ROUNDS = 5
-
-
-@dataclass
-class SharedChoices(Choices):
-    """Choices shared by members of nearly one mass."""
-
-    shared: dict[tuple[int, str, float], Any] = field(default_factory=dict)
-
-    def at(
-        self,
-        row: int,
-        subject: str,
-        mass: float,
-        choose: Callable[[float], Any],
-        *,
-        end: int = 0,
-        matters: float = MASS_THAT_MATTERS,
-        is_exact: bool = False,
-    ) -> Any:
-        """The choice for the middle of the mass's bucket; for the mass itself where it decides."""
-        middle = mass if is_exact else exp(_BUCKET * round(log(mass) / _BUCKET))
-        key = (row, subject, middle)
-        if key not in self.shared:
-            self.shared[key] = choose(middle)
-        return self.shared[key]
-
-
-@dataclass(frozen=True)
-class Group:
-    """Members of one plan, solved: their indices, what tells the plan, the plan, march and root."""
-
-    members: NDArray[np.int64]
-    key: Any
-    plan: FlightPlan
-    marched: Marched
-    root: Root
-
-    def member(self, place: int) -> tuple[FlightPlan, Marched]:
-        """Plan and march of one of its members alone."""
-        added = float(self.plan.parts.added[place])
-        rows = tuple(replace(row, empty_mass=row.empty_mass + added) for row in self.plan.rows)
-        plan = replace(
-            self.plan,
-            rows=rows,
-            first_empty_mass=self.plan.first_empty_mass + added,
-            parts=replace(self.plan.parts, added=np.zeros(1)),
-        )
-        return plan, _alone(self.marched, place)
+Members = NDArray[np.int64]
+NODES = 5
+SAME_END = 250.0  # m: ends of cruise-climbs that share a plan lie so far above its own at most
+_SCOUTS, _MOST_ROUNDS = 5, 3
+_ROUGHLY = 1e-3  # of the fuel aboard: what scouts are solved to
 
 
 @dataclass(frozen=True)
 class Wanted:
     """What members differ in.
 
-    ``added`` (members,) is payload on top of the mission's [kg]; ``station`` the name of a loiter
-    and (members,) the time of each there [s], if that differs.
+    ``added`` (members,) is payload on top of the mission's [kg]; ``radius`` (members,) the distance
+    of its legs with ``distance = "radius"`` [m], if that differs.
     """
 
     added: Array
-    station: tuple[str, Array] | None = None
+    radius: Array | None = None
+
+
+@dataclass(frozen=True, eq=False)
+class Group:
+    """Members that share a plan, solved.
+
+    Attributes
+    ----------
+    members : indices (k,) among all
+    token : what tells the plan from others
+    plan, marched, root : arrays over these members
+    flights : whole flights that each has taken in all (k,)
+    """
+
+    members: Members
+    token: Token
+    plan: FlightPlan
+    marched: Marched
+    root: Root
+    flights: Members
 
 
 @dataclass(frozen=True)
-class _Known:
-    """Members to solve together, and what is known of them: masses and ends of cruise-climbs."""
+class Solved:
+    """All members: those that could be laid out, by groups, and why the others could not."""
 
-    members: NDArray[np.int64]
+    groups: Sequence[Group]
+    refused: Mapping[int, CannotBeFlown]
+
+
+@dataclass(frozen=True)
+class _Laid:
+    """A plan, the questions it asked, and what tells it from others, before them and after."""
+
+    plan: FlightPlan
+    asked: Sequence[Asked]
+    about: Token
+    token: Token
+
+
+@dataclass(frozen=True)
+class _Seen:
+    """A member as it was flown last: masses by row, ends of cruise-climbs, and its root.
+
+    ``numbers`` are the mass at the stop [kg], the root's value, and its least, margin there and
+    fuel aboard; ``flights`` how many whole flights it took.
+    """
+
     masses: Mapping[int, tuple[float, float]]
     ends: Mapping[int, float]
+    numbers: Array
+    has_answer: bool
+    flights: int
 
 
-def solve_members(mission: Mission, world: World, wanted: Wanted) -> list[Group]:
-    """Every member at the free value that its fuel is enough for, by groups."""
-    choices = SharedChoices()
-    everybody = _Known(np.arange(wanted.added.size), {}, {})
-    groups = [_solved(mission, world, wanted, choices, everybody, None)]
+@dataclass(frozen=True)
+class _Task:
+    """What is solved, the choices made so far, and the plans laid."""
+
+    mission: Mission
+    world: World
+    wanted: Wanted
+    choices: SharedChoices = field(default_factory=SharedChoices)
+    laid: list[_Laid] = field(default_factory=list)
+
+    def plan(self, masses: Mapping[int, tuple[float, float]], ends: Mapping[int, float]) -> _Laid:
+        """The plan for some masses, one laid before if it suits them."""
+        shared = {row: SAME_END * floor(end / SAME_END) for row, end in ends.items()}
+        about = (bool(masses), *sorted(shared.items()))
+        for known in self.laid:
+            if known.about == about and self.choices.suit(known.asked, masses):
+                return known
+        self.choices.begin(about)
+        plan = lay_out(self.mission, self.world, masses, shared, self.choices)
+        refuse_missing_ratings(self.mission, plan, self.world.engine)
+        self.laid.append(_Laid(plan, self.choices.asked, about, self.choices.token))
+        return self.laid[-1]
+
+
+def first_plan(mission: Mission, world: World) -> FlightPlan:
+    """The plan of a mission before any mass is known."""
+    return lay_out(mission, world, {}, {}, SharedChoices())
+
+
+def solve_members(
+    mission: Mission, world: World, wanted: Wanted, tolerance: float = TOLERANCE
+) -> Solved:
+    """Every member at the free value that its fuel is enough for, to a share of that aboard.
+
+    Raises :class:`engine.errors.InputRefused` for a mission that cannot be laid out at any mass; a
+    member that cannot at its own is ``refused``.
+    """
+    task = _Task(mission, world, wanted)
+    first, count = task.plan({}, {}), wanted.added.size
+    if not first.asked and not first.plan.has_cruise_climb:
+        return Solved(_solved(task, first, np.arange(count), {}, tolerance), {})
+    scouts = np.unique(np.linspace(0, count - 1, _SCOUTS).round().astype(np.int64))
+    groups: list[Group] = []
+    seen = _between(_seen(_solved(task, first, scouts, {}, _ROUGHLY)), count)
+    refused: dict[int, CannotBeFlown] = {}
     for _ in range(_MOST_ROUNDS):
-        if not choices.shared and not _ends(_alone(groups[0].marched, 0)):
-            break
-        known = {group.key: group for group in groups}
-        following = []
-        for key, asked in _regrouped(mission, world, choices, groups).items():
-            same = known.get(key)
-            if same is None or not np.array_equal(same.members, asked.members):
-                near = _holding(groups, int(asked.members[0]))
-                same = _solved(mission, world, wanted, choices, asked, near)
-            following.append(same)
+        following: list[Group] = []
+        for laid, members in _by_plan(task, seen, refused):
+            same = [g for g in groups if g.token == laid.token and set(g.members) <= set(members)]
+            if sum(g.members.size for g in same) != members.size:
+                same = _solved(task, laid, members, seen, tolerance)
+            following += same
         is_at_rest = all(group in groups for group in following)
-        groups = following
+        groups, seen = following, _seen(following)
         if is_at_rest:
             break
-    return groups
+    return Solved(groups, refused)
 
 
-def _holding(groups: Sequence[Group], member: int) -> Group:
-    """The group that holds a member."""
-    return next(group for group in groups if member in group.members)
+def _by_plan(
+    task: _Task, seen: Mapping[int, _Seen], refused: dict[int, CannotBeFlown]
+) -> list[tuple[_Laid, Members]]:
+    """Members by the plan that suits their masses; those that none suits go to ``refused``."""
+    found: dict[Token, tuple[_Laid, list[int]]] = {}
+    for member, known in seen.items():
+        try:
+            laid = task.plan(known.masses, known.ends)
+        except CannotBeFlown as refusal:
+            refused[member] = refusal
+        else:
+            found.setdefault(laid.token, (laid, []))[1].append(member)
+    return [(laid, np.array(sorted(members))) for laid, members in found.values()]
 
 
 def _solved(
-    mission: Mission,
-    world: World,
-    wanted: Wanted,
-    choices: Choices,
-    known: _Known,
-    near: Group | None,
+    task: _Task,
+    laid: _Laid,
+    members: Members,
+    seen: Mapping[int, _Seen],
+    tolerance: float,
+) -> list[Group]:
+    """Members of one plan solved in one batch, once more apart where they cannot share it."""
+    group = _batch(task, laid, members, seen, tolerance)
+    parts = unlike(group.marched)
+    if len(parts) == 1:
+        return [group]
+    near = {**seen, **_seen([group])} if group.marched.is_settled else seen
+    return [_batch(task, laid, members[part], near, tolerance) for part in parts]
+
+
+def _batch(
+    task: _Task, laid: _Laid, members: Members, seen: Mapping[int, _Seen], tolerance: float
 ) -> Group:
-    """Members of one plan, solved in one batch."""
-    whole = lay_out(mission, world, known.masses, known.ends, choices)
-    plan = _with_station(whole, wanted, known)
-    joints = find_joints(world, [*plan.parts.mission, *plan.parts.reserve])
-    spans = joints.cut()
+    """Members of one plan solved in one batch, from where they were seen if they were."""
+    plan = _for_members(task, laid.plan, members)
+    known = [seen[member] for member in members if member in seen]
+    guess, earlier = plan.stop_empty_mass * 1.1 + plan.parts.added, None
+    if known:
+        guess, value, least, at_least, aboard = np.array([each.numbers for each in known]).T
+        has_answer = np.array([each.has_answer for each in known])
+        earlier = Root(value, at_least, has_answer, 0, Search(least, at_least, value, aboard))
+    written = task.mission.written
+    close = closure(plan, written)
+    marched, root = solve_free(
+        task.world, plan, written, NODES, guess, close, None, earlier, tolerance
+    )
+    flights = root.flights + np.array([each.flights for each in known] or [0])
+    return Group(members, laid.token, plan, marched, root, np.broadcast_to(flights, members.shape))
+
+
+def _for_members(task: _Task, plan: FlightPlan, members: Members) -> FlightPlan:
+    """A plan cut where the engine has kinks, with what members carry and how far they go."""
+    spans = find_joints(task.world, [*plan.parts.mission, *plan.parts.reserve]).cut()
+    distances: dict[int, float | Array] = dict(plan.parts.distances)
+    if task.wanted.radius is not None:
+        legs = enumerate(task.mission.written.leg)
+        own = task.wanted.radius[members]
+        distances |= {number: own for number, leg in legs if leg.distance == "radius"}
     parts = replace(
         plan.parts,
         mission=tuple(span for span in spans if not span.is_reserve),
         reserve=tuple(span for span in spans if span.is_reserve),
-        added=wanted.added[known.members],
+        distances=distances,
+        added=task.wanted.added[members],
     )
-    plan = replace(plan, parts=parts)
-    guess = plan.stop_empty_mass * 1.1 + parts.added
-    if near is not None:
-        guess = np.full(parts.added.size, float(np.mean(near.marched.stop_mass)))
-    marched, root = solve_free(
-        world, plan, mission.written, _NODES, guess, closure(plan, mission.written), None, None
-    )
-    return Group(known.members, _key(whole), plan, marched, root)
+    return replace(plan, parts=parts)
 
 
-def _with_station(plan: FlightPlan, wanted: Wanted, known: _Known) -> FlightPlan:
-    """The plan with each member's own time on station."""
-    if wanted.station is None:
-        return plan
-    name, times = wanted.station
-    rows = [i for i, row in enumerate(plan.rows) if (row.name, row.kind) == (name, "loiter")]
-    mission = tuple(
-        replace(span, extent=times[known.members]) if span.segment in rows else span
-        for span in plan.parts.mission
-    )
-    return replace(plan, parts=replace(plan.parts, mission=mission))
-
-
-def _regrouped(
-    mission: Mission, world: World, choices: Choices, groups: Sequence[Group]
-) -> dict[Any, _Known]:
-    """All members by the plan that suits their masses."""
-    found: dict[Any, list[tuple[int, _Known]]] = {}
-    for group in groups:
-        for place, member in enumerate(group.members):
-            alone = _alone(group.marched, place)
-            masses = alone.row_masses
-            known = _Known(np.array([member]), masses, _ends(alone))
-            choices.counts.clear()  # of the member before
-            plan = lay_out(mission, world, masses, known.ends, choices)
-            found.setdefault(_key(plan), []).append((int(member), known))
+def _seen(groups: Sequence[Group]) -> dict[int, _Seen]:
+    """All members as they were flown."""
     return {
-        key: _Known(np.array(sorted(m for m, _ in same)), same[0][1].masses, same[0][1].ends)
-        for key, same in found.items()
+        int(member): _of_member(group, place)
+        for group in groups
+        for place, member in enumerate(group.members)
     }
 
 
-def _ends(marched: Marched) -> dict[int, float]:
-    """Pressure altitude [m] at which each cruise-climb ends, by row, as members share it."""
-    return {
-        track.span.segment: _SAME_END
-        * round(float(track.nodes.flight.pressure_altitude[-1, 0]) / _SAME_END)
-        for track in marched.tracks
-        if track.span.holds_lift_coefficient and track.nodes is not None
-    }
-
-
-def _key(plan: FlightPlan) -> Any:
-    """What tells plans apart: segments, marches, where they begin and end, and paths."""
-    return tuple(
-        (s.segment, s.march, s.start_altitude, s.end_altitude, s.end_mass, id(s.path))
-        for s in (*plan.parts.mission, *plan.parts.reserve)
+def _of_member(group: Group, place: int) -> _Seen:
+    root, search = group.root, group.root.search
+    masses: dict[int, tuple[float, float]] = {}
+    ends: dict[int, float] = {}
+    for track in group.marched.tracks:
+        row = track.span.segment
+        start = masses[row][0] if row in masses else float(track.mass[0, place])
+        masses[row] = (start, float(track.mass[-1, place]))
+        if track.span.holds_lift_coefficient and track.nodes is not None:
+            ends[row] = float(track.nodes.flight.pressure_altitude[-1, place])
+    numbers = (group.marched.stop_mass, root.value, search.least, search.at_least, search.aboard)
+    return _Seen(
+        masses,
+        ends,
+        np.array([array[place] for array in numbers]),
+        bool(root.has_answer[place]),
+        int(group.flights[place]),
     )
 
 
-def _alone(marched: Marched, place: int) -> Marched:
-    """One member of a march alone."""
+def _between(scouts: Mapping[int, _Seen], count: int) -> dict[int, _Seen]:
+    """All members, from a few of one plan on straight lines between them."""
+    known = sorted(scouts)
+    found: dict[int, _Seen] = {}
+    for member in range(count):
+        after = min(max(int(np.searchsorted(known, member)), 1), len(known) - 1)
+        low, high = known[after - 1], known[after]
+        share = (member - low) / (high - low) if high > low else 0.0
+        found[member] = _mean(scouts[low], scouts[high], share, scouts.get(member))
+    return found
 
-    def own(value: Any) -> Any:
-        if isinstance(value, np.ndarray):
-            return value[..., place : place + 1] if value.shape[-1:] != (1,) else value
-        if is_dataclass(value) and not isinstance(value, Span | type):
-            return replace(value, **{f.name: own(getattr(value, f.name)) for f in fields(value)})
-        return value
 
-    tracks = [own(track) for track in marched.tracks]
-    sums = Integrals(
-        *([own(array) for array in getattr(marched.integrals, f.name)] for f in fields(Integrals))
+def _mean(low: _Seen, high: _Seen, share: float, own: _Seen | None) -> _Seen:
+    """A member at a share of the way from one to another; itself where it was flown."""
+    if own is not None:
+        return own
+
+    def mean(a: float, b: float) -> float:
+        return a + share * (b - a)
+
+    return _Seen(
+        masses={
+            row: (mean(a[0], high.masses[row][0]), mean(a[1], high.masses[row][1]))
+            for row, a in low.masses.items()
+        },
+        ends={row: mean(end, high.ends[row]) for row, end in low.ends.items()},
+        numbers=low.numbers + share * (high.numbers - low.numbers),
+        has_answer=low.has_answer and high.has_answer,
+        flights=0,
     )
-    return replace(marched, tracks=tracks, integrals=sums, stop_mass=own(marched.stop_mass))

@@ -1,36 +1,44 @@
 """How far with what payload, or for how long on station: the boundary of a mission.
 
 Payload-range: at every payload all the fuel that tanks, ramp mass and take-off mass allow is
-loaded, and flown but for the reserves. The corners are the greatest payload, the tanks full at
-take-off mass, and no payload (ferry): common practice, no source. Radius against time on station
-likewise, at the mission's own payload.
+loaded, and flown but for the reserves. Time on station against radius likewise, at the mission's
+own payload.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
-from typing import Any
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from engine.errors import InputRefused
 from engine.interface import Engine
-from mission.aircraft import Aircraft, governing_tank_limit
-from mission.coverage import refuse_missing_ratings, refuse_other_day
+from mission.aircraft import Aircraft
+from mission.coverage import refuse_other_day
 from mission.errors import CannotBeFlown
-from mission.fuel_plan import add_up
-from mission.limits import first_failure
-from mission.logbook import segment_logs, totals
 from mission.march.world import World
 from mission.mission_file import Mission
-from mission.questions.freeing import freed, station_of
-from mission.questions.members import Group, Wanted, solve_members
+from mission.plan import FlightPlan
+from mission.questions.freeing import (
+    at_payload,
+    at_radius,
+    freed,
+    on_station,
+    payload_that_leaves,
+    station_of,
+)
+from mission.questions.members import Solved, Wanted, first_plan, solve_members
+from mission.questions.payload_corners import governing, loads_of, refuse_below
+from mission.questions.results_of_members import Result, greatest_error, results_of
 from mission.results import Failure, Totals
+from mission.segments.loiter import Loiter
 
 Array = NDArray[np.float64]
-POINTS = 40
-_ROUNDS = 4  # in which the greatest payload comes down to what landing mass allows
-_SAME_MASS = 0.5  # kg
+POINTS, FEWEST, MOST = 40, 9, 400
+_INSIDE = 1e-4  # of the least and the greatest radius, by which points stay between them
+_ROUGHLY = 1e-5  # of the fuel aboard, to which the greatest radius is found
+_BELOW_LANDING = 0.05  # kg, by which a payload stays below what landing mass allows
 
 
 @dataclass(frozen=True)
@@ -41,235 +49,221 @@ class Point:
     ----------
     payload : [kg]
     station_time : [s] at the station of a radius mission
-    reach : ground distance or radius [m]
-    totals : of the whole flight
-    governs : the limit that bounds the fuel loaded
+    reach : ground distance, or radius [m]
+    totals : of the whole flight; None where it could not even be laid out
+    governs : the limits that bound the fuel loaded, more than one at a corner
     corner : its name where it is a corner, else empty
-    failure : why the flight cannot be flown, None where it can
+    failure : why the flight cannot be flown, in words where it could not be laid out; else None
     """
 
     payload: float
     station_time: float
     reach: float
-    totals: Totals
-    governs: str
+    totals: Totals | None
+    governs: tuple[str, ...]
     corner: str
-    failure: Failure | None
+    failure: Failure | str | None
+
+    @property
+    def is_flown(self) -> bool:
+        """Whether this can be flown."""
+        return self.failure is None
 
 
 @dataclass(frozen=True)
 class Reach:
-    """The boundary in the order of falling payload, or of rising time on station.
+    """The boundary in the order of rising reach.
 
-    ``top`` says what bounds the first point's payload; ``flights`` how many whole flights a point
-    took; ``groups`` how many plans the points share; ``is_radius`` that reach is a radius.
+    Attributes
+    ----------
+    top : what bounds the first point's payload; empty where payload is the mission's own
+    is_radius : reach is a radius, not a ground distance
+    station : name of the loiter whose time varies; empty where payload does
+    error : greatest change with twice the steps, of reach [m], of time on station [s] where that
+        varies
+    unclosed : points whose fuel the search left unspent
+    flights : whole flights that a point took at the most
+    plans : how many plans the points share
     """
 
     mission: str
     aircraft: str
     engine: str
+    day: float
     points: tuple[Point, ...]
     top: str
     is_radius: bool
     station: str
+    error: float
+    unclosed: int
     flights: int
-    groups: int
+    plans: int
 
     @property
     def corners(self) -> tuple[Point, ...]:
         """The corners alone."""
         return tuple(point for point in self.points if point.corner)
 
+    @property
+    def flown(self) -> tuple[Point, ...]:
+        """What can be flown."""
+        return tuple(point for point in self.points if point.is_flown)
+
+
+@dataclass(frozen=True)
+class _Asked:
+    """Points before they are flown: payloads [kg] and radii [m] (count,), names of corners.
+
+    Radii are None where they are what is solved for.
+    """
+
+    mission: Mission
+    world: World
+    payloads: Array
+    radii: Array | None
+    corners: dict[int, str]
+    plan: FlightPlan
+    top: str = ""
+    station: str = ""
+
 
 def reach(mission: Mission, aircraft: Aircraft, engine: Engine, *, points: int = POINTS) -> Reach:
     """The boundary of a mission with an aircraft and an engine.
 
     Raises :class:`engine.errors.InputRefused` for a mission that has nothing to stretch,
-    :class:`mission.errors.CannotBeFlown` where no payload leaves fuel for the least distance.
+    :class:`mission.errors.CannotBeFlown` where no point has fuel for the least distance.
     """
+    if not FEWEST <= points <= MOST:
+        raise InputRefused(f"= {points}; allowed are {FEWEST} to {MOST}", key="points")
     refuse_other_day(mission, engine)
-    open_mission = freed(mission)
-    world = World(aircraft, engine)
-    if open_mission.written.radius == "free":
-        return _radius(open_mission, world, points)
-    return _payload_range(open_mission, world, points)
-
-
-def _payload_range(mission: Mission, world: World, count: int) -> Reach:
-    aircraft, written = world.aircraft, mission.written
-    first = _flown(mission, world, np.array([0.0]))
-    others = first.empty - written.payload
-    by_zero_fuel = aircraft.maximum_zero_fuel_mass - others
-    most, top = by_zero_fuel, "zero-fuel mass"
-    found = first
-    payloads = np.array([0.0])
-    for _ in range(_ROUNDS):
-        payloads = _payloads(most, first, aircraft, count)
-        found = _flown(mission, world, payloads)
-        over = found.totals[0].landing_mass - aircraft.maximum_landing_mass
-        if over <= _SAME_MASS:
-            break
-        most, top = most - over, "landing mass"
-    names = _corner_names(payloads, most, first.full_tanks_payload)
-    return _reach_of(mission, world, found, payloads, np.zeros(payloads.size), names, top)
-
-
-def _payloads(most: float, first: _Flown, aircraft: Aircraft, count: int) -> Array:
-    """Payloads [kg] from the greatest to none, the corner with full tanks exactly among them."""
-    if most <= 0.0:
-        raise CannotBeFlown(
-            f"no payload is left: {aircraft.name} is at its greatest zero-fuel or landing mass "
-            "without any"
-        )
-    corner = first.full_tanks_payload
-    if not 0.0 < corner < most:
-        return np.linspace(most, 0.0, count)
-    before = min(max(round(count * (most - corner) / most), 4), count - 4)
-    return np.concatenate(
-        [np.linspace(most, corner, before), np.linspace(corner, 0.0, count - before + 1)[1:]]
-    )
-
-
-def _corner_names(payloads: Array, most: float, full_tanks: float) -> list[str]:
-    names = [""] * payloads.size
-    names[0], names[-1] = "greatest payload", "ferry, no payload"
-    if 0.0 < full_tanks < most:
-        names[int(np.argmin(np.abs(payloads - full_tanks)))] = "tanks full"
-    return names
-
-
-@dataclass(frozen=True)
-class _Flown:
-    """Members flown: groups, totals and failures in the members' order.
-
-    ``empty`` is the mission's mass without usable fuel [kg]; ``full_tanks_payload`` the payload at
-    which full tanks meet take-off or ramp mass [kg].
-    """
-
-    groups: list[Group]
-    totals: list[Totals]
-    failures: list[Failure | None]
-    values: Array
-    has_answer: NDArray[np.bool_]
-    empty: float
-    full_tanks_payload: float
-
-
-def _flown(
-    mission: Mission,
-    world: World,
-    payloads: Array,
-    station: tuple[str, Array] | None = None,
-) -> _Flown:
-    """Every payload [kg] flown as far as its fuel goes."""
-    written = mission.written
-    wanted = Wanted(payloads - written.payload, station)
-    groups = solve_members(mission, world, wanted)
-    count = payloads.size
-    sums: list[Any] = [None] * count
-    failures: list[Failure | None] = [None] * count
-    values, has_answer = np.zeros(count), np.zeros(count, dtype=bool)
-    for group in groups:
-        refuse_missing_ratings(mission, group.plan, world.engine)
-        for place, member in enumerate(group.members):
-            plan, alone = group.member(place)
-            total = totals(plan, alone, add_up(plan, written, alone.integrals), 0.0)
-            logs = segment_logs(world, plan, alone)
-            failures[member] = first_failure(world, plan, alone, written, total, logs, closes=True)
-            sums[member] = total
-            values[member] = group.root.value[place]
-            has_answer[member] = group.root.has_answer[place]
-    plan = groups[0].plan
-    taxi = sums[0].ramp_mass - sums[0].takeoff_mass
-    to_limit = min(world.aircraft.maximum_take_off_mass + taxi, plan.most_ramp_mass)
-    return _Flown(
-        groups, sums, failures, values, has_answer, plan.first_empty_mass,
-        to_limit - (plan.first_empty_mass - written.payload) - plan.most_fuel,
-    )  # fmt: skip
-
-
-def _radius(mission: Mission, world: World, count: int) -> Reach:
-    """Radius against time on station: from no time to all the time there is at no radius."""
-    station = station_of(mission)
-    payload = np.array([mission.written.payload])
+    opened, world = freed(mission), World(aircraft, engine)
+    station = station_of(opened) if opened.written.radius == "free" else None
     if station is None:
-        found = _flown(mission, world, payload)
-        return _reach_of(mission, world, found, payload, np.zeros(1), ["radius"], "payload")
-    longest = _longest_time(mission, world, station)
-    times = np.linspace(0.0, longest, count)
-    payloads = np.full(count, mission.written.payload)
-    found = _flown(mission, world, payloads, (station, np.maximum(times, 1.0)))
-    names = [""] * count
-    names[0], names[-1] = "no time on station", "longest on station"
-    made = _reach_of(mission, world, found, payloads, times, names, "payload")
-    return replace(made, station=station)
+        return _by_payload(opened, world, points)
+    return _by_radius(opened, world, station, points)
 
 
-def _longest_time(mission: Mission, world: World, station: str) -> float:
-    """Time on station [s] that is left at the least radius, by chords of the margin there."""
-    payload = np.array([mission.written.payload])
-    low, high = 0.0, 3600.0
-    for _ in range(6):
-        found = _flown(mission, world, payload, (station, np.array([high])))
-        if not found.has_answer[0]:
-            break
-        low, high = high, 2.0 * high
-    for _ in range(10):
-        middle = 0.5 * (low + high)
-        found = _flown(mission, world, payload, (station, np.array([middle])))
-        low, high = (middle, high) if found.has_answer[0] else (low, middle)
-    return low
+def _by_payload(mission: Mission, world: World, count: int) -> Reach:
+    """Reach against payload, from the greatest to the least.
+
+    Where the landing mass bounds it the greatest payload is found from the masses of the first
+    boundary flown.
+    """
+    least = payload_that_leaves(mission.written.segment)
+    bare = at_payload(mission, least)
+    plan = first_plan(bare, world)
+    loads = loads_of(world, plan, least)
+
+    def asked_up_to(most: float, top: str) -> _Asked:
+        payloads = loads.spread(most, count)
+        corners = {
+            int(np.argmin(np.abs(payloads - payload))): name
+            for payload, name in loads.corners(most).items()
+        }
+        return _Asked(bare, world, payloads, None, corners, plan, top)
+
+    asked = asked_up_to(loads.by_zero_fuel, "zero-fuel mass")
+    solved = solve_members(bare, world, Wanted(asked.payloads - least))
+    results = results_of(bare, world, solved)
+    most = _most_by_landing(asked, results)
+    if most is not None:
+        refuse_below(most, least, "landing mass")
+        asked = asked_up_to(most, "landing mass")
+        solved = solve_members(bare, world, Wanted(asked.payloads - least))
+        results = results_of(bare, world, solved)
+    return _reach(asked, solved, results)
 
 
-def _reach_of(
-    mission: Mission,
-    world: World,
-    found: _Flown,
-    payloads: Array,
-    times: Array,
-    names: list[str],
-    top: str,
-) -> Reach:
-    """The boundary from flown members."""
-    if not found.has_answer.any():
-        total = found.totals[0]
-        raise CannotBeFlown(
-            f"no distance is short enough: {-total.fuel_margin:,.0f} kg of fuel are missing at the "
-            "least; carry less, or take larger tanks"
-        )
-    is_radius = mission.written.radius == "free"
-    points = tuple(
-        Point(
-            payload=float(payloads[i]),
-            station_time=float(times[i]),
-            reach=float(found.values[i]) if is_radius else found.totals[i].ground_distance,
-            totals=found.totals[i],
-            governs=_governs(world, found, found.totals[i]),
-            corner=names[i],
-            failure=found.failures[i],
-        )
-        for i in range(payloads.size)
+def _most_by_landing(asked: _Asked, results: list[Result | CannotBeFlown]) -> float | None:
+    """The payload [kg] that lands at the greatest landing mass, where the greatest lands above."""
+    known = [
+        (found.totals.landing_mass, float(payload))
+        for found, payload in zip(results, asked.payloads, strict=True)
+        if isinstance(found, Result)
+    ]
+    masses, payloads = np.array(known[::-1]).T
+    limit = asked.world.aircraft.maximum_landing_mass
+    if masses[-1] <= limit:
+        return None
+    if masses[0] > limit:
+        return float(payloads[0] - (masses[0] - limit))
+    return float(np.interp(limit, masses, payloads)) - _BELOW_LANDING
+
+
+def _by_radius(mission: Mission, world: World, station: Loiter, count: int) -> Reach:
+    """Time on station against radius: from the least radius to that which leaves no time."""
+    alone = Wanted(np.zeros(1))
+    passes = on_station(mission, station, 0.0)
+    farthest = results_of(passes, world, solve_members(passes, world, alone, _ROUGHLY))[0]
+    _refuse_no_answer([farthest])
+    assert isinstance(farthest, Result)
+    low, high = farthest.least * (1.0 + _INSIDE), farthest.free * (1.0 - _INSIDE)
+    radii = np.linspace(low, max(low, high), count)
+    stays = at_radius(on_station(mission, station, "free"), farthest.least)
+    solved = solve_members(stays, world, Wanted(np.zeros(count), radii))
+    asked = _Asked(
+        stays,
+        world,
+        np.full(count, mission.written.payload),
+        radii,
+        {0: "longest on station", count - 1: "no time on station"},
+        first_plan(stays, world),
+        station=station.name,
     )
+    return _reach(asked, solved, results_of(stays, world, solved), farthest.flights)
+
+
+def _reach(
+    asked: _Asked, solved: Solved, results: list[Result | CannotBeFlown], before: int = 0
+) -> Reach:
+    """The boundary from flown members, ``before`` of whose flights were for something else."""
+    _refuse_no_answer(results)
+    flown = [found for found in results if isinstance(found, Result)]
+    world = asked.world
+    points = tuple(_point(asked, i, found) for i, found in enumerate(results))
+    can_be_flown = [i for i, point in enumerate(points) if point.is_flown]
     return Reach(
-        mission=mission.name,
+        mission=asked.mission.name,
         aircraft=world.aircraft.name,
         engine=world.engine.name,
+        day=asked.mission.written.day,
         points=points,
-        top=top,
-        is_radius=is_radius,
-        station="",
-        flights=max(group.root.flights for group in found.groups),
-        groups=len(found.groups),
+        top=asked.top,
+        is_radius=asked.mission.written.radius is not None,
+        station=asked.station,
+        error=greatest_error(asked.mission, world, solved, can_be_flown),
+        unclosed=sum(not found.is_closed for found in flown if found.has_answer),
+        flights=max(found.flights for found in flown) + before + 1,
+        plans=len(solved.groups),
     )
 
 
-def _governs(world: World, found: _Flown, total: Totals) -> str:
-    """What bounds the fuel that is loaded."""
-    aircraft, plan = world.aircraft, found.groups[0].plan
-    rooms = {
-        "take-off mass": aircraft.maximum_take_off_mass - total.takeoff_mass,
-        "ramp mass": aircraft.maximum_ramp_mass - total.ramp_mass,
-        f"tank {governing_tank_limit(aircraft, world.engine.fuel)}": plan.most_fuel
-        - total.loaded_fuel,
-    }
-    return min(rooms, key=lambda name: abs(rooms[name]))
+def _point(asked: _Asked, place: int, found: Result | CannotBeFlown) -> Point:
+    payload, corner = float(asked.payloads[place]), asked.corners.get(place, "")
+    radius = None if asked.radii is None else float(asked.radii[place])
+    if isinstance(found, CannotBeFlown):
+        return Point(payload, 0.0, radius or 0.0, None, (), corner, found.what)
+    far = found.free if asked.mission.written.radius == "free" else found.totals.ground_distance
+    return Point(
+        payload=payload,
+        station_time=0.0 if radius is None else found.free,
+        reach=far if radius is None else radius,
+        totals=found.totals,
+        governs=governing(asked.world, asked.plan, found.totals),
+        corner=corner,
+        failure=found.failure,
+    )
+
+
+def _refuse_no_answer(results: list[Result | CannotBeFlown]) -> None:
+    """Refuse where none has fuel for the least distance, naming the least that is missing."""
+    flown = [found for found in results if isinstance(found, Result)]
+    if not flown:
+        raise next(found for found in results[::-1] if isinstance(found, CannotBeFlown))
+    if any(found.has_answer for found in flown):
+        return
+    missing = min(-found.totals.fuel_margin for found in flown)
+    raise CannotBeFlown(
+        f"no distance is short enough: {missing:,.0f} kg of fuel are missing at the least; carry "
+        "less, keep smaller reserves, or take larger tanks"
+    )

@@ -70,6 +70,12 @@ class Choices:
         chosen: _Choice = known.value
         return chosen
 
+    def no_more(self, row: int, subject: str, count: int) -> int:
+        """A count, or the least that it has been in earlier plans."""
+        least = min(count, self.counts.get((row, subject), count))
+        self.counts[row, subject] = least
+        return least
+
     @property
     def has_any(self) -> bool:
         """Whether anything was chosen."""

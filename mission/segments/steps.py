@@ -71,10 +71,7 @@ def _count(
         return 0
     rises = np.diff(levels)
     ends = [m * (1.0 - _AHEAD * rise) for (m, _), rise in zip(chosen, rises, strict=False)]
-    most = here.choices.counts.get((here.row, place), len(ends))
-    count = min(int(sum(end > mass for end in ends)), most)
-    here.choices.counts[here.row, place] = count
-    return count
+    return here.choices.no_more(here.row, place, int(sum(end > mass for end in ends)))
 
 
 def _at(span: Span, altitude: float) -> Span:
