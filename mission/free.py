@@ -174,11 +174,11 @@ def solution_of(written: MissionFile, root: Root | None) -> Solution | None:
     if root is None:
         return None
     name = written.free[0]
+    is_closed = abs(root.margin[0]) <= _CLOSED * root.search.aboard[0]
     return Solution(
         name=name,
         value=float(root.value[0]),
         unit="s" if name.startswith("time") else "m",
         flights=root.flights,
-        has_answer=bool(root.has_answer[0])
-        and abs(root.margin[0]) <= _CLOSED * root.search.aboard[0],
+        has_answer=bool(root.has_answer[0] and is_closed),
     )
