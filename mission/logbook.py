@@ -13,7 +13,7 @@ from mission.fuel_plan import Sums, trip_rows
 from mission.march.asking import Request, ask
 from mission.march.level import airframe_drag
 from mission.march.nodes import integration_matrix
-from mission.march.outcomes import dead_drag
+from mission.march.outcomes import dead_drag_along
 from mission.march.sweep import Marched
 from mission.march.tracks import Track
 from mission.march.world import World
@@ -108,7 +108,7 @@ def _steps(
 
     resistance = nodes.drag
     if track.span.march == "turn":
-        resistance = dead_drag(track) + airframe_drag(
+        resistance = dead_drag_along(track) + airframe_drag(
             track.span, world, flight, track.mass * STANDARD_GRAVITY
         )
     thrust = column(propulsion.thrust)

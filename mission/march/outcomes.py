@@ -12,6 +12,7 @@ from engine.quantities import STANDARD_GRAVITY
 from mission.forces import drag, path_angle_sine
 from mission.march import energy, level, seeking, throttled, turning
 from mission.march.asking import join
+from mission.march.dead_engines import dead_drag
 from mission.march.span import Propulsion
 from mission.march.tracks import Track
 from mission.march.world import World
@@ -38,7 +39,7 @@ class Slopes:
         aircraft = world.aircraft
         mass = np.concatenate([track.mass for track in self.tracks])
         near = np.concatenate([track.sine for track in self.tracks if track.sine is not None])
-        dead = np.concatenate([dead_drag(track) for track in self.tracks])
+        dead = np.concatenate([dead_drag_along(track) for track in self.tracks])
         thrust = np.concatenate([_thrust(world, track) for track in self.tracks])
         sine = path_angle_sine(
             aircraft, self.flight, mass, thrust - dead, self.factor, near,
@@ -58,10 +59,10 @@ class Slopes:
             track.sine, track.drag = own_sine, own_drag
 
 
-def dead_drag(track: Track) -> Array:
+def dead_drag_along(track: Track) -> Array:
     """Drag [N] of the engines that do not run, at the nodes."""
-    dead: Array = np.zeros((1, 1)) if track.dead_drag is None else track.dead_drag
-    return np.broadcast_to(dead, track.mass.shape)
+    assert track.flight is not None
+    return np.broadcast_to(dead_drag(track, track.flight), track.mass.shape)
 
 
 def _thrust(world: World, track: Track) -> Array:
@@ -102,7 +103,7 @@ def set_nodes(world: World, track: Track, rest: Array, free: Array, added: Array
         return
     assert track.flight is not None
     propulsion = _propulsion(world, track)
-    dead = dead_drag(track)
+    dead = dead_drag_along(track)
     if track.is_level and span.march != "turn":
         extent = _extent(track, rest, free, added)
         lift = mass * STANDARD_GRAVITY
@@ -158,8 +159,6 @@ def _propulsion(world: World, track: Track) -> Propulsion:
         own = seeking.own_row(span)
         _seek(world, track, flow, thrust * running)
         flow, thrust, outcome, held_by = flow[own], thrust[own], outcome[own], held_by[own]
-        if track.dead_drag is not None and track.dead_drag.ndim > mass.ndim:
-            track.dead_drag, track.dead_mach = track.dead_drag[own], None
     return Propulsion(
         np.broadcast_to(thrust * running, mass.shape),
         np.broadcast_to(flow, mass.shape),
@@ -175,9 +174,7 @@ def _seek(world: World, track: Track, flow: Array, thrust: Array) -> None:
     best = track.mach if track.best is None else track.best
     asked = seeking.stencil(span, track.air, track.mach, best)
     lift = track.mass * STANDARD_GRAVITY
-    resistance = level.airframe_drag(span, world, asked, lift)
-    if track.dead_drag is not None:
-        resistance = resistance + track.dead_drag
+    resistance = level.airframe_drag(span, world, asked, lift) + dead_drag(track, asked)
     mach, better = seeking.next_machs(
         span, world, asked, track.mass, best, flow, thrust, resistance
     )

@@ -9,6 +9,7 @@ from engine.atmosphere import FlightCondition
 from engine.quantities import STANDARD_GRAVITY
 from mission.march import level, seeking, throttled
 from mission.march.asking import Request
+from mission.march.dead_engines import dead_drag
 from mission.march.nodes import positions
 from mission.march.rules import mach_at
 from mission.march.span import SpeedRule
@@ -59,7 +60,7 @@ def _resistance(world: World, track: Track, flight: FlightCondition) -> Array:
     """Drag [N] of level flight, or of a turn at a given load factor, dead engines included."""
     factor = 1.0 if track.span.load_factor is None else track.span.load_factor
     lift = factor * track.mass * STANDARD_GRAVITY
-    dead = dead_drag(world, track, flight)
+    dead = dead_drag(track, flight)
     return level.airframe_drag(track.span, world, flight, lift) + dead
 
 
@@ -67,7 +68,6 @@ def _slope_request(world: World, track: Track) -> Request:
     """A rating, or on a given path the thrust that holds it."""
     span = track.span
     assert track.flight is not None
-    dead_drag(world, track, track.flight)
     if not span.is_steered:
         return Request(track.flight, span.rating, start=track.unknowns)
     sine = throttled.steered_sine(span, track.flight)
@@ -75,8 +75,8 @@ def _slope_request(world: World, track: Track) -> Request:
     weight = track.mass * STANDARD_GRAVITY
     lift = weight * np.sqrt(1.0 - sine**2)
     resistance = level.airframe_drag(span, world, track.flight, lift)
-    assert track.dead_drag is not None
-    thrust = (resistance + track.dead_drag + weight * sine * factor) / world.running(span)
+    resistance = resistance + dead_drag(track, track.flight)
+    thrust = (resistance + weight * sine * factor) / world.running(span)
     asked = track.flight.with_mach(np.broadcast_to(track.flight.mach, thrust.shape))
     return Request(asked, span.rating, thrust, track.unknowns)
 
@@ -91,23 +91,8 @@ def _speed_request(world: World, track: Track) -> Request:
         track.flight = track.air.with_mach(
             mach_at(span.end_speed, world.aircraft, track.air, track.mass)
         )
-        dead_drag(world, track, track.flight)
     track.mach = np.broadcast_to(track.flight.mach, track.mass.shape)
     return Request(track.flight, span.rating, start=track.unknowns)
-
-
-def dead_drag(world: World, track: Track, flight: FlightCondition) -> Array:
-    """Drag [N] of the engines that do not run, kept for the conditions it was found at."""
-    count = track.span.configuration.engines_out
-    if count == 0 or not world.engine.is_known_unlit:
-        track.dead_drag = np.zeros((1, 1))
-        return track.dead_drag
-    known = track.dead_mach
-    if known is None or known.shape != flight.shape or np.any(known != flight.mach):
-        track.dead_drag = -count * world.engine.windmilling(flight).net_thrust
-        track.dead_mach = flight.mach
-    assert track.dead_drag is not None
-    return track.dead_drag
 
 
 def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request | None:
@@ -121,7 +106,6 @@ def _request_by_speed(world: World, tracks: list[Track], index: int) -> Request 
         return None
     track.flight = track.air.with_mach(mach)
     track.mach = np.broadcast_to(track.flight.mach, track.mass.shape)
-    dead_drag(world, track, track.flight)
     slows_down = span.march == "speed" and float(np.mean(last - first)) < 0.0
     track.rating = "flight_idle" if slows_down else span.rating
     return Request(track.flight, track.rating, start=track.unknowns)

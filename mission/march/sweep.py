@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from mission.march.asking import ask
+from mission.march.dead_engines import find_dead_drags
 from mission.march.nodes import integration_matrix, positions
 from mission.march.outcomes import set_nodes, slopes_of
 from mission.march.requests import request_of
@@ -157,6 +158,7 @@ def _first_tracks(
 
 def _ask_engine(world: World, tracks: list[Track]) -> None:
     """One engine call for every span whose condition moved."""
+    find_dead_drags(world, tracks)
     asked = {index: request_of(world, tracks, index) for index in range(len(tracks))}
     requests = {index: request for index, request in asked.items() if request is not None}
     for index, answer in ask(world.engine, requests).items():

@@ -136,7 +136,13 @@ def _below_another(track: Track, added: Array) -> Track:
 
     nodes: Nodes | None = column(track.nodes)
     mass = column(track.mass - added)
-    return replace(track, mass=mass, nodes=nodes, dead_drag=column(track.dead_drag))
+    return replace(
+        track,
+        mass=mass,
+        nodes=nodes,
+        dead_drag=column(track.dead_drag),
+        dead_mach=column(track.dead_mach),
+    )
 
 
 def _integrals(marched: Marched, of: Any) -> Integrals:
