@@ -119,14 +119,10 @@ class Cruise(Segment):
             raise InputRefused(
                 'distance = "rest" needs a distance at the top of the mission or leg'
             )
-        span = here.span(
+        own = self.configured(here)
+        span = own.span(
             self._march,
             rating=self.rating,
-            configuration=replace(
-                here.configuration,
-                drag_factor=self.drag_factor,
-                fuel_flow_factor=self.fuel_flow_factor,
-            ),
             start_altitude=altitude,
             end_altitude=altitude,
             start_speed=here.speed or speed,
@@ -144,8 +140,20 @@ class Cruise(Segment):
         if self.has_steps:
             from mission.segments.steps import with_steps  # noqa: PLC0415  needed by few missions
 
-            return with_steps(self, here, span)
+            spans, there = with_steps(self, own, span)
+            return spans, replace(there, configuration=here.configuration)
         return [span], after
+
+    def configured(self, here: Here) -> Here:
+        """The aircraft as this cruise flies it, its levels and climbs in steps included."""
+        return replace(
+            here,
+            configuration=replace(
+                here.configuration,
+                drag_factor=self.drag_factor,
+                fuel_flow_factor=self.fuel_flow_factor,
+            ),
+        )
 
     @property
     def _march(self) -> Literal["distance", "time", "burn"]:

@@ -116,6 +116,7 @@ def _speeds(flight: LevelFlight, speed: SpeedRule) -> LevelSpeed:
 
 def best_level(cruise: Cruise, here: Here, speed: SpeedRule, row: int, end: int = 0) -> float:
     """Pressure altitude [m] of the best level for a cruise, at the mass at one end of a row."""
+    here = cruise.configured(here)
     ceiling = min(_HIGHEST, here.aircraft.maximum_pressure_altitude)
     lowest = max(_LOWEST, here.pressure_altitude or 0.0)
     levels = grid(np.ceil(lowest / SPACING) * SPACING, ceiling, SPACING)
