@@ -71,7 +71,7 @@ def payload_that_leaves(segments: Sequence[AnySegment]) -> float:
         least = min(least, aboard)
         if isinstance(segment, Turnaround):
             aboard += segment.payload_on
-    return -least
+    return max(0.0, -least)
 
 
 def _with(mission: Mission, written: MissionFile) -> Mission:

@@ -25,14 +25,14 @@ from mission.mission_file import Mission
 from mission.plan import FlightPlan, lay_out
 from mission.questions.one_of_many import unlike
 from mission.questions.shared_choices import Asked, SharedChoices, Token
-from mission.solving import TOLERANCE, Root, Search
+from mission.solving import Root, Search
 
 Array = NDArray[np.float64]
 Members = NDArray[np.int64]
 NODES = 5
 SAME_END = 250.0  # m: ends of cruise-climbs that share a plan lie so far above its own at most
 _SCOUTS, _MOST_ROUNDS = 5, 3
-_ROUGHLY = 1e-3  # of the fuel aboard: what scouts are solved to
+_ROUGHLY, _CLOSELY = 1e-3, 1e-6  # of the fuel aboard: what scouts are solved to, and members
 
 
 @dataclass(frozen=True)
@@ -130,7 +130,7 @@ def first_plan(mission: Mission, world: World) -> FlightPlan:
 
 
 def solve_members(
-    mission: Mission, world: World, wanted: Wanted, tolerance: float = TOLERANCE
+    mission: Mission, world: World, wanted: Wanted, tolerance: float = _CLOSELY
 ) -> Solved:
     """Every member at the free value that its fuel is enough for, to a share of that aboard.
 

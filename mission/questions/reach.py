@@ -30,7 +30,7 @@ from mission.questions.freeing import (
 )
 from mission.questions.members import Solved, Wanted, first_plan, solve_members
 from mission.questions.payload_corners import governing, loads_of, refuse_below
-from mission.questions.results_of_members import Result, greatest_error, results_of
+from mission.questions.results_of_members import Result, results_of
 from mission.results import Failure, Totals
 from mission.segments.loiter import Loiter
 
@@ -221,7 +221,6 @@ def _reach(
     flown = [found for found in results if isinstance(found, Result)]
     world = asked.world
     points = tuple(_point(asked, i, found) for i, found in enumerate(results))
-    can_be_flown = [i for i, point in enumerate(points) if point.is_flown]
     return Reach(
         mission=asked.mission.name,
         aircraft=world.aircraft.name,
@@ -231,9 +230,9 @@ def _reach(
         top=asked.top,
         is_radius=asked.mission.written.radius is not None,
         station=asked.station,
-        error=greatest_error(asked.mission, world, solved, can_be_flown),
+        error=max((found.error for found in flown if found.failure is None), default=0.0),
         unclosed=sum(not found.is_closed for found in flown if found.has_answer),
-        flights=max(found.flights for found in flown) + before + 1,
+        flights=max(found.flights for found in flown) + before,
         plans=len(solved.groups),
     )
 

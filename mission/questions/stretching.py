@@ -1,8 +1,9 @@
-"""What a cruise-climb leaves open: flights that share a plan end it at altitudes of their own.
+"""What a flight comes to that is nearly solved, without flying it once more.
 
-The descent that follows is laid from one altitude for all of them. What each would fly of it more
-or less from its own end is added here, by the rates at its top: for 250 m, the most there is, to
-a metre of distance or two.
+A little fuel left goes to what stretches. And flights that share a plan end a cruise-climb at
+altitudes of their own, while the descent that follows is laid from one altitude for all of them:
+what each would fly of it more or less from its own end is added here, by the rates at its top. For
+250 m, the most there is, that is right to some decimetres of distance.
 """
 
 from __future__ import annotations
@@ -44,14 +45,15 @@ class _Slice:
     fuel: Array
 
 
-def shift_of(plan: FlightPlan, marched: Marched) -> Shift:
-    """What flights come to once each descends from where its own cruise-climb ends.
+def shift_of(plan: FlightPlan, marched: Marched, left: Array) -> Shift:
+    """What flights come to once each has burnt the fuel ``left`` to it [kg] (members,), and
+    descends from where its own cruise-climb ends.
 
     The fuel of the descent's piece is taken from, and its distance given to, the cruises that
     stretch.
     """
     none = np.zeros_like(marched.stop_mass)
-    saved, ground, time = none, none, none
+    saved, ground, time = left, none, none
     for piece in _slices(plan, marched):
         rest = _rest_of(marched, piece.leg)
         saved, time = saved - piece.fuel, time + piece.time
