@@ -118,11 +118,12 @@ def test_a_point_of_files_of_ones_own_under_another_rating(
 
 @pytest.mark.parametrize("columns", [80, 100])
 def test_the_best_fits_the_screen_answer_and_doubt_first(
-    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch, columns: int
+    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch, tmp_path: Path, columns: int
 ) -> None:
     monkeypatch.setenv("COLUMNS", str(columns))
-    run = longlegs("best", "coast_watch", "--mass", "23 t", "--mass", "20 t", "--mass", "26 t",
-                   "--cost-index", "10 kg/min", "--json", "best.json")  # fmt: skip
+    write(tmp_path, "jet", engine_content())
+    run = longlegs("best", "coast_watch", "--engine", "jet", "--mass", "23 t", "--mass", "20 t",
+                   "--mass", "26 t", "--cost-index", "10 kg/min", "--json", "best.json")  # fmt: skip
     assert (run.status, run.err) == (0, "")
     lines = run.out.splitlines()
     assert lines[0] == "coast watch twin"
@@ -147,10 +148,12 @@ def test_the_best_fits_the_screen_answer_and_doubt_first(
 
 
 def test_no_number_is_cut_off_on_a_narrow_screen(
-    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch
+    longlegs: Longlegs, monkeypatch: pytest.MonkeyPatch, tmp_path: Path
 ) -> None:
     """Every number of the narrow tables stands in the wide ones."""
-    words = ("best", "coast_watch", "--mass", "23 t", "--mass", "26 t", "--units", "trade")
+    write(tmp_path, "jet", engine_content())
+    words = ("best", "coast_watch", "--engine", "jet", "--mass", "23 t", "--mass", "26 t",
+             "--units", "trade")  # fmt: skip
     shown = {}
     for columns in (80, 100):
         monkeypatch.setenv("COLUMNS", str(columns))
