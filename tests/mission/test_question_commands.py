@@ -122,8 +122,9 @@ def test_the_best_fits_the_screen_answer_and_doubt_first(
 ) -> None:
     monkeypatch.setenv("COLUMNS", str(columns))
     write(tmp_path, "jet", engine_content())
-    run = longlegs("best", "coast_watch", "--engine", "jet", "--mass", "23 t", "--mass", "20 t",
-                   "--mass", "26 t", "--cost-index", "10 kg/min", "--json", "best.json")  # fmt: skip
+    masses = ("--mass", "23 t", "--mass", "20 t", "--mass", "26 t")
+    options = ("--engine", "jet", "--cost-index", "10 kg/min", "--json", "best.json")
+    run = longlegs("best", "coast_watch", *masses, *options)
     assert (run.status, run.err) == (0, "")
     lines = run.out.splitlines()
     assert lines[0] == "coast watch twin"
